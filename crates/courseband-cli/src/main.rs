@@ -1,0 +1,2 @@
+//! The native command `courseband`.
+fn main() {}

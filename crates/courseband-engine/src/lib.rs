@@ -1,0 +1,1 @@
+//! Penalised-spline mixed models for groups followed over time: mathematics only.

@@ -1,0 +1,1 @@
+//! Findings to a description of strips, then to any plotters backend.

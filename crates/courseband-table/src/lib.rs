@@ -1,0 +1,1 @@
+//! Bytes of a table to observations and the problems found in it.

@@ -1,0 +1,2 @@
+//! What the README commands do.
+fn main() {}
