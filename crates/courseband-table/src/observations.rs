@@ -1,0 +1,61 @@
+//! The observations: what the rest of the program computes with.
+
+/// Repeated measurements of subjects in groups, by column.
+///
+/// The vectors `subject`, `time`, `response` and `line` have one entry per
+/// usable row and are sorted by subject (first appearance), then time, then line.
+#[derive(Debug, Clone, Default)]
+pub struct Observations {
+    /// Who was measured, in order of first appearance.
+    pub subjects: Vec<SubjectInfo>,
+    /// Group names, in order of first appearance. One entry, `"all"`, without a group column.
+    pub groups: Vec<String>,
+    /// Cluster names (cage, litter, site), in order of first appearance; empty without a cluster column.
+    pub clusters: Vec<String>,
+    /// Index into `subjects`.
+    pub subject: Vec<u32>,
+    /// Time in `time_word` units.
+    pub time: Vec<f64>,
+    /// Response as measured; always finite.
+    pub response: Vec<f64>,
+    /// Line in the file; the header is line 1.
+    pub line: Vec<u32>,
+    /// Further explanatory columns asked for.
+    pub covariates: Vec<Covariate>,
+    /// One time unit in words: `day`, `week`, `hour` or, where unknown, the column's name.
+    pub time_word: String,
+}
+
+/// One subject. Belongs to one group and at most one cluster.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct SubjectInfo {
+    /// Name as shown; where ids restart in each group, with the group's name added.
+    pub name: String,
+    /// Index into [`Observations::groups`].
+    pub group: u32,
+    /// Index into [`Observations::clusters`].
+    pub cluster: Option<u32>,
+}
+
+/// A further explanatory column, one value per usable row.
+#[derive(Debug, Clone)]
+pub struct Covariate {
+    /// Column name.
+    pub name: String,
+    /// Values.
+    pub values: CovariateValues,
+}
+
+/// Numbers or categories.
+#[derive(Debug, Clone)]
+pub enum CovariateValues {
+    /// One number per usable row.
+    Numeric(Vec<f64>),
+    /// Index into `levels` per usable row.
+    Categorical {
+        /// Category names, in order of first appearance.
+        levels: Vec<String>,
+        /// One per usable row.
+        index: Vec<u32>,
+    },
+}
