@@ -6,7 +6,7 @@
 use super::beta::{beta_prefactor, beta_tails};
 use super::gamma::{gamma_prefactor, regularised_gamma, regularised_gamma_upper};
 use super::invert::{LogProbability, solve_log_probability};
-use super::normal::{normal_cdf, normal_quantile, normal_sf};
+use super::normal::{normal_quantile, normal_sf};
 
 /// P(T <= t) for Student's t with `df` degrees of freedom.
 pub fn t_cdf(t: f64, df: f64) -> f64 {
@@ -112,6 +112,12 @@ fn f_shares(x: f64, df1: f64, df2: f64) -> (f64, f64) {
     }
 }
 
+/// d P(F <= x) / d ln x = u^(df1/2) v^(df2/2) / B(df1/2, df2/2) with u, v as in [`f_cdf`], for finite `df2`.
+pub(super) fn f_slope(x: f64, df1: f64, df2: f64) -> f64 {
+    let (u, v) = f_shares(x, df1, df2);
+    beta_prefactor(0.5 * df1, 0.5 * df2, u, v)
+}
+
 /// The x with P(F <= x) = `p`. NaN outside \[0, 1\] or for degrees of freedom not above zero.
 pub fn f_quantile(p: f64, df1: f64, df2: f64) -> f64 {
     if !(df1 > 0.0 && df2 > 0.0) || !(0.0..=1.0).contains(&p) {
@@ -123,11 +129,7 @@ pub fn f_quantile(p: f64, df1: f64, df2: f64) -> f64 {
     if p == 0.0 || p == 1.0 {
         return if p == 0.0 { 0.0 } else { f64::INFINITY };
     }
-    // d P / d ln x = u^(df1/2) v^(df2/2) / B(df1/2, df2/2).
-    let slope = |x: f64| {
-        let (u, v) = f_shares(x, df1, df2);
-        beta_prefactor(0.5 * df1, 0.5 * df2, u, v)
-    };
+    let slope = |x: f64| f_slope(x, df1, df2);
     // Fisher's z = ln(F)/2 is roughly normal.
     let spread = libm::sqrt(2.0 * (1.0 / df1 + 1.0 / df2));
     let guess = 1.0 / df2 - 1.0 / df1 + spread * normal_quantile(p);
@@ -171,13 +173,5 @@ pub fn chi2_quantile(p: f64, df: f64) -> f64 {
         solve_log_probability(1.0 - p, guess, false, |x| {
             LogProbability::new(chi2_sf(x, df), -slope(x))
         })
-    }
-}
-
-/// P(|Z| <= c) for one standard normal, or one t with `df` degrees of freedom.
-pub fn two_sided_inside(c: f64, df: Option<f64>) -> f64 {
-    match df {
-        Some(df) if df.is_finite() => t_two_sided(libm::fabs(c), df).1,
-        _ => normal_cdf(c) - normal_cdf(-c),
     }
 }

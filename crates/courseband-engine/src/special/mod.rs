@@ -9,6 +9,7 @@
 //! | [`gamma`] | log gamma, regularised incomplete gamma | DLMF 5.11, 8.9, 8.11; Loader 2000 (saddle-point prefactor) |
 //! | [`beta`] | regularised incomplete beta | DiDonato & Morris 1992, ACM TOMS 18:360, eq. 9 (from memory) |
 //! | [`distributions`] | Student t, F, chi-squared | DLMF 8.17; Johnson, Kotz & Balakrishnan 1995 |
+//! | [`quantile`] | quantile of the largest of many joint z or t | Deak 1980, Numer. Math. 35:369 |
 //! | [`rng`] | xoshiro256++ and variates | Blackman & Vigna 2021, ACM TOMS 47:36; Marsaglia & Tsang 2000 |
 
 pub mod beta;
@@ -16,6 +17,7 @@ pub mod distributions;
 pub mod gamma;
 mod invert;
 pub mod normal;
+pub mod quantile;
 pub mod rng;
 
 pub use beta::{regularised_beta, regularised_beta_upper};
@@ -24,7 +26,10 @@ pub use distributions::{
 };
 pub use gamma::{ln_gamma, regularised_gamma, regularised_gamma_upper};
 pub use normal::{normal_cdf, normal_pdf, normal_quantile, normal_sf};
+pub use quantile::{DirectionMaxima, Quantile, max_abs_quantile};
 pub use rng::Rng;
 
+#[cfg(test)]
+mod quantile_tests;
 #[cfg(test)]
 mod tests;
