@@ -8,6 +8,11 @@ use super::gamma::{gamma_prefactor, regularised_gamma, regularised_gamma_upper};
 use super::invert::{LogProbability, solve_log_probability};
 use super::normal::{normal_quantile, normal_sf};
 
+/// False for NaN too.
+fn above_zero(x: f64) -> bool {
+    x > 0.0
+}
+
 /// P(T <= t) for Student's t with `df` degrees of freedom.
 pub fn t_cdf(t: f64, df: f64) -> f64 {
     t_sf(-t, df)
@@ -18,7 +23,7 @@ pub fn t_sf(t: f64, df: f64) -> f64 {
     if df == f64::INFINITY {
         return normal_sf(t);
     }
-    if !(df > 0.0) || t.is_nan() {
+    if !above_zero(df) || t.is_nan() {
         return f64::NAN;
     }
     let (beyond, _) = t_two_sided(libm::fabs(t), df);
@@ -48,7 +53,7 @@ pub fn t_quantile(p: f64, df: f64) -> f64 {
     if df == f64::INFINITY {
         return normal_quantile(p);
     }
-    if !(df > 0.0) || !(0.0..=1.0).contains(&p) {
+    if !above_zero(df) || !(0.0..=1.0).contains(&p) {
         return f64::NAN;
     }
     if p == 0.5 {
@@ -90,7 +95,7 @@ pub fn f_sf(x: f64, df1: f64, df2: f64) -> f64 {
 
 /// (P(F <= x), P(F > x)): I_u(df1/2, df2/2) at u = df1 x / (df1 x + df2).
 fn f_tails(x: f64, df1: f64, df2: f64) -> (f64, f64) {
-    if !(df1 > 0.0 && df2 > 0.0) || x.is_nan() {
+    if !above_zero(df1) || !above_zero(df2) || x.is_nan() {
         return (f64::NAN, f64::NAN);
     }
     if x <= 0.0 {
@@ -120,7 +125,7 @@ pub(super) fn f_slope(x: f64, df1: f64, df2: f64) -> f64 {
 
 /// The x with P(F <= x) = `p`. NaN outside \[0, 1\] or for degrees of freedom not above zero.
 pub fn f_quantile(p: f64, df1: f64, df2: f64) -> f64 {
-    if !(df1 > 0.0 && df2 > 0.0) || !(0.0..=1.0).contains(&p) {
+    if !above_zero(df1) || !above_zero(df2) || !(0.0..=1.0).contains(&p) {
         return f64::NAN;
     }
     if df2 == f64::INFINITY {
@@ -156,7 +161,7 @@ pub fn chi2_sf(x: f64, df: f64) -> f64 {
 
 /// The x with P(X <= x) = `p`. NaN outside \[0, 1\] or for `df` not above zero and finite.
 pub fn chi2_quantile(p: f64, df: f64) -> f64 {
-    if !(df > 0.0) || !df.is_finite() || !(0.0..=1.0).contains(&p) {
+    if !above_zero(df) || !df.is_finite() || !(0.0..=1.0).contains(&p) {
         return f64::NAN;
     }
     if p == 0.0 || p == 1.0 {

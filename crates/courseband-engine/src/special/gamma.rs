@@ -26,7 +26,8 @@ pub fn regularised_gamma_upper(a: f64, x: f64) -> f64 {
 
 /// (P, Q). The series below the mean, the continued fraction above it.
 fn both_tails(a: f64, x: f64) -> (f64, f64) {
-    if !(a > 0.0 && x >= 0.0) || !a.is_finite() {
+    let proper = a > 0.0 && a.is_finite() && x >= 0.0;
+    if !proper {
         return (f64::NAN, f64::NAN);
     }
     if x == 0.0 {

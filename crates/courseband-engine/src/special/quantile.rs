@@ -82,7 +82,8 @@ impl DirectionMaxima {
     /// NaN when there are no rows, when every row is zero, or when `level` is outside (0, 1).
     pub fn quantile(&self, level: f64, df: Option<f64>) -> Quantile {
         let largest = self.bins.last().map_or(0.0, |bin| bin.mean);
-        if !(level > 0.0 && level < 1.0) || !(largest > 0.0) {
+        let proper = level > 0.0 && level < 1.0 && largest > 0.0;
+        if !proper {
             return Quantile { value: f64::NAN, mc_error: f64::NAN };
         }
         let radius = Radius::new(self.dimension, df);
@@ -158,7 +159,7 @@ impl Radius {
     /// (P(R > x), d P(R > x) / d ln x).
     fn beyond(&self, x: f64) -> (f64, f64) {
         let r = self.dimension;
-        if !(x * x < f64::MAX) {
+        if x.is_nan() || x * x >= f64::MAX {
             return (0.0, 0.0);
         }
         match self.df {

@@ -88,7 +88,7 @@ impl Rng {
     ///
     /// Marsaglia & Tsang 2000, ACM TOMS 26:363; shapes below one are raised by one and multiplied by U^(1/shape).
     pub fn gamma(&mut self, shape: f64) -> f64 {
-        if !(shape > 0.0) {
+        if shape.is_nan() || shape <= 0.0 {
             return f64::NAN;
         }
         if shape < 1.0 {
