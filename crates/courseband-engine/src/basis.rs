@@ -1,0 +1,147 @@
+//! The columns that describe one group's mean over time.
+//!
+//! All times here are internal: 0 at the table's first time, 1 at its last.
+
+use crate::model::{Data, Model, Shape};
+use crate::spline::{NaturalSpline, distinct_sorted, place_knots};
+
+/// Columns of one group's mean. The unpenalised ones come first.
+#[derive(Debug, Clone)]
+pub(crate) enum GroupBasis {
+    /// One distinct time: a level and nothing else.
+    Constant,
+    /// Level and trend.
+    Line,
+    /// Level, trend and a penalised spline.
+    Spline(NaturalSpline),
+    /// One column per distinct time.
+    ByTime(Vec<f64>),
+}
+
+impl GroupBasis {
+    /// Number of columns.
+    pub(crate) fn columns(&self) -> usize {
+        self.unpenalised() + self.penalised()
+    }
+
+    /// Number of columns without a penalty.
+    pub(crate) fn unpenalised(&self) -> usize {
+        match self {
+            GroupBasis::Constant => 1,
+            GroupBasis::Line | GroupBasis::Spline(_) => 2,
+            GroupBasis::ByTime(times) => times.len(),
+        }
+    }
+
+    /// Number of penalised columns, whose penalty is the identity.
+    pub(crate) fn penalised(&self) -> usize {
+        match self {
+            GroupBasis::Spline(spline) => spline.len(),
+            _ => 0,
+        }
+    }
+
+    /// True where one column is time itself, so that the criterion depends on the unit of time.
+    pub(crate) fn has_trend(&self) -> bool {
+        matches!(self, GroupBasis::Line | GroupBasis::Spline(_))
+    }
+
+    /// Writes the columns at internal time `t` into `out`, or their first derivatives.
+    pub(crate) fn fill(&self, t: f64, derivative: bool, out: &mut [f64]) {
+        let level = if derivative { 0.0 } else { 1.0 };
+        match self {
+            GroupBasis::Constant => out[0] = level,
+            GroupBasis::Line | GroupBasis::Spline(_) => {
+                out[0] = level;
+                out[1] = if derivative { 1.0 } else { t };
+                if let GroupBasis::Spline(spline) = self {
+                    spline.fill(t, derivative, &mut out[2..]);
+                }
+            }
+            GroupBasis::ByTime(times) => fill_joined(times, t, derivative, out),
+        }
+    }
+}
+
+/// Straight joins between neighbouring times; constant outside.
+fn fill_joined(times: &[f64], t: f64, derivative: bool, out: &mut [f64]) {
+    out.fill(0.0);
+    let last = times.len() - 1;
+    if last == 0 || t <= times[0] || t >= times[last] {
+        out[if t <= times[0] { 0 } else { last }] = if derivative { 0.0 } else { 1.0 };
+        return;
+    }
+    let right = times.partition_point(|&time| time < t).clamp(1, last);
+    let h = times[right] - times[right - 1];
+    let share = (t - times[right - 1]) / h;
+    let (left_weight, right_weight) = if derivative { (-1.0 / h, 1.0 / h) } else { (1.0 - share, share) };
+    out[right - 1] = left_weight;
+    out[right] = right_weight;
+}
+
+/// How internal numbers relate to the table's.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub(crate) struct Units {
+    /// First time in the table.
+    pub(crate) time_origin: f64,
+    /// Last minus first time; 1 where there is one time only.
+    pub(crate) time_span: f64,
+    /// Mean of the responses.
+    pub(crate) response_centre: f64,
+    /// Standard deviation of the responses; 1 where they do not vary.
+    pub(crate) response_scale: f64,
+    /// Internal time at which a subject's level and trend are taken.
+    pub(crate) subject_centre: f64,
+}
+
+impl Units {
+    /// `data` has at least one row.
+    pub(crate) fn of(data: &Data) -> Self {
+        let times = || data.subjects.iter().flat_map(|s| s.times.iter().copied());
+        let responses = || data.subjects.iter().flat_map(|s| s.responses.iter().copied());
+        let rows = data.rows() as f64;
+        let origin = times().fold(f64::INFINITY, f64::min);
+        let span = times().fold(f64::NEG_INFINITY, f64::max) - origin;
+        let span = if span > 0.0 { span } else { 1.0 };
+        let first = responses().next().unwrap_or(0.0);
+        let centre = first + responses().map(|y| y - first).sum::<f64>() / rows;
+        let square = responses().map(|y| (y - centre) * (y - centre)).sum::<f64>() / rows;
+        let scale = libm::sqrt(square);
+        Units {
+            time_origin: origin,
+            time_span: span,
+            response_centre: centre,
+            response_scale: if scale > 0.0 && scale.is_finite() { scale } else { 1.0 },
+            subject_centre: times().map(|t| (t - origin) / span).sum::<f64>() / rows,
+        }
+    }
+
+    /// Table time to internal time.
+    pub(crate) fn inner_time(&self, t: f64) -> f64 {
+        (t - self.time_origin) / self.time_span
+    }
+}
+
+/// One basis per group.
+pub(crate) fn group_bases(data: &Data, model: &Model, units: &Units) -> Vec<GroupBasis> {
+    let inner = |t: f64| units.inner_time(t);
+    let pooled = distinct_sorted(data.subjects.iter().flat_map(|s| s.times.iter().map(|&t| inner(t))));
+    let spline = match model.shape {
+        Shape::Smooth(dimension) if pooled.len() > 2 => {
+            Some(NaturalSpline::new(place_knots(&pooled, dimension))).filter(|s| s.len() > 0)
+        }
+        _ => None,
+    };
+    (0..data.groups)
+        .map(|group| {
+            let own = data.subjects.iter().filter(|s| s.group == group);
+            let times = distinct_sorted(own.flat_map(|s| s.times.iter().map(|&t| inner(t))));
+            match (model.shape, times.len()) {
+                (Shape::ByTime, _) => GroupBasis::ByTime(times),
+                (_, 1) => GroupBasis::Constant,
+                (Shape::Smooth(_), _) => spline.clone().map_or(GroupBasis::Line, GroupBasis::Spline),
+                (Shape::Straight, _) => GroupBasis::Line,
+            }
+        })
+        .collect()
+}

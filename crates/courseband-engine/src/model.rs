@@ -1,0 +1,111 @@
+//! What can be asked of the engine: the data it takes and the model it fits.
+
+/// Rows of one subject, in ascending time. `times` and `responses` have one length.
+#[derive(Debug, Clone, PartialEq)]
+pub struct SubjectRows {
+    /// Index of the subject's group, below [`Data::groups`].
+    pub group: usize,
+    /// Times, in the table's own unit.
+    pub times: Vec<f64>,
+    /// Responses on the modelled scale.
+    pub responses: Vec<f64>,
+}
+
+/// Everything that is fitted.
+#[derive(Debug, Clone, PartialEq)]
+pub struct Data {
+    /// Number of groups, at least one.
+    pub groups: usize,
+    /// Subjects; each has at least one row.
+    pub subjects: Vec<SubjectRows>,
+}
+
+impl Data {
+    /// Number of rows.
+    #[must_use]
+    pub fn rows(&self) -> usize {
+        self.subjects.iter().map(|subject| subject.times.len()).sum()
+    }
+}
+
+/// Shape of a group's mean over time.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Shape {
+    /// Natural cubic spline, penalised by its integrated squared second derivative.
+    Smooth(Dimension),
+    /// Straight line.
+    Straight,
+    /// One mean for each distinct time of the group; between them straight joins.
+    ByTime,
+}
+
+/// Number of knots of a spline.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Dimension {
+    /// All distinct times when at most 20, else 20.
+    Auto,
+    /// All distinct times.
+    Full,
+    /// This many, ends included; at most the number of distinct times.
+    Knots(usize),
+}
+
+/// What differs from subject to subject.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SubjectEffects {
+    /// Nothing.
+    None,
+    /// The level.
+    Intercept,
+    /// Level and trend, correlated.
+    Slope,
+}
+
+impl SubjectEffects {
+    /// Number of effects per subject.
+    #[must_use]
+    pub fn count(self) -> usize {
+        match self {
+            SubjectEffects::None => 0,
+            SubjectEffects::Intercept => 1,
+            SubjectEffects::Slope => 2,
+        }
+    }
+}
+
+/// One value for all groups, or one per group.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Sharing {
+    /// One for all groups.
+    Common,
+    /// One per group.
+    ByGroup,
+}
+
+/// Correlation of the errors within a subject.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Serial {
+    /// Independent.
+    None,
+    /// Continuous-time AR(1): correlation `phi^|dt|`.
+    Ar1,
+    /// The same plus an independent measurement-error part (Diggle 1988, Biometrics 44:959).
+    Ar1Nugget,
+}
+
+/// The model to fit.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub struct Model {
+    /// Shape of the groups' means.
+    pub shape: Shape,
+    /// Smoothing variance: one for all groups or one per group.
+    pub smoothness: Sharing,
+    /// What differs from subject to subject.
+    pub subjects: SubjectEffects,
+    /// Covariance of the subject effects: one for all groups or one per group.
+    pub subjects_spread: Sharing,
+    /// Correlation of the errors.
+    pub serial: Serial,
+    /// Error variance: one for all groups or one per group.
+    pub spread: Sharing,
+}

@@ -1,0 +1,173 @@
+//! The variance parameters as one vector without constraints, and back.
+//!
+//! | entry | meaning |
+//! |---|---|
+//! | smoothing | `ln s^2` of a group's spline coefficients |
+//! | error | `ln sigma^2` of a group |
+//! | subject, one effect | `ln sd` |
+//! | subject, two effects | `(a, c, b)` with `D = L L'`, `L = [[e^a, 0], [c, e^b]]` |
+//! | rate | `ln` decay of the serial correlation per internal time unit |
+//! | nugget | `logit` of the share of measurement error |
+//!
+//! Responses are internal (unit variance), times are internal (unit span).
+
+use crate::basis::GroupBasis;
+use crate::model::{Model, Serial, Sharing};
+use crate::whiten::ErrorShape;
+use nalgebra::DMatrix;
+
+/// What an entry of the parameter vector is.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum Parameter {
+    /// Smoothing variance of a group, or of all (`None`).
+    Smoothing(Option<usize>),
+    /// Error variance of a group, or of all (`None`).
+    Error(Option<usize>),
+    /// Subject effects of a group, or of all (`None`); `part` 0: first diagonal entry of the factor,
+    /// 1: its off-diagonal entry, 2: its second diagonal entry.
+    Subject {
+        /// Group, or all.
+        group: Option<usize>,
+        /// Part of the factor.
+        part: usize,
+    },
+    /// Decay of the serial correlation.
+    Rate,
+    /// Share of measurement error.
+    Nugget,
+}
+
+/// Where each parameter is in the vector.
+#[derive(Debug, Clone)]
+pub(crate) struct Layout {
+    pub(crate) entries: Vec<Parameter>,
+    pub(crate) lower: Vec<f64>,
+    pub(crate) upper: Vec<f64>,
+    /// Per group.
+    pub(crate) smoothing: Vec<Option<usize>>,
+    /// Per group.
+    pub(crate) error: Vec<usize>,
+    /// Per group: index of the first entry.
+    pub(crate) subject: Vec<usize>,
+    pub(crate) rate: Option<usize>,
+    pub(crate) nugget: Option<usize>,
+    /// Number of effects per subject.
+    pub(crate) effects: usize,
+}
+
+impl Layout {
+    /// `median_gap`: median internal time between a subject's neighbouring visits.
+    pub(crate) fn new(model: &Model, bases: &[GroupBasis], median_gap: f64) -> Self {
+        let groups = bases.len();
+        let mut layout = Layout {
+            entries: Vec::new(),
+            lower: Vec::new(),
+            upper: Vec::new(),
+            smoothing: vec![None; groups],
+            error: vec![0; groups],
+            subject: vec![0; groups],
+            rate: None,
+            nugget: None,
+            effects: model.subjects.count(),
+        };
+        layout.add_smoothing(model, bases);
+        for (group, slot) in layout.owners(model.spread, groups) {
+            let index = layout.add(Parameter::Error(slot), -36.0, 12.0);
+            group.into_iter().for_each(|g| layout.error[g] = index);
+        }
+        if layout.effects > 0 {
+            layout.add_subjects(model, groups);
+        }
+        if model.serial != Serial::None {
+            let unit = libm::log(median_gap);
+            layout.rate = Some(layout.add(Parameter::Rate, -9.3 - unit, 3.0 - unit));
+        }
+        if model.serial == Serial::Ar1Nugget {
+            layout.nugget = Some(layout.add(Parameter::Nugget, -14.0, 14.0));
+        }
+        layout
+    }
+
+    fn add(&mut self, entry: Parameter, lower: f64, upper: f64) -> usize {
+        self.entries.push(entry);
+        self.lower.push(lower);
+        self.upper.push(upper);
+        self.entries.len() - 1
+    }
+
+    /// Groups that share one entry, with the entry's own group.
+    fn owners(&self, sharing: Sharing, groups: usize) -> Vec<(Vec<usize>, Option<usize>)> {
+        match sharing {
+            Sharing::Common => vec![((0..groups).collect(), (groups == 1).then_some(0))],
+            Sharing::ByGroup => (0..groups).map(|g| (vec![g], Some(g))).collect(),
+        }
+    }
+
+    fn add_smoothing(&mut self, model: &Model, bases: &[GroupBasis]) {
+        for (group, slot) in self.owners(model.smoothness, bases.len()) {
+            let curved: Vec<usize> = group.into_iter().filter(|&g| bases[g].penalised() > 0).collect();
+            if !curved.is_empty() {
+                let index = self.add(Parameter::Smoothing(slot), -24.0, 24.0);
+                curved.into_iter().for_each(|g| self.smoothing[g] = Some(index));
+            }
+        }
+    }
+
+    fn add_subjects(&mut self, model: &Model, groups: usize) {
+        for (group, slot) in self.owners(model.subjects_spread, groups) {
+            let first = self.add(Parameter::Subject { group: slot, part: 0 }, -18.0, 6.0);
+            if self.effects == 2 {
+                self.add(Parameter::Subject { group: slot, part: 1 }, -400.0, 400.0);
+                self.add(Parameter::Subject { group: slot, part: 2 }, -18.0, 6.0);
+            }
+            group.into_iter().for_each(|g| self.subject[g] = first);
+        }
+    }
+
+    pub(crate) fn len(&self) -> usize {
+        self.entries.len()
+    }
+
+    /// Error variance of a group.
+    pub(crate) fn variance(&self, theta: &[f64], group: usize) -> f64 {
+        libm::exp(theta[self.error[group]])
+    }
+
+    /// Smoothing variance of a group, where it has one.
+    pub(crate) fn smoothing_variance(&self, theta: &[f64], group: usize) -> Option<f64> {
+        self.smoothing[group].map(|index| libm::exp(theta[index]))
+    }
+
+    /// Factor `L` of the subject covariance of a group, q x q lower triangular.
+    pub(crate) fn subject_factor(&self, theta: &[f64], group: usize) -> DMatrix<f64> {
+        let first = self.subject[group];
+        match self.effects {
+            0 => DMatrix::zeros(0, 0),
+            1 => DMatrix::from_element(1, 1, libm::exp(theta[first])),
+            _ => DMatrix::from_row_slice(
+                2,
+                2,
+                &[libm::exp(theta[first]), 0.0, theta[first + 1], libm::exp(theta[first + 2])],
+            ),
+        }
+    }
+
+    /// Adds the derivative through `L` to `gradient`: `slope` is the derivative for each entry of `L`.
+    pub(crate) fn add_factor_slope(&self, theta: &[f64], group: usize, slope: &DMatrix<f64>, gradient: &mut [f64]) {
+        let first = self.subject[group];
+        if self.effects > 0 {
+            gradient[first] += slope[(0, 0)] * libm::exp(theta[first]);
+        }
+        if self.effects == 2 {
+            gradient[first + 1] += slope[(1, 0)];
+            gradient[first + 2] += slope[(1, 1)] * libm::exp(theta[first + 2]);
+        }
+    }
+
+    /// Correlation of the errors, `None` where they are independent.
+    pub(crate) fn error_shape(&self, theta: &[f64]) -> Option<ErrorShape> {
+        let rate = self.rate.map(|index| libm::exp(theta[index]))?;
+        let nugget = self.nugget.map_or(0.0, |index| 1.0 / (1.0 + libm::exp(-theta[index])));
+        Some(ErrorShape { rate, nugget })
+    }
+}

@@ -1,0 +1,289 @@
+//! Each visiting schedule reduced once to small cross-products.
+//!
+//! Subjects of one group with the same times form a *pattern*. With the rows
+//! whitened to unit error variance, everything that the criterion needs of a
+//! pattern is in the products of its columns
+//!
+//! | symbol | shape | what |
+//! |---|---|---|
+//! | F | n x K | columns of the group's mean |
+//! | Z | n x q | columns of a subject's effects: 1, time |
+//! | Y | n x m | responses of the pattern's m subjects |
+//!
+//! `F'F` is summed over a group, `F'Z` and `Z'Z` are kept per pattern, and of
+//! the responses only sums over the pattern's subjects remain. Cost O(n (K^2 + K q + m q))
+//! per pattern, memory O(K q) per pattern. Without serial correlation it is done once.
+
+use crate::basis::{GroupBasis, Units};
+use crate::model::Data;
+use crate::spline::distinct_sorted;
+use crate::whiten::{ErrorShape, Whitener};
+use nalgebra::DMatrix;
+use std::collections::BTreeMap;
+
+/// Subjects of one group seen at the same times.
+#[derive(Debug, Clone)]
+pub(crate) struct Pattern {
+    pub(crate) group: usize,
+    /// Internal times.
+    pub(crate) times: Vec<f64>,
+    /// Row of the group's table of columns for each time.
+    table_row: Vec<usize>,
+    /// Indices into the data's subjects.
+    pub(crate) subjects: Vec<usize>,
+    /// Internal responses, n rows of m.
+    pub(crate) responses: Vec<f64>,
+}
+
+/// The data in internal units, sorted into patterns.
+#[derive(Debug, Clone)]
+pub(crate) struct Design {
+    pub(crate) units: Units,
+    pub(crate) bases: Vec<GroupBasis>,
+    pub(crate) patterns: Vec<Pattern>,
+    /// Number of effects per subject.
+    pub(crate) effects: usize,
+    /// Rows per group.
+    pub(crate) rows: Vec<usize>,
+    /// Columns of each group's mean at each of its distinct times, row by row.
+    tables: Vec<Vec<f64>>,
+}
+
+impl Design {
+    pub(crate) fn new(data: &Data, units: Units, bases: Vec<GroupBasis>, effects: usize) -> Self {
+        let mut distinct = vec![Vec::new(); data.groups];
+        for subject in &data.subjects {
+            distinct[subject.group].extend(subject.times.iter().map(|&t| units.inner_time(t)));
+        }
+        let distinct: Vec<Vec<f64>> = distinct.into_iter().map(|times| distinct_sorted(times.into_iter())).collect();
+        let tables = distinct.iter().zip(&bases).map(|(times, basis)| column_table(basis, times)).collect();
+        let mut rows = vec![0; data.groups];
+        data.subjects.iter().for_each(|s| rows[s.group] += s.times.len());
+        let patterns = sort_into_patterns(data, &units, &distinct);
+        Design { units, bases, patterns, effects, rows, tables }
+    }
+
+    /// Median internal time between neighbouring visits of one subject; 1 where there is none.
+    pub(crate) fn median_gap(&self) -> f64 {
+        let mut gaps: Vec<f64> = self
+            .patterns
+            .iter()
+            .flat_map(|p| p.times.windows(2).flat_map(|w| std::iter::repeat_n(w[1] - w[0], p.subjects.len())))
+            .filter(|&gap| gap > 0.0)
+            .collect();
+        if gaps.is_empty() {
+            return 1.0;
+        }
+        let middle = gaps.len() / 2;
+        *gaps.select_nth_unstable_by(middle, f64::total_cmp).1
+    }
+
+    /// Rows `F | Z | Y` of a pattern, row by row; returns them with their width.
+    fn rows_of(&self, pattern: &Pattern) -> (Vec<f64>, usize) {
+        let columns = self.bases[pattern.group].columns();
+        let (q, m) = (self.effects, pattern.subjects.len());
+        let width = columns + q + m;
+        let mut rows = vec![0.0; pattern.times.len() * width];
+        for (j, row) in rows.chunks_exact_mut(width).enumerate() {
+            let from = pattern.table_row[j] * columns;
+            row[..columns].copy_from_slice(&self.tables[pattern.group][from..from + columns]);
+            if q > 0 {
+                row[columns] = 1.0;
+            }
+            if q > 1 {
+                row[columns + 1] = pattern.times[j] - self.units.subject_centre;
+            }
+            row[columns + q..].copy_from_slice(&pattern.responses[j * m..(j + 1) * m]);
+        }
+        (rows, width)
+    }
+}
+
+fn column_table(basis: &GroupBasis, times: &[f64]) -> Vec<f64> {
+    let columns = basis.columns();
+    let mut table = vec![0.0; times.len() * columns];
+    for (row, &t) in table.chunks_exact_mut(columns).zip(times) {
+        basis.fill(t, false, row);
+    }
+    table
+}
+
+fn sort_into_patterns(data: &Data, units: &Units, distinct: &[Vec<f64>]) -> Vec<Pattern> {
+    let mut found: BTreeMap<(usize, Vec<u64>), usize> = BTreeMap::new();
+    let mut patterns: Vec<Pattern> = Vec::new();
+    for (index, subject) in data.subjects.iter().enumerate() {
+        let key = (subject.group, subject.times.iter().map(|t| t.to_bits()).collect::<Vec<u64>>());
+        let at = *found.entry(key).or_insert_with(|| {
+            let times: Vec<f64> = subject.times.iter().map(|&t| units.inner_time(t)).collect();
+            let own = &distinct[subject.group];
+            let table_row = times.iter().map(|t| own.partition_point(|d| d < t)).collect();
+            patterns.push(Pattern { group: subject.group, times, table_row, subjects: vec![], responses: vec![] });
+            patterns.len() - 1
+        });
+        patterns[at].subjects.push(index);
+    }
+    for pattern in &mut patterns {
+        pattern.responses = (0..pattern.times.len())
+            .flat_map(|j| pattern.subjects.iter().map(move |&s| (j, s)))
+            .map(|(j, s)| (data.subjects[s].responses[j] - units.response_centre) / units.response_scale)
+            .collect();
+    }
+    patterns
+}
+
+/// Products of one pattern's whitened columns, or their derivatives.
+#[derive(Debug, Clone)]
+pub(crate) struct PatternProducts {
+    /// F'Z, K x q.
+    pub(crate) fz: DMatrix<f64>,
+    /// Z'Z, q x q.
+    pub(crate) zz: DMatrix<f64>,
+    /// Sum over subjects of Z'y, q x 1.
+    pub(crate) zy: DMatrix<f64>,
+    /// Sum over subjects of Z'y y'Z, q x q.
+    pub(crate) zyyz: DMatrix<f64>,
+}
+
+/// Sums over one group, or their derivatives.
+#[derive(Debug, Clone)]
+pub(crate) struct GroupProducts {
+    /// F'F, K x K, every subject counted.
+    pub(crate) ff: DMatrix<f64>,
+    /// Sum of F'y, K x 1.
+    pub(crate) fy: DMatrix<f64>,
+    /// Sum of y'y.
+    pub(crate) yy: f64,
+    /// Sum of log determinants of the error correlation.
+    pub(crate) log_det: f64,
+}
+
+/// All products at one error shape, or their derivatives for one of its parameters.
+#[derive(Debug, Clone)]
+pub(crate) struct Products {
+    pub(crate) patterns: Vec<PatternProducts>,
+    pub(crate) groups: Vec<GroupProducts>,
+}
+
+/// Products and, for each asked parameter of the error shape, their derivatives.
+///
+/// `slopes`: which derivatives (0: `ln rate`, 1: `logit nugget`). `None` where the
+/// error correlation of some subject is singular.
+pub(crate) fn reduce(design: &Design, shape: Option<ErrorShape>, slopes: &[usize]) -> Option<(Products, Vec<Products>)> {
+    let mut value = empty_products(design);
+    let mut derivatives = vec![empty_products(design); slopes.len()];
+    for pattern in &design.patterns {
+        let (raw, width) = design.rows_of(pattern);
+        let whitener = match shape {
+            Some(shape) => Some(Whitener::new(&pattern.times, shape)?),
+            None => None,
+        };
+        let mut rows = raw.clone();
+        if let Some(whitener) = &whitener {
+            whitener.apply(&mut rows, width);
+        }
+        let log_det = whitener.as_ref().map_or(0.0, |w| w.log_det);
+        add_pattern(design, pattern, &mut value, (&rows, &rows), width, log_det, 1.0);
+        for (target, &which) in derivatives.iter_mut().zip(slopes) {
+            if let Some(whitener) = &whitener {
+                let (mut again, mut slope) = (raw.clone(), vec![0.0; raw.len()]);
+                whitener.apply_with_slope(&mut again, &mut slope, width, which);
+                add_pattern(design, pattern, target, (&again, &slope), width, whitener.d_log_det[which], 2.0);
+            }
+        }
+    }
+    Some((value, derivatives))
+}
+
+fn empty_products(design: &Design) -> Products {
+    let groups = design.bases.iter().map(|basis| {
+        let k = basis.columns();
+        GroupProducts { ff: DMatrix::zeros(k, k), fy: DMatrix::zeros(k, 1), yy: 0.0, log_det: 0.0 }
+    });
+    Products { patterns: Vec::with_capacity(design.patterns.len()), groups: groups.collect() }
+}
+
+/// Adds `sym(A'B)` of a pattern; with `A = B` and `factor` 1 the products, with
+/// `B` the derivative of `A` and `factor` 2 (`A'dA + dA'A`) their derivative.
+fn add_pattern(
+    design: &Design,
+    pattern: &Pattern,
+    target: &mut Products,
+    (left, right): (&[f64], &[f64]),
+    width: usize,
+    log_det: f64,
+    factor: f64,
+) {
+    let (k, q, m) = (design.bases[pattern.group].columns(), design.effects, pattern.subjects.len());
+    let group = &mut target.groups[pattern.group];
+    group.log_det += m as f64 * log_det;
+    add_gram(&mut group.ff, left, right, width, k, factor * m as f64);
+    let z = |row: &[f64], a: usize| row[k + a];
+    let mut fz = DMatrix::zeros(k, q);
+    let mut zz = DMatrix::zeros(q, q);
+    let mut zy_each = vec![0.0; q * m];
+    let mut zy_raw = vec![0.0; q * m];
+    let half = factor / 2.0;
+    for (l, r) in left.chunks_exact(width).zip(right.chunks_exact(width)) {
+        let (yl, yr) = (&l[k + q..], &r[k + q..]);
+        let (sum_l, sum_r) = (yl.iter().sum::<f64>(), yr.iter().sum::<f64>());
+        for i in 0..k {
+            group.fy[i] += half * (l[i] * sum_r + r[i] * sum_l);
+        }
+        group.yy += factor * yl.iter().zip(yr).map(|(a, b)| a * b).sum::<f64>();
+        for a in 0..q {
+            let (zl, zr) = (half * z(l, a), half * z(r, a));
+            for i in 0..k {
+                fz[(i, a)] += l[i] * zr + r[i] * zl;
+            }
+            for b in 0..q {
+                zz[(a, b)] += zl * z(r, b) + zr * z(l, b);
+            }
+            for s in 0..m {
+                zy_each[a * m + s] += zl * yr[s] + zr * yl[s];
+                zy_raw[a * m + s] += z(l, a) * yl[s];
+            }
+        }
+    }
+    let zy = DMatrix::from_fn(q, 1, |a, _| zy_each[a * m..(a + 1) * m].iter().sum());
+    let dot = |x: &[f64], a: usize, y: &[f64], b: usize| -> f64 {
+        x[a * m..(a + 1) * m].iter().zip(&y[b * m..(b + 1) * m]).map(|(x, y)| x * y).sum()
+    };
+    let zyyz = DMatrix::from_fn(q, q, |a, b| {
+        if factor == 1.0 {
+            dot(&zy_each, a, &zy_each, b)
+        } else {
+            dot(&zy_each, a, &zy_raw, b) + dot(&zy_raw, a, &zy_each, b)
+        }
+    });
+    target.patterns.push(PatternProducts { fz, zz, zy, zyyz });
+}
+
+/// `gram += factor * sym(L'R)` over the first `k` columns of the rows.
+fn add_gram(gram: &mut DMatrix<f64>, left: &[f64], right: &[f64], width: usize, k: usize, factor: f64) {
+    let mut upper = vec![0.0; k * k];
+    let same = std::ptr::eq(left, right);
+    for (l, r) in left.chunks_exact(width).zip(right.chunks_exact(width)) {
+        for i in 0..k {
+            let (li, ri) = (l[i], r[i]);
+            let out = &mut upper[i * k + i..(i + 1) * k];
+            if same {
+                for (o, &rj) in out.iter_mut().zip(&r[i..k]) {
+                    *o += li * rj;
+                }
+            } else {
+                for ((o, &rj), &lj) in out.iter_mut().zip(&r[i..k]).zip(&l[i..k]) {
+                    *o += 0.5 * (li * rj + ri * lj);
+                }
+            }
+        }
+    }
+    for i in 0..k {
+        for j in i..k {
+            let value = factor * upper[i * k + j];
+            gram[(i, j)] += value;
+            if i != j {
+                gram[(j, i)] += value;
+            }
+        }
+    }
+}
