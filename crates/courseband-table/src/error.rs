@@ -1,0 +1,213 @@
+//! Why a table cannot be used.
+
+use crate::request::Role;
+use crate::text::{listed, quoted};
+use std::fmt;
+
+/// Why a table, or what was asked of it, cannot be used.
+///
+/// The text says what is wrong, where (column, row, value) and what to do.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub enum TableError {
+    /// A spreadsheet workbook instead of its text.
+    Workbook,
+    /// Not a table of text; the word says what it seems to be.
+    NotText {
+        /// What it seems to be, such as `a picture`.
+        seems: &'static str,
+    },
+    /// No characters besides white space.
+    Empty,
+    /// More bytes or columns than can be handled.
+    TooLarge {
+        /// What there is too much of, with its limit.
+        what: String,
+    },
+    /// A quotation mark that is never closed.
+    OpenQuote {
+        /// Line on which the record begins.
+        row: usize,
+    },
+    /// A header without rows below it.
+    NoRows,
+    /// A named column that does not exist.
+    NoSuchColumn {
+        /// The name asked for.
+        name: String,
+        /// What it was asked for.
+        purpose: String,
+        /// The columns there are.
+        columns: Vec<String>,
+    },
+    /// One column asked to play two parts.
+    ColumnTwice {
+        /// The column.
+        name: String,
+        /// Both parts.
+        roles: [String; 2],
+    },
+    /// A part that cannot be absent was said to be absent.
+    Needed {
+        /// The part.
+        role: Role,
+    },
+    /// An exclusion of a row that does not exist or holds no data.
+    Exclusion {
+        /// The row asked for.
+        row: usize,
+        /// Why it cannot be excluded.
+        why: String,
+    },
+    /// A cell that stops the reading.
+    Cell {
+        /// Line in the file.
+        row: usize,
+        /// Column name.
+        column: String,
+        /// The cell as written.
+        value: String,
+        /// What is wrong and what to do.
+        message: String,
+    },
+    /// Dates that can be read day first or month first.
+    DateOrder {
+        /// Column name.
+        column: String,
+        /// A row with such a date.
+        row: usize,
+        /// The date as written.
+        value: String,
+    },
+    /// Times in units that cannot be converted into each other.
+    MixedUnits {
+        /// Column name.
+        column: String,
+        /// Row, value and unit of one cell.
+        first: (usize, String),
+        /// The same of another cell.
+        second: (usize, String),
+    },
+    /// A subject that changes its group.
+    ChangesGroup {
+        /// Subject column.
+        column: String,
+        /// The subject.
+        subject: String,
+        /// One group and its rows.
+        first: (String, Vec<usize>),
+        /// Another group and its rows.
+        second: (String, Vec<usize>),
+        /// What else may be the reason.
+        hint: String,
+    },
+    /// A subject in two clusters.
+    ChangesCluster {
+        /// Cluster column.
+        column: String,
+        /// The subject.
+        subject: String,
+        /// One cluster and a row.
+        first: (String, usize),
+        /// Another cluster and a row.
+        second: (String, usize),
+    },
+    /// More groups than can be compared.
+    TooManyGroups {
+        /// Group column.
+        column: String,
+        /// How many.
+        count: usize,
+    },
+    /// No response that can be read.
+    NoResponses {
+        /// Response column.
+        column: String,
+        /// Rows read.
+        rows: usize,
+        /// An example, as written.
+        example: String,
+    },
+}
+
+impl std::error::Error for TableError {}
+
+impl fmt::Display for TableError {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        match self {
+            TableError::Workbook => f.write_str(
+                "This is a spreadsheet workbook. Open it in the spreadsheet, select the cells there, copy, and paste here.",
+            ),
+            TableError::NotText { seems } => write!(
+                f,
+                "This is {seems}, not a table of text. Use a table with columns separated by commas, semicolons or tabs."
+            ),
+            TableError::Empty => {
+                f.write_str("The table is empty. Give a table with a header and at least one row below it.")
+            }
+            TableError::TooLarge { what } => write!(f, "The table is too large: {what}. Split it, or leave out what is not needed."),
+            TableError::OpenQuote { row } => write!(
+                f,
+                "Row {row} opens a quotation mark that is never closed. Close it, or take it out."
+            ),
+            TableError::NoRows => f.write_str("The table has no rows of data below its header. Add at least one row."),
+            TableError::NoSuchColumn { name, purpose, columns } => write!(
+                f,
+                "There is no column {} (asked for as {purpose}). The columns are {}. Name one of these.",
+                quoted(name),
+                listed(columns)
+            ),
+            TableError::ColumnTwice { name, roles } => write!(
+                f,
+                "Column {} is asked for both as {} and as {}. Name a different column for one of them.",
+                quoted(name), roles[0], roles[1]
+            ),
+            TableError::Needed { role } => write!(f, "A {role} column is needed and cannot be absent. Name the {role} column."),
+            TableError::Exclusion { row, why } => write!(f, "Row {row} cannot be excluded: {why}. Check the row number."),
+            TableError::Cell { row, column, value, message } => {
+                write!(f, "Column {}, row {row}: {} {message}", quoted(column), quoted(value))
+            }
+            TableError::DateOrder { column, row, value } => write!(
+                f,
+                "Column {}, row {row}: {} and the other dates can be read day first or month first. Write dates as year-month-day, such as 2024-03-05.",
+                quoted(column), quoted(value)
+            ),
+            TableError::MixedUnits { column, first, second } => write!(
+                f,
+                "Column {}: row {} has {} and row {} has {}. These time units cannot be converted into each other. Use one unit in the column.",
+                quoted(column), first.0, quoted(&first.1), second.0, quoted(&second.1)
+            ),
+            TableError::ChangesGroup { column, subject, first, second, hint } => write!(
+                f,
+                "Column {}: subject {} is in group {} ({}) and later in group {} ({}). Subjects that change their group are not handled. \
+                 Correct the group, give different subjects different ids, or exclude the rows.{hint}",
+                quoted(column), quoted(subject), quoted(&first.0), rows(&first.1), quoted(&second.0), rows(&second.1)
+            ),
+            TableError::ChangesCluster { column, subject, first, second } => write!(
+                f,
+                "Column {}: subject {} is in {} (row {}) and in {} (row {}). A subject needs one {} throughout. Correct it, or use no such column.",
+                quoted(column), quoted(subject), quoted(&first.0), first.1, quoted(&second.0), second.1, column
+            ),
+            TableError::TooManyGroups { column, count } => write!(
+                f,
+                "Column {} has {count} different groups; at most 60 can be compared. Is this really the group column? Name another, or none.",
+                quoted(column)
+            ),
+            TableError::NoResponses { column, rows, example } => write!(
+                f,
+                "Column {} has no number in any of the {rows} rows; the first cell is {}. Name another response column, or correct the values.",
+                quoted(column), quoted(example)
+            ),
+        }
+    }
+}
+
+/// `row 4` or `rows 4, 5 and 6`, at most five of them.
+pub(crate) fn rows(rows: &[usize]) -> String {
+    let shown: Vec<String> = rows.iter().take(5).map(usize::to_string).collect();
+    let more = rows.len().saturating_sub(shown.len());
+    match (shown.as_slice(), more) {
+        ([one], 0) => format!("row {one}"),
+        ([first @ .., last], 0) => format!("rows {} and {last}", first.join(", ")),
+        (all, more) => format!("rows {} and {more} more", all.join(", ")),
+    }
+}

@@ -1,0 +1,248 @@
+//! The frame of a table: titles, header rows, unit row, body, summary rows at the foot.
+
+use crate::names::{clarity, is_summary, is_unit, split_unit};
+use crate::number::{Decimal, number};
+use crate::request::Role;
+use crate::sheet::Sheet;
+use crate::time::read_time;
+
+/// Records looked at to find the header.
+const HEAD: usize = 50;
+
+/// Which records of a sheet are what. Records are indices into the sheet.
+#[derive(Debug, Clone, Default)]
+pub(crate) struct Frame {
+    /// Lines above the header that are no part of the table.
+    pub(crate) titles: Vec<usize>,
+    /// A header row whose cells span several columns, above or below the header.
+    pub(crate) spanner: Option<usize>,
+    /// The row with the column names; none where the first row holds data already.
+    pub(crate) header: Option<usize>,
+    /// A row of units below the header.
+    pub(crate) units: Option<usize>,
+    /// Rows of data.
+    pub(crate) body: Vec<u32>,
+    /// Rows that summarise others.
+    pub(crate) summaries: Vec<usize>,
+    /// Copies of the header between the rows.
+    pub(crate) repeated: Vec<usize>,
+}
+
+/// Finds the frame.
+pub(crate) fn find_frame(sheet: &Sheet) -> Frame {
+    let mut frame = Frame::default();
+    let header = header_record(sheet);
+    let mut next = header;
+    frame.titles = (0..header).filter(|&record| filled(sheet, record) > 0).collect();
+    if has_names(sheet, header) {
+        next += 1;
+        frame.header = Some(header);
+        if two_header_rows(sheet, header) {
+            frame.spanner = Some(header);
+            frame.header = Some(header + 1);
+            next += 1;
+        } else if is_group_row(sheet, header, next) {
+            frame.spanner = Some(next);
+            next += 1;
+        } else if let Some(&above) = frame.titles.last().filter(|&&above| spans(sheet, above)) {
+            frame.spanner = Some(above);
+            frame.titles.pop();
+        }
+        if next < sheet.records() && is_unit_row(sheet, next) {
+            frame.units = Some(next);
+            next += 1;
+        }
+    }
+    sort_body(sheet, next, &mut frame);
+    frame
+}
+
+fn sort_body(sheet: &Sheet, start: usize, frame: &mut Frame) {
+    for record in start..sheet.records() {
+        let first = sheet.cells(record).find(|cell| !cell.trim().is_empty());
+        match first {
+            None => {}
+            Some(cell) if !cell.starts_with(|c: char| c.is_ascii_digit()) && is_summary_row(sheet, record, cell) => {
+                frame.summaries.push(record);
+            }
+            Some(cell) if frame.header.is_some_and(|header| repeats(sheet, header, record, cell)) => {
+                frame.repeated.push(record);
+            }
+            Some(_) => frame.body.push(record as u32),
+        }
+    }
+}
+
+/// A summary word, and something to summarise in the same row.
+fn is_summary_row(sheet: &Sheet, record: usize, first: &str) -> bool {
+    is_summary(first) && (sheet.width() == 1 || filled(sheet, record) >= 2)
+}
+
+fn repeats(sheet: &Sheet, header: usize, record: usize, first: &str) -> bool {
+    let named = sheet.cells(header).find(|cell| !cell.trim().is_empty());
+    named.is_some_and(|name| name.trim() == first.trim())
+        && filled(sheet, header) > 1
+        && sheet.cells(header).map(str::trim).eq(sheet.cells(record).map(str::trim))
+}
+
+/// Number of cells that are not blank.
+pub(crate) fn filled(sheet: &Sheet, record: usize) -> usize {
+    sheet.cells(record).filter(|cell| !cell.trim().is_empty()).count()
+}
+
+/// The first record that is filled like the rows of the table.
+fn header_record(sheet: &Sheet) -> usize {
+    let mut counts: Vec<usize> = (0..sheet.records().min(500)).map(|record| filled(sheet, record)).filter(|&n| n > 0).collect();
+    counts.sort_unstable();
+    let typical = counts.get(counts.len() / 2).copied().unwrap_or(1);
+    let needed = if typical <= 1 { 1 } else { 2.max((typical * 3).div_ceil(5)) };
+    let limit = sheet.records().min(HEAD);
+    let mut header = (0..limit).find(|&record| filled(sheet, record) >= needed).unwrap_or(0);
+    if header == 0 && sheet.cell(0, 0).starts_with("sep=") && sheet.records() > 1 {
+        header = 1;
+    }
+    // A line such as "Operator, A. B." above the names: the names are more, and all words.
+    while header + 1 < limit
+        && filled(sheet, header + 1) > filled(sheet, header)
+        && !spans(sheet, header)
+        && all_words(sheet, header + 1)
+        && header + 2 < sheet.records()
+        && !all_words(sheet, header + 2)
+    {
+        header += 1;
+    }
+    header
+}
+
+fn is_number(cell: &str) -> bool {
+    number(cell, Decimal::Point).is_ok() || number(cell, Decimal::Comma).is_ok()
+}
+
+fn all_words(sheet: &Sheet, record: usize) -> bool {
+    sheet.cells(record).filter(|cell| !cell.trim().is_empty()).all(|cell| !is_number(cell))
+}
+
+/// False where the record starts with a number and holds another: data, not names.
+fn has_names(sheet: &Sheet, record: usize) -> bool {
+    let first = sheet.cell(record, 0).trim();
+    let later = sheet.cells(record).skip(1).any(is_number);
+    !(is_number(first) && (later || sheet.width() == 1))
+}
+
+/// Cells after the first that are filled, not numbers, and leave blanks or repeat each other.
+fn spans(sheet: &Sheet, record: usize) -> bool {
+    let labels: Vec<&str> = sheet.cells(record).skip(1).map(str::trim).filter(|cell| !cell.is_empty()).collect();
+    let mut distinct = labels.clone();
+    distinct.sort_unstable();
+    distinct.dedup();
+    let columns = sheet.width().saturating_sub(1);
+    distinct.len() >= 2 && distinct.len() * 2 <= columns && labels.iter().all(|label| read_time(label, Decimal::Point).is_none())
+}
+
+/// A row of spanning labels, then a row of names, then rows that start with a time or number.
+fn two_header_rows(sheet: &Sheet, record: usize) -> bool {
+    if record + 2 >= sheet.records() || !spans(sheet, record) {
+        return false;
+    }
+    let corner = sheet.cell(record + 1, 0).trim();
+    let is_name = corner.is_empty()
+        || (read_time(corner, Decimal::Point).is_none()
+            && [Role::Subject, Role::Time].iter().any(|&role| clarity(corner, role) >= 2));
+    let below = sheet.cell(record + 2, 0);
+    is_name && filled(sheet, record + 1) >= filled(sheet, record).min(2) && read_time(below, Decimal::Point).is_some()
+}
+
+/// A row below the header that says the group of each column: `group, Saline, Saline, Drug`.
+fn is_group_row(sheet: &Sheet, header: usize, record: usize) -> bool {
+    record < sheet.records()
+        && clarity(sheet.cell(record, 0), Role::Group) >= 3
+        && clarity(sheet.cell(header, 0), Role::Group) < 3
+        && sheet.width() > 2
+        && all_words(sheet, record)
+        && filled(sheet, record) * 2 >= sheet.width().min(filled(sheet, header))
+}
+
+/// Units, and no numbers, where the rows below hold numbers.
+fn is_unit_row(sheet: &Sheet, record: usize) -> bool {
+    let below: Vec<usize> = (record + 1..sheet.records()).take(20).collect();
+    let (mut units, mut numbers) = (0, 0);
+    for (column, cell) in sheet.cells(record).enumerate() {
+        if cell.trim().is_empty() {
+            continue;
+        }
+        numbers += usize::from(is_number(cell));
+        let numeric_below = below.iter().filter(|&&row| is_number(sheet.cell(row, column))).count();
+        units += usize::from(is_unit(cell) && numeric_below * 2 > below.len());
+    }
+    units > 0 && numbers == 0 && !below.is_empty()
+}
+
+/// Column names: unique, never empty; with the units that the header gives.
+#[derive(Debug, Clone)]
+pub(crate) struct Names {
+    /// As written, trimmed; `column 3` where empty, `weight (2)` where repeated.
+    pub(crate) names: Vec<String>,
+    /// As written, trimmed; empty and repeated ones left so.
+    pub(crate) written: Vec<String>,
+    /// Unit in brackets or in the unit row.
+    pub(crate) units: Vec<Option<String>>,
+    /// Labels spanning several columns, filled to the right; empty without such a row.
+    pub(crate) spanner: Vec<String>,
+}
+
+/// Names of the columns.
+pub(crate) fn column_names(sheet: &Sheet, frame: &Frame) -> Names {
+    let mut written: Vec<String> = match frame.header {
+        Some(header) => sheet.cells(header).map(|cell| cell.split_whitespace().collect::<Vec<_>>().join(" ")).collect(),
+        None => Vec::new(),
+    };
+    let body = frame.body.iter().take(200).map(|&record| sheet.width_of(record as usize));
+    let (total, one_more) = body.fold((0, 0), |(total, more), width| (total + 1, more + usize::from(width == written.len() + 1)));
+    if frame.header.is_none() {
+        written = vec![String::new(); sheet.width()];
+    } else if total > 0 && one_more * 10 >= total * 9 && written.iter().all(|name| !name.is_empty()) {
+        written.insert(0, "row name".to_string());
+    }
+    trim_blank_end(sheet, frame, &mut written);
+    let units = (0..written.len()).map(|column| unit_of(sheet, frame, column, &written[column])).collect();
+    Names { names: unique(&written), units, spanner: spanner_labels(sheet, frame, written.len()), written }
+}
+
+/// Drops unnamed columns without data at the right.
+fn trim_blank_end(sheet: &Sheet, frame: &Frame, written: &mut Vec<String>) {
+    while written.len() > 1 && written.last().is_some_and(String::is_empty) {
+        let column = written.len() - 1;
+        if frame.body.iter().any(|&record| !sheet.cell(record as usize, column).trim().is_empty()) {
+            return;
+        }
+        written.pop();
+    }
+}
+
+fn unit_of(sheet: &Sheet, frame: &Frame, column: usize, name: &str) -> Option<String> {
+    let below = frame.units.map(|record| sheet.cell(record, column).trim().trim_matches(['(', ')', '[', ']'])).filter(|unit| !unit.is_empty());
+    below.or(split_unit(name).1).map(str::to_string)
+}
+
+fn spanner_labels(sheet: &Sheet, frame: &Frame, width: usize) -> Vec<String> {
+    let Some(record) = frame.spanner else { return Vec::new() };
+    let mut labels = vec![String::new(); width];
+    let mut label = "";
+    for (column, slot) in labels.iter_mut().enumerate().skip(1) {
+        let cell = sheet.cell(record, column).trim();
+        label = if cell.is_empty() { label } else { cell };
+        slot.push_str(label);
+    }
+    labels
+}
+
+fn unique(written: &[String]) -> Vec<String> {
+    let mut seen = std::collections::HashMap::new();
+    let mut names = Vec::with_capacity(written.len());
+    for (column, name) in written.iter().enumerate() {
+        let name = if name.is_empty() { format!("column {}", column + 1) } else { name.clone() };
+        let count = seen.entry(name.clone()).and_modify(|count| *count += 1).or_insert(1);
+        names.push(if *count == 1 { name } else { format!("{name} ({count})") });
+    }
+    names
+}

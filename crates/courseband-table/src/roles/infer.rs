@@ -1,0 +1,228 @@
+//! The rules, role by role.
+
+use super::*;
+
+impl Finder<'_> {
+    pub(super) fn subject_by_name(&mut self) {
+        if !self.is_open(Role::Subject) {
+            return;
+        }
+        // A column whose every cell is different numbers the rows, not the subjects.
+        let rows = self.table.rows();
+        let repeated: Vec<usize> =
+            self.free().into_iter().filter(|&column| rows < 4 || self.profiles[column].distinct * 10 <= rows * 9).collect();
+        self.take_by_name(Role::Subject, &repeated, 3);
+    }
+
+    pub(super) fn time_by_name(&mut self) {
+        if !self.is_open(Role::Time) {
+            return;
+        }
+        let timely: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].is_timely()).collect();
+        let changing: Vec<usize> = match self.roles.column(Role::Subject) {
+            Some(subject) => timely.iter().copied().filter(|&column| self.varying(subject, column).0 > 0).collect(),
+            None => timely.clone(),
+        };
+        if self.take_by_name(Role::Time, &changing, 2) {
+            return;
+        }
+        // A clear name with cells that cannot be read: reading it will say which.
+        let clear: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].distinct > 1).collect();
+        if changing.is_empty() || clear.iter().any(|&column| clarity(self.name(column), Role::Time) == 4) {
+            self.take_by_name(Role::Time, &clear, 4);
+        }
+    }
+
+    pub(super) fn subject_by_contents(&mut self) {
+        if !self.is_open(Role::Subject) {
+            return;
+        }
+        let rows = self.table.rows();
+        let Some(time) = self.roles.column(Role::Time) else {
+            let free = self.free();
+            self.take_by_name(Role::Subject, &free, 3);
+            return;
+        };
+        let mut candidates = Vec::new();
+        for column in self.free() {
+            let profile = &self.profiles[column];
+            let label = profile.whole == profile.numbers;
+            let other = [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 2);
+            let fits = label && !other && !is_beside(self.name(column)) && profile.distinct >= 2 && profile.distinct * 2 <= rows;
+            if fits && self.repeats(&[column, time]) < 0.05 {
+                candidates.push(column);
+            }
+        }
+        self.take_only(Role::Subject, &candidates, "Its labels come back at different times, and no other column does so.");
+        if self.is_open(Role::Subject) && candidates.is_empty() {
+            let free = self.free();
+            self.take_by_name(Role::Subject, &free, 3);
+        }
+    }
+
+    pub(super) fn time_by_contents(&mut self) {
+        let (true, Some(subject)) = (self.is_open(Role::Time), self.roles.column(Role::Subject)) else {
+            return;
+        };
+        let rows = self.table.rows();
+        let mut candidates = Vec::new();
+        for column in self.free() {
+            let profile = &self.profiles[column];
+            let named_else = [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 3);
+            let shared = profile.distinct >= 2 && profile.distinct * 2 <= rows;
+            if profile.is_timely() && shared && !named_else && self.repeats(&[subject, column]) < 0.05 {
+                candidates.push(column);
+            }
+        }
+        self.take_only(Role::Time, &candidates, "Its values come back in different subjects, once in each.");
+    }
+
+    /// Takes a single candidate, asks about several.
+    fn take_only(&mut self, role: Role, candidates: &[usize], reason: &str) {
+        match candidates {
+            [] => {}
+            [one] => {
+                self.roles.set(role, *one, reason);
+                self.close(role);
+            }
+            rivals => {
+                self.ask(role, rivals);
+                self.close(role);
+            }
+        }
+    }
+
+    pub(super) fn cluster(&mut self) {
+        if !self.is_open(Role::Cluster) {
+            return;
+        }
+        self.close(Role::Cluster);
+        let mut candidates = Vec::new();
+        for column in self.free() {
+            if clarity(self.name(column), Role::Cluster) >= 3 && self.profiles[column].distinct > 1 {
+                let varies = match self.roles.column(Role::Subject) {
+                    Some(subject) => self.varying(subject, column).0 > 0,
+                    None => false,
+                };
+                match varies {
+                    true => self.roles.forget(
+                        Role::Cluster,
+                        format!("Column {} changes within subjects: not used.", quoted(self.name(column))),
+                    ),
+                    false => candidates.push(column),
+                }
+            }
+        }
+        if !candidates.is_empty() {
+            self.take_by_name(Role::Cluster, &candidates, 3);
+        } else if self.roles.reasons[Role::Cluster as usize].is_empty() {
+            self.roles.forget(Role::Cluster, "No column is named like a cage, litter or site.".to_string());
+        }
+    }
+
+    pub(super) fn group(&mut self) {
+        if !self.is_open(Role::Group) {
+            return;
+        }
+        let few: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].distinct <= self.table.rows() / 2 + 1).collect();
+        let candidates = self.group_candidates();
+        let named: Vec<usize> = few
+            .into_iter()
+            .filter(|&column| clarity(self.name(column), Role::Group) >= 4 || candidates.contains(&column) || self.restarts_under(column))
+            .collect();
+        if self.take_by_name(Role::Group, &named, 3) {
+            return;
+        }
+        let beside: Vec<usize> = candidates.iter().copied().filter(|&column| is_beside(self.name(column))).collect();
+        let plain: Vec<usize> = candidates.iter().copied().filter(|column| !beside.contains(column)).collect();
+        let best = self.without_copies(if plain.is_empty() { beside } else { plain });
+        let best = if best.is_empty() { self.restarting() } else { best };
+        self.take_only(Role::Group, &best, "It has few values, each subject has one of them, and several subjects share it.");
+        if self.is_open(Role::Group) {
+            self.close(Role::Group);
+            self.roles.forget(Role::Group, "No column has few values that several subjects share: all are one group.".to_string());
+        }
+    }
+
+    /// Columns that are constant within subjects and shared by several of them.
+    fn group_candidates(&mut self) -> Vec<usize> {
+        let Some(subject) = self.roles.column(Role::Subject) else {
+            return Vec::new();
+        };
+        let mut found = Vec::new();
+        for column in self.free() {
+            let levels = self.profiles[column].distinct;
+            let is_response = clarity(self.name(column), Role::Response) >= 3 && self.profiles[column].is_numeric(0.5);
+            let is_cluster = clarity(self.name(column), Role::Cluster) >= 3;
+            if !(2..=200).contains(&levels) || is_response || is_cluster {
+                continue;
+            }
+            let (varies, subjects) = self.varying(subject, column);
+            if varies * 20 <= subjects && levels * 2 <= subjects && levels <= 60 {
+                found.push(column);
+            }
+        }
+        found
+    }
+
+    /// True where ids restart under each value: alone they come back at one time, with the column they do not.
+    fn restarts_under(&mut self, column: usize) -> bool {
+        let (Some(subject), Some(time)) = (self.roles.column(Role::Subject), self.roles.column(Role::Time)) else {
+            return false;
+        };
+        let levels = self.profiles[column].distinct;
+        (2..=60).contains(&levels) && self.repeats(&[subject, time]) > 0.2 && self.repeats(&[subject, column, time]) < 0.02
+    }
+
+    /// Columns of words under which ids restart.
+    fn restarting(&mut self) -> Vec<usize> {
+        let words: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].numbers == 0).collect();
+        words.into_iter().filter(|&column| self.restarts_under(column)).collect()
+    }
+
+    pub(super) fn response(&mut self) {
+        if !self.is_open(Role::Response) {
+            return;
+        }
+        let numeric: Vec<usize> = self
+            .free()
+            .into_iter()
+            .filter(|&column| self.profiles[column].is_numeric(0.5) && self.profiles[column].worded_times * 2 < self.profiles[column].rows)
+            .collect();
+        let changing: Vec<usize> = match self.roles.column(Role::Subject) {
+            Some(subject) => numeric.iter().copied().filter(|&column| self.varying(subject, column).0 > 0).collect(),
+            None => numeric.clone(),
+        };
+        let candidates = if changing.is_empty() { numeric } else { changing };
+        if candidates.len() != 1 && self.take_by_name(Role::Response, &candidates, 2) {
+            return;
+        }
+        self.take_only(Role::Response, &candidates, "It is the only further column of numbers that change within subjects.");
+        if self.is_open(Role::Response) {
+            // A clear name without numbers: reading it will say so.
+            let free = self.free();
+            self.take_by_name(Role::Response, &free, 3);
+        }
+    }
+
+    /// A needed role without any candidate is a question with all columns as choices.
+    pub(super) fn ask_for_missing(&mut self, roles: &[Role]) {
+        for &role in roles {
+            if !self.is_open(role) {
+                continue;
+            }
+            let choices: Vec<String> = self
+                .free()
+                .into_iter()
+                .filter(|&column| matches!(self.table.columns[column].source, Source::Cell(_)))
+                .map(|column| self.name(column).to_string())
+                .collect();
+            let text = match choices.is_empty() {
+                true => format!("No column is left for the {role}. The table needs a subject, a time and a response column."),
+                false => format!("No column is clearly the {role}. The columns left are {}. Which one is it?", listed(&choices)),
+            };
+            self.roles.reasons[role as usize] = "Open: no column is clearly meant.".to_string();
+            self.put(Question { topic: Topic::Column(role), text, choices, needs_answer: true });
+        }
+    }
+}

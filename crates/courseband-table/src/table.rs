@@ -1,0 +1,70 @@
+//! A table that was read: the entry to everything else.
+
+use crate::error::TableError;
+use crate::frame::{Frame, Names, column_names, find_frame};
+use crate::long::{LongColumn, LongTable, Place, Source};
+use crate::observe::observe;
+use crate::profile::profile_all;
+use crate::reading::Reading;
+use crate::request::{Layout, Request};
+use crate::sheet::{Sheet, read_bytes};
+
+/// A table that was read, before anything is asked of it.
+#[derive(Debug, Clone)]
+pub struct Table {
+    sheet: Sheet,
+    frame: Frame,
+    names: Names,
+}
+
+impl Table {
+    /// Reads a table from the bytes of a file or of pasted text.
+    ///
+    /// # Errors
+    /// Bytes that are no table of text, and tables without rows.
+    pub fn read(bytes: &[u8]) -> Result<Table, TableError> {
+        let sheet = read_bytes(bytes)?;
+        let frame = find_frame(&sheet);
+        if frame.body.is_empty() {
+            return Err(TableError::NoRows);
+        }
+        let names = column_names(&sheet, &frame);
+        Ok(Table { sheet, frame, names })
+    }
+
+    /// Observations, problems and questions.
+    ///
+    /// # Errors
+    /// What makes the table unusable as asked: see [`TableError`].
+    pub fn observe(&self, request: &Request) -> Result<Reading, TableError> {
+        let long = self.long(request);
+        observe(&long, &profile_all(&long), request)
+    }
+
+    /// The cells as written.
+    pub fn sheet(&self) -> &Sheet {
+        &self.sheet
+    }
+
+    /// Column names: unique, never empty.
+    pub fn names(&self) -> &[String] {
+        &self.names.names
+    }
+
+    fn long(&self, _request: &Request) -> LongTable<'_> {
+        let columns = (0..self.names.names.len()).map(|column| LongColumn {
+            name: self.names.names[column].clone(),
+            source: Source::Cell(column),
+            unit: self.names.units[column].clone(),
+        });
+        LongTable {
+            sheet: &self.sheet,
+            layout: Layout::Long,
+            places: self.frame.body.iter().map(|&record| Place { record, column: 0 }).collect(),
+            columns: columns.collect(),
+            presets: Vec::new(),
+            sheet_names: self.names.names.clone(),
+            notes: Vec::new(),
+        }
+    }
+}
