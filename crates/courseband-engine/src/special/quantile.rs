@@ -198,7 +198,7 @@ fn sample_maxima(rows: &[f64], r: usize, sets: usize, seed: u64) -> Vec<f64> {
 }
 
 /// r orthonormal vectors, uniform under rotation: Gaussian vectors by modified Gram-Schmidt.
-fn orthonormal_set(rng: &mut Rng, set: &mut [f64], r: usize) {
+pub(super) fn orthonormal_set(rng: &mut Rng, set: &mut [f64], r: usize) {
     for k in 0..r {
         let (before, rest) = set.split_at_mut(k * r);
         let vector = &mut rest[..r];

@@ -115,3 +115,19 @@ fn nothing_to_maximise_is_not_a_number() {
     assert!(max_abs_quantile(&[0.0; 4], 2, 2, 0.95, None, 100, 1).value.is_nan());
     assert!(max_abs_quantile(&[1.0], 1, 1, 1.0, None, 100, 1).value.is_nan());
 }
+
+#[test]
+fn directions_come_in_orthonormal_sets() {
+    let mut rng = Rng::new(2);
+    for r in [1, 2, 7, 25] {
+        let mut set = vec![0.0; r * r];
+        super::quantile::orthonormal_set(&mut rng, &mut set, r);
+        for i in 0..r {
+            for j in 0..=i {
+                let product: f64 = (0..r).map(|k| set[i * r + k] * set[j * r + k]).sum();
+                let expected = if i == j { 1.0 } else { 0.0 };
+                assert!((product - expected).abs() < 1e-10, "{r} {i} {j} {product}");
+            }
+        }
+    }
+}
