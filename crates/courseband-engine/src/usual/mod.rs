@@ -6,7 +6,7 @@
 //! | [`sphericity`] | Mauchly's W, Greenhouse-Geisser and Huynh-Feldt epsilons | see the module |
 //! | [`two_sample`] | Welch's and Student's comparison of two means | Welch 1947, Biometrika 34:28 |
 //! | [`by_time`] | one comparison per time, Holm over all | Holm 1979, Scand. J. Statist. 6:65 |
-//! | [`one_way`] | one-way layout, equal and unequal variances | Welch 1951, Biometrika 38:330 |
+//! | [`mod@one_way`] | one-way layout, equal and unequal variances | Welch 1951, Biometrika 38:330 |
 //! | [`summary`] | one number per subject, compared by group | Matthews et al. 1990, BMJ 300:230 |
 //! | [`adjust`] | p-values adjusted for several tests | Holm 1979; Benjamini & Hochberg 1995 |
 //! | [`satterthwaite`] | degrees of freedom of a variance estimate | Satterthwaite 1946, Biometrics Bull. 2:110 |
