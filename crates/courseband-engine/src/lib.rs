@@ -1,16 +1,21 @@
 //! Penalised-spline mixed models for groups followed over time: mathematics only.
 
+mod band;
 mod basis;
 mod criterion;
 mod fit;
 mod model;
 mod optimise;
 mod params;
+mod posterior;
 mod reduce;
 pub mod special;
 mod spline;
+pub mod usual;
 mod whiten;
 
+pub use band::{CriticalValues, Run, runs_above_zero};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use model::{Data, Dimension, Model, Serial, Shape, Sharing, SubjectEffects, SubjectRows};
 pub use params::Parameter;
+pub use posterior::{Contrast, Estimate, Joint, Posterior};

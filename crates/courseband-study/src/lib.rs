@@ -1,13 +1,22 @@
 //! Plan in, findings out: the one way from a table to numbers and sentences.
 //!
-//! Both doors (the page's worker and the native command) call [`run`]; neither
-//! computes anything itself.
+//! Both doors (the page's worker and the native command) call [`Study::run`];
+//! neither computes anything itself.
 //!
 //! This crate does no I/O and knows no clock. Reading bytes is
 //! `courseband-table`'s work, mathematics is `courseband-engine`'s.
 
+mod check_plan;
+mod cohort;
+mod evaluate;
 mod findings;
 mod plan;
+mod refusal;
+mod remarks;
+mod sentences;
+mod study;
 
 pub use findings::*;
 pub use plan::*;
+pub use refusal::Refusal;
+pub use study::{Study, run};

@@ -12,6 +12,10 @@ pub struct Plan {
     pub columns: Columns,
     /// Rows left out, each with its reason.
     pub exclusions: Vec<Exclusion>,
+    /// How cells are read.
+    pub reading: ReadingChoice,
+    /// Words for what was followed.
+    pub words: Words,
     /// Distribution and scale of the response.
     pub response: Response,
     /// Shape of the groups' curves.
@@ -35,6 +39,8 @@ impl Default for Plan {
         Plan {
             columns: Columns::default(),
             exclusions: Vec::new(),
+            reading: ReadingChoice::default(),
+            words: Words::default(),
             response: Response::default(),
             curves: Curves::default(),
             subjects: SubjectEffects::Intercept,
@@ -116,6 +122,86 @@ pub struct Exclusion {
     pub row: usize,
     /// Why.
     pub reason: String,
+    /// In a wide table: only this column's cell; absent: the whole row.
+    #[serde(default, skip_serializing_if = "Option::is_none")]
+    pub column: Option<String>,
+}
+
+/// How cells are read.
+#[derive(Debug, Clone, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[serde(default, deny_unknown_fields)]
+pub struct ReadingChoice {
+    /// Where time is zero.
+    pub day_zero: DayZero,
+    /// How dates such as 3/4/2024 are read; `null` decides by the column.
+    pub date_order: Option<DateOrder>,
+    /// How the table is laid out; `null` decides by its header and cells.
+    pub layout: Option<Layout>,
+    /// Group spellings to unite.
+    pub merges: Vec<Merge>,
+}
+
+/// Where time is zero.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum DayZero {
+    /// Times as written; dates count from the earliest in the table.
+    #[default]
+    Common,
+    /// Each subject's first row.
+    PerSubject,
+}
+
+/// How ambiguous dates are read.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum DateOrder {
+    /// 3/4 is 3 April.
+    DayFirst,
+    /// 3/4 is 4 March.
+    MonthFirst,
+}
+
+/// How a table is laid out.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum Layout {
+    /// One row per measurement.
+    Long,
+    /// One row per subject, one column per time.
+    WideByTime,
+    /// One row per time, one column per subject.
+    WideBySubject,
+}
+
+/// Two spellings of one group.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(deny_unknown_fields)]
+pub struct Merge {
+    /// The spelling to give up.
+    pub from: String,
+    /// The spelling to keep.
+    pub into: String,
+}
+
+/// Words for what was followed; they change sentences, never numbers.
+#[derive(Debug, Clone, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(default, deny_unknown_fields)]
+pub struct Words {
+    /// One subject.
+    pub subject: String,
+    /// Several of them.
+    pub subjects: String,
+    /// One time unit; `null`: as read from the table.
+    pub time: Option<String>,
+    /// The response; `null`: its column's name.
+    pub response: Option<String>,
+}
+
+impl Default for Words {
+    fn default() -> Self {
+        Words { subject: "subject".into(), subjects: "subjects".into(), time: None, response: None }
+    }
 }
 
 /// Distribution and scale of the response.

@@ -1,0 +1,184 @@
+//! A plan read from JSON, and what is wrong with a plan before any table is seen.
+
+use crate::plan::*;
+use crate::refusal::Refusal;
+use courseband_engine as engine;
+use courseband_table as table;
+
+/// Most points of a grid.
+const MOST_GRID_POINTS: usize = 5001;
+
+impl Plan {
+    /// Reads a plan from JSON text.
+    ///
+    /// # Errors
+    /// Names the unknown key or the value that does not fit, with its line and column.
+    pub fn from_json(text: &str) -> Result<Plan, Refusal> {
+        let plan: Plan = serde_json::from_str(text).map_err(|error| {
+            Refusal::plan(format!("The plan cannot be read: {error}. Correct it there; keys left out take their defaults."))
+        })?;
+        plan.check()?;
+        Ok(plan)
+    }
+
+    /// What no table could mend.
+    pub(crate) fn check(&self) -> Result<(), Refusal> {
+        let c = &self.comparisons;
+        if !(c.level >= 0.5 && c.level < 1.0) {
+            return Err(Refusal::plan(format!(
+                "comparisons.level is {}: give a number from 0.5 to below 1, such as 0.95.",
+                c.level
+            )));
+        }
+        if !(c.margin >= 0.0 && c.margin.is_finite()) {
+            return Err(Refusal::plan(format!("comparisons.margin is {}: give 0 or a positive number.", c.margin)));
+        }
+        if c.margin_unit == MarginUnit::Percent && c.margin > 0.0 {
+            if self.response.transform != Transform::Log {
+                return Err(Refusal::plan(
+                    "comparisons.margin_unit is percent, which needs a ratio scale. Set response.transform to \"log\", \
+                     or give the margin in the response's unit.",
+                ));
+            }
+            if c.margin >= 100.0 {
+                return Err(Refusal::plan(format!("comparisons.margin is {} percent: give a number below 100.", c.margin)));
+            }
+        }
+        if c.pairs == Pairs::AgainstControl && c.control.is_none() {
+            return Err(Refusal::plan("comparisons.pairs is against-control: name the group in comparisons.control."));
+        }
+        self.check_grid()?;
+        self.check_reach()
+    }
+
+    fn check_grid(&self) -> Result<(), Refusal> {
+        let grid = &self.grid;
+        if grid.count < 2 || grid.count > MOST_GRID_POINTS {
+            return Err(Refusal::plan(format!(
+                "grid.count is {}: give a whole number from 2 to {MOST_GRID_POINTS}.",
+                grid.count
+            )));
+        }
+        for (name, value) in [("start", grid.start), ("end", grid.end)] {
+            if value.is_some_and(|v| !v.is_finite()) {
+                return Err(Refusal::plan(format!("grid.{name} is not a finite number.")));
+            }
+        }
+        match (grid.start, grid.end) {
+            (Some(start), Some(end)) if start >= end => {
+                Err(Refusal::plan(format!("grid.start is {start} and grid.end is {end}: the end must be later.")))
+            }
+            _ => Ok(()),
+        }
+    }
+
+    /// Refuses what this version does not compute, rather than computing something else.
+    fn check_reach(&self) -> Result<(), Refusal> {
+        let missing = |what: &str, instead: &str| {
+            Err(Refusal::plan(format!("{what} is not available in this version. Use {instead}.")))
+        };
+        if self.response.distribution != Distribution::Normal {
+            return missing("A response.distribution other than normal", "\"normal\", on the log scale where values are skewed");
+        }
+        if self.curves.basis != Basis::Cubic {
+            return missing("A curves.basis other than cubic", "\"cubic\"");
+        }
+        if self.subjects == SubjectEffects::Curve {
+            if self.errors.serial == Serial::Ar1 && !self.errors.nugget {
+                return Err(Refusal::plan(
+                    "subjects is curve and errors.serial is ar1 without measurement error: the two cannot be told apart. \
+                     Set subjects to \"slope\", or errors.serial to \"none\".",
+                ));
+            }
+            return missing("subjects: curve", "\"slope\"");
+        }
+        match self.errors.serial {
+            Serial::Unstructured if self.subjects != SubjectEffects::None => {
+                return Err(Refusal::plan(
+                    "errors.serial is unstructured beside subject effects: the two cannot be told apart. \
+                     Set subjects to \"none\", or errors.serial to \"none\".",
+                ));
+            }
+            Serial::Unstructured => return missing("errors.serial: unstructured", "\"ar1\" or \"none\""),
+            _ => {}
+        }
+        if matches!(self.errors.spread, Spread::WithMean | Spread::ByVisit) {
+            return missing("errors.spread: with-mean and by-visit", "\"common\", \"by-group\", or the log scale");
+        }
+        if !self.columns.covariates.is_empty() {
+            return missing("columns.covariates", "an empty list");
+        }
+        if self.comparisons.small_sample == SmallSample::Calibrated {
+            return missing("comparisons.small_sample: calibrated", "\"df\"");
+        }
+        Ok(())
+    }
+
+    /// What is asked of the table.
+    #[must_use]
+    pub fn request(&self) -> table::Request {
+        let column = |choice: &ColumnChoice| match choice {
+            ColumnChoice::Infer => table::ColumnRequest::Infer,
+            ColumnChoice::Absent => table::ColumnRequest::Absent,
+            ColumnChoice::Named(name) => table::ColumnRequest::Named(name.clone()),
+        };
+        table::Request {
+            subject: column(&self.columns.subject),
+            time: column(&self.columns.time),
+            group: column(&self.columns.group),
+            response: column(&self.columns.response),
+            cluster: column(&self.columns.cluster),
+            covariates: self.columns.covariates.clone(),
+            exclusions: self
+                .exclusions
+                .iter()
+                .map(|e| table::Exclusion { row: e.row, column: e.column.clone(), reason: e.reason.clone() })
+                .collect(),
+            merges: (self.reading.merges.iter())
+                .map(|m| table::Merge { from: m.from.clone(), into: m.into.clone() })
+                .collect(),
+            day_zero: match self.reading.day_zero {
+                DayZero::Common => table::DayZero::Common,
+                DayZero::PerSubject => table::DayZero::PerSubject,
+            },
+            date_order: self.reading.date_order.map(|order| match order {
+                DateOrder::DayFirst => table::DateOrder::DayFirst,
+                DateOrder::MonthFirst => table::DateOrder::MonthFirst,
+            }),
+            layout: self.reading.layout.map(|layout| match layout {
+                Layout::Long => table::Layout::Long,
+                Layout::WideByTime => table::Layout::WideByTime,
+                Layout::WideBySubject => table::Layout::WideBySubject,
+            }),
+        }
+    }
+
+    /// The engine's model. Measurement error counts only beside serial correlation.
+    pub(crate) fn model(&self) -> engine::Model {
+        let sharing = |by_group: bool| if by_group { engine::Sharing::ByGroup } else { engine::Sharing::Common };
+        engine::Model {
+            shape: match self.curves.shape {
+                Shape::Smooth => engine::Shape::Smooth(match self.curves.dimension {
+                    Dimension::Auto => engine::Dimension::Auto,
+                    Dimension::Full => engine::Dimension::Full,
+                    Dimension::Knots(count) => engine::Dimension::Knots(count),
+                }),
+                Shape::Straight => engine::Shape::Straight,
+                Shape::ByTime => engine::Shape::ByTime,
+            },
+            smoothness: sharing(self.curves.smoothness == Smoothness::PerGroup),
+            subjects: match self.subjects {
+                SubjectEffects::None => engine::SubjectEffects::None,
+                SubjectEffects::Intercept => engine::SubjectEffects::Intercept,
+                SubjectEffects::Slope | SubjectEffects::Curve => engine::SubjectEffects::Slope,
+            },
+            subjects_spread: sharing(self.subjects_spread == Sharing::ByGroup),
+            serial: match (self.errors.serial, self.errors.nugget) {
+                (Serial::Ar1, true) => engine::Serial::Ar1Nugget,
+                (Serial::Ar1, false) => engine::Serial::Ar1,
+                _ => engine::Serial::None,
+            },
+            spread: sharing(self.errors.spread == Spread::ByGroup),
+        }
+    }
+}

@@ -1,0 +1,216 @@
+//! The rows that are fitted: on the modelled scale, subject by subject.
+
+use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
+use crate::plan::{Plan, Serial, Shape, Transform};
+use crate::refusal::Refusal;
+use courseband_engine::{Data, SubjectRows};
+use courseband_table::{Observations, Reading};
+
+/// Most distinct times of one group under `by-time`.
+const MOST_MEANS: usize = 300;
+
+/// What is fitted, with what is known about it.
+#[derive(Debug)]
+pub(crate) struct Cohort {
+    pub(crate) data: Data,
+    pub(crate) groups: Vec<GroupInfo>,
+    /// First and last time of each group.
+    pub(crate) supports: Vec<[f64; 2]>,
+    /// Distinct times, ascending.
+    pub(crate) visits: Vec<f64>,
+    /// Index of the control group, where the plan names one.
+    pub(crate) control: Option<usize>,
+    pub(crate) notes: Vec<Note>,
+}
+
+impl Cohort {
+    pub(crate) fn new(observations: &Observations, plan: &Plan) -> Result<Cohort, Refusal> {
+        refuse_non_positive(observations, plan)?;
+        let mut subjects: Vec<SubjectRows> = Vec::with_capacity(observations.subjects.len());
+        let mut last: Option<u32> = None;
+        for (k, &subject) in observations.subject.iter().enumerate() {
+            if last != Some(subject) {
+                let group = observations.subjects[subject as usize].group as usize;
+                subjects.push(SubjectRows { group, times: Vec::new(), responses: Vec::new() });
+                last = Some(subject);
+            }
+            if let Some(rows) = subjects.last_mut() {
+                let y = observations.response[k];
+                rows.times.push(observations.time[k]);
+                rows.responses.push(if plan.response.transform == Transform::Log { libm::log(y) } else { y });
+            }
+        }
+        refuse_ties(observations, plan)?;
+        let (names, kept) = keep_filled_groups(observations, &mut subjects);
+        let data = Data { groups: names.len(), subjects };
+        let visits = distinct(data.subjects.iter().flat_map(|s| s.times.iter().copied()));
+        let groups = describe_groups(&data, names, &visits);
+        let supports = supports(&data);
+        let control = find_control(plan, &groups)?;
+        let mut notes = Vec::new();
+        if kept < observations.groups.len() {
+            let note = "A group without a single usable row is left out.";
+            notes.push(Note { about: "table".into(), message: note.into() });
+        }
+        refuse_many_means(plan, &data, &groups)?;
+        Ok(Cohort { data, groups, supports, visits, control, notes })
+    }
+}
+
+/// Groups with at least one row, renumbered; their names and how many they are.
+fn keep_filled_groups(observations: &Observations, subjects: &mut [SubjectRows]) -> (Vec<String>, usize) {
+    let mut filled = vec![false; observations.groups.len()];
+    subjects.iter().for_each(|s| filled[s.group] = true);
+    let mut new_index = vec![0; filled.len()];
+    let mut names = Vec::new();
+    for (g, name) in observations.groups.iter().enumerate() {
+        new_index[g] = names.len();
+        if filled[g] {
+            names.push(name.clone());
+        }
+    }
+    subjects.iter_mut().for_each(|s| s.group = new_index[s.group]);
+    let kept = names.len();
+    (names, kept)
+}
+
+pub(crate) fn distinct(values: impl Iterator<Item = f64>) -> Vec<f64> {
+    let mut sorted: Vec<f64> = values.collect();
+    sorted.sort_by(f64::total_cmp);
+    sorted.dedup();
+    sorted
+}
+
+fn describe_groups(data: &Data, names: Vec<String>, visits: &[f64]) -> Vec<GroupInfo> {
+    let mut groups: Vec<GroupInfo> = names
+        .into_iter()
+        .map(|name| GroupInfo { name, subjects: 0, rows: 0, last_times: Vec::new(), at_visit: vec![0; visits.len()] })
+        .collect();
+    for subject in &data.subjects {
+        let group = &mut groups[subject.group];
+        group.subjects += 1;
+        group.rows += subject.times.len();
+        group.last_times.extend(subject.times.last());
+        let mut previous = None;
+        for &t in &subject.times {
+            if previous != Some(t) {
+                group.at_visit[visits.partition_point(|&v| v < t)] += 1;
+            }
+            previous = Some(t);
+        }
+    }
+    groups.iter_mut().for_each(|g| g.last_times.sort_by(f64::total_cmp));
+    groups
+}
+
+fn supports(data: &Data) -> Vec<[f64; 2]> {
+    let mut supports = vec![[f64::INFINITY, f64::NEG_INFINITY]; data.groups];
+    for subject in &data.subjects {
+        let [low, high] = &mut supports[subject.group];
+        for &t in &subject.times {
+            *low = low.min(t);
+            *high = high.max(t);
+        }
+    }
+    supports
+}
+
+fn find_control(plan: &Plan, groups: &[GroupInfo]) -> Result<Option<usize>, Refusal> {
+    let Some(name) = &plan.comparisons.control else {
+        return Ok(None);
+    };
+    match groups.iter().position(|g| &g.name == name) {
+        Some(index) => Ok(Some(index)),
+        None => {
+            let names: Vec<String> = groups.iter().map(|g| format!("\"{}\"", g.name)).collect();
+            Err(Refusal::plan(format!(
+                "comparisons.control is \"{name}\", which is no group of the table. The groups are {}.",
+                names.join(", ")
+            )))
+        }
+    }
+}
+
+fn refuse_non_positive(observations: &Observations, plan: &Plan) -> Result<(), Refusal> {
+    if plan.response.transform != Transform::Log {
+        return Ok(());
+    }
+    let bad: Vec<usize> = (0..observations.response.len()).filter(|&k| observations.response[k] <= 0.0).collect();
+    let Some(&first) = bad.first() else {
+        return Ok(());
+    };
+    let rows: Vec<String> = bad.iter().take(5).map(|&k| observations.line[k].to_string()).collect();
+    let more = if bad.len() > 5 { format!(" and {} more", bad.len() - 5) } else { String::new() };
+    Err(Refusal::table(format!(
+        "The log scale needs values above zero, but row {} has {} (zero or negative in row{} {}{more}). \
+         Use response.transform \"identity\", correct the values, or exclude these rows.",
+        observations.line[first],
+        observations.response[first],
+        if bad.len() == 1 { "" } else { "s" },
+        rows.join(", "),
+    )))
+}
+
+fn refuse_ties(observations: &Observations, plan: &Plan) -> Result<(), Refusal> {
+    if plan.errors.serial != Serial::Ar1 || plan.errors.nugget {
+        return Ok(());
+    }
+    let tie = (1..observations.time.len()).find(|&k| {
+        observations.subject[k] == observations.subject[k - 1] && observations.time[k] == observations.time[k - 1]
+    });
+    match tie {
+        None => Ok(()),
+        Some(k) => Err(Refusal::table(format!(
+            "Rows {} and {} are of one subject ({}) at one time ({}). With errors.serial \"ar1\" replicates need \
+             errors.nugget true; or exclude one of the rows.",
+            observations.line[k - 1],
+            observations.line[k],
+            observations.subjects[observations.subject[k] as usize].name,
+            observations.time[k]
+        ))),
+    }
+}
+
+fn refuse_many_means(plan: &Plan, data: &Data, groups: &[GroupInfo]) -> Result<(), Refusal> {
+    if plan.curves.shape != Shape::ByTime {
+        return Ok(());
+    }
+    for (g, info) in groups.iter().enumerate() {
+        let own = data.subjects.iter().filter(|s| s.group == g);
+        let count = distinct(own.flat_map(|s| s.times.iter().copied())).len();
+        if count > MOST_MEANS {
+            return Err(Refusal::plan(format!(
+                "curves.shape is by-time, but group \"{}\" has {count} distinct times; at most {MOST_MEANS} means can be \
+                 estimated. Use \"smooth\".",
+                info.name
+            )));
+        }
+    }
+    Ok(())
+}
+
+pub(crate) fn columns_used(reading: &Reading) -> ColumnsUsed {
+    let c = &reading.columns;
+    ColumnsUsed {
+        subject: c.subject.clone(),
+        time: c.time.clone(),
+        group: c.group.clone(),
+        response: c.response.clone(),
+        cluster: c.cluster.clone(),
+        covariates: c.covariates.clone(),
+        reasons: (reading.reasons.iter())
+            .map(|r| Reason { role: r.role.word().into(), column: r.column.clone(), reason: r.reason.clone() })
+            .collect(),
+    }
+}
+
+pub(crate) fn problems(reading: &Reading) -> Vec<Problem> {
+    (reading.problems.iter())
+        .map(|p| Problem {
+            row: p.row,
+            column: p.column.clone(),
+            value: p.value.clone(),
+            message: p.message.clone(),
+        })
+        .collect()
+}

@@ -1,0 +1,282 @@
+//! Curves, gaps, bands and stretches of a fit, on the grid and at the visits.
+
+use crate::cohort::Cohort;
+use crate::findings::*;
+use crate::plan::{BandKind, MarginUnit, Pairs, Plan, Shape, SmallSample, Transform};
+use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
+
+/// Random directions behind a critical value. The radius is integrated, so that its error is
+/// below that of 100,000 plain draws.
+const DIRECTIONS: usize = 16_384;
+
+/// Everything that is evaluated on one fit.
+pub(crate) struct Evaluation<'a> {
+    plan: &'a Plan,
+    cohort: &'a Cohort,
+    fit: &'a Fit,
+    posterior: Posterior<'a>,
+    grid: Vec<f64>,
+}
+
+/// Degrees of freedom over a family, and its critical values.
+struct Family {
+    values: CriticalValues,
+    least: f64,
+    most: f64,
+}
+
+impl Family {
+    fn at(&self, df: f64) -> f64 {
+        self.values.at(df.clamp(self.least, self.most))
+    }
+
+    fn critical(&self, estimates: &[Option<Estimate>]) -> Critical {
+        match self.values.single() {
+            Some(value) => Critical::One(value),
+            None => Critical::Many(estimates.iter().map(|e| e.map(|e| self.at(e.df))).collect()),
+        }
+    }
+}
+
+impl<'a> Evaluation<'a> {
+    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit) -> Self {
+        let posterior = match plan.comparisons.small_sample {
+            SmallSample::None => fit.plug_in(),
+            _ => fit.corrected(),
+        };
+        let start = plan.grid.start.unwrap_or_else(|| cohort.visits[0]);
+        let end = plan.grid.end.unwrap_or_else(|| cohort.visits[cohort.visits.len() - 1]);
+        let steps = (plan.grid.count - 1) as f64;
+        let grid = (0..plan.grid.count)
+            .map(|k| if k + 1 == plan.grid.count { end } else { start + (end - start) * k as f64 / steps })
+            .collect();
+        Evaluation { plan, cohort, fit, posterior, grid }
+    }
+
+    pub(crate) fn is_corrected(&self) -> bool {
+        self.posterior.is_corrected()
+    }
+
+    /// Pairs that are compared, as group indices `(from, to)`.
+    pub(crate) fn pairs(&self) -> Vec<(usize, usize)> {
+        let groups = self.cohort.groups.len();
+        let mut pairs = Vec::new();
+        for a in 0..groups {
+            for b in a + 1..groups {
+                let pair = if Some(b) == self.cohort.control { (b, a) } else { (a, b) };
+                if self.plan.comparisons.pairs == Pairs::All || Some(pair.0) == self.cohort.control {
+                    pairs.push(pair);
+                }
+            }
+        }
+        pairs
+    }
+
+    /// Grid and visits inside `support`, with its ends, ascending.
+    fn inside(&self, support: [f64; 2]) -> Vec<f64> {
+        let [low, high] = support;
+        let all = self.grid.iter().chain(&self.cohort.visits).copied().chain([low, high]);
+        crate::cohort::distinct(all.filter(|&t| t >= low && t <= high))
+    }
+
+    fn family(&self, members: Vec<(Contrast, Estimate)>) -> Family {
+        let level = self.plan.comparisons.level;
+        let used: Vec<(Contrast, Estimate)> = members.into_iter().filter(|(_, e)| e.se > 0.0).collect();
+        let least = used.iter().map(|(_, e)| e.df).fold(f64::INFINITY, f64::min);
+        let most = used.iter().map(|(_, e)| e.df).fold(1.0, f64::max);
+        let values = if self.plan.comparisons.band == BandKind::Pointwise || used.is_empty() {
+            CriticalValues::pointwise(level)
+        } else {
+            let contrasts: Vec<Contrast> = used.into_iter().map(|(c, _)| c).collect();
+            let maxima = self.posterior.family(&contrasts, DIRECTIONS, self.plan.seed);
+            CriticalValues::simultaneous(&maxima, level, least, most)
+        };
+        Family { values, least, most: most.max(least) }
+    }
+
+    fn asked(&self, contrast: impl Fn(f64) -> Contrast, times: &[f64]) -> Vec<(Contrast, Estimate)> {
+        times
+            .iter()
+            .map(|&t| {
+                let c = contrast(t);
+                let e = self.posterior.estimate(&c);
+                (c, e)
+            })
+            .collect()
+    }
+
+    /// Estimates at `times`; none outside support where each time has a mean of its own.
+    fn estimates(&self, contrast: impl Fn(f64) -> Contrast, times: &[f64], support: [f64; 2]) -> Vec<Option<Estimate>> {
+        let everywhere = self.plan.curves.shape != Shape::ByTime;
+        let within = |t: f64| t >= support[0] && t <= support[1];
+        times.iter().map(|&t| (everywhere || within(t)).then(|| self.posterior.estimate(&contrast(t)))).collect()
+    }
+
+    fn back(&self, value: f64) -> f64 {
+        if self.plan.response.transform == Transform::Log { libm::exp(value) } else { value }
+    }
+
+    pub(crate) fn curves(&self) -> Vec<Curve> {
+        let groups = self.cohort.groups.len();
+        let mut members = Vec::new();
+        for g in 0..groups {
+            members.extend(self.asked(|t| self.fit.course(g, t), &self.inside(self.cohort.supports[g])));
+        }
+        let family = self.family(members);
+        (0..groups).map(|g| self.curve(g, &family)).collect()
+    }
+
+    fn curve(&self, g: usize, family: &Family) -> Curve {
+        let support = self.cohort.supports[g];
+        let course = |t: f64| self.fit.course(g, t);
+        let estimates = self.estimates(course, &self.grid, support);
+        let visits: Vec<f64> =
+            self.cohort.visits.iter().copied().filter(|&t| t >= support[0] && t <= support[1]).collect();
+        let at_visits = self.estimates(course, &visits, support);
+        Curve {
+            group: self.cohort.groups[g].name.clone(),
+            critical: family.critical(&estimates),
+            grid: self.curve_points(self.grid.clone(), &estimates, family),
+            support,
+            at_visits: self.curve_points(visits, &at_visits, family),
+        }
+    }
+
+    fn curve_points(&self, time: Vec<f64>, estimates: &[Option<Estimate>], family: &Family) -> CurvePoints {
+        let limits = Limits::new(estimates, family);
+        let back = |values: &[Option<f64>]| values.iter().map(|v| v.map(|v| self.back(v))).collect();
+        CurvePoints {
+            time,
+            response_mean: back(&limits.mean),
+            response_lower: back(&limits.lower),
+            response_upper: back(&limits.upper),
+            mean: limits.mean,
+            se: limits.se,
+            lower: limits.lower,
+            upper: limits.upper,
+        }
+    }
+
+    pub(crate) fn differences(&self) -> Vec<Difference> {
+        let pairs = self.pairs();
+        let mut members = Vec::new();
+        for &(from, to) in &pairs {
+            if let Some(support) = self.overlap(from, to) {
+                members.extend(self.asked(|t| self.fit.gap(from, to, t), &self.inside(support)));
+            }
+        }
+        let family = self.family(members);
+        pairs.iter().map(|&(from, to)| self.difference(from, to, &family)).collect()
+    }
+
+    fn overlap(&self, from: usize, to: usize) -> Option<[f64; 2]> {
+        let (a, b) = (self.cohort.supports[from], self.cohort.supports[to]);
+        let (low, high) = (a[0].max(b[0]), a[1].min(b[1]));
+        (low <= high).then_some([low, high])
+    }
+
+    /// The margin on the modelled scale.
+    pub(crate) fn margin(&self) -> [f64; 2] {
+        let c = &self.plan.comparisons;
+        match c.margin_unit {
+            MarginUnit::Response => [-c.margin, c.margin],
+            MarginUnit::Percent => {
+                let low = libm::log1p(-c.margin / 100.0);
+                [low, -low]
+            }
+        }
+    }
+
+    fn difference(&self, from: usize, to: usize, family: &Family) -> Difference {
+        let support = self.overlap(from, to);
+        let gap = |t: f64| self.fit.gap(from, to, t);
+        let range = support.unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
+        let estimates = self.estimates(gap, &self.grid, range);
+        let visits: Vec<f64> =
+            self.cohort.visits.iter().copied().filter(|&t| t >= range[0] && t <= range[1]).collect();
+        let at_visits = self.estimates(gap, &visits, range);
+        let margin = self.margin();
+        let limits_at = |t: f64| {
+            let e = self.posterior.estimate(&gap(t));
+            let reach = family.at(e.df) * e.se;
+            (e.mean - reach, e.mean + reach)
+        };
+        let (mut stretches, mut beyond, mut inside) = (Vec::new(), Vec::new(), Vec::new());
+        if let Some(support) = support {
+            let points = self.inside(support);
+            let limits: Vec<(f64, f64)> = points.iter().map(|&t| limits_at(t)).collect();
+            let runs = |value: &dyn Fn((f64, f64)) -> f64| {
+                let at: Vec<f64> = limits.iter().map(|&l| value(l)).collect();
+                runs_above_zero(&points, &at, |t| value(limits_at(t)))
+            };
+            let directed = |low: f64, high: f64| {
+                let mut all: Vec<Stretch> = runs(&|(lower, _)| lower - high)
+                    .into_iter()
+                    .map(|run| stretch(run, Some(Direction::Above)))
+                    .chain(runs(&|(_, upper)| low - upper).into_iter().map(|run| stretch(run, Some(Direction::Below))))
+                    .collect();
+                all.sort_by(|a, b| a.start.total_cmp(&b.start));
+                all
+            };
+            stretches = directed(0.0, 0.0);
+            if margin[1] > 0.0 {
+                beyond = directed(margin[0], margin[1]);
+                let within = runs(&|(lower, upper)| (margin[1] - upper).min(lower - margin[0]));
+                inside = within.into_iter().map(|run| stretch(run, None)).collect();
+            }
+        }
+        Difference {
+            from: self.cohort.groups[from].name.clone(),
+            to: self.cohort.groups[to].name.clone(),
+            critical: family.critical(&estimates),
+            grid: self.difference_points(self.grid.clone(), &estimates, family),
+            support,
+            margin,
+            stretches,
+            beyond,
+            inside,
+            at_visits: self.difference_points(visits, &at_visits, family),
+        }
+    }
+
+    fn difference_points(&self, time: Vec<f64>, estimates: &[Option<Estimate>], family: &Family) -> DifferencePoints {
+        let limits = Limits::new(estimates, family);
+        let back = |values: &[Option<f64>]| values.iter().map(|v| v.map(|v| self.back(v))).collect();
+        DifferencePoints {
+            time,
+            response_estimate: back(&limits.mean),
+            response_lower: back(&limits.lower),
+            response_upper: back(&limits.upper),
+            estimate: limits.mean,
+            se: limits.se,
+            lower: limits.lower,
+            upper: limits.upper,
+            df: estimates.iter().map(|e| e.map(|e| e.df).filter(|df| df.is_finite())).collect(),
+        }
+    }
+}
+
+fn stretch(run: Run, direction: Option<Direction>) -> Stretch {
+    Stretch { start: run.start, end: run.end, direction, open_start: run.open_start, open_end: run.open_end }
+}
+
+/// Columns of a band.
+struct Limits {
+    mean: Vec<Option<f64>>,
+    se: Vec<Option<f64>>,
+    lower: Vec<Option<f64>>,
+    upper: Vec<Option<f64>>,
+}
+
+impl Limits {
+    fn new(estimates: &[Option<Estimate>], family: &Family) -> Self {
+        let column = |f: &dyn Fn(&Estimate) -> f64| estimates.iter().map(|e| e.as_ref().map(f)).collect();
+        let reach = |e: &Estimate| if e.se > 0.0 { family.at(e.df) * e.se } else { 0.0 };
+        Limits {
+            mean: column(&|e| e.mean),
+            se: column(&|e| e.se),
+            lower: column(&|e| e.mean - reach(e)),
+            upper: column(&|e| e.mean + reach(e)),
+        }
+    }
+}

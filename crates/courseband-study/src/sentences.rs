@@ -1,0 +1,248 @@
+//! Findings as plain sentences. They claim only what was compared, and every number has its unit.
+
+use crate::findings::*;
+use crate::plan::MarginUnit;
+
+/// Sentences of one analysis, most important first.
+pub(crate) fn write(findings: &Findings) -> Vec<Sentence> {
+    if findings.fit.status == FitStatus::Failed {
+        return Vec::new();
+    }
+    let mut told: Vec<(usize, Sentence)> = Vec::new();
+    let mut quiet = Vec::new();
+    for (index, difference) in findings.differences.iter().enumerate() {
+        let speaker = Speaker { findings, difference, index };
+        if difference.stretches.is_empty() {
+            quiet.push((index, speaker.undecided()));
+        } else {
+            told.push((index, speaker.apart()));
+        }
+    }
+    let strength = |index: usize| strongest(&findings.differences[index]);
+    told.sort_by(|a, b| strength(b.0).total_cmp(&strength(a.0)).then(a.0.cmp(&b.0)));
+    let mut sentences: Vec<Sentence> = told.into_iter().chain(quiet).map(|(_, s)| s).collect();
+    sentences.extend(few_left(findings));
+    sentences
+}
+
+/// Largest |estimate| / SE at a visit.
+fn strongest(difference: &Difference) -> f64 {
+    let points = &difference.at_visits;
+    (points.estimate.iter().zip(&points.se))
+        .filter_map(|(e, s)| Some(e.as_ref()?.abs() / s.as_ref().filter(|s| **s > 0.0)?))
+        .fold(0.0, f64::max)
+}
+
+struct Speaker<'a> {
+    findings: &'a Findings,
+    difference: &'a Difference,
+    index: usize,
+}
+
+impl Speaker<'_> {
+    fn apart(&self) -> Sentence {
+        let d = self.difference;
+        let directions: Vec<Direction> = d.stretches.iter().filter_map(|s| s.direction).collect();
+        let one_way = directions.windows(2).all(|w| w[0] == w[1]);
+        let runs = match (one_way, directions.first()) {
+            (true, Some(Direction::Above)) => "runs above",
+            (true, Some(Direction::Below)) => "runs below",
+            _ => "runs above and below",
+        };
+        let mut text = Vec::new();
+        if let Some(t) = self.landmark() {
+            text.extend(self.reading_at(t));
+        }
+        text.push(self.days());
+        if let Some(rest) = self.rest() {
+            text.push(rest);
+        }
+        self.sentence("gap", format!("{} {runs} {}.", d.to, d.from), text.join(" "))
+    }
+
+    fn undecided(&self) -> Sentence {
+        let d = self.difference;
+        let Some(support) = d.support else {
+            let text = "They were never followed at the same time, so they cannot be compared.".to_string();
+            return self.sentence("none-apart", format!("{} and {}.", d.to, d.from), text);
+        };
+        let mut text = Vec::new();
+        let whole = |s: &Stretch| s.open_start && s.open_end;
+        let headline = if d.inside.iter().any(whole) {
+            text.push(format!("Over the whole course the band lies inside {}.", self.margin()));
+            format!("{} stays with {}.", d.to, d.from)
+        } else {
+            format!("{} and {} are not shown apart.", d.to, d.from)
+        };
+        text.extend(self.reading_at(support[1]));
+        if let Some(rest) = self.rest() {
+            text.push(rest);
+        }
+        self.sentence(if d.inside.is_empty() { "undecided" } else { "inside" }, headline, text.join(" "))
+    }
+
+    fn sentence(&self, kind: &str, headline: String, text: String) -> Sentence {
+        let f = self.findings;
+        let (one, many) = (&f.plan.words.subject, &f.plan.words.subjects);
+        let used: Vec<&GroupInfo> =
+            f.groups.iter().filter(|g| g.name == self.difference.from || g.name == self.difference.to).collect();
+        let count: usize = used.iter().map(|g| g.subjects).sum();
+        let rows: usize = used.iter().map(|g| g.rows).sum();
+        let depends = format!("{count} {}, {rows} measurements", if count == 1 { one } else { many });
+        Sentence { kind: kind.into(), pair: Some(self.index), headline, text, depends }
+    }
+
+    /// The last visit inside the longest stretch.
+    fn landmark(&self) -> Option<f64> {
+        let d = self.difference;
+        let longest = d.stretches.iter().max_by(|a, b| (a.end - a.start).total_cmp(&(b.end - b.start)))?;
+        let visits = d.at_visits.time.iter().copied().filter(|&t| t >= longest.start && t <= longest.end);
+        Some(visits.last().unwrap_or(0.5 * (longest.start + longest.end)))
+    }
+
+    /// Value and interval at a time.
+    fn reading_at(&self, t: f64) -> Option<String> {
+        let d = self.difference;
+        let at = |points: &DifferencePoints| {
+            let k = points.time.iter().position(|&x| x == t)?;
+            Some((points.response_estimate[k]?, points.response_lower[k]?, points.response_upper[k]?))
+        };
+        let (estimate, lower, upper) = at(&d.at_visits).or_else(|| at(&d.grid))?;
+        let when = self.when(t);
+        Some(if self.findings.scale.ratio {
+            let [e, l, u] = shares(estimate, lower, upper);
+            format!("At {when} it is {e} of {} ({l} to {u}).", d.from)
+        } else {
+            let digits = decimals(upper - lower);
+            let word = if estimate >= 0.0 { "above" } else { "below" };
+            format!(
+                "At {when} it is {} {word} {} (difference {} to {}).",
+                number(estimate.abs(), digits),
+                d.from,
+                number(lower, digits),
+                number(upper, digits)
+            )
+        })
+    }
+
+    /// When the band excludes zero and the margin.
+    fn days(&self) -> String {
+        let d = self.difference;
+        let mut parts: Vec<String> = d.stretches.iter().map(|s| format!("shown apart {}", self.span(s))).collect();
+        parts.extend(d.beyond.iter().map(|s| format!("shown beyond {} {}", self.margin(), self.span(s))));
+        let many = &self.findings.plan.words.subjects;
+        let text = parts.join(", ");
+        let mut letters = text.chars();
+        let capital = letters.next().map(|c| c.to_uppercase().collect::<String>()).unwrap_or_default();
+        let tail = if parts.len() > 1 { "these times depend" } else { "this time depends" };
+        format!("{capital}{}: {tail} on the number of {many}.", letters.as_str())
+    }
+
+    fn span(&self, s: &Stretch) -> String {
+        match (s.open_start, s.open_end) {
+            (true, true) => "over the whole course".into(),
+            (true, false) => format!("up to {}", self.edge(s.end)),
+            (false, true) => format!("from {} to the last visit", self.edge(s.start)),
+            (false, false) => format!("from {} to {}", self.edge(s.start), self.edge(s.end)),
+        }
+    }
+
+    /// What is neither apart nor inside the margin.
+    fn rest(&self) -> Option<String> {
+        let d = self.difference;
+        let support = d.support?;
+        let covered: f64 = d.stretches.iter().chain(&d.inside).map(|s| s.end - s.start).sum();
+        if covered >= 0.999 * (support[1] - support[0]) && support[1] > support[0] {
+            return None;
+        }
+        let lead = if d.stretches.is_empty() && d.inside.is_empty() { "Undecided" } else { "Elsewhere undecided" };
+        Some(if d.margin[1] > 0.0 {
+            format!("{lead}: the data neither show nor rule out a gap over {}.", self.margin())
+        } else {
+            format!("{lead}: the data neither show a gap nor rule one out.")
+        })
+    }
+
+    fn margin(&self) -> String {
+        let c = &self.findings.plan.comparisons;
+        match c.margin_unit {
+            MarginUnit::Percent => format!("{} %", plain(c.margin)),
+            MarginUnit::Response => plain(c.margin),
+        }
+    }
+
+    /// A visit.
+    fn when(&self, t: f64) -> String {
+        format!("{} {}", self.findings.scale.time_word, plain(t))
+    }
+
+    /// A time on the continuous curve, rounded to a hundredth of the follow-up.
+    fn edge(&self, t: f64) -> String {
+        let visits = &self.findings.visits;
+        let span = visits[visits.len() - 1] - visits[0];
+        format!("{} {}", self.findings.scale.time_word, number(t, decimals(span / 5.0)))
+    }
+}
+
+/// A sentence where few are still followed at the end.
+fn few_left(findings: &Findings) -> Option<Sentence> {
+    let last = *findings.visits.last()?;
+    let words = &findings.plan.words;
+    let thin: Vec<String> = (findings.groups.iter())
+        .filter_map(|g| {
+            let left = g.last_times.iter().filter(|&&t| t >= last).count();
+            let few = g.subjects > 0 && (2 * left < g.subjects || left < 5);
+            (few && left < g.subjects).then(|| format!("{left} of {} in {}", g.subjects, g.name))
+        })
+        .collect();
+    (!thin.is_empty()).then(|| Sentence {
+        kind: "followed".into(),
+        pair: None,
+        headline: format!("Few {} are left at the end.", words.subjects),
+        text: format!(
+            "At {} {} only {} are still followed: the end of the courses rests on them.",
+            findings.scale.time_word,
+            plain(last),
+            thin.join(", ")
+        ),
+        depends: format!("{} {}, {} measurements", findings.subjects, words.subjects, findings.rows),
+    })
+}
+
+/// `95 %`, `99.9 %`.
+pub(crate) fn percent(level: f64) -> String {
+    format!("{} %", plain((level * 1e6).round() / 1e4))
+}
+
+/// A ratio and its limits as percent with one precision.
+fn shares(estimate: f64, lower: f64, upper: f64) -> [String; 3] {
+    let digits = decimals(100.0 * (upper - lower)).min(2);
+    [estimate, lower, upper].map(|x| format!("{} %", number(100.0 * x, digits)))
+}
+
+/// Decimals that give a quantity of this width two or three digits.
+fn decimals(width: f64) -> usize {
+    if !(width > 0.0) || !width.is_finite() {
+        return 2;
+    }
+    let exponent = libm::floor(libm::log10(width));
+    (1.0 - exponent).clamp(0.0, 12.0) as usize
+}
+
+/// A number with a true minus sign.
+fn number(value: f64, digits: usize) -> String {
+    let text = format!("{value:.digits$}");
+    let zero = text.trim_start_matches('-').chars().all(|c| c == '0' || c == '.');
+    match text.strip_prefix('-') {
+        Some(rest) if zero => rest.to_string(),
+        Some(rest) => format!("\u{2212}{rest}"),
+        None => text,
+    }
+}
+
+/// A number as short as it was given.
+fn plain(value: f64) -> String {
+    let rounded = (value * 1e6).round() / 1e6;
+    let text = format!("{rounded}");
+    text.strip_prefix('-').map_or(text.clone(), |rest| format!("\u{2212}{rest}"))
+}

@@ -1,0 +1,227 @@
+//! A table held open, and the way from a plan to its findings.
+
+use crate::cohort::{Cohort, columns_used, problems};
+use crate::evaluate::Evaluation;
+use crate::findings::*;
+use crate::plan::{BandKind, MarginUnit, Plan, Serial, SmallSample, Transform};
+use crate::refusal::Refusal;
+use crate::{remarks, sentences};
+use courseband_engine::{Fit, FitError, Verdict, fit};
+use courseband_table::{Reading, Table};
+
+/// A table held open. The last reading is kept, so that a change of the model does not read the table again.
+#[derive(Debug)]
+pub struct Study {
+    table: Table,
+    kept: Option<(Plan, Reading)>,
+}
+
+impl Study {
+    /// Reads a table.
+    ///
+    /// # Errors
+    /// Bytes that are no table.
+    pub fn open(bytes: &[u8]) -> Result<Study, Refusal> {
+        Ok(Study { table: Table::read(bytes)?, kept: None })
+    }
+
+    /// The table as read.
+    #[must_use]
+    pub fn table(&self) -> &Table {
+        &self.table
+    }
+
+    /// Observations, problems and questions under a plan.
+    ///
+    /// # Errors
+    /// What makes the table unusable as asked.
+    pub fn reading(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
+        let same = |kept: &Plan| {
+            kept.columns == plan.columns && kept.exclusions == plan.exclusions && kept.reading == plan.reading
+        };
+        if !self.kept.as_ref().is_some_and(|(kept, _)| same(kept)) {
+            self.kept = None;
+            let reading = self.table.observe(&plan.request())?;
+            self.kept = Some((plan.clone(), reading));
+        }
+        match &self.kept {
+            Some((_, reading)) => Ok(reading),
+            None => Err(Refusal::table("The table could not be read.")),
+        }
+    }
+
+    /// Findings under a plan.
+    ///
+    /// # Errors
+    /// A plan or table that cannot be used. A fit that fails is no error: see [`FitStatus::Failed`].
+    pub fn run(&mut self, plan: &Plan) -> Result<Findings, Refusal> {
+        plan.check()?;
+        let reading = self.reading(plan)?;
+        if let Some(question) = reading.open_question() {
+            return Err(Refusal { about: "question", message: question.refusal() });
+        }
+        find(reading, plan)
+    }
+}
+
+/// Findings of a table, given as the bytes of a file or of pasted text, under a plan.
+///
+/// # Errors
+/// A plan or table that cannot be used.
+pub fn run(bytes: &[u8], plan: &Plan) -> Result<Findings, Refusal> {
+    plan.check()?;
+    Study::open(bytes)?.run(plan)
+}
+
+fn find(reading: &Reading, plan: &Plan) -> Result<Findings, Refusal> {
+    let cohort = Cohort::new(&reading.observations, plan)?;
+    let columns = columns_used(reading);
+    let ratio = plan.response.transform == Transform::Log;
+    let scale = ScaleInfo {
+        time_word: plan.words.time.clone().unwrap_or_else(|| reading.observations.time_word.clone()),
+        response: plan.words.response.clone().or_else(|| columns.response.clone()).unwrap_or_default(),
+        ratio,
+    };
+    let mut notes: Vec<Note> =
+        reading.notes.iter().map(|message| Note { about: "table".into(), message: message.clone() }).collect();
+    notes.extend(cohort.notes.iter().cloned());
+    notes.extend(plan_notes(plan, reading, &cohort));
+    let mut findings = Findings {
+        version: env!("CARGO_PKG_VERSION").into(),
+        rows: cohort.data.rows(),
+        subjects: cohort.data.subjects.len(),
+        columns,
+        problems: problems(reading),
+        fit: failed_summary(),
+        curves: Vec::new(),
+        differences: Vec::new(),
+        notes,
+        plan: plan.clone(),
+        groups: cohort.groups.clone(),
+        visits: cohort.visits.clone(),
+        scale,
+        sentences: Vec::new(),
+    };
+    match fit(&cohort.data, &plan.model()) {
+        Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted),
+        Err(error) => refuse_or_fail(&mut findings, &cohort, &error)?,
+    }
+    findings.sentences = sentences::write(&findings);
+    Ok(findings)
+}
+
+fn failed_summary() -> FitSummary {
+    FitSummary {
+        status: FitStatus::Failed,
+        log_reml: None,
+        residual_sd: PerGroup::default(),
+        subject_covariance: Vec::new(),
+        subject_covariance_by_group: Vec::new(),
+        serial_correlation: None,
+        measurement_error_share: None,
+        effective_df: PerGroup::default(),
+        evaluations: 0,
+        remarks: Vec::new(),
+    }
+}
+
+fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit) {
+    findings.fit = summary(plan, cohort, fitted);
+    let evaluation = Evaluation::new(plan, cohort, fitted);
+    findings.curves = evaluation.curves();
+    findings.differences = evaluation.differences();
+    for remark in &findings.fit.remarks {
+        findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
+    }
+    findings.notes.extend(band_notes(plan, &evaluation));
+}
+
+fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
+    let per_group = |f: &dyn Fn(usize) -> f64| {
+        PerGroup(cohort.groups.iter().enumerate().map(|(g, info)| (info.name.clone(), f(g))).collect())
+    };
+    let by_group = plan.subjects_spread == crate::plan::Sharing::ByGroup;
+    FitSummary {
+        status: match fitted.verdict() {
+            Verdict::Converged => FitStatus::Converged,
+            Verdict::Boundary => FitStatus::Boundary,
+        },
+        log_reml: Some(fitted.log_reml()),
+        residual_sd: per_group(&|g| fitted.residual_sd(g)),
+        subject_covariance: fitted.subject_covariance(0),
+        subject_covariance_by_group: if by_group {
+            (0..cohort.groups.len()).map(|g| fitted.subject_covariance(g)).collect()
+        } else {
+            Vec::new()
+        },
+        serial_correlation: fitted.serial_correlation(),
+        measurement_error_share: fitted.measurement_error_share(),
+        effective_df: per_group(&|g| fitted.effective_df(g)),
+        evaluations: fitted.evaluations(),
+        remarks: fitted.remarks().iter().map(|r| remarks::in_words(*r, &cohort.groups, plan)).collect(),
+    }
+}
+
+fn refuse_or_fail(findings: &mut Findings, cohort: &Cohort, error: &FitError) -> Result<(), Refusal> {
+    let message = remarks::failure(error, &cohort.groups);
+    findings.fit.remarks.push(message.clone());
+    findings.notes.push(Note { about: "fit".into(), message });
+    Ok(())
+}
+
+fn plan_notes(plan: &Plan, reading: &Reading, cohort: &Cohort) -> Vec<Note> {
+    let mut notes = Vec::new();
+    let mut say = |about: &str, message: String| notes.push(Note { about: about.into(), message });
+    if plan.errors.nugget && plan.errors.serial == Serial::None {
+        say("fit", "Measurement error is set without serial correlation, where it has no part of its own: it is ignored.".into());
+    }
+    if let Some(cluster) = &reading.columns.cluster {
+        say(
+            "fit",
+            format!(
+                "Column \"{cluster}\" is read but has no part in the model: subjects of one {cluster} are taken as \
+                 independent. Where treatment was given per {cluster}, the bands are too narrow."
+            ),
+        );
+    }
+    let c = &plan.comparisons;
+    if c.margin > 0.0 && c.margin_unit == MarginUnit::Response && plan.response.transform == Transform::Log {
+        say(
+            "comparisons",
+            format!(
+                "The margin {} is taken on the log scale: ratios from {:.3} to {:.3}.",
+                c.margin,
+                libm::exp(-c.margin),
+                libm::exp(c.margin)
+            ),
+        );
+    }
+    if cohort.groups.len() == 1 {
+        say("comparisons", "There is one group, so nothing is compared.".into());
+    }
+    notes
+}
+
+fn band_notes(plan: &Plan, evaluation: &Evaluation) -> Vec<Note> {
+    let c = &plan.comparisons;
+    let percent = sentences::percent(c.level);
+    let pairs = evaluation.pairs().len();
+    let reach = match (c.band, pairs) {
+        (BandKind::Pointwise, _) => format!("{percent} bands hold at each time by itself, not over the whole course."),
+        (BandKind::Simultaneous, 0 | 1) => format!("{percent} bands hold over the whole course at once."),
+        (BandKind::Simultaneous, n) => format!("{percent} bands hold over the whole course and all {n} pairs at once."),
+    };
+    let small = match (c.small_sample, evaluation.is_corrected()) {
+        (SmallSample::None, _) => {
+            "Standard errors take the variance parameters as known, and limits use normal theory: too narrow in small samples.".into()
+        }
+        (_, true) => "For small samples, standard errors include the uncertainty of the variance parameters, and limits use \
+                      t distributions with degrees of freedom by Satterthwaite's rule, which may differ over time."
+            .to_string(),
+        (_, false) => "The small-sample correction could not be computed here: limits use normal theory and are too narrow.".into(),
+    };
+    vec![
+        Note { about: "bands".into(), message: reach },
+        Note { about: "bands".into(), message: small },
+    ]
+}
