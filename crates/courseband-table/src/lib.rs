@@ -16,6 +16,7 @@ mod error;
 mod frame;
 mod groups;
 mod labels;
+mod layout;
 mod long;
 mod names;
 mod number;

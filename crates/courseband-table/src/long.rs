@@ -16,8 +16,12 @@ pub(crate) struct Place {
 pub(crate) enum Source {
     /// The same column of the sheet for every measurement.
     Cell(usize),
+    /// The same column, in the record that holds the merged label, by record.
+    Down((usize, Vec<u32>)),
     /// The measurement's own cell.
     Value,
+    /// The cell of another measurement at the same time, by the sheet's column of this one.
+    Beside(Vec<Option<usize>>),
     /// A label of the measurement's column, by the sheet's column.
     Across(Vec<String>),
     /// The measurement's line, where rows are subjects without a name.
@@ -65,7 +69,11 @@ impl LongTable<'_> {
         let place = self.places[row];
         match &self.columns[column].source {
             Source::Cell(at) => self.sheet.cell(place.record as usize, *at),
+            Source::Down((at, from)) => self.sheet.cell(from[place.record as usize] as usize, *at),
             Source::Value => self.sheet.cell(place.record as usize, place.column as usize),
+            Source::Beside(columns) => {
+                columns[place.column as usize].map_or("", |at| self.sheet.cell(place.record as usize, at))
+            }
             Source::Across(labels) => &labels[place.column as usize],
             Source::Line(names) => &names[place.record as usize],
         }
@@ -78,12 +86,11 @@ impl LongTable<'_> {
 
     /// Name under which people find the cell: in a wide table the name of the measurement's own column.
     pub(crate) fn shown_column(&self, row: usize, column: usize) -> &str {
+        let at = self.places[row].column as usize;
         match &self.columns[column].source {
-            Source::Cell(_) => &self.columns[column].name,
-            _ => match self.layout {
-                Layout::Long => &self.columns[column].name,
-                _ => &self.sheet_names[self.places[row].column as usize],
-            },
+            Source::Value | Source::Across(_) => &self.sheet_names[at],
+            Source::Beside(columns) => columns[at].map_or(&self.columns[column].name, |at| &self.sheet_names[at]),
+            Source::Cell(_) | Source::Down(_) | Source::Line(_) => &self.columns[column].name,
         }
     }
 

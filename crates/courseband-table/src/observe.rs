@@ -269,9 +269,9 @@ impl Observer<'_> {
         let count = self.problems.count(ProblemKind::BeyondLimit);
         if count > 0 {
             self.notes.push(format!(
-                "{} in column {} given as below or above a limit, such as ‘<0.5’: kept out.",
-                if count == 1 { "1 response is".to_string() } else { format!("{count} responses are") },
-                quoted(self.name(column))
+                "Column {}: {} given as below or above a limit, such as ‘<0.5’, and kept out.",
+                quoted(self.name(column)),
+                if count == 1 { "1 response is".to_string() } else { format!("{count} responses are") }
             ));
         }
         if let Some(unit) = &self.profiles[column].unit {

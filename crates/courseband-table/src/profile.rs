@@ -3,7 +3,7 @@
 use crate::long::{LongTable, Source};
 use crate::number::{Decimal, MarkEvidence, NotNumber, is_missing, number};
 use crate::time::{WrittenTime, read_time};
-use std::collections::HashSet;
+use std::collections::HashMap;
 
 /// Distinct cells are counted up to this number.
 const MAX_DISTINCT: usize = 50_000;
@@ -56,56 +56,82 @@ pub(crate) fn profile_all(table: &LongTable<'_>) -> Vec<Profile> {
     profiles
 }
 
+/// What one cell looks like.
+#[derive(Debug, Clone, Copy, PartialEq)]
+enum Look {
+    Missing,
+    Number { whole: bool },
+    WordedTime,
+    /// A number with a unit, by index into the units seen; `time`: the unit is one of time.
+    Unit { index: usize, time: bool },
+    Text,
+}
+
 fn profile(table: &LongTable<'_>, column: usize) -> Profile {
     let mut profile = Profile { rows: table.rows(), ..Profile::default() };
-    let mut seen: HashSet<&str> = HashSet::new();
+    let mut known: HashMap<&str, Look> = HashMap::new();
     let mut units: Vec<(String, usize)> = Vec::new();
-    let mut previous = None;
+    let mut last: Option<(&str, Look)> = None;
     let is_label = matches!(table.columns[column].source, Source::Across(_) | Source::Line(_));
     for row in 0..table.rows() {
         let cell = table.cell(row, column);
-        if previous != Some(cell) && seen.len() < MAX_DISTINCT {
-            seen.insert(cell);
-        }
-        previous = Some(cell);
         if !is_label {
             profile.marks.add(cell);
         }
-        profile.count(cell, &mut units);
+        let look = match last {
+            Some((before, look)) if before == cell => look,
+            _ if known.len() >= MAX_DISTINCT => known.get(cell).copied().unwrap_or_else(|| look_at(cell, &mut units)),
+            _ => *known.entry(cell).or_insert_with(|| look_at(cell, &mut units)),
+        };
+        last = Some((cell, look));
+        profile.count(look, &mut units);
     }
-    profile.distinct = seen.len();
+    profile.distinct = known.len();
     profile.unit = units.into_iter().find(|(_, count)| *count * 10 >= profile.present() * 9).map(|(unit, _)| unit);
     profile
 }
 
-impl Profile {
-    fn count(&mut self, cell: &str, units: &mut Vec<(String, usize)>) {
-        let read = number(cell, Decimal::Point).or_else(|other| match other {
-            NotNumber::OtherMark => number(cell, Decimal::Comma),
-            other => Err(other),
-        });
-        match read {
-            Ok(value) => {
-                self.numbers += 1;
-                self.whole += usize::from(value.fract() == 0.0);
-            }
-            Err(NotNumber::Missing) => self.missing += 1,
-            Err(NotNumber::Below | NotNumber::Above | NotNumber::Infinite) => self.numbers += 1,
-            Err(NotNumber::Unit(_, unit)) => self.count_unit(cell, unit, units),
-            Err(_) if is_missing(cell) => self.missing += 1,
-            Err(_) => self.worded_times += usize::from(read_time(cell, Decimal::Point).is_some()),
+fn look_at(cell: &str, units: &mut Vec<(String, usize)>) -> Look {
+    let read = number(cell, Decimal::Point).or_else(|other| match other {
+        NotNumber::OtherMark => number(cell, Decimal::Comma),
+        other => Err(other),
+    });
+    match read {
+        Ok(value) => Look::Number { whole: value.fract() == 0.0 },
+        Err(NotNumber::Missing) => Look::Missing,
+        Err(NotNumber::Below | NotNumber::Above | NotNumber::Infinite) => Look::Number { whole: false },
+        // More units than a column can sensibly have: told apart no further.
+        Err(NotNumber::Unit(..)) if units.len() >= 64 => Look::Number { whole: false },
+        Err(NotNumber::Unit(_, unit)) => {
+            let index = units.iter().position(|(known, _)| *known == unit).unwrap_or_else(|| {
+                units.push((unit, 0));
+                units.len() - 1
+            });
+            Look::Unit { index, time: matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..))) }
         }
+        Err(_) if is_missing(cell) => Look::Missing,
+        Err(_) if read_time(cell, Decimal::Point).is_some() => Look::WordedTime,
+        Err(_) => Look::Text,
     }
+}
 
-    fn count_unit(&mut self, cell: &str, unit: String, units: &mut Vec<(String, usize)>) {
-        match read_time(cell, Decimal::Point) {
-            Some(WrittenTime::WithUnit(..)) => self.worded_times += 1,
-            _ => self.numbers += 1,
-        }
-        match units.iter().position(|(known, _)| *known == unit) {
-            Some(at) => units[at].1 += 1,
-            None if units.len() < 8 => units.push((unit, 1)),
-            None => {}
+impl Profile {
+    fn count(&mut self, look: Look, units: &mut [(String, usize)]) {
+        match look {
+            Look::Missing => self.missing += 1,
+            Look::Number { whole } => {
+                self.numbers += 1;
+                self.whole += usize::from(whole);
+            }
+            Look::WordedTime => self.worded_times += 1,
+            Look::Unit { index, time } => {
+                units[index].1 += 1;
+                match time {
+                    true => self.worded_times += 1,
+                    false => self.numbers += 1,
+                }
+            }
+            Look::Text => {}
         }
     }
 }

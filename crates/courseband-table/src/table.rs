@@ -2,11 +2,12 @@
 
 use crate::error::TableError;
 use crate::frame::{Frame, Names, column_names, find_frame};
-use crate::long::{LongColumn, LongTable, Place, Source};
+use crate::layout::{Framed, long_form};
+use crate::long::LongTable;
 use crate::observe::observe;
 use crate::profile::profile_all;
 use crate::reading::Reading;
-use crate::request::{Layout, Request};
+use crate::request::Request;
 use crate::sheet::{Sheet, read_bytes};
 
 /// A table that was read, before anything is asked of it.
@@ -51,20 +52,7 @@ impl Table {
         &self.names.names
     }
 
-    fn long(&self, _request: &Request) -> LongTable<'_> {
-        let columns = (0..self.names.names.len()).map(|column| LongColumn {
-            name: self.names.names[column].clone(),
-            source: Source::Cell(column),
-            unit: self.names.units[column].clone(),
-        });
-        LongTable {
-            sheet: &self.sheet,
-            layout: Layout::Long,
-            places: self.frame.body.iter().map(|&record| Place { record, column: 0 }).collect(),
-            columns: columns.collect(),
-            presets: Vec::new(),
-            sheet_names: self.names.names.clone(),
-            notes: Vec::new(),
-        }
+    fn long(&self, request: &Request) -> LongTable<'_> {
+        long_form(Framed { sheet: &self.sheet, frame: &self.frame, names: &self.names }, request)
     }
 }

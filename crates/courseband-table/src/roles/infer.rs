@@ -128,7 +128,11 @@ impl Finder<'_> {
         let candidates = self.group_candidates();
         let named: Vec<usize> = few
             .into_iter()
-            .filter(|&column| clarity(self.name(column), Role::Group) >= 4 || candidates.contains(&column) || self.restarts_under(column))
+            .filter(|&column| {
+                let clear = clarity(self.name(column), Role::Group);
+                let words = clear == 3 && self.profiles[column].numbers == 0 && self.profiles[column].distinct <= 60;
+                clear >= 4 || words || candidates.contains(&column) || self.restarts_under(column)
+            })
             .collect();
         if self.take_by_name(Role::Group, &named, 3) {
             return;
@@ -197,7 +201,7 @@ impl Finder<'_> {
         if candidates.len() != 1 && self.take_by_name(Role::Response, &candidates, 2) {
             return;
         }
-        self.take_only(Role::Response, &candidates, "It is the only further column of numbers that change within subjects.");
+        self.take_only(Role::Response, &candidates, "It is the only further column of numbers that changes within subjects.");
         if self.is_open(Role::Response) {
             // A clear name without numbers: reading it will say so.
             let free = self.free();
