@@ -1,0 +1,191 @@
+/**
+ * The alternatives of every choice in the plan: what each is called, when it
+ * fits, whether it can be had here, and the plan that results. Pure functions.
+ */
+
+import { pairCount, withSection, withTransform } from './plan.js';
+import { text } from './text.js';
+import { percentLevel } from './numbers.js';
+
+/** @typedef {import('./types.js').Plan} Plan */
+/** @typedef {import('./context.js').Context} Context */
+/** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
+/** @typedef {'response'|'time'|'group'|'shape'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+
+const words = text.plan.choices;
+
+/**
+ * @param {Plan} plan
+ * @param {string} current
+ * @param {Record<string, any>} named Name and fit of each alternative.
+ * @param {(id: any) => Plan} set
+ * @param {string[]} ids
+ * @returns {Alternative[]}
+ */
+function list(plan, current, named, set, ids) {
+  return ids.map((id) => ({
+    id, name: named[id][0], fits: named[id][1], chosen: id === current, plan: id === current ? plan : set(id),
+  }));
+}
+
+/**
+ * @param {Plan} plan
+ * @param {Context} context
+ * @param {'response'|'time'|'group'} role
+ * @returns {Alternative[]}
+ */
+function columnAlternatives(plan, context, role) {
+  const columns = context.candidates.map(({ name, reason }) => ({
+    id: `column:${name}`,
+    name,
+    fits: reason,
+    chosen: context.columns[role] === name,
+    plan: withSection(plan, 'columns', { [role]: name }),
+  }));
+  if (role !== 'group') return columns;
+  const absent = {
+    id: 'absent',
+    name: words.group.absent,
+    fits: words.group.absentFits,
+    chosen: context.columns.group === null,
+    plan: withSection(plan, 'columns', { group: false }),
+  };
+  return [...columns, absent];
+}
+
+/**
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function scaleAlternatives(plan, context) {
+  const rows = context.nonPositive;
+  const shown = rows.slice(0, 6).join(', ') + (rows.length > 6 ? ' \u2026' : '');
+  return list(plan, plan.response.transform, words.scale, (id) => withTransform(plan, id), ['identity', 'log']).map(
+    (row) => (row.id === 'log' && rows.length > 0 ? { ...row, greyed: words.scale.greyed(shown, rows.length) } : row),
+  );
+}
+
+/**
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function pairAlternatives(plan, context) {
+  const count = context.groups.length;
+  const { pairs, control } = plan.comparisons;
+  const allPlan = withSection(plan, 'comparisons', { pairs: 'all', control: null });
+  const all = {
+    id: 'all',
+    name: words.pairs.all(pairCount(allPlan, count)),
+    fits: words.pairs.allFits(pairCount(allPlan, count)),
+    chosen: pairs === 'all',
+    plan: allPlan,
+  };
+  const each = context.groups.map((group) => ({
+    id: `control:${group}`,
+    name: words.pairs.with(group),
+    fits: words.pairs.withFits(count - 1, group),
+    chosen: pairs === 'against-control' && control === group,
+    plan: withSection(plan, 'comparisons', { pairs: 'against-control', control: group }),
+  }));
+  return [all, ...each];
+}
+
+/**
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function bandAlternatives(plan, context) {
+  const pairs = pairCount(plan, context.groups.length);
+  const simultaneous = pairs > 1 ? words.band.simultaneousPairs(pairs) : words.band.simultaneous;
+  const named = {
+    simultaneous: [simultaneous, words.band.simultaneousFits],
+    pointwise: [words.band.pointwise, words.band.pointwiseFits],
+  };
+  const set = (/** @type {any} */ id) => withSection(plan, 'comparisons', { band: id });
+  return list(plan, plan.comparisons.band, named, set, ['simultaneous', 'pointwise']);
+}
+
+/**
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function levelAlternatives(plan) {
+  return /** @type {const} */ ([90, 95, 99]).map((percent) => ({
+    id: String(percent),
+    name: percentLevel(percent / 100),
+    fits: words.level[percent],
+    chosen: Math.abs(plan.comparisons.level * 100 - percent) < 1e-9,
+    plan: withSection(plan, 'comparisons', { level: percent / 100 }),
+  }));
+}
+
+/** @param {Plan} plan */
+export function serialId(plan) {
+  return plan.errors.serial === 'ar1' && plan.errors.nugget ? 'ar1-nugget' : plan.errors.serial;
+}
+
+/**
+ * The alternatives of one choice; empty where it is a field only.
+ * @param {ChoiceId} choice
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+export function alternativesOf(choice, plan, context) {
+  switch (choice) {
+    case 'response':
+    case 'time':
+    case 'group':
+      return columnAlternatives(plan, context, choice);
+    case 'scale':
+      return scaleAlternatives(plan, context);
+    case 'pairs':
+      return pairAlternatives(plan, context);
+    case 'band':
+      return bandAlternatives(plan, context);
+    case 'level':
+      return levelAlternatives(plan);
+    default:
+      return plainAlternatives(choice, plan);
+  }
+}
+
+/**
+ * @param {ChoiceId} choice
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function plainAlternatives(choice, plan) {
+  switch (choice) {
+    case 'shape':
+      return list(plan, plan.curves.shape, words.shape,
+        (id) => withSection(plan, 'curves', { shape: id }), ['smooth', 'straight', 'by-time']);
+    case 'dimension':
+      return list(plan, String(plan.curves.dimension), words.dimension,
+        (id) => withSection(plan, 'curves', { dimension: id }), ['auto', 'full']);
+    case 'smoothness':
+      return list(plan, plan.curves.smoothness, words.smoothness,
+        (id) => withSection(plan, 'curves', { smoothness: id }), ['per-group', 'shared']);
+    case 'subjects':
+      return list(plan, plan.subjects, words.subjects,
+        (id) => ({ ...plan, subjects: id }), ['slope', 'intercept', 'none']);
+    case 'serial':
+      return list(plan, serialId(plan), words.serial,
+        (id) => withSection(plan, 'errors', { serial: id === 'none' ? 'none' : 'ar1', nugget: id === 'ar1-nugget' }),
+        ['none', 'ar1', 'ar1-nugget']);
+    case 'spread':
+      return list(plan, plan.errors.spread, words.spread,
+        (id) => withSection(plan, 'errors', { spread: id }), ['common', 'by-group']);
+    case 'subjects_spread':
+      return list(plan, plan.subjects_spread, words.subjects_spread,
+        (id) => ({ ...plan, subjects_spread: id }), ['common', 'by-group']);
+    case 'small_sample':
+      return list(plan, plan.comparisons.small_sample === 'none' ? 'none' : 'auto', words.small_sample,
+        (id) => withSection(plan, 'comparisons', { small_sample: id }), ['auto', 'none']);
+    default:
+      return [];
+  }
+}

@@ -1,0 +1,59 @@
+/**
+ * Everything the page fetches, fetched once at the start. Then the door is
+ * shut: a second policy forbids every connection from here on.
+ */
+
+/** @typedef {{module: WebAssembly.Module, workerText: string, demos: import('./types.js').Demo[], tables: Map<string, Uint8Array>}} Assets */
+
+const GLUE = './wasm/courseband.js';
+const WASM = './wasm/courseband_bg.wasm';
+const WORKER = './worker.js';
+const DEMOS = './demo-data/';
+
+/** @param {string} url */
+async function fetched(url) {
+  const response = await fetch(url);
+  if (!response.ok) throw new Error(`${url}: ${response.status}`);
+  return response;
+}
+
+/**
+ * The invented examples; a page without them still works.
+ * @returns {Promise<Pick<Assets, 'demos'|'tables'>>}
+ */
+async function loadDemos() {
+  const tables = new Map();
+  try {
+    const demos = /** @type {import('./types.js').Demo[]} */ (await (await fetched(`${DEMOS}demos.json`)).json());
+    await Promise.all(demos.map(async (demo) => {
+      tables.set(demo.file, new Uint8Array(await (await fetched(DEMOS + demo.file)).arrayBuffer()));
+    }));
+    return { demos, tables };
+  } catch {
+    return { demos: [], tables: new Map() };
+  }
+}
+
+/** @returns {Promise<Assets>} */
+export async function loadAssets() {
+  const [bytes, glue, worker, demos] = await Promise.all([
+    fetched(WASM).then((response) => response.arrayBuffer()),
+    fetched(GLUE).then((response) => response.text()),
+    fetched(WORKER).then((response) => response.text()),
+    loadDemos(),
+  ]);
+  const module = await WebAssembly.compile(bytes);
+  shutTheDoor();
+  return { module, workerText: `${glue}\n${worker}`, ...demos };
+}
+
+/**
+ * Adds a policy that forbids connections. Policies only ever add up, so no
+ * later code can open this again, and workers started from here on inherit it.
+ */
+function shutTheDoor() {
+  const meta = document.createElement('meta');
+  meta.httpEquiv = 'Content-Security-Policy';
+  meta.content = "connect-src 'none'";
+  document.head.append(meta);
+}

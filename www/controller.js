@@ -1,0 +1,181 @@
+/**
+ * The one place where the state changes: it turns what views ask for into pure
+ * changes of the state, and into work for the engine. The latest wish wins.
+ */
+
+import { EngineError, Overtaken } from './engine.js';
+import { planToSend } from './plan.js';
+import { text } from './text.js';
+import * as change from './state.js';
+import { findingsFrom, previewFrom, describedFrom } from './wire.js';
+
+/** @typedef {import('./types.js').State} State */
+/** @typedef {import('./types.js').Acts} Acts */
+
+/** Typing settles for this long before a refit, in milliseconds. */
+const TYPING_PAUSE = 260;
+/** A fit that is still running after this long makes room for a newer one, or can be stopped. */
+const SLOW_AFTER = 500;
+
+export class Controller {
+  /**
+   * @param {import('./engine.js').Engine} engine
+   * @param {import('./assets.js').Assets} assets
+   * @param {(state: State) => void} show
+   */
+  constructor(engine, assets, show) {
+    this.engine = engine;
+    this.assets = assets;
+    this.show = show;
+    this.state = { ...change.initialState(), demos: assets.demos };
+    /** Counts wishes; an answer to an older wish is dropped. */
+    this.wish = 0;
+    this.typing = 0;
+    this.busySince = 0;
+    this.shown = false;
+  }
+
+  /** @param {State} next */
+  set(next) {
+    if (next === this.state) return;
+    this.state = next;
+    if (this.shown) return;
+    // Several changes in one turn are shown once.
+    this.shown = true;
+    queueMicrotask(() => {
+      this.shown = false;
+      this.show(this.state);
+    });
+  }
+
+  /** @returns {Acts} */
+  acts() {
+    return {
+      choose: (label, make, typing = false) => this.choose(label, make, typing),
+      undo: () => this.travel(change.undone(this.state)),
+      redo: () => this.travel(change.redone(this.state)),
+      moveCursor: (time) => this.set(change.pointed(this.state, time)),
+      openText: (table) => void this.open(new TextEncoder().encode(table), { kind: 'own', name: text.data.pastedName }, null),
+      openFile: (file) => void this.openFile(file),
+      openDemo: (demo) => void this.openDemo(demo),
+      go: (room) => { window.location.hash = `#/${room}`; },
+      stop: () => this.stop(),
+      retry: () => void this.refit(),
+      togglePair: (pair) => this.set(change.pairToggled(this.state, pair)),
+      leaveOut: (row, reason) => this.choose(text.data.leftOut.label(row), change.leavingOut(row, reason, this.state.seen), false),
+      takeBack: (row) => this.choose(text.data.leftOut.back(row), change.takingBack(row), false),
+    };
+  }
+
+  /** @param {string} label @param {(choices: import('./types.js').Choices) => import('./types.js').Choices} make @param {boolean} typing */
+  choose(label, make, typing) {
+    const before = this.state.choices;
+    this.set(change.chosen(this.state, label, make, typing));
+    this.#afterChoice(before, typing);
+  }
+
+  /** @param {State} next */
+  travel(next) {
+    const before = this.state.choices;
+    this.set(next);
+    this.#afterChoice(before, false);
+  }
+
+  /** @param {import('./types.js').Choices} before @param {boolean} typing */
+  #afterChoice(before, typing) {
+    const now = this.state.choices;
+    window.clearTimeout(this.typing);
+    if (now.plan === before.plan && now.leftOut === before.leftOut && now.answered === before.answered) return;
+    if (typing) this.typing = window.setTimeout(() => void this.refit(), TYPING_PAUSE);
+    else void this.refit();
+  }
+
+  /** @param {import('./types.js').Demo} demo */
+  async openDemo(demo) {
+    const bytes = this.assets.tables.get(demo.file);
+    if (bytes) await this.open(bytes, { kind: 'demo', name: demo.title }, demo);
+  }
+
+  /** @param {File} file */
+  async openFile(file) {
+    if (/\.(xlsx?|xlsm|ods|numbers)$/i.test(file.name)) {
+      this.set(change.refused(change.opening(this.state, { kind: 'own', name: file.name }, null), text.data.paste.workbook(file.name)));
+      return;
+    }
+    try {
+      await this.open(new Uint8Array(await file.arrayBuffer()), { kind: 'own', name: file.name }, null);
+    } catch {
+      this.set(change.refused(this.state, text.data.paste.unreadable(file.name)));
+    }
+  }
+
+  /** @param {Uint8Array} bytes @param {import('./types.js').Source} source @param {import('./types.js').Demo|null} demo */
+  async open(bytes, source, demo) {
+    const wish = (this.wish += 1);
+    window.clearTimeout(this.typing);
+    this.set(change.opening(this.state, source, demo));
+    try {
+      await this.engine.open(bytes, source.name);
+    } catch (cause) {
+      this.#troubled(cause, wish);
+      return;
+    }
+    if (wish === this.wish) await this.refit();
+  }
+
+  /** Reads the table with the present choices, then fits. */
+  async refit() {
+    if (!this.engine.table) return;
+    const wish = (this.wish += 1);
+    if (this.busySince && performance.now() - this.busySince > SLOW_AFTER) this.engine.replace();
+    const plan = JSON.stringify(planToSend(this.state.choices));
+    const started = (this.busySince = performance.now());
+    const slow = window.setTimeout(() => {
+      if (wish === this.wish) this.set({ ...this.state, slow: true });
+    }, SLOW_AFTER);
+    try {
+      await this.#read(plan, wish);
+      if (wish !== this.wish || this.state.status === 'question') return;
+      const answer = await this.engine.run(plan);
+      if (wish !== this.wish) return;
+      const findings = findingsFrom(answer.findings);
+      this.set(change.fitted(this.state, findings, answer, performance.now() - started));
+    } catch (cause) {
+      this.#troubled(cause, wish);
+    } finally {
+      window.clearTimeout(slow);
+      if (wish === this.wish) this.busySince = 0;
+    }
+  }
+
+  /** @param {string} plan @param {number} wish */
+  async #read(plan, wish) {
+    const [preview, description] = await Promise.all([this.engine.preview(plan), this.engine.describe(plan)]);
+    if (wish === this.wish) this.set(change.understood(this.state, previewFrom(preview), describedFrom(description)));
+  }
+
+  /** @param {unknown} cause @param {number} wish */
+  #troubled(cause, wish) {
+    if (cause instanceof Overtaken || wish !== this.wish) return;
+    if (cause instanceof EngineError && cause.dead) {
+      const memory = /memory|allocation/i.test(cause.message);
+      this.set({ ...change.failed(this.state, memory ? text.outOfMemory : text.restarted), notice: text.restarted });
+    } else {
+      this.set(change.refused(this.state, cause instanceof Error ? cause.message : String(cause)));
+    }
+  }
+
+  /** Ends the work under way and takes the last choice back. */
+  stop() {
+    this.wish += 1;
+    this.busySince = 0;
+    this.engine.replace();
+    const back = change.undone(this.state);
+    if (back === this.state) {
+      this.set(change.failed(this.state, text.stopped));
+    } else {
+      this.set({ ...back, notice: text.stopped });
+      void this.refit();
+    }
+  }
+}

@@ -1,0 +1,31 @@
+/**
+ * Drawing on the page's own thread, because the drawing library measures text
+ * through the document. The only place on this thread that calls the module.
+ */
+
+/** @typedef {import('./types.js').Layout} Layout */
+
+/**
+ * @typedef {Object} DrawingView
+ * @property {number} width CSS pixels.
+ * @property {number} ratio Device pixels per CSS pixel.
+ * @property {boolean} dark
+ * @property {number[]} open_pairs
+ * @property {string} noun What several subjects are called.
+ */
+
+/** @param {WebAssembly.Module} module */
+export function startDrawing(module) {
+  wasm_bindgen.initSync({ module });
+}
+
+/**
+ * Draws all strips and says where they are. The canvas gets the size it needs.
+ * @param {HTMLCanvasElement} canvas
+ * @param {{findings: string, traces: string}} drawing
+ * @param {DrawingView} view
+ * @returns {Layout}
+ */
+export function drawStrips(canvas, drawing, view) {
+  return JSON.parse(wasm_bindgen.draw_strips(canvas, drawing.findings, drawing.traces, JSON.stringify(view)));
+}

@@ -1,0 +1,121 @@
+/**
+ * The worker as promises. Replies of a worker that has been replaced are
+ * dropped; a new worker gets the table again before anything else.
+ */
+
+/** @typedef {{resolve: (value: any) => void, reject: (cause: unknown) => void}} Waiting */
+
+/** An error that came from the computation. */
+export class EngineError extends Error {
+  /**
+   * @param {string} message
+   * @param {boolean} dead The worker stopped and was replaced.
+   */
+  constructor(message, dead) {
+    super(message);
+    this.dead = dead;
+  }
+}
+
+/** The answer was overtaken by a later request. */
+export class Overtaken extends Error {}
+
+export class Engine {
+  /**
+   * @param {WebAssembly.Module} module
+   * @param {string} workerText
+   */
+  constructor(module, workerText) {
+    this.module = module;
+    this.address = URL.createObjectURL(new Blob([workerText], { type: 'text/javascript' }));
+    /** @type {{bytes: Uint8Array, name: string}|null} */
+    this.table = null;
+    /** @type {Map<number, Waiting>} */
+    this.waiting = new Map();
+    this.lastId = 0;
+    this.worker = this.#started();
+  }
+
+  #started() {
+    const worker = new Worker(this.address);
+    worker.onmessage = ({ data }) => {
+      if (worker === this.worker) this.#settle(data);
+    };
+    worker.onerror = (event) => {
+      event.preventDefault();
+      if (worker === this.worker) this.#died(event.message ?? '');
+    };
+    this.worker = worker;
+    // A worker that cannot start says so at the first real request.
+    this.#ask('start', { module: this.module }).catch(() => {});
+    return worker;
+  }
+
+  /** @param {{id: number, ok?: any, error?: {message: string, dead: boolean}}} reply */
+  #settle({ id, ok, error }) {
+    const waiting = this.waiting.get(id);
+    this.waiting.delete(id);
+    if (!error) waiting?.resolve(ok);
+    else {
+      waiting?.reject(new EngineError(error.message, error.dead));
+      if (error.dead) this.#died(error.message);
+    }
+  }
+
+  /** @param {string} message */
+  #died(message) {
+    this.replace((waiting) => waiting.reject(new EngineError(message, true)));
+  }
+
+  /**
+   * Ends the worker and starts another that holds the same table.
+   * @param {(waiting: Waiting) => void} [tell]
+   */
+  replace(tell = (waiting) => waiting.reject(new Overtaken())) {
+    this.worker.terminate();
+    const orphans = Array.from(this.waiting.values());
+    this.waiting.clear();
+    this.#started();
+    if (this.table) this.#ask('open', this.table).catch(() => {});
+    orphans.forEach(tell);
+  }
+
+  /**
+   * @param {string} op
+   * @param {Record<string, unknown>} args
+   * @returns {Promise<any>}
+   */
+  #ask(op, args) {
+    const id = (this.lastId += 1);
+    return new Promise((resolve, reject) => {
+      this.waiting.set(id, { resolve, reject });
+      this.worker.postMessage({ id, op, args });
+    });
+  }
+
+  /**
+   * Gives the worker a table.
+   * @param {Uint8Array} bytes
+   * @param {string} name
+   */
+  open(bytes, name) {
+    if (this.waiting.size > 1) this.replace();
+    this.table = { bytes, name };
+    return this.#ask('open', this.table);
+  }
+
+  /** @param {string} plan @returns {Promise<string>} */
+  preview(plan) {
+    return this.#ask('preview', { plan });
+  }
+
+  /** @param {string} plan @returns {Promise<string>} */
+  describe(plan) {
+    return this.#ask('describe', { plan });
+  }
+
+  /** @param {string} plan @returns {Promise<{findings: string, traces: string}>} */
+  run(plan) {
+    return this.#ask('run', { plan });
+  }
+}

@@ -1,0 +1,157 @@
+/**
+ * The plan as three lines of words, some of which are choices. Pure functions:
+ * the view only turns parts into text and buttons.
+ */
+
+import { alternativesOf } from './alternatives.js';
+import { calledName } from './context.js';
+import { percentLevel, significant } from './numbers.js';
+import { text } from './text.js';
+
+/** @typedef {import('./alternatives.js').ChoiceId} ChoiceId */
+/** @typedef {import('./context.js').Context} Context */
+/** @typedef {import('./types.js').Choices} Choices */
+/** @typedef {{text: string, choice?: ChoiceId}} Part */
+/** @typedef {{id: 'followed'|'vary'|'compared', label: string, parts: Part[], folded: number}} Line */
+
+const words = text.plan;
+
+/**
+ * The three lines. Choices at their default may be folded away; `folded`
+ * counts them.
+ * @param {Choices} choices
+ * @param {Context} context
+ * @param {boolean} open Write the finer choices out although they have their default.
+ * @returns {Line[]}
+ */
+export function planLines(choices, context, open) {
+  return [followed(choices, context, open), vary(choices, context, open), compared(choices, context, open)];
+}
+
+/**
+ * The plan in one string, for reading aloud.
+ * @param {Line} line
+ */
+export function lineText(line) {
+  return `${line.label}: ${line.parts.map((part) => part.text).join('')}.`;
+}
+
+/**
+ * The chosen alternative as a part.
+ * @param {ChoiceId} choice
+ * @param {Choices} choices
+ * @param {Context} context
+ * @returns {Part}
+ */
+function chosen(choice, choices, context) {
+  const row = alternativesOf(choice, choices.plan, context).find((one) => one.chosen);
+  return { text: row?.name ?? '', choice };
+}
+
+/**
+ * Finer choices: written out where they differ from the default or are asked for.
+ * @param {{lead: string, part: Part, isDefault: boolean}[]} finer
+ * @param {boolean} open
+ * @returns {{parts: Part[], folded: number}}
+ */
+function withFiner(finer, open) {
+  const shown = finer.filter((row) => open || !row.isDefault);
+  return {
+    parts: shown.flatMap((row) => [{ text: row.lead }, row.part]),
+    folded: finer.filter((row) => row.isDefault).length,
+  };
+}
+
+/** @param {Choices} choices @param {Context} context @param {boolean} open @returns {Line} */
+function followed(choices, context, open) {
+  const { plan } = choices;
+  const { response, time, group } = context.columns;
+  const { dimension } = plan.curves;
+  const roomPart = typeof dimension === 'number'
+    ? { text: words.choices.dimension.written(dimension), choice: /** @type {const} */ ('dimension') }
+    : chosen('dimension', choices, context);
+  const curved = plan.curves.shape === 'smooth';
+  const finer = withFiner(curved ? [
+    { lead: words.bends, part: roomPart, isDefault: dimension === 'auto' },
+    { lead: words.smoothness, part: chosen('smoothness', choices, context), isDefault: plan.curves.smoothness === 'per-group' },
+  ] : [], open);
+  /** @type {Part[]} */
+  const parts = [
+    { text: calledName(choices, response, words.choices.response.none), choice: 'response' },
+    { text: words.by },
+    { text: calledName(choices, time, words.choices.time.none), choice: 'time' },
+    { text: words.aCourse },
+    chosen('shape', choices, context),
+    { text: group === null ? words.oneCourse : words.coursePer },
+    { text: calledName(choices, group, words.choices.group.none), choice: 'group' },
+    { text: words.onScale },
+    chosen('scale', choices, context),
+    { text: words.scaleEnd },
+    ...finer.parts,
+  ];
+  return { id: 'followed', label: words.lines.followed, parts, folded: finer.folded };
+}
+
+/** @param {Choices} choices @param {Context} context @param {boolean} open @returns {Line} */
+function vary(choices, context, open) {
+  const { plan } = choices;
+  const finer = withFiner(plan.subjects === 'none' ? [] : [
+    { lead: words.vary, part: chosen('subjects_spread', choices, context), isDefault: plan.subjects_spread === 'common' },
+  ], open);
+  /** @type {Part[]} */
+  const parts = [
+    { text: words.each },
+    { text: choices.noun.one, choice: 'noun' },
+    { text: words.has },
+    chosen('subjects', choices, context),
+    { text: words.otherwise },
+    chosen('serial', choices, context),
+    { text: words.spread },
+    chosen('spread', choices, context),
+    ...finer.parts,
+  ];
+  return { id: 'vary', label: words.lines.vary, parts, folded: finer.folded };
+}
+
+/**
+ * The margin: its words, and what they mean as a ratio.
+ * @param {Choices} choices
+ * @returns {Part[]}
+ */
+function marginParts(choices) {
+  const { margin, margin_unit: unit, pairs, control } = choices.plan.comparisons;
+  if (margin === 0) {
+    return [{ text: words.gapOf }, { text: words.choices.margin.none, choice: 'margin' }, { text: words.anyMatters }];
+  }
+  if (unit === 'response') {
+    return [{ text: words.gapUnder }, { text: significant(margin, 4).replace(/\.?0+$/, (end) => (end.startsWith('.') ? '' : end)), choice: 'margin' }, { text: words.noMatter }];
+  }
+  const of = pairs === 'against-control' && control ? control : words.choices.margin.ofOther;
+  const low = 1 - margin / 100;
+  return [
+    { text: words.gapUnder },
+    { text: words.choices.margin.written(String(margin), of), choice: 'margin' },
+    { text: words.ratio(low.toFixed(2), (1 / low).toFixed(2)) },
+    { text: words.noMatter },
+  ];
+}
+
+/** @param {Choices} choices @param {Context} context @param {boolean} open @returns {Line} */
+function compared(choices, context, open) {
+  const { comparisons } = choices.plan;
+  const alone = context.columns.group === null || context.groups.length === 1;
+  const finer = withFiner([
+    { lead: words.small, part: chosen('small_sample', choices, context), isDefault: comparisons.small_sample !== 'none' },
+  ], open);
+  /** @type {Part[]} */
+  const what = alone ? [{ text: words.nothingCompared }] : [chosen('pairs', choices, context), ...marginParts(choices)];
+  /** @type {Part[]} */
+  const parts = [
+    ...what,
+    { text: percentLevel(comparisons.level), choice: 'level' },
+    { text: words.bandsHold },
+    chosen('band', choices, context),
+    ...finer.parts,
+  ];
+  return { id: 'compared', label: words.lines.compared, parts, folded: finer.folded };
+}

@@ -1,0 +1,125 @@
+/**
+ * The plan: its defaults, filling in what a shorter plan leaves out, and what
+ * is sent to the worker. Pure functions.
+ */
+
+/** @typedef {import('./types.js').Plan} Plan */
+/** @typedef {import('./types.js').Choices} Choices */
+
+/** @returns {Plan} */
+export function defaultPlan() {
+  return {
+    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [] },
+    exclusions: [],
+    response: { distribution: 'normal', transform: 'identity', detection: 'as-written' },
+    curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group' },
+    subjects: 'intercept',
+    subjects_spread: 'common',
+    errors: { serial: 'none', spread: 'common', nugget: false },
+    comparisons: {
+      pairs: 'all', control: null, level: 0.95, margin: 0, margin_unit: 'response',
+      band: 'simultaneous', small_sample: 'auto',
+    },
+    grid: { start: null, end: null, count: 101 },
+    seed: 20260,
+  };
+}
+
+/**
+ * A plan with every default filled in.
+ * @param {Record<string, any>} partial
+ * @returns {Plan}
+ */
+export function completePlan(partial) {
+  /** @type {any} */
+  const plan = defaultPlan();
+  for (const [key, value] of Object.entries(partial ?? {})) {
+    const nested = value !== null && typeof value === 'object' && !Array.isArray(value);
+    plan[key] = nested ? { ...plan[key], ...value } : value;
+  }
+  return plan;
+}
+
+/**
+ * A copy of the plan with some keys of one section replaced.
+ * @template {'columns'|'response'|'curves'|'errors'|'comparisons'|'grid'} Section
+ * @param {Plan} plan
+ * @param {Section} section
+ * @param {Partial<Plan[Section]>} values
+ * @returns {Plan}
+ */
+export function withSection(plan, section, values) {
+  return { ...plan, [section]: { ...plan[section], ...values } };
+}
+
+/**
+ * The plan as the worker takes it: rows left out come with their reasons.
+ * @param {Choices} choices
+ * @returns {Plan}
+ */
+export function planToSend(choices) {
+  return {
+    ...choices.plan,
+    exclusions: choices.leftOut.map(({ row, reason }) => ({ row, reason })),
+  };
+}
+
+/**
+ * A change of scale. A margin has a meaning on its own scale only, so it is set
+ * aside where it would lose it.
+ * @param {Plan} plan
+ * @param {Plan['response']['transform']} transform
+ * @returns {Plan}
+ */
+export function withTransform(plan, transform) {
+  const changed = withSection(plan, 'response', { transform });
+  const unit = plan.comparisons.margin_unit;
+  const lost = transform === 'log' ? unit === 'response' : unit === 'percent';
+  if (!lost) return changed;
+  return withSection(changed, 'comparisons', {
+    margin: 0,
+    margin_unit: transform === 'log' ? 'percent' : 'response',
+  });
+}
+
+/**
+ * A role given to a column by hand. The column loses its other role, and a
+ * role without a column is said to be absent.
+ * @param {Plan} plan
+ * @param {Record<import('./types.js').Role, string|null>} now Columns as used.
+ * @param {string} column
+ * @param {import('./types.js').Role|'unused'} role
+ * @returns {Plan}
+ */
+export function withRole(plan, now, column, role) {
+  /** @type {Partial<Plan['columns']>} */
+  const columns = {};
+  for (const [other, name] of Object.entries(now)) {
+    const key = /** @type {import('./types.js').Role} */ (other);
+    columns[key] = name === null ? plan.columns[key] : name;
+    if (name === column && key !== role) columns[key] = key === 'group' || key === 'cluster' ? false : null;
+  }
+  if (role !== 'unused') columns[role] = column;
+  return withSection(plan, 'columns', columns);
+}
+
+const LIKE_A_CONTROL =
+  /(^|[^a-z])(control|ctrl|placebo|vehicle|saline|sham|untreated|standard|usual|baseline|wild.?type|wt)([^a-z]|$)/i;
+
+/**
+ * The first group that is named like a control, if any.
+ * @param {readonly string[]} groups
+ * @returns {string|null}
+ */
+export function controlLike(groups) {
+  return groups.find((name) => LIKE_A_CONTROL.test(name)) ?? null;
+}
+
+/**
+ * How many pairs are compared.
+ * @param {Plan} plan
+ * @param {number} groups
+ */
+export function pairCount(plan, groups) {
+  return plan.comparisons.pairs === 'all' ? (groups * (groups - 1)) / 2 : Math.max(0, groups - 1);
+}

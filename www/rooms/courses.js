@@ -1,0 +1,50 @@
+/**
+ * The room Time courses: plan, strips, reading and findings.
+ */
+
+import { el } from '../dom.js';
+import { text } from '../text.js';
+import { mountChange } from '../views/change.js';
+import { mountFindings } from '../views/findings.js';
+import { mountPlan } from '../views/plan.js';
+import { mountQuestion } from '../views/question.js';
+import { mountReading } from '../views/reading.js';
+import { mountStrips } from '../views/strips.js';
+
+/** @typedef {import('../types.js').Room} Room */
+
+/** On a phone the plan is folded to a line and stands after what it leads to. */
+const NARROW = '(max-width: 719px)';
+
+/** @type {Room} */
+export const coursesRoom = {
+  id: 'courses',
+  title: text.rooms.courses,
+  mount(root, acts) {
+    const plan = el('section', { class: 'plan', 'aria-label': text.plan.title });
+    const change = el('p', { class: 'change', 'data-region': 'change' });
+    const question = el('section', { class: 'question', hidden: true });
+    const strips = el('section', { class: 'strips' });
+    const reading = el('section', { class: 'reading' });
+    const findings = el('section', { class: 'findings' });
+    const views = [
+      mountPlan(plan, acts), mountChange(change, acts), mountQuestion(question, acts), mountStrips(strips, acts),
+      mountReading(reading, acts), mountFindings(findings),
+    ];
+    const aside = el('div', { class: 'aside' });
+    const body = el('div', { class: 'courses-body' });
+    const narrow = matchMedia(NARROW);
+    const arrange = () => {
+      if (narrow.matches) {
+        root.replaceChildren(question, change, findings, strips, reading, plan);
+      } else {
+        aside.replaceChildren(reading, findings);
+        body.replaceChildren(strips, aside);
+        root.replaceChildren(plan, change, question, body);
+      }
+    };
+    narrow.addEventListener('change', arrange);
+    arrange();
+    return { update: (state) => views.forEach((view) => view.update(state)) };
+  },
+};

@@ -1,0 +1,221 @@
+/**
+ * The page's state and every way it can change. Pure functions: each takes a
+ * state and gives the next one.
+ */
+
+import { changedSentences, onsetChange } from './changes.js';
+import { completePlan, defaultPlan } from './plan.js';
+import { firstStop, nearest, stops } from './reading.js';
+import { text } from './text.js';
+
+/** @typedef {import('./types.js').State} State */
+/** @typedef {import('./types.js').Choices} Choices */
+/** @typedef {import('./types.js').Findings} Findings */
+
+/** @returns {Choices} */
+export function freshChoices() {
+  return {
+    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], answered: [],
+  };
+}
+
+/** @returns {State} */
+export function initialState() {
+  return {
+    room: 'courses', status: 'empty', source: null, preview: null, description: null,
+    choices: freshChoices(), history: { past: [], future: [] },
+    findings: null, drawing: null, change: null, message: null, notice: null,
+    cursor: null, seen: false, slow: false, took: null, openPairs: [], demos: [], announcement: '',
+  };
+}
+
+/** @param {State} state @param {string} room @returns {State} */
+export function entered(state, room) {
+  return state.room === room ? state : { ...state, room };
+}
+
+/**
+ * Another table is being read: nothing of the one before stays.
+ * @param {State} state
+ * @param {import('./types.js').Source} source
+ * @param {import('./types.js').Demo|null} demo
+ * @returns {State}
+ */
+export function opening(state, source, demo) {
+  const choices = freshChoices();
+  return {
+    ...initialState(), room: state.room, demos: state.demos, source, status: 'reading',
+    choices: demo ? demoChoices(choices, demo) : choices,
+  };
+}
+
+/** @param {Choices} choices @param {import('./types.js').Demo} demo @returns {Choices} */
+function demoChoices(choices, demo) {
+  const plan = completePlan(/** @type {Record<string, any>} */ (demo.plan));
+  const leftOut = plan.exclusions.map(({ row, reason }) => ({ row, reason, seen: false }));
+  return {
+    ...choices, plan: { ...plan, exclusions: [] }, leftOut,
+    noun: demo.noun ?? choices.noun, called: demo.called ?? choices.called,
+  };
+}
+
+/**
+ * Questions that still wait for an answer.
+ * @param {State} state
+ */
+export function openQuestions(state) {
+  return (state.preview?.questions ?? []).filter((question) => !state.choices.answered.includes(question.id));
+}
+
+/**
+ * The reader's understanding of the table has arrived.
+ * @param {State} state
+ * @param {import('./types.js').Preview} preview
+ * @param {import('./types.js').Description|null} description
+ * @returns {State}
+ */
+export function understood(state, preview, description) {
+  const next = { ...state, preview, description };
+  return openQuestions(next).length > 0 ? withoutFindings(next, 'question', null) : { ...next, status: 'fitting' };
+}
+
+/** @param {State} state @param {'question'|'problem'|'failed'} status @param {string|null} message @returns {State} */
+function withoutFindings(state, status, message) {
+  return { ...state, status, message, findings: status === 'failed' ? state.findings : null, change: null, slow: false, announcement: message ?? text.states[status] };
+}
+
+/** @param {State} state @param {string} message @returns {State} */
+export function refused(state, message) {
+  return withoutFindings(state, 'problem', message);
+}
+
+/** @param {State} state @param {string} message @returns {State} */
+export function failed(state, message) {
+  return withoutFindings(state, 'failed', message);
+}
+
+/**
+ * A choice. The one before goes into the history; what had been undone is gone.
+ * Choices made while typing one field join into one step.
+ * @param {State} state
+ * @param {string} label
+ * @param {(choices: Choices) => Choices} change
+ * @param {boolean} typing
+ * @returns {State}
+ */
+export function chosen(state, label, change, typing) {
+  const choices = change(state.choices);
+  if (choices === state.choices) return state;
+  const { past } = state.history;
+  const last = past[past.length - 1];
+  const joined = typing && last !== undefined && last.label === `${label}\u200b`;
+  const step = { label: typing ? `${label}\u200b` : label, choices: state.choices };
+  return {
+    ...state, choices, notice: null,
+    history: { past: joined ? past : [...past, step], future: [] },
+    change: { label, before: null, after: null, pair: null },
+  };
+}
+
+/** @param {State} state @returns {State} */
+export function undone(state) {
+  const past = state.history.past.slice();
+  const step = past.pop();
+  if (!step) return state;
+  const future = [{ label: step.label, choices: state.choices }, ...state.history.future];
+  return {
+    ...state, choices: step.choices, notice: null, history: { past, future },
+    change: { label: text.change.undone(step.label.replace('\u200b', '')), before: null, after: null, pair: null },
+  };
+}
+
+/** @param {State} state @returns {State} */
+export function redone(state) {
+  const [step, ...future] = state.history.future;
+  if (!step) return state;
+  const past = [...state.history.past, { label: step.label, choices: state.choices }];
+  return {
+    ...state, choices: step.choices, notice: null, history: { past, future },
+    change: { label: text.change.redone(step.label.replace('\u200b', '')), before: null, after: null, pair: null },
+  };
+}
+
+/** @param {State} state @returns {State} */
+export function fitting(state) {
+  return { ...state, status: 'fitting', slow: false };
+}
+
+/**
+ * Findings have arrived. A failed fit keeps the last strips to grey them, and
+ * shows no findings.
+ * @param {State} state
+ * @param {Findings} findings
+ * @param {{findings: string, traces: string}} drawing
+ * @param {number} took
+ * @returns {State}
+ */
+export function fitted(state, findings, drawing, took) {
+  if (findings.fit.status === 'failed') {
+    return { ...failed(state, findings.fit.remarks.join(' ')), took };
+  }
+  const onset = state.change ? onsetChange(state.findings, findings) : null;
+  const status = findings.fit.status === 'boundary' ? 'boundary' : 'ready';
+  return {
+    ...state, status, findings, drawing, took, message: null, slow: false, seen: true,
+    change: state.change ? { ...state.change, ...(onset ?? {}) } : null,
+    cursor: keptCursor(state.cursor, findings),
+    openPairs: state.openPairs.filter((pair) => pair < findings.differences.length),
+    announcement: announcementOf(state.findings, findings),
+  };
+}
+
+/** @param {number|null} cursor @param {Findings} findings */
+function keptCursor(cursor, findings) {
+  return cursor === null ? firstStop(findings) : nearest(stops(findings), cursor);
+}
+
+/** @param {Findings|null} before @param {Findings} after */
+function announcementOf(before, after) {
+  const changed = changedSentences(before, after);
+  const headlines = changed.slice(0, 2).map((row) => row.headline).join(' ');
+  return text.change.announce(changed.length, after.sentences.length, headlines);
+}
+
+/** @param {State} state @param {number} time @returns {State} */
+export function pointed(state, time) {
+  if (!state.findings) return state;
+  const cursor = nearest(stops(state.findings), time);
+  return cursor === state.cursor ? state : { ...state, cursor };
+}
+
+/**
+ * Opens or closes a pair's gap strip; at most three are open, the oldest makes room.
+ * @param {State} state
+ * @param {number} pair
+ * @returns {State}
+ */
+export function pairToggled(state, pair) {
+  const without = state.openPairs.filter((one) => one !== pair);
+  const openPairs = without.length < state.openPairs.length ? without : [...without, pair].slice(-3);
+  return { ...state, openPairs };
+}
+
+/**
+ * Leaves a row out, with its reason, and whether findings had been seen.
+ * @param {number} row
+ * @param {string} reason
+ * @param {boolean} seen
+ * @returns {(choices: Choices) => Choices}
+ */
+export function leavingOut(row, reason, seen) {
+  return (choices) => {
+    const others = choices.leftOut.filter((one) => one.row !== row);
+    const leftOut = [...others, { row, reason, seen }].sort((a, b) => a.row - b.row);
+    return { ...choices, leftOut };
+  };
+}
+
+/** @param {number} row @returns {(choices: Choices) => Choices} */
+export function takingBack(row) {
+  return (choices) => ({ ...choices, leftOut: choices.leftOut.filter((one) => one.row !== row) });
+}

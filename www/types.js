@@ -1,0 +1,170 @@
+/**
+ * Shapes that travel through the page. Types only: nothing here runs.
+ *
+ * `Plan` and `Findings` are the JSON of the study crate's types of the same
+ * names; arrays over time in one object have one length, and a value that does
+ * not exist is `null`.
+ */
+
+/** @typedef {'empty'|'reading'|'fitting'|'ready'|'question'|'problem'|'boundary'|'failed'} Status */
+/** @typedef {'subject'|'time'|'group'|'response'|'cluster'} Role */
+/** @typedef {null|false|string} ColumnChoice `null` infers, `false` means there is none. */
+
+/**
+ * @typedef {Object} Plan
+ * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[]}} columns
+ * @property {{row: number, reason: string}[]} exclusions
+ * @property {{distribution: string, transform: 'identity'|'log', detection: string}} response
+ * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared'}} curves
+ * @property {'none'|'intercept'|'slope'|'curve'} subjects
+ * @property {'common'|'by-group'} subjects_spread
+ * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
+ * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto'}} comparisons
+ * @property {{start: number|null, end: number|null, count: number}} grid
+ * @property {number} seed
+ */
+
+/** @typedef {(number|null)[]} Series */
+/** @typedef {{time: number[], mean: Series, se: Series, lower: Series, upper: Series, response_mean: Series, response_lower: Series, response_upper: Series}} CurvePoints */
+/** @typedef {CurvePoints & {group: string, critical: number|Series, support: [number, number], at_visits: CurvePoints}} Curve */
+/** @typedef {{time: number[], estimate: Series, se: Series, lower: Series, upper: Series, response_estimate: Series, response_lower: Series, response_upper: Series}} DifferencePoints */
+/** @typedef {{start: number, end: number, direction?: 'above'|'below', open_start: boolean, open_end: boolean}} Stretch */
+/** @typedef {DifferencePoints & {from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
+/** @typedef {{row: number, column: string, value: string, message: string}} Problem */
+/** @typedef {{kind: string, pair: number|null, headline: string, text: string, depends: string}} Sentence */
+/** @typedef {{name: string, subjects: number, rows: number, last_times: number[], at_visit: number[]}} GroupInfo */
+
+/**
+ * @typedef {Object} Findings
+ * @property {string} version
+ * @property {number} rows
+ * @property {number} subjects
+ * @property {{subject: string|null, time: string|null, group: string|null, response: string|null, cluster: string|null, reasons: {role: string, column: string|null, reason: string}[]}} columns
+ * @property {Problem[]} problems
+ * @property {{status: 'converged'|'boundary'|'failed', remarks: string[]}} fit
+ * @property {Curve[]} curves
+ * @property {Difference[]} differences
+ * @property {{about: string, message: string}[]} notes
+ * @property {Plan} plan
+ * @property {GroupInfo[]} groups
+ * @property {number[]} visits
+ * @property {{time_word: string, response: string, ratio: boolean}} scale
+ * @property {Sentence[]} sentences
+ */
+
+/**
+ * One column of the table as read.
+ * @typedef {Object} PreviewColumn
+ * @property {string} name
+ * @property {Role|null} role The role it was taken for.
+ * @property {string} reason Why, or why not, in words.
+ */
+
+/**
+ * A role with a close rival: one question, answered by a partial plan.
+ * @typedef {Object} Question
+ * @property {string} id
+ * @property {string} text
+ * @property {{label: string, detail: string, columns: Partial<Plan['columns']>}[]} answers
+ */
+
+/**
+ * What the reader understood of a table.
+ * @typedef {Object} Preview
+ * @property {PreviewColumn[]} columns
+ * @property {{line: number, cells: string[]}[]} rows
+ * @property {number} totalRows
+ * @property {string} format How the text was read, in words.
+ * @property {Problem[]} problems
+ * @property {Question[]} questions
+ * @property {string[]} notes
+ */
+
+/** @typedef {{group: string, time: number, n: number, mean: number|null, sd: number|null, median: number|null}} DescriptionRow */
+
+/**
+ * @typedef {Object} Description
+ * @property {DescriptionRow[]} rows
+ * @property {number[]} nonPositive Lines whose response is zero or negative.
+ */
+
+/** @typedef {{file: string, title: string, blurb: string, plan: Object, noun?: {one: string, many: string}, called?: Record<string, string>}} Demo */
+/** @typedef {{kind: 'demo'|'own', name: string}} Source */
+/** @typedef {{row: number, reason: string, seen: boolean}} LeftOut */
+
+/**
+ * Everything that undo covers.
+ * @typedef {Object} Choices
+ * @property {Plan} plan
+ * @property {Record<string, string>} called Short names of columns.
+ * @property {{one: string, many: string}} noun
+ * @property {LeftOut[]} leftOut
+ * @property {string[]} answered Questions answered.
+ */
+
+/** @typedef {{label: string, choices: Choices}} Step */
+/** @typedef {{label: string, before: string|null, after: string|null, pair: string|null}} Change */
+
+/**
+ * @typedef {Object} State
+ * @property {string} room
+ * @property {Status} status
+ * @property {Source|null} source
+ * @property {Preview|null} preview
+ * @property {Description|null} description
+ * @property {Choices} choices
+ * @property {{past: Step[], future: Step[]}} history
+ * @property {Findings|null} findings
+ * @property {{findings: string, traces: string}|null} drawing What the drawing code needs, as it came from the worker.
+ * @property {Change|null} change
+ * @property {string|null} message What went wrong.
+ * @property {string|null} notice What happened to the machinery, if anything.
+ * @property {number|null} cursor
+ * @property {boolean} seen Findings of this table have been on screen.
+ * @property {boolean} slow The work under way takes long enough to be stopped.
+ * @property {number|null} took Milliseconds of the last fit.
+ * @property {number[]} openPairs Pairs whose gap strip is open.
+ * @property {Demo[]} demos
+ * @property {string} announcement
+ */
+
+/**
+ * What a view may ask for. Made by the controller.
+ * @typedef {Object} Acts
+ * @property {(label: string, change: (choices: Choices) => Choices, typing?: boolean) => void} choose
+ * @property {() => void} undo
+ * @property {() => void} redo
+ * @property {(time: number) => void} moveCursor
+ * @property {(text: string) => void} openText
+ * @property {(file: File) => void} openFile
+ * @property {(demo: Demo) => void} openDemo
+ * @property {(room: string) => void} go
+ * @property {() => void} stop
+ * @property {() => void} retry
+ * @property {(pair: number) => void} togglePair
+ * @property {(row: number, reason: string) => void} leaveOut
+ * @property {(row: number) => void} takeBack
+ */
+
+/**
+ * A part of the page: mounted once, then told of every state.
+ * @typedef {{update: (state: State) => void}} View
+ */
+
+/**
+ * A room of the page.
+ * @typedef {{id: string, title: string, mount: (root: HTMLElement, acts: Acts) => View}} Room
+ */
+
+/** @typedef {{left: number, right: number, top: number, bottom: number}} Rect */
+
+/**
+ * Where the drawing put things, in CSS pixels.
+ * @typedef {Object} Layout
+ * @property {number} width
+ * @property {number} height
+ * @property {{left: number, right: number, start: number, end: number}} x
+ * @property {(Rect & {kind: string, pair: number|null})[]} strips
+ */
+
+export {};

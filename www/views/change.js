@@ -1,0 +1,35 @@
+/**
+ * The line after each change: what was chosen, which day was, which is now.
+ */
+
+import { el, setText, show, whenChanged } from '../dom.js';
+import { text } from '../text.js';
+
+/** @param {import('../types.js').State} state */
+function sentence({ change, findings, status }) {
+  if (!change) return '';
+  const settled = status === 'ready' || status === 'boundary';
+  if (!settled || change.pair === null) return change.label;
+  return text.change.line(change.label, change.pair, change.before, change.after, findings?.scale.time_word ?? '');
+}
+
+/**
+ * @param {HTMLElement} root
+ * @param {import('../types.js').Acts} acts
+ * @returns {import('../types.js').View}
+ */
+export function mountChange(root, acts) {
+  const line = el('span');
+  const undo = el('button', { type: 'button', class: 'quiet', onclick: acts.undo }, text.change.undo);
+  const dot = el('span', { 'aria-hidden': 'true' }, ' \u00b7 ');
+  root.append(line, dot, undo);
+  return {
+    update: whenChanged((state) => [state.change, state.status, state.history], (state) => {
+      const words = sentence(state);
+      setText(line, words);
+      const can = words !== '' && state.history.past.length > 0;
+      show(dot, can);
+      show(undo, can);
+    }),
+  };
+}

@@ -1,0 +1,130 @@
+/**
+ * The reading: one fixed table at the cursor, groups in the order in which the
+ * curves stand there, with the buttons and the field that move the cursor.
+ */
+
+import { span } from '../changes.js';
+import { el, reconcile, setText, show, svg, whenChanged } from '../dom.js';
+import { parseNumber, plainTime, withInterval } from '../numbers.js';
+import { readingAt, step } from '../reading.js';
+import { placeAmongVisits, writtenGap } from '../spoken.js';
+import { text } from '../text.js';
+
+/** @typedef {import('../types.js').State} State */
+/** @typedef {import('../types.js').Acts} Acts */
+
+const words = text.reading;
+/** Above so many pairs each has its own strip only when opened. */
+const MANY_PAIRS = 3;
+
+/** @param {HTMLElement} root @param {Acts} acts @returns {import('../types.js').View} */
+export function mountReading(root, acts) {
+  const stepper = mountStepper(acts);
+  const groups = el('tbody');
+  const gaps = el('tbody');
+  const place = el('span', { class: 'hint' });
+  const table = el('table', { class: 'reading-table' },
+    head([words.groups, words.value, words.interval, words.followed]), groups,
+    head([words.pairs, words.value, words.interval, words.state]), gaps);
+  root.append(stepper.node, place, table);
+  const draw = whenChanged((state) => [state.findings, state.cursor, state.status, state.openPairs], (state) => {
+    const { findings, cursor } = state;
+    const readable = findings !== null && cursor !== null && state.status !== 'failed' && state.status !== 'question';
+    show(root, readable);
+    if (!readable) return;
+    const reading = readingAt(findings, cursor);
+    setText(place, placeAmongVisits(reading, findings));
+    stepper.update(findings, cursor);
+    reconcile(groups, reading.groups, (row) => row.group, (row) => mountRow(row.index, row.group), (node, row) => {
+      const numbers = withInterval(row.value, row.lower, row.upper);
+      fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed));
+    });
+    const many = reading.gaps.length > MANY_PAIRS;
+    reconcile(gaps, reading.gaps, (row) => `${row.pair}${many}`,
+      (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
+      (node, row) => {
+        const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
+        fillRow(node, name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state]);
+        node.dataset.lane = row.state;
+        const button = node.querySelector('button');
+        button?.setAttribute('aria-pressed', String(state.openPairs.includes(row.pair)));
+        button?.setAttribute('aria-label', words.openLabel(name));
+      });
+  });
+  return { update: draw };
+}
+
+/** @param {string[]} titles */
+function head(titles) {
+  return el('thead', {}, el('tr', {}, ...titles.map((title) => el('th', { scope: 'col' }, title))));
+}
+
+/** @param {import('../types.js').Findings} findings @param {string} group */
+function groupIndex(findings, group) {
+  return Math.max(0, findings.groups.findIndex((row) => row.name === group));
+}
+
+/**
+ * A short piece of a group's line, as in the strips.
+ * @param {number} index
+ */
+export function lineSample(index) {
+  const number = (index % 6) + 1;
+  return svg('svg', { class: `sample group-${number}`, viewBox: '0 0 26 8', width: '26', height: '8', 'aria-hidden': 'true' },
+    svg('line', { x1: '0', x2: '26', y1: '4', y2: '4' }));
+}
+
+/** @param {number} index @param {string} name @param {Node|null} [extra] */
+function mountRow(index, name, extra = null) {
+  const label = el('span', { class: 'row-name', title: name });
+  return el('tr', { class: `of-group-${(index % 6) + 1}` },
+    el('th', { scope: 'row' }, lineSample(index), label, extra), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
+}
+
+/** @param {HTMLTableRowElement} row @param {string} name @param {string} value @param {{lower: string, upper: string}|null} numbers @param {string} last */
+function fillRow(row, name, value, numbers, last) {
+  const label = /** @type {HTMLElement} */ (row.querySelector('.row-name'));
+  setText(label, name);
+  if (label.title !== name) label.title = name;
+  const [, number, interval, end] = Array.from(row.cells);
+  if (number) setText(number, value);
+  if (interval) setText(interval, numbers ? words.range(numbers.lower, numbers.upper) : words.none);
+  if (end) setText(end, last);
+}
+
+/** @param {number} pair @param {Acts} acts */
+function stripButton(pair, acts) {
+  return el('button', { type: 'button', class: 'quiet open-strip', onclick: () => acts.togglePair(pair) }, words.openStrip);
+}
+
+/** @param {Acts} acts */
+function mountStepper(acts) {
+  const label = el('span');
+  const field = el('input', { type: 'text', inputmode: 'decimal', class: 'time-field', autocomplete: 'off', 'data-field': 'cursor' });
+  const unit = el('span', { class: 'hint' });
+  /** @type {{visits: number[], cursor: number}} */
+  let now = { visits: [], cursor: 0 };
+  /** @param {number} count */
+  const button = (count) => el('button', {
+    type: 'button', class: 'round', 'aria-label': count < 0 ? text.strips.earlier : text.strips.later, 'data-step': count,
+    onclick: () => acts.moveCursor(step(now.visits, now.cursor, count)),
+  }, count < 0 ? '\u2190' : '\u2192');
+  field.addEventListener('change', () => {
+    const time = parseNumber(field.value);
+    if (time !== null) acts.moveCursor(time);
+  });
+  field.addEventListener('keydown', (event) => {
+    if (event.key === 'Enter') field.dispatchEvent(new Event('change'));
+  });
+  setText(label, text.strips.field);
+  const node = el('div', { class: 'stepper' }, el('label', { class: 'stepper-field' }, label, unit, field), button(-1), button(1));
+  return {
+    node,
+    /** @param {import('../types.js').Findings} findings @param {number} cursor */
+    update(findings, cursor) {
+      now = { visits: findings.visits, cursor };
+      setText(unit, findings.scale.time_word);
+      if (document.activeElement !== field) field.value = plainTime(cursor, span(findings));
+    },
+  };
+}

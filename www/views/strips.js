@@ -1,0 +1,149 @@
+/**
+ * The strips: drawn once per fit and size, with the cursor on a canvas of its
+ * own above them. The cursor is a slider; it moves by mouse, touch and keys.
+ */
+
+import { span } from '../changes.js';
+import { el, setText, show, whenChanged } from '../dom.js';
+import { drawStrips } from '../drawing.js';
+import { plainTime } from '../numbers.js';
+import { readingAt, step, stops } from '../reading.js';
+import { spoken } from '../spoken.js';
+import { text } from '../text.js';
+import { drawCursor } from './cursor.js';
+
+/** @typedef {import('../types.js').State} State */
+/** @typedef {import('../types.js').Layout} Layout */
+
+/**
+ * @param {HTMLElement} root
+ * @param {import('../types.js').Acts} acts
+ * @returns {import('../types.js').View}
+ */
+export function mountStrips(root, acts) {
+  const canvas = el('canvas', { class: 'strips-drawing', 'aria-hidden': 'true' });
+  const overlay = el('canvas', { class: 'strips-overlay', 'aria-hidden': 'true' });
+  const slider = el('div', {
+    class: 'strips-slider', role: 'slider', tabindex: '0', 'aria-label': text.strips.slider, 'aria-describedby': 'strips-keys',
+  });
+  const frame = el('div', { class: 'strips-frame' }, canvas, overlay, slider);
+  const caption = el('p', { class: 'caption' });
+  const grey = el('p', { class: 'strips-grey' }, text.strips.grey);
+  root.append(el('h2', { class: 'unseen' }, text.strips.label), caption, grey, frame,
+    el('p', { class: 'unseen', id: 'strips-keys' }, text.strips.keys));
+
+  /** @type {State|null} */
+  let last = null;
+  /** @type {Layout|null} */
+  let layout = null;
+
+  function redraw() {
+    const width = Math.floor(root.clientWidth);
+    if (!last?.drawing || width < 100) return;
+    layout = drawStrips(canvas, last.drawing, {
+      width, ratio: window.devicePixelRatio || 1, dark: matchMedia('(prefers-color-scheme: dark)').matches,
+      open_pairs: last.openPairs, noun: last.choices.noun.many,
+    });
+    frame.style.height = `${layout.height}px`;
+    moveCursor(last);
+  }
+
+  /** @param {State} state */
+  function moveCursor(state) {
+    const { findings, cursor } = state;
+    if (!layout || !findings || cursor === null) return;
+    const time = plainTime(cursor, span(findings));
+    drawCursor(overlay, layout, cursor, text.strips.at(time, findings.scale.time_word));
+    slider.setAttribute('aria-valuemin', String(layout.x.start));
+    slider.setAttribute('aria-valuemax', String(layout.x.end));
+    slider.setAttribute('aria-valuenow', String(cursor));
+    slider.setAttribute('aria-valuetext', spoken(readingAt(findings, cursor), findings));
+  }
+
+  follow(slider, () => layout, acts);
+  slider.addEventListener('keydown', (event) => {
+    const to = last ? keyTarget(event, last) : null;
+    if (to === null) return;
+    event.preventDefault();
+    acts.moveCursor(to);
+  });
+  new ResizeObserver(redraw).observe(root);
+  matchMedia('(prefers-color-scheme: dark)').addEventListener('change', redraw);
+  watchRatio(redraw);
+
+  const drawn = whenChanged((state) => [state.drawing, state.openPairs, state.choices.noun], redraw);
+  const moved = whenChanged((state) => [state.cursor, state.findings], moveCursor);
+  return {
+    update(state) {
+      last = state;
+      const stale = state.status === 'failed';
+      show(frame, state.drawing !== null && state.status !== 'question' && state.status !== 'problem');
+      show(caption, !frame.hidden);
+      show(grey, stale && state.drawing !== null);
+      frame.classList.toggle('stale', stale);
+      const log = state.findings?.scale.ratio ? ` ${text.strips.log(state.choices.noun.one)}` : '';
+      setText(caption, text.strips.caption + log);
+      drawn(state);
+      moved(state);
+    },
+  };
+}
+
+/**
+ * Where a key leads; `null` for keys that are not ours.
+ * @param {KeyboardEvent} event
+ * @param {State} state
+ * @returns {number|null}
+ */
+function keyTarget(event, { findings, cursor }) {
+  if (!findings || cursor === null || event.ctrlKey || event.metaKey || event.altKey) return null;
+  const all = stops(findings);
+  switch (event.key) {
+    case 'ArrowLeft':
+    case 'ArrowDown':
+      return event.shiftKey ? step(findings.visits, cursor, -1) : step(all, cursor, -1);
+    case 'ArrowRight':
+    case 'ArrowUp':
+      return event.shiftKey ? step(findings.visits, cursor, 1) : step(all, cursor, 1);
+    case 'PageDown':
+      return step(findings.visits, cursor, -1);
+    case 'PageUp':
+      return step(findings.visits, cursor, 1);
+    case 'Home':
+      return all[0] ?? null;
+    case 'End':
+      return all[all.length - 1] ?? null;
+    default:
+      return null;
+  }
+}
+
+/**
+ * Pointer moves the cursor: a mouse by hovering, a finger by moving sideways
+ * (up and down scrolls the page).
+ * @param {HTMLElement} slider
+ * @param {() => Layout|null} layoutNow
+ * @param {import('../types.js').Acts} acts
+ */
+function follow(slider, layoutNow, acts) {
+  /** @param {PointerEvent} event */
+  const point = (event) => {
+    const layout = layoutNow();
+    if (!layout) return;
+    const { left, right, start, end } = layout.x;
+    const at = event.clientX - slider.getBoundingClientRect().left;
+    if (right > left) acts.moveCursor(start + ((at - left) / (right - left)) * (end - start));
+  };
+  slider.addEventListener('pointermove', point);
+  slider.addEventListener('pointerdown', point);
+}
+
+/**
+ * A window moved to a screen of another density.
+ * @param {() => void} then
+ */
+function watchRatio(then) {
+  const listen = () => matchMedia(`(resolution: ${window.devicePixelRatio}dppx)`)
+    .addEventListener('change', () => { then(); listen(); }, { once: true });
+  listen();
+}
