@@ -4,6 +4,7 @@
  */
 
 import { EngineError, Overtaken } from './engine.js';
+import { columnsUsed } from './context.js';
 import { planToSend } from './plan.js';
 import { text } from './text.js';
 import * as change from './state.js';
@@ -85,9 +86,14 @@ export class Controller {
   #afterChoice(before, typing) {
     const now = this.state.choices;
     window.clearTimeout(this.typing);
-    if (now.plan === before.plan && now.leftOut === before.leftOut && now.answered === before.answered) return;
+    if (this.#planText(now) === this.#planText(before) && now.answered === before.answered) return;
     if (typing) this.typing = window.setTimeout(() => void this.refit(), TYPING_PAUSE);
     else void this.refit();
+  }
+
+  /** @param {import('./types.js').Choices} choices */
+  #planText(choices) {
+    return JSON.stringify(planToSend(choices, columnsUsed(this.state).response));
   }
 
   /** @param {import('./types.js').Demo} demo */
@@ -128,7 +134,7 @@ export class Controller {
     if (!this.engine.table) return;
     const wish = (this.wish += 1);
     if (this.busySince && performance.now() - this.busySince > SLOW_AFTER) this.engine.replace();
-    const plan = JSON.stringify(planToSend(this.state.choices));
+    const plan = this.#planText(this.state.choices);
     const started = (this.busySince = performance.now());
     const slow = window.setTimeout(() => {
       if (wish === this.wish) this.set({ ...this.state, slow: true });

@@ -21,6 +21,8 @@ export function defaultPlan() {
       band: 'simultaneous', small_sample: 'auto',
     },
     grid: { start: null, end: null, count: 101 },
+    reading: { day_zero: 'common', date_order: null, layout: null, merges: [] },
+    words: { subject: 'subject', subjects: 'subjects', time: null, response: null },
     seed: 20260,
   };
 }
@@ -42,7 +44,7 @@ export function completePlan(partial) {
 
 /**
  * A copy of the plan with some keys of one section replaced.
- * @template {'columns'|'response'|'curves'|'errors'|'comparisons'|'grid'} Section
+ * @template {'columns'|'response'|'curves'|'errors'|'comparisons'|'grid'|'reading'} Section
  * @param {Plan} plan
  * @param {Section} section
  * @param {Partial<Plan[Section]>} values
@@ -53,14 +55,21 @@ export function withSection(plan, section, values) {
 }
 
 /**
- * The plan as the worker takes it: rows left out come with their reasons.
+ * The plan as the worker takes it: rows left out come with their reasons, and
+ * the page's words for subjects and response go into the sentences.
  * @param {Choices} choices
+ * @param {string|null} response The response column in use.
  * @returns {Plan}
  */
-export function planToSend(choices) {
+export function planToSend(choices, response) {
+  const { plan, noun, called, leftOut } = choices;
   return {
-    ...choices.plan,
-    exclusions: choices.leftOut.map(({ row, reason }) => ({ row, reason })),
+    ...plan,
+    exclusions: leftOut.map(({ row, reason }) => ({ row, reason })),
+    words: {
+      ...plan.words, subject: noun.one, subjects: noun.many,
+      response: (response && called[response]) || plan.words.response,
+    },
   };
 }
 

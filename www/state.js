@@ -55,7 +55,7 @@ function demoChoices(choices, demo) {
   const leftOut = plan.exclusions.map(({ row, reason }) => ({ row, reason, seen: false }));
   return {
     ...choices, plan: { ...plan, exclusions: [] }, leftOut,
-    noun: demo.noun ?? choices.noun, called: demo.called ?? choices.called,
+    noun: { one: plan.words.subject, many: plan.words.subjects }, called: demo.called ?? choices.called,
   };
 }
 

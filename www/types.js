@@ -13,7 +13,7 @@
 /**
  * @typedef {Object} Plan
  * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[]}} columns
- * @property {{row: number, reason: string}[]} exclusions
+ * @property {{row: number, column?: string, reason: string}[]} exclusions
  * @property {{distribution: string, transform: 'identity'|'log', detection: string}} response
  * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared'}} curves
  * @property {'none'|'intercept'|'slope'|'curve'} subjects
@@ -21,6 +21,8 @@
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
  * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto'}} comparisons
  * @property {{start: number|null, end: number|null, count: number}} grid
+ * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[]}} reading
+ * @property {{subject: string, subjects: string, time: string|null, response: string|null}} words
  * @property {number} seed
  */
 
@@ -88,7 +90,7 @@
  * @property {number[]} nonPositive Lines whose response is zero or negative.
  */
 
-/** @typedef {{file: string, title: string, blurb: string, plan: Object, noun?: {one: string, many: string}, called?: Record<string, string>}} Demo */
+/** @typedef {{file: string, title: string, blurb: string, plan: Object, called?: Record<string, string>}} Demo */
 /** @typedef {{kind: 'demo'|'own', name: string}} Source */
 /** @typedef {{row: number, reason: string, seen: boolean}} LeftOut */
 
