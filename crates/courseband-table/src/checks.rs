@@ -1,12 +1,15 @@
 //! Problems that show in the sorted observations: duplicates, single observations, odd values.
 
+mod course;
+
 use crate::long::LongTable;
 use crate::observations::Observations;
 use crate::problems::Problems;
 use crate::reading::ProblemKind;
 use crate::request::Role;
 use crate::roles::Roles;
-use crate::text::quoted;
+use crate::text::{folded, quoted};
+use std::collections::HashMap;
 
 /// Looks at the sorted observations. `rows`: the row of the long form of each.
 pub(crate) fn check(
@@ -18,12 +21,19 @@ pub(crate) fn check(
     notes: &mut Vec<String>,
 ) {
     let mut lister = Lister { observations, table, roles, rows, problems };
-    for (start, end) in runs(&observations.subject) {
+    let runs = runs(&observations.subject);
+    for &(start, end) in &runs {
         lister.duplicates(start, end);
         if end - start == 1 {
             lister.add(ProblemKind::OneObservation, start, Role::Subject, || "This subject has one observation only. It is kept.".to_string());
         }
     }
+    for far in course::far_values(observations, &runs) {
+        lister.add(ProblemKind::FarFromCourse, far.at, Role::Response, || {
+            format!("Far from this subject's other values: about {} would lie between its neighbours. Check it; it is kept.", three_digits(far.expected))
+        });
+    }
+    lister.near_ids();
     if let Some(note) = constant_start(observations) {
         notes.push(note);
     }
@@ -43,6 +53,23 @@ impl Lister<'_> {
         if let Some(column) = self.roles.column(role) {
             let (shown, value) = (self.table.shown_column(row, column), self.table.cell(row, column));
             self.problems.add(kind, self.table.line(row), shown, value, message);
+        }
+    }
+
+    /// Ids of one group that differ only by case, white space or leading zeros.
+    fn near_ids(&mut self) {
+        let observations = self.observations;
+        let mut first: HashMap<(u32, String), usize> = HashMap::new();
+        for (start, _) in runs(&observations.subject) {
+            let own = observations.subject[start] as usize;
+            let info = &observations.subjects[own];
+            let earlier = *first.entry((info.group, loose_id(&info.name))).or_insert(own);
+            if earlier != own {
+                let (name, other) = (&info.name, &observations.subjects[earlier].name);
+                self.add(ProblemKind::NearId, start, Role::Subject, || {
+                    format!("Ids {} and {} are nearly the same. They are kept as two subjects; write one id alike throughout.", quoted(other), quoted(name))
+                });
+            }
         }
     }
 
@@ -66,8 +93,22 @@ impl Lister<'_> {
     }
 }
 
+/// A number to three digits.
+fn three_digits(value: f64) -> f64 {
+    format!("{value:.2e}").parse().unwrap_or(value)
+}
+
+/// Equal for ids that a person may have meant to be one: case, white space and leading zeros apart.
+fn loose_id(name: &str) -> String {
+    let folded = folded(name);
+    match folded.parse::<u64>() {
+        Ok(number) => number.to_string(),
+        Err(_) => folded,
+    }
+}
+
 /// Start and end of each run of equal values.
-pub(crate) fn runs(values: &[u32]) -> Vec<(usize, usize)> {
+fn runs(values: &[u32]) -> Vec<(usize, usize)> {
     let mut runs = Vec::new();
     let mut start = 0;
     for at in 1..=values.len() {

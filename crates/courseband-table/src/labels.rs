@@ -1,5 +1,6 @@
 //! Labels of a column as numbers, each distinct one once.
 
+use crate::number::is_missing_label;
 use std::collections::HashMap;
 
 /// A column of labels: one number per row, and the labels in order of first appearance.
@@ -14,24 +15,35 @@ impl Labels {
     /// Stands for a missing label.
     pub(crate) const NONE: u32 = u32::MAX;
 
-    /// Numbers the labels; `None` is a missing one.
-    pub(crate) fn read<'a>(cells: impl Iterator<Item = Option<&'a str>>) -> Labels {
-        let mut known: HashMap<&str, u32> = HashMap::new();
+    /// Numbers the labels as written.
+    pub(crate) fn as_written<'a>(cells: impl Iterator<Item = &'a str>) -> Labels {
+        Labels::read(cells, |cell| cell)
+    }
+
+    /// Numbers the labels without white space around them.
+    pub(crate) fn trimmed<'a>(cells: impl Iterator<Item = &'a str>) -> Labels {
+        Labels::read(cells, str::trim)
+    }
+
+    fn read<'a>(cells: impl Iterator<Item = &'a str>, tidy: fn(&'a str) -> &'a str) -> Labels {
+        let mut by_cell: HashMap<&str, u32> = HashMap::new();
+        let mut by_name: HashMap<&str, u32> = HashMap::new();
         let mut labels = Labels::default();
-        let mut last = (None, Labels::NONE);
+        let mut last: Option<(&str, u32)> = None;
         for cell in cells {
-            // Neighbouring rows mostly share their label.
-            if cell != last.0 {
-                let code = match cell {
-                    None => Labels::NONE,
-                    Some(text) => *known.entry(text).or_insert_with(|| {
-                        labels.names.push(text.to_string());
+            let code = match last {
+                // Neighbouring rows mostly share their label.
+                Some((before, code)) if before == cell => code,
+                _ => *by_cell.entry(cell).or_insert_with(|| match is_missing_label(cell) {
+                    true => Labels::NONE,
+                    false => *by_name.entry(tidy(cell)).or_insert_with(|| {
+                        labels.names.push(tidy(cell).to_string());
                         labels.names.len() as u32 - 1
                     }),
-                };
-                last = (cell, code);
-            }
-            labels.index.push(last.1);
+                }),
+            };
+            last = Some((cell, code));
+            labels.index.push(code);
         }
         labels
     }

@@ -45,7 +45,7 @@ fn allows(wide: &LongTable<'_>, framed: Framed<'_>, request: &Request) -> bool {
 }
 
 /// One measurement per row already.
-fn plain(framed: Framed<'_>) -> LongTable<'_> {
+pub(crate) fn plain(framed: Framed<'_>) -> LongTable<'_> {
     let columns = 0..framed.names.names.len();
     LongTable {
         sheet: framed.sheet,

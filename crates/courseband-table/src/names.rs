@@ -127,7 +127,10 @@ pub(crate) fn time_unit(name: &str) -> Option<Unit> {
         return Some(unit);
     }
     let words = words(bare);
-    words.iter().filter(|word| word.len() > 1 || words.len() == 1).find_map(|word| Unit::from_word(word))
+    let mut units = words.iter().filter(|word| word.len() > 1 || words.len() == 1).filter_map(|word| Unit::from_word(word));
+    let first = units.next()?;
+    // `visit day` counts days.
+    Some(if first == Unit::Visit { units.next().unwrap_or(first) } else { first })
 }
 
 /// Lower-case words of a name without its unit: `AnimalID`, `animal_id` and `Animal ID (tag)` give `animal`, `id`.

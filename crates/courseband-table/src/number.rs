@@ -49,11 +49,7 @@ pub(crate) fn is_missing_label(cell: &str) -> bool {
 
 fn among(cell: &str, words: &[&str]) -> bool {
     let cell = cell.trim();
-    // Most cells are no such word: settle them without allocating.
-    if cell.len() > 20 || cell.as_bytes().first().is_some_and(u8::is_ascii_digit) {
-        return false;
-    }
-    cell.is_empty() || words.contains(&cell.to_lowercase().as_str())
+    words.iter().any(|word| word.eq_ignore_ascii_case(cell))
 }
 
 /// Reads a number.
@@ -179,6 +175,10 @@ impl MarkEvidence {
         let bytes = cell.as_bytes();
         let (point, comma) = (bytes.contains(&b'.'), bytes.contains(&b','));
         if !point && !comma {
+            return;
+        }
+        if quick(cell, Decimal::Point).is_some() {
+            self.point += 1;
             return;
         }
         let cell = cell.trim();

@@ -4,7 +4,7 @@ use crate::error::TableError;
 use crate::groups;
 use crate::labels::Labels;
 use crate::long::LongTable;
-use crate::number::{NotNumber, is_missing, is_missing_label, number};
+use crate::number::{NotNumber, is_missing, number};
 use crate::observations::{Covariate, CovariateValues, Observations, SubjectInfo};
 use crate::problems::Problems;
 use crate::profile::Profile;
@@ -146,7 +146,28 @@ impl Observer<'_> {
         }
     }
 
+    /// Cells to the right of the last named column.
+    fn surplus_cells(&mut self) {
+        let (sheet, width) = (self.table.sheet, self.table.sheet_names.len());
+        let mut last = u32::MAX;
+        for &row in &self.kept {
+            let record = self.table.places[row as usize].record;
+            if record == last || sheet.width_of(record as usize) <= width {
+                continue;
+            }
+            last = record;
+            let surplus = (width..sheet.width_of(record as usize)).find(|&at| !sheet.cell(record as usize, at).trim().is_empty());
+            if let Some(at) = surplus {
+                let value = sheet.cell(record as usize, at);
+                self.problems.add(ProblemKind::SurplusCells, sheet.line(record as usize), &format!("column {}", at + 1), value, || {
+                    format!("The header names {}; this cell is not read. Check whether the row has shifted.", counted(width, "column"))
+                });
+            }
+        }
+    }
+
     fn read(&mut self) -> Result<Observations, TableError> {
+        self.surplus_cells();
         let ids = self.ids()?;
         let times = self.times()?;
         let mut groups = self.groups()?;
@@ -163,7 +184,7 @@ impl Observer<'_> {
 
     fn ids(&self) -> Result<Labels, TableError> {
         let column = self.needed(Role::Subject)?;
-        let labels = Labels::read(self.cells(column).map(|cell| Some(cell.trim()).filter(|cell| !is_missing_label(cell))));
+        let labels = Labels::trimmed(self.cells(column));
         match labels.index.iter().position(|&index| index == Labels::NONE) {
             None => Ok(labels),
             Some(kept) => Err(TableError::Cell {
@@ -182,14 +203,27 @@ impl Observer<'_> {
         let unit = unit.or_else(|| crate::names::time_unit(self.name(column)));
         let times = read_times(cells, self.name(column), self.profiles[column].decimal, unit, self.request.date_order)?;
         self.notes.extend(times.note.clone());
-        Ok(times)
+        Ok(self.from_day_numbers(times, column))
+    }
+
+    /// A date column of numbers near 45000 holds a spreadsheet's day numbers.
+    fn from_day_numbers(&mut self, mut times: Times, column: usize) -> Times {
+        let is_date = crate::names::words(self.name(column)).iter().any(|word| word == "date");
+        let plausible = times.values.iter().all(|value| (20_000.0..80_000.0).contains(value));
+        if is_date && !times.are_dates && plausible {
+            let earliest = times.values.iter().copied().fold(f64::INFINITY, f64::min);
+            times.values.iter_mut().for_each(|value| *value -= earliest);
+            (times.are_dates, times.unit) = (true, Some(crate::time::Unit::Day));
+            self.notes.push(format!("Column {} holds a spreadsheet's day numbers: read as dates.", quoted(self.name(column))));
+        }
+        times
     }
 
     fn groups(&mut self) -> Result<Labels, TableError> {
         let Some(column) = self.roles.column(Role::Group) else {
             return Ok(Labels { index: vec![0; self.kept.len()], names: vec!["all".to_string()] });
         };
-        let mut labels = Labels::read(self.cells(column).map(|cell| Some(cell).filter(|cell| !is_missing_label(cell))));
+        let mut labels = Labels::as_written(self.cells(column));
         let mut notes = Vec::new();
         groups::unite(&mut labels, &self.request.merges, &mut notes);
         if labels.names.len() > MAX_GROUPS {

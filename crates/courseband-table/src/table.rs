@@ -2,10 +2,11 @@
 
 use crate::error::TableError;
 use crate::frame::{Frame, Names, column_names, find_frame};
-use crate::layout::{Framed, long_form};
+use crate::layout::{Framed, long_form, plain};
 use crate::long::LongTable;
+use crate::notes::frame_notes;
 use crate::observe::observe;
-use crate::profile::profile_all;
+use crate::profile::{Profile, profile_all};
 use crate::reading::Reading;
 use crate::request::Request;
 use crate::sheet::{Sheet, read_bytes};
@@ -38,7 +39,8 @@ impl Table {
     /// # Errors
     /// What makes the table unusable as asked: see [`TableError`].
     pub fn observe(&self, request: &Request) -> Result<Reading, TableError> {
-        let long = self.long(request);
+        let mut long = self.long(request);
+        long.notes.splice(0..0, self.notes());
         observe(&long, &profile_all(&long), request)
     }
 
@@ -52,7 +54,34 @@ impl Table {
         &self.names.names
     }
 
+    fn framed(&self) -> Framed<'_> {
+        Framed { sheet: &self.sheet, frame: &self.frame, names: &self.names }
+    }
+
     fn long(&self, request: &Request) -> LongTable<'_> {
-        long_form(Framed { sheet: &self.sheet, frame: &self.frame, names: &self.names }, request)
+        long_form(self.framed(), request)
+    }
+
+    /// Records of data.
+    pub(crate) fn body(&self) -> &[u32] {
+        &self.frame.body
+    }
+
+    pub(crate) fn unit(&self, column: usize) -> Option<&str> {
+        self.names.units[column].as_deref()
+    }
+
+    pub(crate) fn spanner(&self) -> &[String] {
+        &self.names.spanner
+    }
+
+    /// Profiles of the columns as they stand in the sheet.
+    pub(crate) fn plain_profiles(&self) -> Vec<Profile> {
+        profile_all(&plain(self.framed()))
+    }
+
+    /// What was understood of the frame.
+    pub(crate) fn notes(&self) -> Vec<String> {
+        frame_notes(&self.sheet, &self.frame)
     }
 }

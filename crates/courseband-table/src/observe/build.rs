@@ -10,7 +10,7 @@ impl Observer<'_> {
         let Some(column) = self.roles.column(Role::Cluster) else {
             return Ok((of_subject, Vec::new()));
         };
-        let labels = Labels::read(self.cells(column).map(|cell| Some(cell.trim()).filter(|cell| !is_missing_label(cell))));
+        let labels = Labels::trimmed(self.cells(column));
         let mut first_row = vec![0; subjects.list.len()];
         for (kept, (&subject, &cluster)) in subjects.of_row.iter().zip(&labels.index).enumerate() {
             if subject == Labels::NONE || cluster == Labels::NONE {
@@ -50,7 +50,7 @@ impl Observer<'_> {
                         self.cells(column).map(|cell| number(cell, profile.decimal).unwrap_or(f64::NAN)).collect(),
                     ),
                     false => {
-                        let mut labels = Labels::read(self.cells(column).map(|cell| Some(cell).filter(|cell| !is_missing_label(cell))));
+                        let mut labels = Labels::as_written(self.cells(column));
                         groups::unite(&mut labels, &[], &mut Vec::new());
                         CovariateValues::Categorical { levels: labels.names, index: labels.index }
                     }

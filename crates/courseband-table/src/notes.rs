@@ -1,0 +1,35 @@
+//! What was understood of a table's frame, in words.
+
+use crate::error::rows;
+use crate::frame::Frame;
+use crate::sheet::Sheet;
+use crate::text::quoted;
+
+/// Notes on encoding, titles, units, summary rows and repeated headers.
+pub(crate) fn frame_notes(sheet: &Sheet, frame: &Frame) -> Vec<String> {
+    let mut notes = Vec::new();
+    let lines = |records: &[usize]| rows(&records.iter().map(|&record| sheet.line(record)).collect::<Vec<_>>());
+    if sheet.damaged() {
+        notes.push("Some characters could not be decoded and were replaced. Save the table as UTF-8 if names look wrong.".to_string());
+    } else if sheet.encoding() == "windows-1252" {
+        notes.push("The table is not in UTF-8; it was read as Windows-1252.".to_string());
+    }
+    if !frame.titles.is_empty() {
+        let first = sheet.cells(frame.titles[0]).find(|cell| !cell.trim().is_empty()).unwrap_or("");
+        notes.push(format!("Above the header, {} (such as {}) is taken for a title.", lines(&frame.titles), quoted(first)));
+    }
+    if frame.header.is_none() {
+        notes.push("The first row holds numbers, so there is no header: columns are called ‘column 1’ and so on.".to_string());
+    }
+    if let Some(record) = frame.units {
+        notes.push(format!("Row {} holds units.", sheet.line(record)));
+    }
+    if let Some(&first) = frame.summaries.first() {
+        let cell = sheet.cells(first).find(|cell| !cell.trim().is_empty()).unwrap_or("");
+        notes.push(format!("Summaries kept out: {} (such as {}).", lines(&frame.summaries), quoted(cell.trim())));
+    }
+    if !frame.repeated.is_empty() {
+        notes.push(format!("The header is repeated in {}: kept out.", lines(&frame.repeated)));
+    }
+    notes
+}
