@@ -9,7 +9,7 @@
 use crate::basis::{GroupBasis, Units, group_bases};
 use crate::criterion::{Criterion, Solved};
 use crate::model::{Data, Model, Serial};
-use crate::optimise::{Bounds, Objective, Point, Polished, newton, quasi_newton, start};
+use crate::optimise::{Bounds, Objective, Point, Polished, newton, plain_inverse, quasi_newton, start};
 use crate::params::{Layout, Parameter};
 use crate::reduce::Design;
 use nalgebra::DMatrix;
@@ -115,11 +115,11 @@ pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
         return Err(FitError::TooFewRows { rows: data.rows(), needed: free + 1 });
     }
     let design = Design::new(data, units, bases, model.subjects.count());
-    if model.serial == Serial::Ar1 && design.patterns.iter().any(|p| p.times.windows(2).any(|w| w[0] == w[1])) {
+    if model.serial == Serial::Ar1 && design.has_ties() {
         return Err(FitError::TiedTimes);
     }
     let layout = Layout::new(model, &design.bases, design.median_gap());
-    let found = search(&design, model, &layout)?;
+    let found = search(data, &design, model, &layout)?;
     finish(design, model, layout, found)
 }
 
@@ -138,37 +138,110 @@ struct Found {
     evaluations: usize,
 }
 
-fn search(design: &Design, model: &Model, layout: &Layout) -> Result<Found, FitError> {
+/// Above this many rows the optimum of a sample of the subjects is the start for all of them.
+const SAMPLED_ABOVE: usize = 30_000;
+/// Rows of that sample, about.
+const SAMPLE_ROWS: usize = 8_000;
+
+fn search(data: &Data, design: &Design, model: &Model, layout: &Layout) -> Result<Found, FitError> {
+    let found = match sample(data) {
+        Some(sample) => {
+            let smaller = Design::new(&sample, design.units, design.bases.clone(), design.effects);
+            let first = search_fully(&smaller, model, layout)?;
+            refine(design, layout, first, data.rows() as f64 / sample.rows() as f64)?
+        }
+        None => search_fully(design, model, layout)?,
+    };
+    let point = &found.polished.point;
+    if (0..design.bases.len()).any(|g| point.theta[layout.error[g]] < -34.0) {
+        return Err(FitError::NoVariation);
+    }
+    if found.polished.decrement > 1e-4 {
+        return Err(FitError::NotConverged { decrement: found.polished.decrement });
+    }
+    Ok(found)
+}
+
+/// Every k-th subject of each group, where the data are large and subjects many.
+fn sample(data: &Data) -> Option<Data> {
+    let every = data.rows() / SAMPLE_ROWS;
+    if data.rows() <= SAMPLED_ABOVE {
+        return None;
+    }
+    let mut met = vec![0; data.groups];
+    let subjects: Vec<_> = (data.subjects.iter())
+        .filter(|s| {
+            met[s.group] += 1;
+            (met[s.group] - 1) % every == 0
+        })
+        .cloned()
+        .collect();
+    let mut kept = vec![0; data.groups];
+    subjects.iter().for_each(|s| kept[s.group] += 1);
+    kept.iter().all(|&count| count >= 20).then_some(Data { groups: data.groups, subjects })
+}
+
+fn search_fully(design: &Design, model: &Model, layout: &Layout) -> Result<Found, FitError> {
     let mut criterion = Criterion::new(design, layout);
     let bounds = Bounds { lower: &layout.lower, upper: &layout.upper };
     let scale = design.rows.iter().sum::<usize>() as f64 / 2.0;
+    let plain = plain_inverse(layout.len(), scale);
     let mut spent = 0;
     let begin = if model.serial == Serial::None {
         start(&mut criterion, &bounds, plain_start(layout)).ok_or(FitError::NoStart)?
     } else {
         let (theta, used) = nested_start(design, model, layout)?;
         spent += used;
-        serial_start(&mut criterion, &bounds, layout, theta, scale)?
+        serial_start(&mut criterion, &bounds, layout, theta, &plain)?
     };
     let tolerance = 1e-5 * libm::sqrt(1.0 + 2.0 * scale);
-    let mut point = quasi_newton(&mut criterion, &bounds, begin, scale, tolerance, 300);
-    for _ in 0..2 {
+    let mut point = quasi_newton(&mut criterion, &bounds, begin, &plain, tolerance, 300);
+    for _ in 0..3 {
         let before = point.theta.clone();
         point = snap(&mut criterion, &bounds, layout, point);
+        point = revive(&mut criterion, &bounds, layout, point);
         if point.theta == before {
             break;
         }
-        point = quasi_newton(&mut criterion, &bounds, point, scale, tolerance, 100);
+        point = quasi_newton(&mut criterion, &bounds, point, &plain, tolerance, 100);
     }
     let polished = newton(&mut criterion, &bounds, point, 12).ok_or(FitError::NoStart)?;
-    let residual_at_zero = (0..design.bases.len()).any(|g| polished.point.theta[layout.error[g]] < -34.0);
-    if residual_at_zero {
-        return Err(FitError::NoVariation);
-    }
-    if polished.decrement > 1e-4 {
-        return Err(FitError::NotConverged { decrement: polished.decrement });
-    }
     Ok(Found { polished, evaluations: spent + criterion.evaluations })
+}
+
+/// From the optimum of a sample to that of all data. The sample's Hessian, times the ratio of
+/// rows, serves as the first curvature and, at the end, as the Hessian.
+fn refine(design: &Design, layout: &Layout, sample: Found, ratio: f64) -> Result<Found, FitError> {
+    let mut criterion = Criterion::new(design, layout);
+    let bounds = Bounds { lower: &layout.lower, upper: &layout.upper };
+    let n = layout.len();
+    let rows: usize = design.rows.iter().sum();
+    let mut inverse = plain_inverse(n, rows as f64 / 2.0);
+    let mut hessian = DMatrix::from_diagonal_element(n, n, rows as f64 / 2.0);
+    let small = sample.polished.hessian.clone().cholesky().ok_or(FitError::NoStart)?.inverse() / ratio;
+    for (i, &row) in sample.polished.free.iter().enumerate() {
+        for (j, &column) in sample.polished.free.iter().enumerate() {
+            inverse[(row, column)] = small[(i, j)];
+            hessian[(row, column)] = sample.polished.hessian[(i, j)] * ratio;
+        }
+    }
+    let mut theta = sample.polished.point.theta;
+    for (k, value) in plain_start(layout).into_iter().enumerate() {
+        if !sample.polished.free.contains(&k) {
+            theta[k] = value;
+        }
+    }
+    let begin = start(&mut criterion, &bounds, theta).ok_or(FitError::NoStart)?;
+    let tolerance = 3e-6 * libm::sqrt(rows as f64);
+    let mut point = quasi_newton(&mut criterion, &bounds, begin, &inverse, tolerance, 60);
+    point = snap(&mut criterion, &bounds, layout, point);
+    let free = bounds.free(&point);
+    let hessian = DMatrix::from_fn(free.len(), free.len(), |i, j| hessian[(free[i], free[j])]);
+    let gradient = DMatrix::from_fn(free.len(), 1, |i, _| point.gradient[free[i]]);
+    let solved = hessian.clone().cholesky().ok_or(FitError::NoStart)?.solve(&gradient);
+    let decrement = 0.5 * gradient.dot(&solved);
+    let evaluations = sample.evaluations + criterion.evaluations;
+    Ok(Found { polished: Polished { point, free, hessian, decrement, definite: true }, evaluations })
 }
 
 /// Half of the variance between subjects, half within; moderate smoothing.
@@ -194,7 +267,10 @@ fn nested_start(design: &Design, model: &Model, layout: &Layout) -> Result<(Vec<
     let bounds = Bounds { lower: &smaller.lower, upper: &smaller.upper };
     let scale = design.rows.iter().sum::<usize>() as f64 / 2.0;
     let begin = start(&mut criterion, &bounds, plain_start(&smaller)).ok_or(FitError::NoStart)?;
-    let point = quasi_newton(&mut criterion, &bounds, begin, scale, 1e-3 * libm::sqrt(1.0 + 2.0 * scale), 60);
+    let point = {
+        let plain = plain_inverse(smaller.len(), scale);
+        quasi_newton(&mut criterion, &bounds, begin, &plain, 1e-3 * libm::sqrt(1.0 + 2.0 * scale), 60)
+    };
     let mut theta = plain_start(layout);
     theta[..point.theta.len()].copy_from_slice(&point.theta);
     Ok((theta, criterion.evaluations))
@@ -206,7 +282,7 @@ fn serial_start(
     bounds: &Bounds,
     layout: &Layout,
     theta: Vec<f64>,
-    scale: f64,
+    plain: &DMatrix<f64>,
 ) -> Result<Point, FitError> {
     let rate = layout.rate.ok_or(FitError::NoStart)?;
     // Correlations between visits a median gap apart of about 0, 0.14, 0.55, 0.85 and 0.97.
@@ -229,8 +305,8 @@ fn serial_start(
         starts.extend(start(criterion, bounds, tried));
     }
     starts.sort_by(|a, b| a.value.total_cmp(&b.value));
-    starts.truncate(3);
-    let followed = starts.into_iter().map(|point| quasi_newton(criterion, bounds, point, scale, 1e-3, 10));
+    starts.truncate(2);
+    let followed = starts.into_iter().map(|point| quasi_newton(criterion, bounds, point, plain, 1e-3, 8));
     followed.min_by(|a, b| a.value.total_cmp(&b.value)).ok_or(FitError::NoStart)
 }
 
@@ -254,6 +330,31 @@ fn snap(criterion: &mut Criterion, bounds: &Bounds, layout: &Layout, mut point: 
                 if value <= point.value + 1e-7 {
                     point = Point { theta, value, gradient };
                 }
+            }
+        }
+    }
+    point
+}
+
+/// Tries larger values of every variance at its lower bound: a logarithm that ran off to where
+/// the criterion is flat does not come back by itself.
+fn revive(criterion: &mut Criterion, bounds: &Bounds, layout: &Layout, mut point: Point) -> Point {
+    for k in 0..layout.len() {
+        let tries: &[f64] = match layout.entries[k] {
+            Parameter::Smoothing(_) => &[-6.0, -3.0, 0.0, 3.0, 6.0],
+            Parameter::Subject { part: 0 | 2, .. } => &[-4.0, -2.5, -1.0],
+            _ => &[],
+        };
+        if point.theta[k] > bounds.lower[k] {
+            continue;
+        }
+        for &value in tries {
+            let mut theta = point.theta.clone();
+            theta[k] = value;
+            if let Some((value, gradient)) = criterion.at(&theta)
+                && value < point.value - 1e-6
+            {
+                point = Point { theta, value, gradient };
             }
         }
     }

@@ -2,6 +2,7 @@
 
 mod band;
 mod basis;
+mod chains;
 mod criterion;
 mod fit;
 mod model;

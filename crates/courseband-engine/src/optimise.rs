@@ -55,19 +55,18 @@ pub(crate) fn start(objective: &mut dyn Objective, bounds: &Bounds, mut theta: V
     Some(Point { theta, value, gradient })
 }
 
-/// Quasi-Newton steps until the largest gradient entry of the free entries is under
+/// Quasi-Newton steps from the inverse Hessian `begin` (a multiple of the identity is rescaled
+/// after the first step) until the largest gradient entry of the free entries is under
 /// `tolerance`, or `most` steps are taken, or no step lowers the function.
 pub(crate) fn quasi_newton(
     objective: &mut dyn Objective,
     bounds: &Bounds,
     mut point: Point,
-    scale: f64,
+    begin: &DMatrix<f64>,
     tolerance: f64,
     most: usize,
 ) -> Point {
-    let n = point.theta.len();
-    let identity = DMatrix::identity(n, n) * (1.0 / scale.max(1e-8));
-    let mut inverse = identity.clone();
+    let mut inverse = begin.clone();
     let mut fresh = true;
     let mut last_free = Vec::new();
     for _ in 0..most {
@@ -77,14 +76,14 @@ pub(crate) fn quasi_newton(
             break;
         }
         if free != last_free && !fresh {
-            inverse = identity.clone();
+            inverse = begin.clone();
             fresh = true;
         }
         last_free.clone_from(&free);
         let mut direction = direction(&inverse, &point, &free);
         let mut slope = direction.dot(&DVector::from_column_slice(&point.gradient));
         if slope >= 0.0 {
-            inverse = identity.clone();
+            inverse = begin.clone();
             direction = self::direction(&inverse, &point, &free);
             slope = direction.dot(&DVector::from_column_slice(&point.gradient));
         }
@@ -99,12 +98,17 @@ pub(crate) fn quasi_newton(
             }
             None if fresh => break,
             None => {
-                inverse = identity.clone();
+                inverse = begin.clone();
                 fresh = true;
             }
         }
     }
     point
+}
+
+/// A multiple of the identity as the first inverse Hessian.
+pub(crate) fn plain_inverse(n: usize, curvature: f64) -> DMatrix<f64> {
+    DMatrix::identity(n, n) * (1.0 / curvature.max(1e-8))
 }
 
 fn direction(inverse: &DMatrix<f64>, point: &Point, free: &[usize]) -> DVector<f64> {
@@ -156,10 +160,11 @@ fn update(inverse: &mut DMatrix<f64>, from: &Point, to: &Point, fresh: &mut bool
     if sy <= 1e-10 * s.norm() * y.norm() {
         return;
     }
-    if *fresh {
+    let plain = inverse.iter().enumerate().all(|(k, &value)| value == 0.0 || k % (n + 1) == 0);
+    if *fresh && plain {
         *inverse = DMatrix::identity(n, n) * (sy / y.dot(&y));
-        *fresh = false;
     }
+    *fresh = false;
     let hy = &*inverse * &y;
     let scale = (1.0 + y.dot(&hy) / sy) / sy;
     *inverse += &s * s.transpose() * scale - (&hy * s.transpose() + &s * hy.transpose()) / sy;

@@ -299,7 +299,7 @@ fn half_solve(solved: &Solved, weights: &[f64]) -> DVector<f64> {
     x
 }
 
-/// Rows in the fewest dimensions that hold all but a 1e-7 share of their squared length, lengths kept.
+/// Rows in the fewest dimensions that hold all but a 1e-5 share of their squared length, lengths kept.
 fn reduce_rank(rows: &[Vec<f64>]) -> (Vec<f64>, usize) {
     let Some(width) = rows.first().map(Vec::len) else {
         return (Vec::new(), 0);
@@ -322,7 +322,7 @@ fn reduce_rank(rows: &[Vec<f64>]) -> (Vec<f64>, usize) {
     let total: f64 = (0..width).map(|k| size(k).max(0.0)).sum();
     let mut rank = 0;
     let mut kept = 0.0;
-    while rank < width && (rank == 0 || kept < (1.0 - 1e-7) * total) {
+    while rank < width && (rank == 0 || kept < (1.0 - 1e-5) * total) {
         kept += size(order[rank]).max(0.0);
         rank += 1;
     }

@@ -13,8 +13,10 @@
 //! `F'F` is summed over a group, `F'Z` and `Z'Z` are kept per pattern, and of
 //! the responses only sums over the pattern's subjects remain. Cost O(n (K^2 + K q + m q))
 //! per pattern, memory O(K q) per pattern. Without serial correlation it is done once.
+//! Without measurement error [`crate::chains`] does the same for less.
 
 use crate::basis::{GroupBasis, Units};
+use crate::chains::reduce_chains;
 use crate::model::Data;
 use crate::spline::distinct_sorted;
 use crate::whiten::{ErrorShape, Whitener};
@@ -28,7 +30,9 @@ pub(crate) struct Pattern {
     /// Internal times.
     pub(crate) times: Vec<f64>,
     /// Row of the group's table of columns for each time.
-    table_row: Vec<usize>,
+    pub(crate) table_row: Vec<usize>,
+    /// For each step to the next time: its entry in the group's steps.
+    pub(crate) step: Vec<usize>,
     /// Indices into the data's subjects.
     pub(crate) subjects: Vec<usize>,
     /// Internal responses, n rows of m.
@@ -46,7 +50,23 @@ pub(crate) struct Design {
     /// Rows per group.
     pub(crate) rows: Vec<usize>,
     /// Columns of each group's mean at each of its distinct times, row by row.
-    tables: Vec<Vec<f64>>,
+    pub(crate) tables: Vec<Vec<f64>>,
+    /// Per group: how many subjects are seen at each distinct time.
+    pub(crate) seen: Vec<Vec<f64>>,
+    /// Per group: the distinct steps between neighbouring visits of one subject.
+    pub(crate) steps: Vec<Vec<Step>>,
+}
+
+/// A step from one visit to a subject's next.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct Step {
+    /// Rows of the group's table.
+    pub(crate) from: usize,
+    pub(crate) to: usize,
+    /// Internal time between them.
+    pub(crate) gap: f64,
+    /// How many subjects take it.
+    pub(crate) count: f64,
 }
 
 impl Design {
@@ -59,8 +79,14 @@ impl Design {
         let tables = distinct.iter().zip(&bases).map(|(times, basis)| column_table(basis, times)).collect();
         let mut rows = vec![0; data.groups];
         data.subjects.iter().for_each(|s| rows[s.group] += s.times.len());
-        let patterns = sort_into_patterns(data, &units, &distinct);
-        Design { units, bases, patterns, effects, rows, tables }
+        let mut patterns = sort_into_patterns(data, &units, &distinct);
+        let (seen, steps) = count_steps(&mut patterns, &distinct);
+        Design { units, bases, patterns, effects, rows, tables, seen, steps }
+    }
+
+    /// True where some subject has several rows at one time.
+    pub(crate) fn has_ties(&self) -> bool {
+        self.steps.iter().flatten().any(|step| step.gap <= 0.0)
     }
 
     /// Median internal time between neighbouring visits of one subject; 1 where there is none.
@@ -108,6 +134,28 @@ fn column_table(basis: &GroupBasis, times: &[f64]) -> Vec<f64> {
     table
 }
 
+/// Finds each group's distinct steps, and which step each pattern takes when.
+fn count_steps(patterns: &mut [Pattern], distinct: &[Vec<f64>]) -> (Vec<Vec<f64>>, Vec<Vec<Step>>) {
+    let mut seen: Vec<Vec<f64>> = distinct.iter().map(|times| vec![0.0; times.len()]).collect();
+    let mut steps: Vec<Vec<Step>> = vec![Vec::new(); distinct.len()];
+    let mut known: BTreeMap<(usize, usize, usize), usize> = BTreeMap::new();
+    for pattern in patterns {
+        let (g, m) = (pattern.group, pattern.subjects.len() as f64);
+        pattern.table_row.iter().for_each(|&row| seen[g][row] += m);
+        pattern.step = (pattern.table_row.windows(2).zip(pattern.times.windows(2)))
+            .map(|(rows, times)| {
+                let index = *known.entry((g, rows[0], rows[1])).or_insert_with(|| {
+                    steps[g].push(Step { from: rows[0], to: rows[1], gap: times[1] - times[0], count: 0.0 });
+                    steps[g].len() - 1
+                });
+                steps[g][index].count += m;
+                index
+            })
+            .collect();
+    }
+    (seen, steps)
+}
+
 fn sort_into_patterns(data: &Data, units: &Units, distinct: &[Vec<f64>]) -> Vec<Pattern> {
     let mut found: BTreeMap<(usize, Vec<u64>), usize> = BTreeMap::new();
     let mut patterns: Vec<Pattern> = Vec::new();
@@ -117,7 +165,8 @@ fn sort_into_patterns(data: &Data, units: &Units, distinct: &[Vec<f64>]) -> Vec<
             let times: Vec<f64> = subject.times.iter().map(|&t| units.inner_time(t)).collect();
             let own = &distinct[subject.group];
             let table_row = times.iter().map(|t| own.partition_point(|d| d < t)).collect();
-            patterns.push(Pattern { group: subject.group, times, table_row, subjects: vec![], responses: vec![] });
+            let (subjects, responses, step) = (vec![], vec![], vec![]);
+            patterns.push(Pattern { group: subject.group, times, table_row, step, subjects, responses });
             patterns.len() - 1
         });
         patterns[at].subjects.push(index);
@@ -169,6 +218,9 @@ pub(crate) struct Products {
 /// `slopes`: which derivatives (0: `ln rate`, 1: `logit nugget`). `None` where the
 /// error correlation of some subject is singular.
 pub(crate) fn reduce(design: &Design, shape: Option<ErrorShape>, slopes: &[usize]) -> Option<(Products, Vec<Products>)> {
+    if shape.is_none_or(|shape| shape.nugget == 0.0) {
+        return reduce_chains(design, shape.map(|shape| shape.rate), !slopes.is_empty());
+    }
     let mut value = empty_products(design);
     let mut derivatives = vec![empty_products(design); slopes.len()];
     for pattern in &design.patterns {
@@ -194,7 +246,7 @@ pub(crate) fn reduce(design: &Design, shape: Option<ErrorShape>, slopes: &[usize
     Some((value, derivatives))
 }
 
-fn empty_products(design: &Design) -> Products {
+pub(crate) fn empty_products(design: &Design) -> Products {
     let groups = design.bases.iter().map(|basis| {
         let k = basis.columns();
         GroupProducts { ff: DMatrix::zeros(k, k), fy: DMatrix::zeros(k, 1), yy: 0.0, log_det: 0.0 }

@@ -186,3 +186,23 @@ fn every_model_reaches_an_optimum() {
         }
     }
 }
+
+#[test]
+fn chains_and_whitening_reduce_to_the_same_products() {
+    let data = made_up(2, 4, 6, 14);
+    let (design, _) = prepared(&data, &model(SubjectEffects::Slope, Serial::Ar1));
+    let shape = |nugget| Some(crate::whiten::ErrorShape { rate: 1.7, nugget });
+    let (fast, fast_slopes) = crate::reduce::reduce(&design, shape(0.0), &[0]).unwrap();
+    // A measurement error too small to matter takes the general way.
+    let (slow, slow_slopes) = crate::reduce::reduce(&design, shape(1e-13), &[0]).unwrap();
+    for (a, b) in [(&fast, &slow), (&fast_slopes[0], &slow_slopes[0])] {
+        for (x, y) in a.groups.iter().zip(&b.groups) {
+            assert!((&x.ff - &y.ff).amax() < 1e-8 * x.ff.amax() && (&x.fy - &y.fy).amax() < 1e-8);
+            assert!((x.yy - y.yy).abs() < 1e-8 && (x.log_det - y.log_det).abs() < 1e-8);
+        }
+        for (x, y) in a.patterns.iter().zip(&b.patterns) {
+            assert!((&x.fz - &y.fz).amax() < 1e-8 && (&x.zyyz - &y.zyyz).amax() < 1e-8);
+            assert!((&x.zz - &y.zz).amax() < 1e-8 && (&x.zy - &y.zy).amax() < 1e-8);
+        }
+    }
+}
