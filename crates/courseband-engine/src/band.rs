@@ -18,8 +18,16 @@ enum Kind {
     Nodes(Vec<(f64, f64)>),
 }
 
-/// Number of nodes in 1/df: with eight the interpolated value is within 1e-4 of the computed one.
-const NODES: usize = 8;
+/// Number of nodes in 1/df: enough for the interpolated value to be within 1e-3 of the computed one.
+fn node_count(width: f64) -> usize {
+    if width < 0.01 {
+        3
+    } else if width < 0.1 {
+        5
+    } else {
+        8
+    }
+}
 
 impl CriticalValues {
     /// Each point by itself.
@@ -45,9 +53,10 @@ impl CriticalValues {
         if high - low < 1e-4 {
             return CriticalValues::fixed(maxima.quantile(level, Some(least)).value);
         }
-        let nodes = (0..NODES)
+        let count = node_count(high - low);
+        let nodes = (0..count)
             .map(|k| {
-                let angle = std::f64::consts::PI * (k as f64 + 0.5) / NODES as f64;
+                let angle = std::f64::consts::PI * (k as f64 + 0.5) / count as f64;
                 let x = 0.5 * (low + high) - 0.5 * (high - low) * libm::cos(angle);
                 (x, libm::log(maxima.quantile(level, Some(1.0 / x)).value))
             })
@@ -176,7 +185,9 @@ mod tests {
             .collect();
         let maxima = DirectionMaxima::new(&rows, 10, 11, 4096, 1);
         let values = CriticalValues::simultaneous(&maxima, 0.95, 1.0, 300.0);
-        for df in [1.0, 1.7, 4.4, 9.0, 33.0, 250.0] {
+        let narrow = CriticalValues::simultaneous(&maxima, 0.95, 8.0, 30.0);
+        let wide = [1.0, 1.7, 4.4, 9.0, 33.0, 250.0].map(|df| (&values, df));
+        for (values, df) in wide.into_iter().chain([(&narrow, 8.0), (&narrow, 13.0), (&narrow, 29.0)]) {
             let expected = maxima.quantile(0.95, Some(df)).value;
             assert!((values.at(df) / expected - 1.0).abs() < 1e-3, "{df}: {} {expected}", values.at(df));
         }

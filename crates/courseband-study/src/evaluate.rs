@@ -79,7 +79,7 @@ impl<'a> Evaluation<'a> {
         crate::cohort::distinct(all.filter(|&t| t >= low && t <= high))
     }
 
-    fn family(&self, members: Vec<(Contrast, Estimate)>) -> Family {
+    fn family(&self, members: Vec<(Contrast, Estimate)>, directions: usize) -> Family {
         let level = self.plan.comparisons.level;
         let used: Vec<(Contrast, Estimate)> = members.into_iter().filter(|(_, e)| e.se > 0.0).collect();
         let least = used.iter().map(|(_, e)| e.df).fold(f64::INFINITY, f64::min);
@@ -88,7 +88,7 @@ impl<'a> Evaluation<'a> {
             CriticalValues::pointwise(level)
         } else {
             let contrasts: Vec<Contrast> = used.into_iter().map(|(c, _)| c).collect();
-            let maxima = self.posterior.family(&contrasts, DIRECTIONS, self.plan.seed);
+            let maxima = self.posterior.family(&contrasts, directions, self.plan.seed);
             CriticalValues::simultaneous(&maxima, level, least, most)
         };
         Family { values, least, most: most.max(least) }
@@ -122,7 +122,7 @@ impl<'a> Evaluation<'a> {
         for g in 0..groups {
             members.extend(self.asked(|t| self.fit.course(g, t), &self.inside(self.cohort.supports[g])));
         }
-        let family = self.family(members);
+        let family = self.family(members, DIRECTIONS / 2);
         (0..groups).map(|g| self.curve(g, &family)).collect()
     }
 
@@ -165,7 +165,7 @@ impl<'a> Evaluation<'a> {
                 members.extend(self.asked(|t| self.fit.gap(from, to, t), &self.inside(support)));
             }
         }
-        let family = self.family(members);
+        let family = self.family(members, DIRECTIONS);
         pairs.iter().map(|&(from, to)| self.difference(from, to, &family)).collect()
     }
 
