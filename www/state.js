@@ -113,7 +113,7 @@ export function chosen(state, label, change, typing) {
   return {
     ...state, choices, notice: null,
     history: { past: joined ? past : [...past, step], future: [] },
-    change: { label, before: null, after: null, pair: null },
+    change: { label, back: false, before: null, after: null, pair: null },
   };
 }
 
@@ -125,7 +125,7 @@ export function undone(state) {
   const future = [{ label: step.label, choices: state.choices }, ...state.history.future];
   return {
     ...state, choices: step.choices, notice: null, history: { past, future },
-    change: { label: text.change.undone(step.label.replace('\u200b', '')), before: null, after: null, pair: null },
+    change: { label: text.change.undone(step.label.replace('\u200b', '')), back: true, before: null, after: null, pair: null },
   };
 }
 
@@ -136,7 +136,7 @@ export function redone(state) {
   const past = [...state.history.past, { label: step.label, choices: state.choices }];
   return {
     ...state, choices: step.choices, notice: null, history: { past, future },
-    change: { label: text.change.redone(step.label.replace('\u200b', '')), before: null, after: null, pair: null },
+    change: { label: text.change.redone(step.label.replace('\u200b', '')), back: false, before: null, after: null, pair: null },
   };
 }
 

@@ -89,7 +89,7 @@ export const text = {
     ratio: (to, from) => `${to} / ${from}`,
     /** @param {string} to @param {string} from */
     difference: (to, from) => `${to} \u2212 ${from}`,
-    states: { beyond: 'beyond the margin', apart: 'apart', inside: 'inside the margin', undecided: 'undecided', outside: 'not compared' },
+    states: { beyond: 'beyond', apart: 'apart', inside: 'inside', undecided: 'undecided', outside: 'not compared' },
     openStrip: 'strip',
     openLabel: (/** @type {string} */ pair) => `Show the gap strip of ${pair}`,
   },

@@ -105,7 +105,7 @@
  */
 
 /** @typedef {{label: string, choices: Choices}} Step */
-/** @typedef {{label: string, before: string|null, after: string|null, pair: string|null}} Change */
+/** @typedef {{label: string, back: boolean, before: string|null, after: string|null, pair: string|null}} Change `back`: it took a choice back. */
 
 /**
  * @typedef {Object} State

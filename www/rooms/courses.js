@@ -6,6 +6,7 @@ import { el } from '../dom.js';
 import { text } from '../text.js';
 import { mountChange } from '../views/change.js';
 import { mountFindings } from '../views/findings.js';
+import { mountNotes } from '../views/notes.js';
 import { mountPlan } from '../views/plan.js';
 import { mountQuestion } from '../views/question.js';
 import { mountReading } from '../views/reading.js';
@@ -27,18 +28,20 @@ export const coursesRoom = {
     const strips = el('section', { class: 'strips' });
     const reading = el('section', { class: 'reading' });
     const findings = el('section', { class: 'findings' });
+    const notes = el('section', { class: 'beside' });
     const views = [
       mountPlan(plan, acts), mountChange(change, acts), mountQuestion(question, acts), mountStrips(strips, acts),
-      mountReading(reading, acts), mountFindings(findings),
+      mountReading(reading, acts), mountFindings(findings), mountNotes(notes),
     ];
     const aside = el('div', { class: 'aside' });
     const body = el('div', { class: 'courses-body' });
     const narrow = matchMedia(NARROW);
     const arrange = () => {
       if (narrow.matches) {
-        root.replaceChildren(question, change, findings, strips, reading, plan);
+        body.replaceChildren(strips, reading);
+        root.replaceChildren(question, change, findings, body, plan, notes);
       } else {
-        aside.replaceChildren(reading, findings);
+        aside.replaceChildren(reading, findings, notes);
         body.replaceChildren(strips, aside);
         root.replaceChildren(plan, change, question, body);
       }

@@ -20,16 +20,20 @@ function sentence({ change, findings, status }) {
  */
 export function mountChange(root, acts) {
   const line = el('span');
-  const undo = el('button', { type: 'button', class: 'quiet', onclick: acts.undo }, text.change.undo);
+  // One button for both ways, so that the focus stays where it was.
+  let back = false;
+  const turn = el('button', { type: 'button', class: 'quiet', onclick: () => (back ? acts.redo() : acts.undo()) });
   const dot = el('span', { 'aria-hidden': 'true' }, ' \u00b7 ');
-  root.append(line, dot, undo);
+  root.append(line, dot, turn);
   return {
     update: whenChanged((state) => [state.change, state.status, state.history], (state) => {
       const words = sentence(state);
       setText(line, words);
-      const can = words !== '' && state.history.past.length > 0;
+      back = state.change?.back ?? false;
+      const can = words !== '' && (back ? state.history.future : state.history.past).length > 0;
+      setText(turn, back ? text.change.redo : text.change.undo);
       show(dot, can);
-      show(undo, can);
+      show(turn, can);
     }),
   };
 }

@@ -51,7 +51,7 @@ function flag(context, style, x, width, label) {
   context.beginPath();
   context.roundRect(middle - half, 0, 2 * half, 19, 9.5);
   context.fill();
-  context.fillStyle = style.backgroundColor;
+  context.fillStyle = style.getPropertyValue('--paper');
   context.textAlign = 'center';
   context.textBaseline = 'middle';
   context.fillText(label, middle, 10);

@@ -1,6 +1,6 @@
 /**
- * The findings: at most five sentences, then how many more; what they depend
- * on; what else must be known; what the words mean.
+ * The findings: at most five sentences, then how many more, and what they
+ * depend on.
  */
 
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
@@ -23,10 +23,8 @@ export function mountFindings(root) {
   const more = el('details', { class: 'more', hidden: true }, moreLabel, rest);
   const empty = el('p', { class: 'hint' });
   const depends = el('p', { class: 'depends', 'data-region': 'depends' });
-  const notes = el('ul', { class: 'notes' });
-  const notesBox = el('section', { class: 'notes-box' }, el('h3', {}, text.findings.notes), notes);
   list.append(first, more, empty);
-  root.append(title, list, depends, notesBox, mountWords());
+  root.append(title, list, depends);
 
   return {
     update: whenChanged((state) => [state.findings, state.status], (state) => {
@@ -42,8 +40,6 @@ export function mountFindings(root) {
       show(empty, sentences.length === 0);
       const on = sentences[0]?.depends ?? '';
       setText(depends, on ? `${words.depends} ${on}` : '');
-      drawNotes(notes, shown ? [...findings.fit.remarks, ...findings.notes.map((row) => row.message)] : []);
-      show(notesBox, notes.children.length > 0);
     }),
   };
 }
@@ -64,17 +60,4 @@ function drawSentences(root, sentences, findings) {
     const group = index < 0 ? '' : ` of-group-${(index % 6) + 1}`;
     return el('p', { class: `sentence${group}`, 'data-kind': row.kind }, el('strong', {}, row.headline), ' ', row.text);
   });
-}
-
-/** @param {HTMLElement} root @param {string[]} messages */
-function drawNotes(root, messages) {
-  const once = Array.from(new Set(messages));
-  reconcile(root, once, (message) => message, (message) => el('li', {}, message));
-}
-
-/** The page's own words, each opening its trade term and formula. */
-function mountWords() {
-  const entries = text.words.map(({ word, term, meaning }) =>
-    el('details', { class: 'word', name: 'word' }, el('summary', {}, word), el('p', {}, term), el('p', { class: 'formula' }, meaning)));
-  return el('section', { class: 'words' }, el('h3', {}, words.words), el('div', { class: 'word-list' }, ...entries));
 }
