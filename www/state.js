@@ -81,7 +81,7 @@ export function understood(state, preview, description) {
 
 /** @param {State} state @param {'question'|'problem'|'failed'} status @param {string|null} message @returns {State} */
 function withoutFindings(state, status, message) {
-  return { ...state, status, message, findings: status === 'failed' ? state.findings : null, change: null, slow: false, announcement: message ?? text.states[status] };
+  return { ...state, status, message, findings: status === 'failed' ? state.findings : null, slow: false, announcement: message ?? text.states[status] };
 }
 
 /** @param {State} state @param {string} message @returns {State} */

@@ -90,7 +90,6 @@ export const text = {
     /** @param {string} to @param {string} from */
     difference: (to, from) => `${to} \u2212 ${from}`,
     states: { beyond: 'beyond', apart: 'apart', inside: 'inside', undecided: 'undecided', outside: 'not compared' },
-    openStrip: 'strip',
     openLabel: (/** @type {string} */ pair) => `Show the gap strip of ${pair}`,
   },
 

@@ -40,6 +40,7 @@ export function mountReading(root, acts) {
       fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed));
     });
     const many = reading.gaps.length > MANY_PAIRS;
+    table.classList.toggle('many', many);
     reconcile(gaps, reading.gaps, (row) => `${row.pair}${many}`,
       (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
@@ -47,8 +48,11 @@ export function mountReading(root, acts) {
         fillRow(node, name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state]);
         node.dataset.lane = row.state;
         const button = node.querySelector('button');
-        button?.setAttribute('aria-pressed', String(state.openPairs.includes(row.pair)));
-        button?.setAttribute('aria-label', words.openLabel(name));
+        if (!button) return;
+        const isOpen = state.openPairs.includes(row.pair);
+        setText(button, isOpen ? '\u2212' : '+');
+        button.setAttribute('aria-pressed', String(isOpen));
+        button.setAttribute('aria-label', words.openLabel(name));
       });
   });
   return { update: draw };
@@ -78,7 +82,7 @@ export function lineSample(index) {
 function mountRow(index, name, extra = null) {
   const label = el('span', { class: 'row-name', title: name });
   return el('tr', { class: `of-group-${(index % 6) + 1}` },
-    el('th', { scope: 'row' }, lineSample(index), label, extra), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
+    el('th', { scope: 'row' }, extra, lineSample(index), label), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
 }
 
 /** @param {HTMLTableRowElement} row @param {string} name @param {string} value @param {{lower: string, upper: string}|null} numbers @param {string} last */
@@ -94,7 +98,7 @@ function fillRow(row, name, value, numbers, last) {
 
 /** @param {number} pair @param {Acts} acts */
 function stripButton(pair, acts) {
-  return el('button', { type: 'button', class: 'quiet open-strip', onclick: () => acts.togglePair(pair) }, words.openStrip);
+  return el('button', { type: 'button', class: 'quiet open-strip', onclick: () => acts.togglePair(pair) });
 }
 
 /** @param {Acts} acts */

@@ -91,7 +91,7 @@ function mountHead(column, acts) {
     placeholder: words.calledShort,
   });
   const head = el('th', { scope: 'col' }, el('span', { class: 'column-name', title: column, tabindex: '-1' }, column),
-    select, el('span', { class: 'why' }), called);
+    select, called, el('span', { class: 'why' }));
   select.addEventListener('change', () => {
     const role = /** @type {Role|'unused'} */ (select.value);
     const { used } = /** @type {any} */ (head);
