@@ -28,6 +28,11 @@ pub enum TableError {
         /// Line on which the record begins.
         row: usize,
     },
+    /// A single column: the separator was not recognised, or there is no more.
+    OneColumn {
+        /// Its name.
+        name: String,
+    },
     /// A header without rows below it.
     NoRows,
     /// A named column that does not exist.
@@ -88,18 +93,7 @@ pub enum TableError {
         second: (usize, String),
     },
     /// A subject that changes its group.
-    ChangesGroup {
-        /// Subject column.
-        column: String,
-        /// The subject.
-        subject: String,
-        /// One group and its rows.
-        first: (String, Vec<usize>),
-        /// Another group and its rows.
-        second: (String, Vec<usize>),
-        /// What else may be the reason.
-        hint: String,
-    },
+    ChangesGroup(Box<GroupChange>),
     /// A subject in two clusters.
     ChangesCluster {
         /// Cluster column.
@@ -129,6 +123,41 @@ pub enum TableError {
     },
 }
 
+/// A subject that changes its group.
+#[derive(Debug, Clone, PartialEq, Eq)]
+pub struct GroupChange {
+    /// Subject column.
+    pub column: String,
+    /// The subject.
+    pub subject: String,
+    /// One group and its rows.
+    pub first: (String, Vec<usize>),
+    /// A later group and its rows.
+    pub second: (String, Vec<usize>),
+    /// True where the two names differ by one letter.
+    pub near: bool,
+}
+
+impl fmt::Display for GroupChange {
+    fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
+        write!(
+            f,
+            "Column {}: subject {} is in group {} ({}) and later in group {} ({}). Subjects that change their group are not handled. \
+             Correct the group, give different subjects different ids, or exclude the rows.",
+            quoted(&self.column),
+            quoted(&self.subject),
+            quoted(&self.first.0),
+            rows(&self.first.1),
+            quoted(&self.second.0),
+            rows(&self.second.1)
+        )?;
+        match self.near {
+            true => f.write_str(" The two names differ by one letter: perhaps one is misspelt."),
+            false => Ok(()),
+        }
+    }
+}
+
 impl std::error::Error for TableError {}
 
 impl fmt::Display for TableError {
@@ -148,6 +177,11 @@ impl fmt::Display for TableError {
             TableError::OpenQuote { row } => write!(
                 f,
                 "Row {row} opens a quotation mark that is never closed. Close it, or take it out."
+            ),
+            TableError::OneColumn { name } => write!(
+                f,
+                "The table has one column only, {}. It needs a subject, a time and a response column, separated by commas, semicolons or tabs.",
+                quoted(name)
             ),
             TableError::NoRows => f.write_str("The table has no rows of data below its header. Add at least one row."),
             TableError::NoSuchColumn { name, purpose, columns } => write!(
@@ -176,12 +210,7 @@ impl fmt::Display for TableError {
                 "Column {}: row {} has {} and row {} has {}. These time units cannot be converted into each other. Use one unit in the column.",
                 quoted(column), first.0, quoted(&first.1), second.0, quoted(&second.1)
             ),
-            TableError::ChangesGroup { column, subject, first, second, hint } => write!(
-                f,
-                "Column {}: subject {} is in group {} ({}) and later in group {} ({}). Subjects that change their group are not handled. \
-                 Correct the group, give different subjects different ids, or exclude the rows.{hint}",
-                quoted(column), quoted(subject), quoted(&first.0), rows(&first.1), quoted(&second.0), rows(&second.1)
-            ),
+            TableError::ChangesGroup(change) => change.fmt(f),
             TableError::ChangesCluster { column, subject, first, second } => write!(
                 f,
                 "Column {}: subject {} is in {} (row {}) and in {} (row {}). A subject needs one {} throughout. Correct it, or use no such column.",

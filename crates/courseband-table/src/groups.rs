@@ -83,7 +83,7 @@ pub(crate) fn near_misses(labels: &Labels) -> Vec<(u32, u32)> {
     let mut found = Vec::new();
     for rare in 0..labels.names.len() {
         let common = (0..labels.names.len())
-            .filter(|&common| common != rare && rows[rare] * 5 <= rows[common])
+            .filter(|&common| common != rare && rows[rare] * 3 <= rows[common])
             .filter(|&common| is_near(&folded(&labels.names[rare]), &folded(&labels.names[common])))
             .max_by_key(|&common| (rows[common], std::cmp::Reverse(common)));
         if let Some(common) = common {
@@ -93,7 +93,8 @@ pub(crate) fn near_misses(labels: &Labels) -> Vec<(u32, u32)> {
     found
 }
 
-/// One letter added, left out, changed, or two swapped, in words of at least four letters. Digits tell names apart.
+/// One letter added, left out, changed, or two swapped, in names of at least four letters.
+/// Digits and letters on their own tell names apart: `Dose 1` and `Dose 2`, `Diet A` and `Diet B`.
 pub(crate) fn is_near(a: &str, b: &str) -> bool {
     let (a, b): (Vec<char>, Vec<char>) = (a.chars().collect(), b.chars().collect());
     let (short, long) = if a.len() <= b.len() { (&a, &b) } else { (&b, &a) };
@@ -105,5 +106,7 @@ pub(crate) fn is_near(a: &str, b: &str) -> bool {
     let (left_short, left_long) = (&short[start..short.len() - end], &long[start..long.len() - end]);
     let swapped = matches!((left_short, left_long), ([p, q], [r, s]) if p == s && q == r);
     let digits = left_short.iter().chain(left_long).any(char::is_ascii_digit);
-    !digits && (swapped || (left_short.len() <= 1 && left_long.len() == 1))
+    let edge = |c: Option<&char>| c.is_none_or(|c| !c.is_alphanumeric());
+    let alone = left_long.len() == 1 && edge(start.checked_sub(1).and_then(|at| long.get(at))) && edge(long.get(start + 1));
+    !digits && !alone && (swapped || (left_short.len() <= 1 && left_long.len() == 1))
 }

@@ -37,7 +37,7 @@ mod text;
 mod time;
 
 pub use describe::{Description, describe};
-pub use error::TableError;
+pub use error::{GroupChange, TableError};
 pub use observations::{Covariate, CovariateValues, Observations, SubjectInfo};
 pub use preview::{Preview, PreviewColumn, PreviewRow};
 pub use problems::LISTED_PER_KIND;

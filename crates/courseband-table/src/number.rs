@@ -108,12 +108,18 @@ fn with_unit(cell: &str, decimal: Decimal) -> Option<(f64, String)> {
     let end = cell.find(|c: char| !(c.is_ascii_digit() || "+-−.,".contains(c)))?;
     let (head, unit) = (cell[..end].trim(), cell[end..].trim());
     let value = strict(head, decimal).filter(|value| value.is_finite())?;
-    let known = unit.chars().count() <= 10
-        && !matches!(unit, "O" | "o" | "l" | "I")
-        && unit.chars().all(|c| c.is_alphabetic() || "%/²³°·^-µ0123456789 ".contains(c))
-        && !unit.starts_with(|c: char| c.is_ascii_digit())
-        && !cell[end..].chars().skip(1).any(|c| c == '.' || c == ',');
-    known.then(|| (value, unit.to_string()))
+    looks_like_unit(unit).then(|| (value, unit.to_string()))
+}
+
+/// Letters first, short; not a letter typed for a digit (`6O`, `5l`), not `x10`.
+fn looks_like_unit(unit: &str) -> bool {
+    let mut chars = unit.chars();
+    let (first, second) = (chars.next(), chars.next());
+    let typed_for_digit = matches!(unit, "O" | "o" | "l" | "I");
+    let hexadecimal = matches!(first, Some('x' | 'X')) && second.is_some_and(|c| c.is_ascii_digit());
+    let starts = first.is_some_and(|c| c.is_alphabetic() || "%/°µ".contains(c));
+    let allowed = unit.chars().all(|c| c.is_alphanumeric() || "%/²³°·^-µ ".contains(c));
+    starts && allowed && !typed_for_digit && !hexadecimal && unit.chars().count() <= 10
 }
 
 /// Digits with at most one decimal mark, grouped thousands and an exponent; nothing else.

@@ -9,7 +9,7 @@ use crate::observations::{Covariate, CovariateValues, Observations, SubjectInfo}
 use crate::problems::Problems;
 use crate::profile::Profile;
 use crate::reading::{ColumnsUsed, ProblemKind, Question, Reading};
-use crate::request::{DayZero, Request, Role};
+use crate::request::{DayZero, Merge, Request, Role};
 use crate::roles::{Roles, find_roles};
 use crate::subjects::{Subjects, tell_apart};
 use crate::text::{counted, quoted};
@@ -30,6 +30,7 @@ struct Observer<'a> {
     problems: Problems,
     notes: Vec<String>,
     questions: Vec<Question>,
+    near_spellings: Vec<Merge>,
 }
 
 /// Reads observations from the long form.
@@ -44,6 +45,7 @@ pub(crate) fn observe(table: &LongTable<'_>, profiles: &[Profile], request: &Req
         problems: Problems::default(),
         notes: table.notes.clone(),
         questions: roles.questions.clone(),
+        near_spellings: Vec::new(),
         roles,
     };
     observer.exclude()?;
@@ -77,6 +79,7 @@ impl Observer<'_> {
             problem_counts,
             notes: self.notes,
             questions: self.questions,
+            near_spellings: self.near_spellings,
             layout: self.table.layout,
             response_unit,
             excluded: self.excluded,
@@ -203,11 +206,11 @@ impl Observer<'_> {
         let unit = unit.or_else(|| crate::names::time_unit(self.name(column)));
         let times = read_times(cells, self.name(column), self.profiles[column].decimal, unit, self.request.date_order)?;
         self.notes.extend(times.note.clone());
-        Ok(self.from_day_numbers(times, column))
+        Ok(self.day_numbers_as_dates(times, column))
     }
 
     /// A date column of numbers near 45000 holds a spreadsheet's day numbers.
-    fn from_day_numbers(&mut self, mut times: Times, column: usize) -> Times {
+    fn day_numbers_as_dates(&mut self, mut times: Times, column: usize) -> Times {
         let is_date = crate::names::words(self.name(column)).iter().any(|word| word == "date");
         let plausible = times.values.iter().all(|value| (20_000.0..80_000.0).contains(value));
         if is_date && !times.are_dates && plausible {
@@ -257,6 +260,7 @@ impl Observer<'_> {
         let Some(column) = self.roles.column(Role::Group) else { return };
         for (rare, common) in groups::near_misses(groups) {
             let (rare_name, common_name) = (&groups.names[rare as usize], &groups.names[common as usize]);
+            self.near_spellings.push(Merge { from: rare_name.clone(), into: common_name.clone() });
             for (kept, _) in groups.index.iter().enumerate().filter(|(_, index)| **index == rare) {
                 let row = self.kept[kept] as usize;
                 let shown = self.table.shown_column(row, column);

@@ -107,7 +107,7 @@ fn look_at(cell: &str, units: &mut Vec<(String, usize)>) -> Look {
                 units.push((unit, 0));
                 units.len() - 1
             });
-            Look::Unit { index, time: matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..))) }
+            Look::Unit { index, time: matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..))) }
         }
         Err(_) if is_missing(cell) => Look::Missing,
         Err(_) if read_time(cell, Decimal::Point).is_some() => Look::WordedTime,

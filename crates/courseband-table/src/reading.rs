@@ -1,7 +1,7 @@
 //! What was read: observations, and everything that must be known about them.
 
 use crate::observations::Observations;
-use crate::request::{Layout, Role};
+use crate::request::{Layout, Merge, Role};
 
 /// What was read from a table.
 #[derive(Debug, Clone)]
@@ -20,6 +20,8 @@ pub struct Reading {
     pub notes: Vec<String>,
     /// What a person must or may decide.
     pub questions: Vec<Question>,
+    /// Group names that may be misspelt, with the name they may stand for: to be offered, not done.
+    pub near_spellings: Vec<Merge>,
     /// How the table lays out its measurements.
     pub layout: Layout,
     /// Unit of the response where the header gives one, such as `mm`.

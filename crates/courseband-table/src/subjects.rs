@@ -1,6 +1,6 @@
 //! Who is who: ids that restart in each group, missing groups, subjects that change group.
 
-use crate::error::TableError;
+use crate::error::{GroupChange, TableError};
 use crate::groups::is_near;
 use crate::labels::Labels;
 use crate::reading::{Question, Topic};
@@ -122,13 +122,16 @@ impl Subjects {
         if shared.is_empty() {
             return Ok(None);
         }
-        let names: Vec<&str> = shared.iter().map(|(id, _)| ids.names[*id as usize].trim()).collect();
+        let names: Vec<&str> = shared.iter().map(|(id, _)| ids.names[*id as usize].as_str()).collect();
         let who = match names.as_slice() {
             [one] => format!("Id {} occurs", quoted(one)),
-            [first, .., last] => format!("{} ids ({} to {}) occur", names.len(), quoted(first), quoted(last)),
+            [one, two] => format!("Ids {} and {} occur", quoted(one), quoted(two)),
+            [first, .., last] => format!("{} ids, {} to {}, occur", names.len(), quoted(first), quoted(last)),
             [] => String::new(),
         };
-        let text = format!("{who} under more than one {group_column} at overlapping times");
+        let every = shared.iter().all(|(_, subjects)| subjects.len() == groups.names.len());
+        let under = if every { "every" } else { "more than one" };
+        let text = format!("{who} under {under} {group_column} at overlapping times");
         let note = format!("{text}: taken for different subjects, numbered anew in each group.");
         let question = Question {
             topic: Topic::Ids,
@@ -173,13 +176,12 @@ impl Subjects {
         };
         let name = |subject: usize| groups.names[self.list[subject].group as usize].clone();
         let near = is_near(&folded(&name(first)), &folded(&name(second)));
-        let hint = if near { " The two names differ by one letter: perhaps one is misspelt." } else { "" };
-        TableError::ChangesGroup {
+        TableError::ChangesGroup(Box::new(GroupChange {
             column: column.to_string(),
             subject: ids.names[id as usize].clone(),
             first: (name(first), rows(first)),
             second: (name(second), rows(second)),
-            hint: hint.to_string(),
-        }
+            near,
+        }))
     }
 }

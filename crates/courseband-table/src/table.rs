@@ -31,6 +31,9 @@ impl Table {
             return Err(TableError::NoRows);
         }
         let names = column_names(&sheet, &frame);
+        if let [name] = names.names.as_slice() {
+            return Err(TableError::OneColumn { name: name.clone() });
+        }
         Ok(Table { sheet, frame, names })
     }
 

@@ -66,6 +66,8 @@ impl Unit {
 pub(crate) enum WrittenTime {
     Number(f64),
     WithUnit(f64, Unit),
+    /// `d-1`: one day before, or day 1 behind a dash. The column decides.
+    Dashed(f64, Unit),
     Date(WrittenDate),
 }
 
@@ -90,7 +92,8 @@ fn read_with_unit(cell: &str, decimal: Decimal) -> Option<WrittenTime> {
         Some(sign @ ('-' | '−' | '+')) if is_sign(&cell[..digit - sign.len_utf8()]) => digit - sign.len_utf8(),
         _ => digit,
     };
-    let word = cell[..start].trim().trim_end_matches(['_', '-', '.', ':', ' ']);
+    let dashed = cell[..start].ends_with(['-', '−']);
+    let word = cell[..start].trim().trim_end_matches(['_', '-', '−', '.', ':', ' ']);
     if word.is_empty() {
         let end = cell.rfind(|c: char| c.is_ascii_digit())? + 1;
         let unit = Unit::from_word(cell[end..].trim_start_matches(['_', '-', ' ']).trim())?;
@@ -100,7 +103,8 @@ fn read_with_unit(cell: &str, decimal: Decimal) -> Option<WrittenTime> {
     if word.eq_ignore_ascii_case("t") || word.eq_ignore_ascii_case("time") {
         return Some(WrittenTime::Number(value));
     }
-    Some(WrittenTime::WithUnit(value, Unit::from_word(word)?))
+    let unit = Unit::from_word(word)?;
+    Some(if dashed { WrittenTime::Dashed(value, unit) } else { WrittenTime::WithUnit(value, unit) })
 }
 
 /// A dash is a sign after white space (`day -1`) or at the start, but not in `day-1`.
@@ -151,7 +155,20 @@ pub(crate) fn read_times<'a>(
     match (first_date, first_other) {
         (Some(_), None) => read_dates(&written, cells, column, order),
         (Some(date), Some(other)) => Err(mixed_with_dates(&written, cells, column, date, other)),
-        _ => one_unit(&written, cells, column, header_unit),
+        _ => {
+            settle_dashes(&mut written);
+            one_unit(&written, cells, column, header_unit)
+        }
+    }
+}
+
+/// A dash is a minus where other times have none (`d-1, d0, d7`), and only a dash where all have it (`day-0, day-7`).
+fn settle_dashes(written: &mut [WrittenTime]) {
+    let plain = written.iter().any(|time| matches!(time, WrittenTime::WithUnit(..)));
+    for time in written {
+        if let WrittenTime::Dashed(value, unit) = *time {
+            *time = WrittenTime::WithUnit(if plain { -value } else { value }, unit);
+        }
     }
 }
 
@@ -276,7 +293,7 @@ fn one_unit<'a>(
     let values = written.iter().map(|time| match time {
         WrittenTime::WithUnit(value, unit) => value * factor(*unit),
         WrittenTime::Number(value) => value * header_unit.map_or(1.0, factor),
-        WrittenTime::Date(_) => f64::NAN,
+        WrittenTime::Date(_) | WrittenTime::Dashed(..) => f64::NAN,
     });
     let note = (units.len() > 1).then(|| {
         format!("Column {} mixes time units; all times are converted to {}s.", crate::text::quoted(column), smallest.word())

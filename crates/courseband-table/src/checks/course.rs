@@ -15,6 +15,7 @@
 //! a spread that grows with the mean nor a steep course is taken for an error.
 
 use crate::observations::Observations;
+use std::collections::HashSet;
 
 /// Scales beyond which a value is named, as measured and as a logarithm.
 const LIMIT: f64 = 8.0;
@@ -42,23 +43,27 @@ pub(super) fn far_values(observations: &Observations, runs: &[(usize, usize)]) -
         .then(|| observations.response.iter().map(|&value| libm::log(value)).collect::<Vec<f64>>())
         .map(|logs| Residuals::new(&observations.time, &logs, runs))
         .and_then(|residuals| residuals.scale().map(|scale| (residuals, scale)));
-    candidates
+    let mut far: Vec<Far> = measured
+        .without_followers(candidates)
         .into_iter()
-        .filter(|&at| measured.is_peak(at))
         .filter(|&at| logs.as_ref().is_none_or(|(logs, scale)| logs.value[at].abs() > LOG_LIMIT * scale))
         .map(|at| Far { at, expected: measured.expected[at] })
-        .collect()
+        .collect();
+    far.sort_by_key(|far| far.at);
+    far
 }
 
 /// Scaled residuals, zero where there is nothing to compare with.
 struct Residuals {
     value: Vec<f64>,
     expected: Vec<f64>,
+    /// The two values that each is compared with.
+    from: Vec<(u32, u32)>,
 }
 
 impl Residuals {
     fn new(time: &[f64], response: &[f64], runs: &[(usize, usize)]) -> Residuals {
-        let mut residuals = Residuals { value: vec![0.0; time.len()], expected: vec![f64::NAN; time.len()] };
+        let mut residuals = Residuals { value: vec![0.0; time.len()], expected: vec![f64::NAN; time.len()], from: vec![(0, 0); time.len()] };
         for &(start, end) in runs {
             for at in start..end {
                 if let Some((a, b)) = neighbours(at, start, end) {
@@ -80,6 +85,7 @@ impl Residuals {
         if value.is_finite() {
             self.value[at] = value;
             self.expected[at] = expected;
+            self.from[at] = (a as u32, b as u32);
         }
     }
 
@@ -95,11 +101,15 @@ impl Residuals {
         Some(1.4826 * *median).filter(|scale| *scale > 0.0)
     }
 
-    /// An odd value makes its neighbours' residuals large too: only the largest is named.
-    fn is_peak(&self, at: usize) -> bool {
-        let size = |index: Option<usize>| index.and_then(|index| self.value.get(index)).map_or(0.0, |value| value.abs());
-        let own = self.value[at].abs();
-        own >= size(at.checked_sub(1)) && own >= size(Some(at + 1))
+    /// An odd value makes the residuals large that are computed from it: the largest first, those drop out.
+    fn without_followers(&self, mut candidates: Vec<usize>) -> Vec<usize> {
+        candidates.sort_by(|&a, &b| self.value[b].abs().total_cmp(&self.value[a].abs()).then(a.cmp(&b)));
+        let mut named = HashSet::new();
+        candidates.retain(|&at| {
+            let (a, b) = self.from[at];
+            !named.contains(&(a as usize)) && !named.contains(&(b as usize)) && named.insert(at)
+        });
+        candidates
     }
 }
 

@@ -45,7 +45,7 @@ fn signs(framed: Framed<'_>, subjects: &[usize]) -> bool {
     let corner = framed.written(0);
     let says_subject = clarity(corner, Role::Subject) == 4;
     let says_time = clarity(corner, Role::Time) >= 3 && !says_subject;
-    let worded = |cell: &&str| matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..) | WrittenTime::Date(_)));
+    let worded = |cell: &&str| matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..) | WrittenTime::Date(_)));
     let times = says_time || framed.cells(0).filter(worded).count() * 2 > framed.frame.body.len();
     let heads_are_times = subjects.iter().all(|&column| read_head(framed.written(column)).is_some_and(|head| head.clear));
     let grouped = group_labels(framed, subjects).is_some();

@@ -29,7 +29,7 @@ pub(super) fn read_head(name: &str) -> Option<TimeHead> {
 fn head(stem: &str, text: &str, time: WrittenTime) -> Option<TimeHead> {
     let (value, unit) = match time {
         WrittenTime::Number(value) => (value, None),
-        WrittenTime::WithUnit(value, unit) => (value, Some(unit)),
+        WrittenTime::WithUnit(value, unit) | WrittenTime::Dashed(value, unit) => (value, Some(unit)),
         WrittenTime::Date(date) => (date.days(crate::request::DateOrder::DayFirst).unwrap_or(f64::NAN), Some(Unit::Day)),
     };
     // `s1` and `y1` are samples and responses more often than seconds and years.
@@ -71,7 +71,7 @@ fn before_stem(name: &str) -> Option<TimeHead> {
     let cuts = name.char_indices().filter(|(_, c)| SEPARATORS.contains(c));
     for (at, _) in cuts {
         let (text, stem) = (&name[..at], name[at + 1..].trim_matches(SEPARATORS));
-        if let Some(time @ WrittenTime::WithUnit(..)) = read_time(text, Decimal::Point)
+        if let Some(time @ (WrittenTime::WithUnit(..) | WrittenTime::Dashed(..))) = read_time(text, Decimal::Point)
             && stem.starts_with(char::is_alphabetic)
         {
             return head(stem, text, time);

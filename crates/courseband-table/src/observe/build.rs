@@ -87,7 +87,7 @@ impl Observer<'_> {
             values.iter().copied().fold(f64::NEG_INFINITY, f64::max) - low
         };
         self.notes.push("Time counts in days since the earliest date in the table.".to_string());
-        if range(first) > 0.25 * range(&times.values) && range(first) > 0.0 {
+        if range(first) > 0.25 * range(&times.values) && range(first) > 2.0 {
             self.notes.push(format!(
                 "Subjects start up to {} days apart. Day zero can be each subject's own first row instead.",
                 range(first).round()

@@ -27,10 +27,16 @@ impl Finder<'_> {
             return;
         }
         // A clear name with cells that cannot be read: reading it will say which.
-        let clear: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].distinct > 1).collect();
-        if changing.is_empty() || clear.iter().any(|&column| clarity(self.name(column), Role::Time) == 4) {
-            self.take_by_name(Role::Time, &clear, 4);
-        }
+        let clear: Vec<usize> = self
+            .free()
+            .into_iter()
+            .filter(|&column| {
+                let profile = &self.profiles[column];
+                let some_times = (profile.numbers + profile.worded_times) * 2 >= profile.present();
+                profile.distinct > 1 && (some_times || clarity(self.name(column), Role::Time) == 4)
+            })
+            .collect();
+        self.take_by_name(Role::Time, &clear, 3);
     }
 
     pub(super) fn subject_by_contents(&mut self) {

@@ -1,0 +1,6 @@
+//! Tables and what is read from them.
+
+mod cases;
+mod common;
+mod hostile;
+mod offers;
