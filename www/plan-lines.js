@@ -5,7 +5,7 @@
 
 import { alternativesOf } from './alternatives.js';
 import { calledName } from './context.js';
-import { percentLevel, significant } from './numbers.js';
+import { percentLevel } from './numbers.js';
 import { text } from './text.js';
 
 /** @typedef {import('./alternatives.js').ChoiceId} ChoiceId */
@@ -124,7 +124,7 @@ function marginParts(choices) {
     return [{ text: words.gapOf }, { text: words.choices.margin.none, choice: 'margin' }, { text: words.anyMatters }];
   }
   if (unit === 'response') {
-    return [{ text: words.gapUnder }, { text: significant(margin, 4).replace(/\.?0+$/, (end) => (end.startsWith('.') ? '' : end)), choice: 'margin' }, { text: words.noMatter }];
+    return [{ text: words.gapUnder }, { text: String(margin), choice: 'margin' }, { text: words.noMatter }];
   }
   const of = pairs === 'against-control' && control ? control : words.choices.margin.ofOther;
   const low = 1 - margin / 100;
