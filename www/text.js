@@ -50,7 +50,10 @@ export const text = {
   notLoaded: 'The computing part of the page could not be loaded. Load the page again; if that does not help, the folder is not complete.',
   tryInstead: 'What to try: a simpler course (straight), only a level for each subject, independent visits, or one spread for every group.',
 
+  progress: 'Progress',
+
   demo: {
+    label: 'Invented example',
     /** @param {string} title */
     mark: (title) => `Invented example: ${title}`,
     own: 'Use my table',

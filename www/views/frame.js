@@ -78,7 +78,7 @@ function mountNavigation(acts) {
 function mountMark(acts) {
   const title = el('strong');
   const toOwn = el('button', { type: 'button', 'data-act': 'own-table', onclick: () => acts.go('data') }, text.demo.own);
-  const node = el('div', { class: 'mark', 'data-region': 'invented', hidden: true }, title, el('span', {}, text.demo.strip), toOwn);
+  const node = el('section', { class: 'mark', 'data-region': 'invented', 'aria-label': text.demo.label, hidden: true }, title, el('span', {}, text.demo.strip), toOwn);
   const update = whenChanged((state) => [state.source, state.room], ({ source, room }) => {
     show(node, source?.kind === 'demo');
     show(toOwn, room !== 'data');

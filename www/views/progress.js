@@ -25,7 +25,7 @@ export function mountProgress(acts) {
   const detail = el('span', { class: 'progress-detail', 'data-region': 'message' });
   const stop = el('button', { type: 'button', class: 'quiet', onclick: acts.stop }, text.stop);
   const retry = el('button', { type: 'button', class: 'quiet', onclick: acts.retry }, text.retry);
-  const node = el('div', { class: 'progress' }, line, detail, stop, retry);
+  const node = el('section', { class: 'progress', 'aria-label': text.progress }, line, detail, stop, retry);
   return {
     node,
     /** @param {State} state */
