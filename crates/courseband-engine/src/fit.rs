@@ -91,9 +91,9 @@ pub struct Fit {
     /// Hessian of minus the log restricted likelihood over `free`.
     pub(crate) hessian: DMatrix<f64>,
     pub(crate) value: f64,
-    verdict: Verdict,
-    remarks: Vec<Remark>,
-    evaluations: usize,
+    pub(crate) verdict: Verdict,
+    pub(crate) remarks: Vec<Remark>,
+    pub(crate) evaluations: usize,
 }
 
 impl Objective for Criterion<'_> {

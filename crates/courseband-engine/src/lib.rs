@@ -2,6 +2,7 @@
 
 mod band;
 mod basis;
+mod calibrate;
 mod chains;
 mod criterion;
 mod fit;
@@ -11,11 +12,14 @@ mod params;
 mod posterior;
 mod reduce;
 pub mod special;
+mod refit;
+mod simulate;
 mod spline;
 pub mod usual;
 mod whiten;
 
 pub use band::{CriticalValues, Run, runs_above_zero};
+pub use calibrate::{Calibration, calibrated_quantile};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use model::{Data, Dimension, Model, Serial, Shape, Sharing, SubjectEffects, SubjectRows};
 pub use params::Parameter;

@@ -186,6 +186,16 @@ impl Posterior<'_> {
         }
     }
 
+    /// Mean and standard error in internal units, centre left out.
+    pub(crate) fn inner_estimate(&self, contrast: &Contrast) -> (f64, f64) {
+        let solved = &self.fit.solved;
+        let value = (contrast.parts.iter())
+            .map(|(g, w)| w.iter().zip(solved[*g].coefficients.iter()).map(|(w, b)| w * b).sum::<f64>())
+            .sum();
+        let extra: f64 = self.extra(contrast).iter().map(|x| x * x).sum();
+        (value, (variance(solved, contrast) + extra).sqrt())
+    }
+
     /// `W^(1/2)' J' f`.
     fn extra(&self, contrast: &Contrast) -> Vec<f64> {
         let Some(correction) = &self.correction else {
@@ -278,6 +288,30 @@ impl Correction {
         let df = 2.0 * plain * plain / spread;
         if df.is_nan() { self.most_df.max(1.0) } else { df.clamp(1.0, self.most_df.max(1.0)) }
     }
+}
+
+/// Value of a contrast for given coefficients per group, internal unit, centre left out.
+pub(crate) fn contrast_value(contrast: &Contrast, coefficients: &[DMatrix<f64>]) -> f64 {
+    (contrast.parts.iter())
+        .map(|(g, w)| w.iter().zip(coefficients[*g].iter()).map(|(w, b)| w * b).sum::<f64>())
+        .sum()
+}
+
+/// Coefficients drawn from their posterior given the variance parameters, K x 1 per group.
+pub(crate) fn draw_coefficients(solved: &[Solved], rng: &mut crate::special::Rng) -> Vec<DMatrix<f64>> {
+    (solved.iter())
+        .map(|s| {
+            let n = s.coefficients.nrows();
+            let mut x = DMatrix::from_fn(n, 1, |_, _| rng.normal());
+            let l = s.factor.l_dirty();
+            // x = L'^-1 z has covariance A^-1.
+            for i in (0..n).rev() {
+                let tail: f64 = (i + 1..n).map(|j| l[(j, i)] * x[j]).sum();
+                x[i] = (x[i] - tail) / l[(i, i)];
+            }
+            &s.coefficients + x
+        })
+        .collect()
 }
 
 fn variance(solved: &[Solved], contrast: &Contrast) -> f64 {

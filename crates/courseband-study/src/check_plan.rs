@@ -47,6 +47,15 @@ impl Plan {
         if c.pairs == Pairs::AgainstControl && c.control.is_none() {
             return Err(Refusal::plan("comparisons.pairs is against-control: name the group in comparisons.control."));
         }
+        if c.small_sample == SmallSample::Calibrated && c.band == BandKind::Pointwise {
+            return Err(Refusal::plan(
+                "comparisons.small_sample is calibrated, which is for simultaneous bands. Set comparisons.band to \
+                 \"simultaneous\", or comparisons.small_sample to \"df\".",
+            ));
+        }
+        if c.refits < 99 || c.refits > 100_000 {
+            return Err(Refusal::plan(format!("comparisons.refits is {}: give a whole number from 99 to 100000.", c.refits)));
+        }
         self.check_grid()?;
         self.check_reach()
     }
@@ -107,9 +116,6 @@ impl Plan {
         }
         if !self.columns.covariates.is_empty() {
             return missing("columns.covariates", "an empty list");
-        }
-        if self.comparisons.small_sample == SmallSample::Calibrated {
-            return missing("comparisons.small_sample: calibrated", "\"df\"");
         }
         Ok(())
     }

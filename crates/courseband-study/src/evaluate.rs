@@ -16,6 +16,14 @@ pub(crate) struct Evaluation<'a> {
     fit: &'a Fit,
     posterior: Posterior<'a>,
     grid: Vec<f64>,
+    calibrated: Option<CalibratedValues>,
+}
+
+/// Critical values from refits.
+#[derive(Debug, Clone, Copy)]
+pub(crate) struct CalibratedValues {
+    pub(crate) curves: f64,
+    pub(crate) differences: f64,
 }
 
 /// Degrees of freedom over a family, and its critical values.
@@ -39,7 +47,7 @@ impl Family {
 }
 
 impl<'a> Evaluation<'a> {
-    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit) -> Self {
+    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit, calibrated: Option<CalibratedValues>) -> Self {
         let posterior = match plan.comparisons.small_sample {
             SmallSample::None => fit.plug_in(),
             _ => fit.corrected(),
@@ -50,7 +58,7 @@ impl<'a> Evaluation<'a> {
         let grid = (0..plan.grid.count)
             .map(|k| if k + 1 == plan.grid.count { end } else { start + (end - start) * k as f64 / steps })
             .collect();
-        Evaluation { plan, cohort, fit, posterior, grid }
+        Evaluation { plan, cohort, fit, posterior, grid, calibrated }
     }
 
     pub(crate) fn is_corrected(&self) -> bool {
@@ -79,12 +87,14 @@ impl<'a> Evaluation<'a> {
         crate::cohort::distinct(all.filter(|&t| t >= low && t <= high))
     }
 
-    fn family(&self, members: Vec<(Contrast, Estimate)>, directions: usize) -> Family {
+    fn family(&self, members: Vec<(Contrast, Estimate)>, directions: usize, calibrated: Option<f64>) -> Family {
         let level = self.plan.comparisons.level;
         let used: Vec<(Contrast, Estimate)> = members.into_iter().filter(|(_, e)| e.se > 0.0).collect();
         let least = used.iter().map(|(_, e)| e.df).fold(f64::INFINITY, f64::min);
         let most = used.iter().map(|(_, e)| e.df).fold(1.0, f64::max);
-        let values = if self.plan.comparisons.band == BandKind::Pointwise || used.is_empty() {
+        let values = if let Some(value) = calibrated {
+            CriticalValues::fixed(value)
+        } else if self.plan.comparisons.band == BandKind::Pointwise || used.is_empty() {
             CriticalValues::pointwise(level)
         } else {
             let contrasts: Vec<Contrast> = used.into_iter().map(|(c, _)| c).collect();
@@ -118,12 +128,29 @@ impl<'a> Evaluation<'a> {
 
     pub(crate) fn curves(&self) -> Vec<Curve> {
         let groups = self.cohort.groups.len();
-        let mut members = Vec::new();
-        for g in 0..groups {
-            members.extend(self.asked(|t| self.fit.course(g, t), &self.inside(self.cohort.supports[g])));
-        }
-        let family = self.family(members, DIRECTIONS / 2);
+        let family = self.family(self.curve_members(), DIRECTIONS / 2, self.calibrated.map(|c| c.curves));
         (0..groups).map(|g| self.curve(g, &family)).collect()
+    }
+
+    fn curve_members(&self) -> Vec<(Contrast, Estimate)> {
+        let groups = 0..self.cohort.groups.len();
+        groups.flat_map(|g| self.asked(|t| self.fit.course(g, t), &self.inside(self.cohort.supports[g]))).collect()
+    }
+
+    fn gap_members(&self) -> Vec<(Contrast, Estimate)> {
+        let mut members = Vec::new();
+        for (from, to) in self.pairs() {
+            if let Some(support) = self.overlap(from, to) {
+                members.extend(self.asked(|t| self.fit.gap(from, to, t), &self.inside(support)));
+            }
+        }
+        members
+    }
+
+    /// The families whose largest error a calibration follows: courses, then gaps.
+    pub(crate) fn families(&self) -> Vec<Vec<Contrast>> {
+        let contrasts = |members: Vec<(Contrast, Estimate)>| members.into_iter().map(|(c, _)| c).collect();
+        vec![contrasts(self.curve_members()), contrasts(self.gap_members())]
     }
 
     fn curve(&self, g: usize, family: &Family) -> Curve {
@@ -159,13 +186,7 @@ impl<'a> Evaluation<'a> {
 
     pub(crate) fn differences(&self) -> Vec<Difference> {
         let pairs = self.pairs();
-        let mut members = Vec::new();
-        for &(from, to) in &pairs {
-            if let Some(support) = self.overlap(from, to) {
-                members.extend(self.asked(|t| self.fit.gap(from, to, t), &self.inside(support)));
-            }
-        }
-        let family = self.family(members, DIRECTIONS);
+        let family = self.family(self.gap_members(), DIRECTIONS, self.calibrated.map(|c| c.differences));
         pairs.iter().map(|&(from, to)| self.difference(from, to, &family)).collect()
     }
 

@@ -19,4 +19,4 @@ mod study;
 pub use findings::*;
 pub use plan::*;
 pub use refusal::Refusal;
-pub use study::{Study, run};
+pub use study::{Calibrator, Refits, Study, run};

@@ -436,6 +436,8 @@ pub struct Comparisons {
     pub band: BandKind,
     /// Handling of small samples.
     pub small_sample: SmallSample,
+    /// Number of refits behind a calibrated critical value.
+    pub refits: usize,
 }
 
 impl Default for Comparisons {
@@ -448,6 +450,7 @@ impl Default for Comparisons {
             margin_unit: MarginUnit::Response,
             band: BandKind::Simultaneous,
             small_sample: SmallSample::Auto,
+            refits: 1000,
         }
     }
 }

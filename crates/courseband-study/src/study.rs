@@ -1,12 +1,12 @@
 //! A table held open, and the way from a plan to its findings.
 
 use crate::cohort::{Cohort, columns_used, problems};
-use crate::evaluate::Evaluation;
+use crate::evaluate::{CalibratedValues, Evaluation};
 use crate::findings::*;
 use crate::plan::{BandKind, MarginUnit, Plan, Serial, SmallSample, Transform};
 use crate::refusal::Refusal;
 use crate::{remarks, sentences};
-use courseband_engine::{Fit, FitError, Verdict, fit};
+use courseband_engine::{Calibration, Fit, FitError, Verdict, calibrated_quantile, fit};
 use courseband_table::{Reading, Table};
 
 /// A table held open. The last reading is kept, so that a change of the model does not read the table again.
@@ -56,11 +56,83 @@ impl Study {
     /// A plan or table that cannot be used. A fit that fails is no error: see [`FitStatus::Failed`].
     pub fn run(&mut self, plan: &Plan) -> Result<Findings, Refusal> {
         plan.check()?;
-        let reading = self.reading(plan)?;
-        if let Some(question) = reading.open_question() {
-            return Err(Refusal { about: "question", message: question.refusal() });
+        if plan.comparisons.small_sample == SmallSample::Calibrated
+            && let Some(calibrator) = self.calibration(plan)?
+        {
+            let refits = calibrator.refits(0, plan.comparisons.refits as u64);
+            return self.run_calibrated(plan, &refits);
         }
-        find(reading, plan)
+        find(self.answered(plan)?, plan, None)
+    }
+}
+
+/// What refits of simulated tables gave, one pair of values per refit: the largest |error| / SE over all
+/// courses, and over all compared gaps.
+#[derive(Debug, Clone, Default, PartialEq)]
+pub struct Refits {
+    /// Over all courses; infinite where a refit failed.
+    pub curves: Vec<f64>,
+    /// Over all gaps.
+    pub differences: Vec<f64>,
+}
+
+impl Refits {
+    /// Adds the refits of another worker. The order does not matter.
+    pub fn add(&mut self, other: &Refits) {
+        self.curves.extend(&other.curves);
+        self.differences.extend(&other.differences);
+    }
+}
+
+/// A fit prepared for refits: see [`Study::calibration`].
+#[derive(Debug)]
+pub struct Calibrator(Calibration);
+
+impl Calibrator {
+    /// Refits number `first` up to `first + count`, the same whoever computes them.
+    #[must_use]
+    pub fn refits(&self, first: u64, count: u64) -> Refits {
+        let mut refits = Refits::default();
+        for index in first..first + count {
+            let values = self.0.refit(index);
+            refits.curves.push(values[0]);
+            refits.differences.push(values[1]);
+        }
+        refits
+    }
+}
+
+impl Study {
+    /// Prepares the calibration of a plan's bands. `None` where the fit failed or nothing can be simulated.
+    ///
+    /// # Errors
+    /// A plan or table that cannot be used.
+    pub fn calibration(&mut self, plan: &Plan) -> Result<Option<Calibrator>, Refusal> {
+        plan.check()?;
+        let reading = self.answered(plan)?;
+        let cohort = Cohort::new(&reading.observations, plan)?;
+        let Ok(fitted) = fit(&cohort.data, &plan.model()) else {
+            return Ok(None);
+        };
+        let families = Evaluation::new(plan, &cohort, &fitted, None).families();
+        Ok(Calibration::new(fitted, families, plan.seed).map(Calibrator))
+    }
+
+    /// Findings with the critical values that refits gave.
+    ///
+    /// # Errors
+    /// A plan or table that cannot be used.
+    pub fn run_calibrated(&mut self, plan: &Plan, refits: &Refits) -> Result<Findings, Refusal> {
+        plan.check()?;
+        find(self.answered(plan)?, plan, Some(refits))
+    }
+
+    fn answered(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
+        let reading = self.reading(plan)?;
+        match reading.open_question() {
+            Some(question) => Err(Refusal { about: "question", message: question.refusal() }),
+            None => Ok(reading),
+        }
     }
 }
 
@@ -73,7 +145,7 @@ pub fn run(bytes: &[u8], plan: &Plan) -> Result<Findings, Refusal> {
     Study::open(bytes)?.run(plan)
 }
 
-fn find(reading: &Reading, plan: &Plan) -> Result<Findings, Refusal> {
+fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findings, Refusal> {
     let cohort = Cohort::new(&reading.observations, plan)?;
     let columns = columns_used(reading);
     let ratio = plan.response.transform == Transform::Log;
@@ -103,7 +175,7 @@ fn find(reading: &Reading, plan: &Plan) -> Result<Findings, Refusal> {
         sentences: Vec::new(),
     };
     match fit(&cohort.data, &plan.model()) {
-        Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted),
+        Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted, refits),
         Err(error) => refuse_or_fail(&mut findings, &cohort, &error)?,
     }
     findings.sentences = sentences::write(&findings);
@@ -125,15 +197,42 @@ fn failed_summary() -> FitSummary {
     }
 }
 
-fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit) {
+fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, refits: Option<&Refits>) {
     findings.fit = summary(plan, cohort, fitted);
-    let evaluation = Evaluation::new(plan, cohort, fitted);
+    let calibrated = refits.and_then(|refits| calibrated_values(refits, plan, &mut findings.notes));
+    let evaluation = Evaluation::new(plan, cohort, fitted, calibrated);
     findings.curves = evaluation.curves();
     findings.differences = evaluation.differences();
     for remark in &findings.fit.remarks {
         findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
     }
-    findings.notes.extend(band_notes(plan, &evaluation));
+    findings.notes.extend(band_notes(plan, &evaluation, calibrated.is_some()));
+}
+
+/// Quantiles of the refits, with a note that says how sure they are. `None` where too many refits failed.
+fn calibrated_values(refits: &Refits, plan: &Plan, notes: &mut Vec<Note>) -> Option<CalibratedValues> {
+    let level = plan.comparisons.level;
+    let failed = refits.differences.iter().chain(&refits.curves).filter(|x| x.is_infinite()).count();
+    let values = |kept: &[f64]| if kept.is_empty() { (f64::INFINITY, [f64::INFINITY; 2]) } else { calibrated_quantile(kept, level) };
+    let (curves, _) = values(&refits.curves);
+    let (differences, reach) = values(&refits.differences);
+    let count = refits.curves.len();
+    if !curves.is_finite() || !differences.is_finite() {
+        notes.push(Note {
+            about: "bands".into(),
+            message: format!("Calibration did not succeed: {failed} of {count} refits failed. The limits stay with degrees of freedom."),
+        });
+        return None;
+    }
+    notes.push(Note {
+        about: "bands".into(),
+        message: format!(
+            "Calibrated: on {count} simulated tables with the same {} and visits the critical value for gaps is {differences:.3} \
+             (Monte-Carlo range {:.3} to {:.3}; seed {}).",
+            plan.words.subjects, reach[0], reach[1], plan.seed
+        ),
+    });
+    Some(CalibratedValues { curves, differences })
 }
 
 fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
@@ -202,7 +301,7 @@ fn plan_notes(plan: &Plan, reading: &Reading, cohort: &Cohort) -> Vec<Note> {
     notes
 }
 
-fn band_notes(plan: &Plan, evaluation: &Evaluation) -> Vec<Note> {
+fn band_notes(plan: &Plan, evaluation: &Evaluation, calibrated: bool) -> Vec<Note> {
     let c = &plan.comparisons;
     let percent = sentences::percent(c.level);
     let pairs = evaluation.pairs().len();
@@ -220,8 +319,9 @@ fn band_notes(plan: &Plan, evaluation: &Evaluation) -> Vec<Note> {
             .to_string(),
         (_, false) => "The small-sample correction could not be computed here: limits use normal theory and are too narrow.".into(),
     };
-    vec![
-        Note { about: "bands".into(), message: reach },
-        Note { about: "bands".into(), message: small },
-    ]
+    let mut messages = vec![reach];
+    if !calibrated {
+        messages.push(small);
+    }
+    messages.into_iter().map(|message| Note { about: "bands".into(), message }).collect()
 }
