@@ -29,6 +29,14 @@ pub struct Contrast {
 }
 
 impl Contrast {
+    /// `factor * self`.
+    #[must_use]
+    pub fn times(mut self, factor: f64) -> Contrast {
+        self.level *= factor;
+        self.parts.iter_mut().for_each(|(_, weights)| weights.iter_mut().for_each(|w| *w *= factor));
+        self
+    }
+
     /// `self + factor * other`.
     #[must_use]
     pub fn plus(mut self, factor: f64, other: &Contrast) -> Contrast {

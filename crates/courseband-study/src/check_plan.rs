@@ -56,6 +56,9 @@ impl Plan {
         if c.refits < 99 || c.refits > 100_000 {
             return Err(Refusal::plan(format!("comparisons.refits is {}: give a whole number from 99 to 100000.", c.refits)));
         }
+        if c.landmark.is_some_and(|t| !t.is_finite()) {
+            return Err(Refusal::plan("comparisons.landmark is not a finite number. Give a time inside the follow-up, or null."));
+        }
         self.check_grid()?;
         self.check_reach()
     }

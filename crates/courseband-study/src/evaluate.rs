@@ -11,10 +11,10 @@ const DIRECTIONS: usize = 16_384;
 
 /// Everything that is evaluated on one fit.
 pub(crate) struct Evaluation<'a> {
-    plan: &'a Plan,
-    cohort: &'a Cohort,
-    fit: &'a Fit,
-    posterior: Posterior<'a>,
+    pub(crate) plan: &'a Plan,
+    pub(crate) cohort: &'a Cohort,
+    pub(crate) fit: &'a Fit,
+    pub(crate) posterior: Posterior<'a>,
     grid: Vec<f64>,
     calibrated: Option<CalibratedValues>,
 }
@@ -81,7 +81,7 @@ impl<'a> Evaluation<'a> {
     }
 
     /// Grid and visits inside `support`, with its ends, ascending.
-    fn inside(&self, support: [f64; 2]) -> Vec<f64> {
+    pub(crate) fn inside(&self, support: [f64; 2]) -> Vec<f64> {
         let [low, high] = support;
         let all = self.grid.iter().chain(&self.cohort.visits).copied().chain([low, high]);
         crate::cohort::distinct(all.filter(|&t| t >= low && t <= high))
@@ -122,7 +122,7 @@ impl<'a> Evaluation<'a> {
         times.iter().map(|&t| (everywhere || within(t)).then(|| self.posterior.estimate(&contrast(t)))).collect()
     }
 
-    fn back(&self, value: f64) -> f64 {
+    pub(crate) fn back(&self, value: f64) -> f64 {
         if self.plan.response.transform == Transform::Log { libm::exp(value) } else { value }
     }
 
@@ -190,7 +190,7 @@ impl<'a> Evaluation<'a> {
         pairs.iter().map(|&(from, to)| self.difference(from, to, &family)).collect()
     }
 
-    fn overlap(&self, from: usize, to: usize) -> Option<[f64; 2]> {
+    pub(crate) fn overlap(&self, from: usize, to: usize) -> Option<[f64; 2]> {
         let (a, b) = (self.cohort.supports[from], self.cohort.supports[to]);
         let (low, high) = (a[0].max(b[0]), a[1].min(b[1]));
         (low <= high).then_some([low, high])

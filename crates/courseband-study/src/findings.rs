@@ -37,6 +37,10 @@ pub struct Findings {
     pub scale: ScaleInfo,
     /// Plain sentences, most important first.
     pub sentences: Vec<Sentence>,
+    /// One per compared pair: effect sizes.
+    pub pair_effects: Vec<PairEffects>,
+    /// One per group: effect sizes.
+    pub group_effects: Vec<GroupEffects>,
 }
 
 /// Columns as used. A role without a column is `null`.
@@ -300,4 +304,80 @@ pub struct Sentence {
     pub text: String,
     /// What it depends on, such as `36 mice, 327 visits`.
     pub depends: String,
+}
+
+/// A number with its interval, on the response scale; ratios where `scale.ratio` and it is a gap.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct Effect {
+    /// Estimate.
+    pub estimate: f64,
+    /// Lower limit at the plan's level, for this number by itself.
+    pub lower: f64,
+    /// Upper limit.
+    pub upper: f64,
+    /// Degrees of freedom; `null` where infinite.
+    pub df: Option<f64>,
+}
+
+/// A time with its interval. `null` stands for never within the support.
+#[derive(Debug, Clone, PartialEq, Serialize)]
+pub struct TimeEffect {
+    /// From the fitted curve.
+    pub estimate: Option<f64>,
+    /// Earliest time that is compatible.
+    pub lower: Option<f64>,
+    /// Latest time that is compatible.
+    pub upper: Option<f64>,
+    /// True where the lower end is the first time of support: it may have been earlier.
+    pub at_or_before_start: bool,
+    /// Probability that it holds from the first time on.
+    pub already_at_start: f64,
+    /// Probability that it is not reached by the end of support.
+    pub never: f64,
+}
+
+/// Effect sizes of a pair, in the order of `differences`.
+#[derive(Debug, Clone, Serialize)]
+pub struct PairEffects {
+    /// The time of `landmark`.
+    pub landmark_time: Option<f64>,
+    /// Gap at the landmark: `to` minus `from`, or the ratio.
+    pub landmark: Option<Effect>,
+    /// Gap averaged over the support, or the geometric mean of the ratio over time.
+    pub average: Option<Effect>,
+    /// Area between the courses: response unit times time unit; `null` on a ratio scale.
+    pub area: Option<Effect>,
+    /// Start of the last run, unbroken to the end of support, in which the gap is beyond the margin;
+    /// `null` without a margin.
+    pub onset: Option<TimeEffect>,
+    /// Direction of `onset`.
+    pub onset_direction: Option<Direction>,
+}
+
+/// Effect sizes of a group, in the order of `groups`.
+#[derive(Debug, Clone, Serialize)]
+pub struct GroupEffects {
+    /// Mean level over the group's support (geometric mean under log).
+    pub average: Option<Effect>,
+    /// Area under the course: response unit times time unit; `null` on a ratio scale.
+    pub area: Option<Effect>,
+    /// Change per time unit over the support: a difference, or a ratio.
+    pub growth: Option<Effect>,
+    /// Time to double under log, negative where it halves; limits `null` where the growth's interval holds no change.
+    pub doubling_time: Option<Effect>,
+    /// Highest point of the course.
+    pub peak: Option<Extreme>,
+    /// Lowest point of the course.
+    pub nadir: Option<Extreme>,
+}
+
+/// An extreme of a course.
+#[derive(Debug, Clone, Copy, PartialEq, Serialize)]
+pub struct Extreme {
+    /// When, with quantiles of posterior draws.
+    pub time: Effect,
+    /// How high, with quantiles of posterior draws.
+    pub height: Effect,
+    /// True where the fitted extreme is at an end of the support, so that it may lie outside.
+    pub at_end: bool,
 }

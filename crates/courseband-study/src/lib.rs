@@ -8,6 +8,7 @@
 
 mod check_plan;
 mod cohort;
+mod effects;
 mod evaluate;
 mod findings;
 mod plan;

@@ -438,6 +438,8 @@ pub struct Comparisons {
     pub small_sample: SmallSample,
     /// Number of refits behind a calibrated critical value.
     pub refits: usize,
+    /// Time at which the gap is read out; `null`: the last visit that both groups have.
+    pub landmark: Option<f64>,
 }
 
 impl Default for Comparisons {
@@ -451,6 +453,7 @@ impl Default for Comparisons {
             band: BandKind::Simultaneous,
             small_sample: SmallSample::Auto,
             refits: 1000,
+            landmark: None,
         }
     }
 }

@@ -54,6 +54,7 @@ impl Speaker<'_> {
             text.extend(self.reading_at(t));
         }
         text.push(self.days());
+        text.extend(self.onset());
         if let Some(rest) = self.rest() {
             text.push(rest);
         }
@@ -138,6 +139,48 @@ impl Speaker<'_> {
         format!("{capital}{}: {tail} on the number of {many}.", letters.as_str())
     }
 
+    /// The day the gap passes the margin for good: a property of the curve, with its interval.
+    fn onset(&self) -> Option<String> {
+        let effects = self.findings.pair_effects.get(self.index)?;
+        let onset = effects.onset.as_ref()?;
+        let word = &self.findings.scale.time_word;
+        let value = onset.estimate?;
+        let low = match (onset.lower, onset.at_or_before_start) {
+            (Some(_), true) => "at or before the first visit".to_string(),
+            (Some(t), false) => self.bare(t),
+            (None, _) => return None,
+        };
+        let high = onset.upper.map_or("not reached".to_string(), |t| self.bare(t));
+        let around = self.around(onset.lower?, onset.upper);
+        let visits = &self.findings.visits;
+        let follow_up = visits[visits.len() - 1] - visits[0];
+        let width = onset.upper.unwrap_or(visits[visits.len() - 1]) - onset.lower?;
+        let margin = self.margin();
+        Some(if width > 0.25 * follow_up {
+            format!("The {word} the gap passes {margin} for good lies between {low} and {high}{around}; best estimate {}.", self.bare(value))
+        } else {
+            format!("Best estimate of the {word} the gap passes {margin} for good: {} ({low} to {high}{around}).", self.bare(value))
+        })
+    }
+
+    /// The visits around an uncertain span, where few enough to be named.
+    fn around(&self, low: f64, high: Option<f64>) -> String {
+        let visits = &self.difference.at_visits.time;
+        let high = high.unwrap_or(f64::INFINITY);
+        let first = visits.partition_point(|&t| t <= low).saturating_sub(1);
+        let last = visits.partition_point(|&t| t < high).min(visits.len().saturating_sub(1));
+        let named: Vec<String> = visits.get(first..=last).unwrap_or(&[]).iter().map(|&t| plain(t)).collect();
+        if named.is_empty() || named.len() > 5 {
+            return String::new();
+        }
+        format!("; visits at {}", named.join(", "))
+    }
+
+    fn bare(&self, t: f64) -> String {
+        let visits = &self.findings.visits;
+        number(t, decimals((visits[visits.len() - 1] - visits[0]) / 5.0))
+    }
+
     fn span(&self, s: &Stretch) -> String {
         match (s.open_start, s.open_end) {
             (true, true) => "over the whole course".into(),
@@ -178,9 +221,7 @@ impl Speaker<'_> {
 
     /// A time on the continuous curve, rounded to a hundredth of the follow-up.
     fn edge(&self, t: f64) -> String {
-        let visits = &self.findings.visits;
-        let span = visits[visits.len() - 1] - visits[0];
-        format!("{} {}", self.findings.scale.time_word, number(t, decimals(span / 5.0)))
+        format!("{} {}", self.findings.scale.time_word, self.bare(t))
     }
 }
 

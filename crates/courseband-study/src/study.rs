@@ -173,6 +173,8 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         visits: cohort.visits.clone(),
         scale,
         sentences: Vec::new(),
+        pair_effects: Vec::new(),
+        group_effects: Vec::new(),
     };
     match fit(&cohort.data, &plan.model()) {
         Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted, refits),
@@ -203,6 +205,8 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
     let evaluation = Evaluation::new(plan, cohort, fitted, calibrated);
     findings.curves = evaluation.curves();
     findings.differences = evaluation.differences();
+    findings.pair_effects = evaluation.pair_effects(&findings.differences);
+    findings.group_effects = evaluation.group_effects();
     for remark in &findings.fit.remarks {
         findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
     }

@@ -1,0 +1,236 @@
+//! Effect sizes: the gap at a landmark, areas, averages, growth, extremes, onset.
+//!
+//! Linear functions of the curves (landmark, average, area, growth) have exact
+//! posterior means and standard errors and a t interval for the number by itself.
+//! Times and heights of extremes, and probabilities, come from seeded posterior
+//! draws, widened by the t distribution of the smallest degrees of freedom met.
+//! The onset follows the band: its interval holds every day that some course
+//! inside the band could have as its onset.
+
+use crate::evaluate::Evaluation;
+use crate::findings::*;
+use courseband_engine::special::{Rng, t_quantile};
+use courseband_engine::{Contrast, Estimate, runs_above_zero};
+
+/// Posterior draws behind extremes and probabilities.
+const DRAWS: usize = 1000;
+/// Pieces of the integration; within each a cubic is integrated exactly by two points.
+const PIECES: usize = 200;
+
+impl Evaluation<'_> {
+    fn interval(&self, e: Estimate, back: impl Fn(f64) -> f64) -> Effect {
+        let reach = t_quantile(0.5 + 0.5 * self.plan.comparisons.level, e.df) * e.se;
+        Effect {
+            estimate: back(e.mean),
+            lower: back(e.mean - reach),
+            upper: back(e.mean + reach),
+            df: Some(e.df).filter(|df| df.is_finite()),
+        }
+    }
+
+    /// Average of a contrast over `[low, high]` (Gauss-Legendre, two points a piece).
+    fn average(&self, contrast: impl Fn(f64) -> Contrast, [low, high]: [f64; 2]) -> Option<Estimate> {
+        if high <= low {
+            return None;
+        }
+        let h = (high - low) / PIECES as f64;
+        let offset = 0.5 / libm::sqrt(3.0);
+        let mut sum: Option<Contrast> = None;
+        for k in 0..PIECES {
+            let middle = low + h * (k as f64 + 0.5);
+            for t in [middle - h * offset, middle + h * offset] {
+                let weight = 0.5 / PIECES as f64;
+                let part = contrast(t);
+                sum = Some(match sum {
+                    None => part.times(weight),
+                    Some(sum) => sum.plus(weight, &part),
+                });
+            }
+        }
+        sum.map(|contrast| self.posterior.estimate(&contrast))
+    }
+
+    pub(crate) fn pair_effects(&self, differences: &[Difference]) -> Vec<PairEffects> {
+        (self.pairs().into_iter().zip(differences))
+            .map(|((from, to), difference)| self.pair_effect(from, to, difference))
+            .collect()
+    }
+
+    fn pair_effect(&self, from: usize, to: usize, difference: &Difference) -> PairEffects {
+        let gap = |t: f64| self.fit.gap(from, to, t);
+        let support = self.overlap(from, to);
+        let asked = self.plan.comparisons.landmark;
+        let inside = |t: &f64| support.is_some_and(|[low, high]| *t >= low && *t <= high);
+        let landmark_time = asked.or(difference.at_visits.time.last().copied()).filter(inside);
+        let average = support.and_then(|support| self.average(gap, support));
+        let ratio = self.is_ratio();
+        let span = support.map_or(0.0, |[low, high]| high - low);
+        let (onset, onset_direction) = match self.onset(difference, &gap) {
+            Some((onset, direction)) => (Some(onset), Some(direction)),
+            None => (None, None),
+        };
+        PairEffects {
+            landmark_time,
+            landmark: landmark_time.map(|t| self.interval(self.posterior.estimate(&gap(t)), |x| self.back(x))),
+            average: average.map(|e| self.interval(e, |x| self.back(x))),
+            area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
+            onset,
+            onset_direction,
+        }
+    }
+
+    fn is_ratio(&self) -> bool {
+        self.plan.response.transform == crate::plan::Transform::Log
+    }
+
+    /// The onset beyond the margin, in the direction in which the gap ends.
+    fn onset(&self, difference: &Difference, gap: &impl Fn(f64) -> Contrast) -> Option<(TimeEffect, Direction)> {
+        let support = difference.support?;
+        let [low, high] = difference.margin;
+        if !(high > 0.0) || support[1] <= support[0] {
+            return None;
+        }
+        let points = self.inside(support);
+        let at_end = self.posterior.estimate(&gap(support[1])).mean;
+        let above = at_end >= 0.0;
+        let beyond = |x: f64| if above { x - high } else { low - x };
+        let limit = |t: f64, towards: f64| {
+            let e = self.posterior.estimate(&gap(t));
+            beyond(e.mean + if above { towards } else { -towards } * self.critical_at(difference, e.df) * e.se)
+        };
+        let last_run = |value: &dyn Fn(f64) -> f64| {
+            let at: Vec<f64> = points.iter().map(|&t| value(t)).collect();
+            let run = runs_above_zero(&points, &at, value).into_iter().last().filter(|run| run.open_end)?;
+            Some((run.start, run.open_start))
+        };
+        let (already_at_start, never) = self.onset_chances(&points, gap, &beyond);
+        let earliest = last_run(&|t| limit(t, 1.0));
+        let direction = if above { Direction::Above } else { Direction::Below };
+        Some((
+            TimeEffect {
+                estimate: last_run(&|t| limit(t, 0.0)).map(|run| run.0),
+                lower: earliest.map(|run| run.0),
+                upper: last_run(&|t| limit(t, -1.0)).map(|run| run.0),
+                at_or_before_start: earliest.is_some_and(|run| run.1),
+                already_at_start,
+                never,
+            },
+            direction,
+        ))
+    }
+
+    /// Critical value of the gaps' band.
+    fn critical_at(&self, difference: &Difference, df: f64) -> f64 {
+        match &difference.critical {
+            Critical::One(value) => *value,
+            Critical::Many(values) => {
+                // The value at the grid point whose degrees of freedom are nearest.
+                let near = (difference.grid.df.iter().zip(values))
+                    .filter_map(|(d, v)| Some(((d.as_ref()? - df).abs(), v.as_ref()?)))
+                    .min_by(|a, b| a.0.total_cmp(&b.0));
+                near.map_or(f64::INFINITY, |(_, value)| *value)
+            }
+        }
+    }
+
+    /// Shares of posterior draws that are beyond from the first time on, and that are not beyond at the end.
+    fn onset_chances(&self, points: &[f64], gap: &impl Fn(f64) -> Contrast, beyond: &impl Fn(f64) -> f64) -> (f64, f64) {
+        let (mut whole, mut never) = (0, 0);
+        self.draw(points, gap, |values| {
+            let last = values.len() - 1;
+            whole += usize::from(values.iter().all(|&x| beyond(x) > 0.0));
+            never += usize::from(beyond(values[last]) <= 0.0);
+        });
+        (whole as f64 / DRAWS as f64, never as f64 / DRAWS as f64)
+    }
+
+    fn draw(&self, points: &[f64], contrast: &impl Fn(f64) -> Contrast, mut each: impl FnMut(&[f64])) {
+        let contrasts: Vec<Contrast> = points.iter().map(|&t| contrast(t)).collect();
+        let df = contrasts.iter().map(|c| self.posterior.estimate(c).df).fold(f64::INFINITY, f64::min);
+        let joint = self.posterior.joint(&contrasts);
+        let mut rng = Rng::stream(self.plan.seed, 77);
+        let mut values = Vec::new();
+        for _ in 0..DRAWS {
+            let stretch = if df.is_finite() { libm::sqrt(df / rng.chi2(df)) } else { 1.0 };
+            joint.draw(&mut rng, stretch, &mut values);
+            each(&values);
+        }
+    }
+
+    pub(crate) fn group_effects(&self) -> Vec<GroupEffects> {
+        (0..self.cohort.groups.len()).map(|g| self.group_effect(g)).collect()
+    }
+
+    fn group_effect(&self, g: usize) -> GroupEffects {
+        let support = self.cohort.supports[g];
+        let span = support[1] - support[0];
+        let course = |t: f64| self.fit.course(g, t);
+        let average = self.average(course, support);
+        let ratio = self.is_ratio();
+        let growth = (span > 0.0).then(|| {
+            let change = course(support[1]).plus(-1.0, &course(support[0])).times(1.0 / span);
+            self.posterior.estimate(&change)
+        });
+        let [peak, nadir] = self.extremes(g);
+        GroupEffects {
+            average: average.map(|e| self.interval(e, |x| self.back(x))),
+            area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
+            growth: growth.map(|e| self.interval(e, |x| self.back(x))),
+            doubling_time: growth.filter(|_| ratio).and_then(|e| self.doubling(e)),
+            peak,
+            nadir,
+        }
+    }
+
+    /// `ln 2` over the growth rate; none where the interval of the rate holds zero.
+    fn doubling(&self, growth: Estimate) -> Option<Effect> {
+        let rate = self.interval(growth, |x| x);
+        let time = |rate: f64| std::f64::consts::LN_2 / rate;
+        (rate.lower * rate.upper > 0.0).then(|| Effect {
+            estimate: time(rate.estimate),
+            lower: time(rate.upper),
+            upper: time(rate.lower),
+            df: rate.df,
+        })
+    }
+
+    /// Highest and lowest point of a course.
+    fn extremes(&self, g: usize) -> [Option<Extreme>; 2] {
+        let points = self.inside(self.cohort.supports[g]);
+        if points.len() < 3 {
+            return [None, None];
+        }
+        let course = |t: f64| self.fit.course(g, t);
+        let top = |values: &[f64], sign: f64| {
+            (0..values.len()).max_by(|&a, &b| (sign * values[a]).total_cmp(&(sign * values[b]))).unwrap_or(0)
+        };
+        let signs = [1.0, -1.0];
+        let mut times = [Vec::with_capacity(DRAWS), Vec::with_capacity(DRAWS)];
+        let mut heights = times.clone();
+        self.draw(&points, &course, |values| {
+            for (k, &sign) in signs.iter().enumerate() {
+                let at = top(values, sign);
+                times[k].push(points[at]);
+                heights[k].push(self.back(values[at]));
+            }
+        });
+        let fitted: Vec<f64> = points.iter().map(|&t| self.posterior.estimate(&course(t)).mean).collect();
+        let level = self.plan.comparisons.level;
+        let mut parts = times.into_iter().zip(heights).zip(signs).map(|((times, heights), sign)| {
+            let at = top(&fitted, sign);
+            Extreme {
+                time: quantiles(points[at], times, level),
+                height: quantiles(self.back(fitted[at]), heights, level),
+                at_end: at == 0 || at + 1 == points.len(),
+            }
+        });
+        [parts.next(), parts.next()]
+    }
+}
+
+/// An estimate with the quantiles of posterior draws that leave out half of `1 - level` on each side.
+fn quantiles(estimate: f64, mut draws: Vec<f64>, level: f64) -> Effect {
+    draws.sort_by(f64::total_cmp);
+    let at = |share: f64| draws[((share * draws.len() as f64) as usize).min(draws.len() - 1)];
+    Effect { estimate, lower: at(0.5 - 0.5 * level), upper: at(0.5 + 0.5 * level), df: None }
+}
