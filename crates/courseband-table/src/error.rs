@@ -35,6 +35,11 @@ pub enum TableError {
     },
     /// A header without rows below it.
     NoRows,
+    /// Every row is left out.
+    NothingLeft {
+        /// Why, in words.
+        why: String,
+    },
     /// A named column that does not exist.
     NoSuchColumn {
         /// The name asked for.
@@ -184,6 +189,7 @@ impl fmt::Display for TableError {
                 quoted(name)
             ),
             TableError::NoRows => f.write_str("The table has no rows of data below its header. Add at least one row."),
+            TableError::NothingLeft { why } => write!(f, "No row is left to compute with: {why}. Correct the table, or name other columns."),
             TableError::NoSuchColumn { name, purpose, columns } => write!(
                 f,
                 "There is no column {} (asked for as {purpose}). The columns are {}. Name one of these.",

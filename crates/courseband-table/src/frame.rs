@@ -1,6 +1,6 @@
 //! The frame of a table: titles, header rows, unit row, body, summary rows at the foot.
 
-use crate::names::{clarity, is_summary, is_unit, split_unit};
+use crate::names::{Summary, clarity, is_unit, split_unit, summarises, summary};
 use crate::number::{Decimal, number};
 use crate::request::Role;
 use crate::sheet::Sheet;
@@ -58,29 +58,37 @@ pub(crate) fn find_frame(sheet: &Sheet) -> Frame {
 }
 
 fn sort_body(sheet: &Sheet, start: usize, frame: &mut Frame) {
-    for record in start..sheet.records() {
-        let first = sheet.cells(record).find(|cell| !cell.trim().is_empty());
-        match first {
-            None => {}
-            Some(cell) if !cell.starts_with(|c: char| c.is_ascii_digit()) && is_summary_row(sheet, record, cell) => {
-                frame.summaries.push(record);
-            }
-            Some(cell) if frame.header.is_some_and(|header| repeats(sheet, header, record, cell)) => {
-                frame.repeated.push(record);
-            }
-            Some(_) => frame.body.push(record as u32),
+    let records: Vec<u32> = (start as u32..sheet.records() as u32).filter(|&record| !is_blank(sheet, record as usize)).collect();
+    let signs: Vec<Summary> = records.iter().map(|&record| summary_sign(sheet, record as usize)).collect();
+    for (&record, summarises) in records.iter().zip(summarises(&signs)) {
+        if summarises {
+            frame.summaries.push(record as usize);
+        } else if frame.header.is_some_and(|header| repeats(sheet, header, record as usize)) {
+            frame.repeated.push(record as usize);
+        } else {
+            frame.body.push(record);
         }
     }
 }
 
-/// A summary word, and something to summarise in the same row.
-fn is_summary_row(sheet: &Sheet, record: usize, first: &str) -> bool {
-    is_summary(first) && (sheet.width() == 1 || filled(sheet, record) >= 2)
+fn is_blank(sheet: &Sheet, record: usize) -> bool {
+    sheet.cells(record).all(|cell| cell.trim().is_empty())
 }
 
-fn repeats(sheet: &Sheet, header: usize, record: usize, first: &str) -> bool {
-    let named = sheet.cells(header).find(|cell| !cell.trim().is_empty());
-    named.is_some_and(|name| name.trim() == first.trim())
+/// A summary word in the first cell, and something to summarise in the same row.
+fn summary_sign(sheet: &Sheet, record: usize) -> Summary {
+    let first = sheet.cells(record).find(|cell| !cell.trim().is_empty()).unwrap_or("");
+    match summary(first) {
+        sign if sign != Summary::None && filled(sheet, record) >= 2 => sign,
+        _ => Summary::None,
+    }
+}
+
+/// A copy of the header.
+fn repeats(sheet: &Sheet, header: usize, record: usize) -> bool {
+    // The last cell differs in nearly every row: compare it first.
+    let last = sheet.width_of(header) - 1;
+    sheet.cell(header, last).trim() == sheet.cell(record, last).trim()
         && filled(sheet, header) > 1
         && sheet.cells(header).map(str::trim).eq(sheet.cells(record).map(str::trim))
 }
@@ -105,7 +113,7 @@ fn header_record(sheet: &Sheet) -> usize {
     while header + 1 < limit
         && filled(sheet, header + 1) > filled(sheet, header)
         && !spans(sheet, header)
-        && all_words(sheet, header + 1)
+        && (all_words(sheet, header + 1) || begins_with_part(sheet, header + 1))
         && header + 2 < sheet.records()
         && !all_words(sheet, header + 2)
     {
@@ -116,6 +124,12 @@ fn header_record(sheet: &Sheet) -> usize {
 
 fn is_number(cell: &str) -> bool {
     number(cell, Decimal::Point).is_ok() || number(cell, Decimal::Comma).is_ok()
+}
+
+/// The first cell names a part, such as `mouse` or `day`.
+fn begins_with_part(sheet: &Sheet, record: usize) -> bool {
+    let first = sheet.cell(record, 0);
+    !is_number(first) && Role::ALL.iter().any(|&role| clarity(first, role) >= 3)
 }
 
 fn all_words(sheet: &Sheet, record: usize) -> bool {
@@ -129,14 +143,20 @@ fn has_names(sheet: &Sheet, record: usize) -> bool {
     !(is_number(first) && (later || sheet.width() == 1))
 }
 
-/// Cells after the first that are filled, not numbers, and leave blanks or repeat each other.
+/// Labels over several columns: cells after the first that leave blanks or repeat each other,
+/// are no numbers, and stand beside an empty corner or the name of a part.
 fn spans(sheet: &Sheet, record: usize) -> bool {
+    let corner = sheet.cell(record, 0).trim();
+    let names_part = Role::ALL.iter().any(|&role| clarity(corner, role) >= 2);
+    if !corner.is_empty() && !names_part {
+        return false;
+    }
     let labels: Vec<&str> = sheet.cells(record).skip(1).map(str::trim).filter(|cell| !cell.is_empty()).collect();
     let mut distinct = labels.clone();
     distinct.sort_unstable();
     distinct.dedup();
     let columns = sheet.width().saturating_sub(1);
-    distinct.len() >= 2 && distinct.len() * 2 <= columns && labels.iter().all(|label| read_time(label, Decimal::Point).is_none())
+    distinct.len() >= 2 && distinct.len() < columns && labels.iter().all(|label| read_time(label, Decimal::Point).is_none())
 }
 
 /// A row of spanning labels, then a row of names, then rows that start with a time or number.

@@ -7,7 +7,7 @@ mod merged;
 
 use crate::frame::{Frame, Names};
 use crate::long::{LongColumn, LongTable, Place, Source};
-use crate::names::{clarity, is_summary, split_unit};
+use crate::names::{Summary, clarity, split_unit, summarises, summary};
 use crate::number::{Decimal, NotNumber, is_missing, number};
 use crate::request::{ColumnRequest, Layout, Request, Role};
 use crate::sheet::Sheet;
@@ -99,7 +99,9 @@ impl<'a> Framed<'a> {
 
     /// Columns of summaries, such as `Mean` and `SEM`, that a wide reading keeps out.
     fn summary_columns(&self) -> Vec<usize> {
-        (1..self.width()).filter(|&column| is_summary(self.written(column))).collect()
+        let signs: Vec<Summary> = (0..self.width()).map(|column| summary(self.written(column))).collect();
+        let found = summarises(&signs);
+        (1..self.width()).filter(|&column| found[column]).collect()
     }
 
     /// Columns of the body without any cell.

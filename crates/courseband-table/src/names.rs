@@ -55,11 +55,14 @@ const BESIDE: [&str; 17] = [
 ];
 
 /// Words of rows or columns that summarise others.
-const SUMMARY: [&str; 27] = [
-    "mean", "means", "average", "avg", "sd", "s.d.", "sem", "s.e.m.", "se", "s.e.", "std", "stdev", "std dev", "std. dev.",
-    "standard deviation", "standard error", "std error", "median", "total", "sum", "min", "max", "minimum", "maximum", "cv",
-    "n", "count",
+const SUMMARY: [&str; 16] = [
+    "mean", "means", "average", "avg", "sem", "s.e.m.", "s.d.", "s.e.", "std", "stdev", "std dev", "std. dev.",
+    "standard deviation", "standard error", "std error", "median",
 ];
+
+/// Words that summarise beside such a word; alone they may be a name or initials.
+const SUMMARY_BESIDE: [&str; 12] =
+    ["sd", "se", "total", "sum", "min", "max", "minimum", "maximum", "cv", "n", "count", "variance"];
 
 /// How clearly a name says a role: 4 the very word, 0 not at all.
 pub(crate) fn clarity(name: &str, role: Role) -> u8 {
@@ -93,16 +96,44 @@ pub(crate) fn is_beside(name: &str) -> bool {
     words(name).iter().any(|word| BESIDE.contains(&word.as_str()))
 }
 
-/// True for `Mean`, `SEM`, `SD:`, and at the foot of a table also `Mean of Saline`.
-pub(crate) fn is_summary(cell: &str) -> bool {
+/// How surely a cell says that its row or column summarises others.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub(crate) enum Summary {
+    /// `Mean`, `SEM`, `Mean of Saline`.
+    Sure,
+    /// `SD`, `n`, `Max`: only beside a sure one.
+    Beside,
+    None,
+}
+
+/// Whether a cell says that its row or column summarises others.
+pub(crate) fn summary(cell: &str) -> Summary {
     // Ids have digits, summary words have none: settle most cells without allocating.
     if cell.len() > 60 || cell.bytes().any(|byte| byte.is_ascii_digit()) {
-        return false;
+        return Summary::None;
     }
     let cell = cell.trim().trim_end_matches([':', '=']).trim().to_lowercase();
     let first = cell.split([' ', '±', '(', '_', '/']).next().unwrap_or("");
-    let starts = matches!(first, "mean" | "average" | "sem" | "s.e.m." | "sd" | "s.d." | "median" | "stdev" | "std");
-    SUMMARY.contains(&cell.as_str()) || (starts && cell.len() <= 40)
+    let starts = matches!(first, "mean" | "average" | "sem" | "s.e.m." | "s.d." | "median" | "stdev" | "std");
+    if SUMMARY.contains(&cell.as_str()) || (starts && cell.len() <= 40) {
+        Summary::Sure
+    } else if SUMMARY_BESIDE.contains(&cell.as_str()) || first == "sd" {
+        Summary::Beside
+    } else {
+        Summary::None
+    }
+}
+
+/// True for each entry that summarises: sure ones, and the others next to one.
+pub(crate) fn summarises(entries: &[Summary]) -> Vec<bool> {
+    let mut found: Vec<bool> = entries.iter().map(|entry| *entry == Summary::Sure).collect();
+    for at in 1..found.len() {
+        found[at] |= found[at - 1] && entries[at] == Summary::Beside;
+    }
+    for at in (1..found.len()).rev() {
+        found[at - 1] |= found[at] && entries[at - 1] == Summary::Beside;
+    }
+    found
 }
 
 /// The name without its unit in brackets, and the unit: `weight (g)` gives `weight` and `g`.

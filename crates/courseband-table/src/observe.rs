@@ -119,7 +119,7 @@ impl Observer<'_> {
             });
         }
         match self.kept.is_empty() {
-            true => Err(TableError::NoRows),
+            true => Err(TableError::NothingLeft { why: "all are excluded".to_string() }),
             false => Ok(()),
         }
     }

@@ -27,6 +27,12 @@ impl Problems {
         self.counts[kind as usize]
     }
 
+    /// Counts in words: `3 missing groups, 1 missing responses`.
+    pub(crate) fn summary(&self) -> String {
+        let counted = KINDS.iter().filter(|&&kind| self.count(kind) > 0).map(|&kind| format!("{} {}", self.count(kind), kind.words()));
+        counted.collect::<Vec<_>>().join(", ")
+    }
+
     /// Problems by row, counts by kind, and a note for each kind with more than are listed.
     pub(crate) fn finish(mut self, notes: &mut Vec<String>) -> (Vec<Problem>, Vec<(ProblemKind, usize)>) {
         self.list.sort_by(|a, b| (a.row, a.kind, &a.column).cmp(&(b.row, b.kind, &b.column)));

@@ -5,7 +5,7 @@ use crate::delimiter::sniff;
 use crate::error::TableError;
 
 /// More columns than this are no table of measurements.
-const MAX_COLUMNS: usize = 20_000;
+const MAX_COLUMNS: usize = 5_000;
 
 /// Cells as written, row by row, with each record's line in the file.
 ///

@@ -8,6 +8,7 @@ use crate::number::is_missing_label;
 use crate::request::{Layout, Role};
 use crate::text::{folded, quoted};
 use crate::time::Unit;
+use std::collections::HashMap;
 
 /// Columns that hold one measurement at different times.
 struct Family {
@@ -33,6 +34,7 @@ pub(super) fn recognise(framed: Framed<'_>, asked: bool) -> Option<LongTable<'_>
 
 fn families(framed: Framed<'_>) -> Vec<Family> {
     let mut families: Vec<Family> = Vec::new();
+    let mut places: HashMap<(String, bool), usize> = HashMap::new();
     for column in 0..framed.width() {
         let Some(head) = read_head(framed.written(column)).filter(|_| framed.is_numeric(column)) else {
             continue;
@@ -41,8 +43,8 @@ fn families(framed: Framed<'_>) -> Vec<Family> {
             Some(label) if head.stem.is_empty() => label.clone(),
             _ => head.stem.clone(),
         };
-        let same = |family: &&mut Family| folded(&family.stem) == folded(&stem) && family.members[0].1.clear == head.clear;
-        match families.iter_mut().find(same) {
+        let place = *places.entry((folded(&stem), head.clear)).or_insert(families.len());
+        match families.get_mut(place) {
             Some(family) => family.members.push((column, head)),
             None => families.push(Family { stem, members: vec![(column, head)] }),
         }

@@ -56,11 +56,11 @@ fn after_stem(name: &str) -> Option<TimeHead> {
             return head(stem, text, time);
         }
     }
-    // `weight7`: letters, then digits.
+    // `weight7`, `x7`: letters, then digits.
     let at = name.find(|c: char| c.is_ascii_digit())?;
     let (stem, text) = name.split_at(at);
     let digits = text.bytes().all(|byte| byte.is_ascii_digit());
-    match digits && stem.chars().all(char::is_alphabetic) && stem.chars().count() >= 2 {
+    match digits && !stem.is_empty() && stem.chars().all(char::is_alphabetic) {
         true => head(stem, text, WrittenTime::Number(text.parse().ok()?)),
         false => None,
     }

@@ -146,7 +146,7 @@ impl Observer<'_> {
             a.0.cmp(&b.0).then(a.1.total_cmp(&b.1))
         });
         if order.is_empty() {
-            return Err(TableError::NoRows);
+            return Err(TableError::NothingLeft { why: self.problems.summary() });
         }
         let subject_codes = Compact::new(subjects.list.len(), order.iter().map(|&kept| subjects.of_row[kept as usize]));
         let used = |index: &u32| &subjects.list[*index as usize];

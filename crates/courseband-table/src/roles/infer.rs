@@ -1,6 +1,8 @@
 //! The rules, role by role.
 
 use super::*;
+use crate::names::words;
+use crate::number::number;
 
 impl Finder<'_> {
     pub(super) fn subject_by_name(&mut self) {
@@ -106,16 +108,9 @@ impl Finder<'_> {
         let mut candidates = Vec::new();
         for column in self.free() {
             if clarity(self.name(column), Role::Cluster) >= 3 && self.profiles[column].distinct > 1 {
-                let varies = match self.roles.column(Role::Subject) {
-                    Some(subject) => self.varying(subject, column).0 > 0,
-                    None => false,
-                };
-                match varies {
-                    true => self.roles.forget(
-                        Role::Cluster,
-                        format!("Column {} changes within subjects: not used.", quoted(self.name(column))),
-                    ),
-                    false => candidates.push(column),
+                match self.why_no_cluster(column) {
+                    Some(why) => self.roles.forget(Role::Cluster, format!("Column {} {why}: not used.", quoted(self.name(column)))),
+                    None => candidates.push(column),
                 }
             }
         }
@@ -124,6 +119,16 @@ impl Finder<'_> {
         } else if self.roles.reasons[Role::Cluster as usize].is_empty() {
             self.roles.forget(Role::Cluster, "No column is named like a cage, litter or site.".to_string());
         }
+    }
+
+    fn why_no_cluster(&mut self, column: usize) -> Option<&'static str> {
+        let subject = self.roles.column(Role::Subject)?;
+        let (changing, subjects) = self.varying(subject, column);
+        if changing > 0 {
+            return Some("changes within subjects");
+        }
+        let (shared, _) = self.varying(column, subject);
+        (shared == 0 && subjects > 1).then_some("has one subject in each")
     }
 
     pub(super) fn group(&mut self) {
@@ -198,13 +203,31 @@ impl Finder<'_> {
             .free()
             .into_iter()
             .filter(|&column| self.profiles[column].is_numeric(0.5) && self.profiles[column].worded_times * 2 < self.profiles[column].rows)
+            .filter(|&column| !self.counts_rows(column))
             .collect();
         let changing: Vec<usize> = match self.roles.column(Role::Subject) {
             Some(subject) => numeric.iter().copied().filter(|&column| self.varying(subject, column).0 > 0).collect(),
             None => numeric.clone(),
         };
         let candidates = if changing.is_empty() { numeric } else { changing };
-        if candidates.len() != 1 && self.take_by_name(Role::Response, &candidates, 2) {
+        if candidates.len() != 1 {
+            // `y` and `value` settle it; of several measurements none is the clearer for its name.
+            let named: Vec<usize> = candidates.iter().copied().filter(|&column| clarity(self.name(column), Role::Response) >= 2).collect();
+            if self.take_by_name(Role::Response, &candidates, 4) {
+                return;
+            }
+            match named.as_slice() {
+                [] => {}
+                [_] => {
+                    self.take_by_name(Role::Response, &named, 2);
+                }
+                rivals => {
+                    self.ask(Role::Response, rivals);
+                    self.close(Role::Response);
+                }
+            }
+        }
+        if !self.is_open(Role::Response) {
             return;
         }
         self.take_only(Role::Response, &candidates, "It is the only further column of numbers that changes within subjects.");
@@ -213,6 +236,24 @@ impl Finder<'_> {
             let free = self.free();
             self.take_by_name(Role::Response, &free, 3);
         }
+    }
+
+    /// 1, 2, 3, ... down the rows, without a name that says otherwise: a number of the row.
+    fn counts_rows(&self, column: usize) -> bool {
+        const NAMES: [&str; 10] = ["column", "row", "rows", "index", "no", "nr", "number", "id", "obs", "unnamed"];
+        if !words(self.name(column)).first().is_some_and(|word| NAMES.contains(&word.as_str())) {
+            return false;
+        }
+        let profile = &self.profiles[column];
+        let mut before: Option<f64> = None;
+        profile.rows >= 3
+            && profile.whole == profile.rows
+            && (0..profile.rows).all(|row| {
+                let value = number(self.table.cell(row, column), profile.decimal).unwrap_or(f64::NAN);
+                let next = before.is_none_or(|before| value == before + 1.0);
+                before = Some(value);
+                next
+            })
     }
 
     /// A needed role without any candidate is a question with all columns as choices.

@@ -152,7 +152,7 @@ fn five_hundred_columns_and_enormous_cells() {
     assert!(problem.value.chars().count() < 100);
     try_all("9".repeat(200_000).as_bytes());
     try_all(format!("{PLAIN}1,{},A,3\n", "9".repeat(200_000)).as_bytes());
-    try_all(",".repeat(15_000).as_bytes());
+    try_all(",".repeat(4_000).as_bytes());
     let error = read_bytes(",".repeat(60_000).as_bytes()).expect_err("too wide");
     assert!(matches!(error, TableError::TooLarge { .. }), "{error}");
 }
