@@ -64,7 +64,7 @@ function demoChoices(choices, demo) {
  * @param {State} state
  */
 export function openQuestions(state) {
-  return (state.preview?.questions ?? []).filter((question) => !state.choices.answered.includes(question.id));
+  return (state.preview?.questions ?? []).filter((question) => question.blocking && !state.choices.answered.includes(question.id));
 }
 
 /**

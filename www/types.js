@@ -67,6 +67,7 @@
  * @typedef {Object} Question
  * @property {string} id
  * @property {string} text
+ * @property {boolean} blocking Nothing can be computed before it is answered.
  * @property {{label: string, detail: string, columns: Partial<Plan['columns']>}[]} answers
  */
 

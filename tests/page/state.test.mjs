@@ -26,11 +26,11 @@ test('a demo brings its plan, its words and its exclusions', () => {
 });
 
 test('findings stay hidden while a question is open', () => {
-  const asked = change.understood(fitted(), preview([{ id: 'q', text: '?', answers: [] }]), null);
+  const asked = change.understood(fitted(), preview([{ id: 'q', text: '?', blocking: true, answers: [] }]), null);
   assert.equal(asked.status, 'question');
   assert.equal(asked.findings, null);
   const answered = change.chosen(asked, 'answer', (choices) => ({ ...choices, answered: ['q'] }), false);
-  assert.equal(change.understood(answered, preview([{ id: 'q', text: '?', answers: [] }]), null).status, 'fitting');
+  assert.equal(change.understood(answered, preview([{ id: 'q', text: '?', blocking: true, answers: [] }]), null).status, 'fitting');
 });
 
 test('a choice, its undoing and its redoing', () => {

@@ -27,6 +27,12 @@ export const data = {
     called: (/** @type {string} */ column) => `Short name for ${column}`,
     calledShort: 'called',
     line: 'line',
+    holds: (/** @type {string} */ samples) => `Holds ${samples} \u2026`,
+    layouts: {
+      long: 'Read as long: one row for each visit.',
+      'wide-by-time': 'Read as wide: one row for each subject, one column for each time.',
+      'wide-by-subject': 'Read as wide: one row for each time, one column for each subject.',
+    },
     roles: {
       subject: 'subject', time: 'time', group: 'group', response: 'response', cluster: 'cage or site', unused: 'not used',
     },
