@@ -129,14 +129,32 @@ impl Speaker<'_> {
     /// When the band excludes zero and the margin.
     fn days(&self) -> String {
         let d = self.difference;
-        let mut parts: Vec<String> = d.stretches.iter().map(|s| format!("shown apart {}", self.span(s))).collect();
-        parts.extend(d.beyond.iter().map(|s| format!("shown beyond {} {}", self.margin(), self.span(s))));
+        let both_ways = d.stretches.windows(2).any(|w| w[0].direction != w[1].direction);
+        let list = |runs: &[Stretch]| {
+            let spans: Vec<String> = (runs.iter())
+                .map(|s| match s.direction {
+                    Some(Direction::Above) if both_ways => format!("{} (above)", self.span(s)),
+                    Some(Direction::Below) if both_ways => format!("{} (below)", self.span(s)),
+                    _ => self.span(s),
+                })
+                .collect();
+            joined(&spans)
+        };
+        let mut parts = vec![format!("shown apart {}", list(&d.stretches))];
+        if !d.beyond.is_empty() {
+            parts.push(format!("shown beyond {} {}", self.margin(), list(&d.beyond)));
+        }
         let many = &self.findings.plan.words.subjects;
         let text = parts.join(", ");
         let mut letters = text.chars();
         let capital = letters.next().map(|c| c.to_uppercase().collect::<String>()).unwrap_or_default();
-        let tail = if parts.len() > 1 { "these times depend" } else { "this time depends" };
-        format!("{capital}{}: {tail} on the number of {many}.", letters.as_str())
+        let times = |s: &Stretch| usize::from(!s.open_start) + usize::from(!s.open_end);
+        let tail = match d.stretches.iter().chain(&d.beyond).map(times).sum::<usize>() {
+            0 => return format!("{capital}{}.", letters.as_str()),
+            1 => "this time depends",
+            _ => "these times depend",
+        };
+        format!("{capital}{}; {tail} on the number of {many}.", letters.as_str())
     }
 
     /// The day the gap passes the margin for good: a property of the curve, with its interval.
@@ -146,18 +164,21 @@ impl Speaker<'_> {
         let word = &self.findings.scale.time_word;
         let value = onset.estimate?;
         let low = match (onset.lower, onset.at_or_before_start) {
-            (Some(_), true) => "at or before the first visit".to_string(),
+            (Some(_), true) => "the first visit or before".to_string(),
             (Some(t), false) => self.bare(t),
             (None, _) => return None,
         };
-        let high = onset.upper.map_or("not reached".to_string(), |t| self.bare(t));
+        let high = onset.upper.map_or("not reached by the last visit".to_string(), |t| self.bare(t));
         let around = self.around(onset.lower?, onset.upper);
         let visits = &self.findings.visits;
         let follow_up = visits[visits.len() - 1] - visits[0];
         let width = onset.upper.unwrap_or(visits[visits.len() - 1]) - onset.lower?;
         let margin = self.margin();
         Some(if width > 0.25 * follow_up {
-            format!("The {word} the gap passes {margin} for good lies between {low} and {high}{around}; best estimate {}.", self.bare(value))
+            format!(
+                "The {word} the gap passes {margin} for good is uncertain, {low} to {high}{around}; best estimate {}.",
+                self.bare(value)
+            )
         } else {
             format!("Best estimate of the {word} the gap passes {margin} for good: {} ({low} to {high}{around}).", self.bare(value))
         })
@@ -227,11 +248,13 @@ impl Speaker<'_> {
 
 /// A sentence where few are still followed at the end.
 fn few_left(findings: &Findings) -> Option<Sentence> {
-    let last = *findings.visits.last()?;
+    let (first, last) = (*findings.visits.first()?, *findings.visits.last()?);
+    // Where everybody's days differ, the end is the last twentieth of the follow-up.
+    let end = last - 0.05 * (last - first);
     let words = &findings.plan.words;
     let thin: Vec<String> = (findings.groups.iter())
         .filter_map(|g| {
-            let left = g.last_times.iter().filter(|&&t| t >= last).count();
+            let left = g.last_times.iter().filter(|&&t| t >= end).count();
             let few = g.subjects > 0 && (2 * left < g.subjects || left < 5);
             (few && left < g.subjects).then(|| format!("{left} of {} in {}", g.subjects, g.name))
         })
@@ -241,13 +264,22 @@ fn few_left(findings: &Findings) -> Option<Sentence> {
         pair: None,
         headline: format!("Few {} are left at the end.", words.subjects),
         text: format!(
-            "At {} {} only {} are still followed: the end of the courses rests on them.",
+            "From {} {} on only {} are still followed: the end of the courses rests on them.",
             findings.scale.time_word,
-            plain(last),
-            thin.join(", ")
+            plain(findings.visits.iter().copied().find(|&t| t >= end).unwrap_or(last)),
+            joined(&thin)
         ),
         depends: format!("{} {}, {} measurements", findings.subjects, words.subjects, findings.rows),
     })
+}
+
+/// `a`, `a and b`, `a, b and c`.
+fn joined(parts: &[String]) -> String {
+    match parts {
+        [] => String::new(),
+        [one] => one.clone(),
+        [first @ .., last] => format!("{} and {last}", first.join(", ")),
+    }
 }
 
 /// `95 %`, `99.9 %`.
