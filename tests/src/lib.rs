@@ -1,1 +1,3 @@
 //! Helpers shared by the checks against the outside.
+
+pub mod evidence;

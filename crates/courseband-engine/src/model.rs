@@ -1,7 +1,7 @@
 //! What can be asked of the engine: the data it takes and the model it fits.
 
 /// Rows of one subject, in ascending time. `times` and `responses` have one length.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct SubjectRows {
     /// Index of the subject's group, below [`Data::groups`].
     pub group: usize,
@@ -108,4 +108,18 @@ pub struct Model {
     pub serial: Serial,
     /// Error variance: one for all groups or one per group.
     pub spread: Sharing,
+}
+
+impl Default for Model {
+    /// A smooth course per group, subjects that differ in level, independent errors of one spread.
+    fn default() -> Self {
+        Model {
+            shape: Shape::Smooth(Dimension::Auto),
+            smoothness: Sharing::ByGroup,
+            subjects: SubjectEffects::Intercept,
+            subjects_spread: Sharing::Common,
+            serial: Serial::None,
+            spread: Sharing::Common,
+        }
+    }
 }
