@@ -16,13 +16,12 @@ export function span(findings) {
 /**
  * When a pair is first shown apart, as written; `null` where it never is.
  * @param {Findings} findings
- * @param {string} from
- * @param {string} to
+ * @param {{from: string, to: string}} pair
  * @returns {string|null}
  */
-function onset(findings, from, to) {
-  const pair = findings.differences.find((row) => row.from === from && row.to === to);
-  const first = pair?.stretches[0];
+export function onset(findings, { from, to }) {
+  const difference = findings.differences.find((row) => row.from === from && row.to === to);
+  const first = difference?.stretches[0];
   return first ? estimatedTime(first.start, span(findings)) : null;
 }
 
@@ -31,14 +30,14 @@ function onset(findings, from, to) {
  * has one and still does.
  * @param {Findings|null} before
  * @param {Findings} after
- * @returns {{pair: string, before: string|null, after: string|null}|null}
+ * @returns {{pair: {from: string, to: string}, before: string|null, after: string|null}|null}
  */
 export function onsetChange(before, after) {
   if (!before) return null;
   const rows = after.differences.map((row) => ({
-    pair: row.to,
-    before: onset(before, row.from, row.to),
-    after: onset(after, row.from, row.to),
+    pair: { from: row.from, to: row.to },
+    before: onset(before, row),
+    after: onset(after, row),
   }));
   return rows.find((row) => row.before !== row.after) ?? rows.find((row) => row.after !== null) ?? null;
 }

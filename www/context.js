@@ -68,6 +68,16 @@ export function calledName(choices, column, otherwise) {
 }
 
 /**
+ * What the response is called: by hand, else by the plan, else its column.
+ * @param {import('./types.js').Choices} choices
+ * @param {Pick<Context, 'columns'>} context
+ */
+export function responseName(choices, { columns: { response } }) {
+  const byHand = response === null ? '' : choices.called[response];
+  return byHand || choices.plan.words.response || calledName(choices, response, text.plan.choices.response.none);
+}
+
+/**
  * At most 24 characters, the rest cut with a mark.
  * @param {string} name
  */

@@ -4,6 +4,7 @@
  */
 
 import { EngineError, Overtaken } from './engine.js';
+import { Calibration } from './calibration.js';
 import { columnsUsed } from './context.js';
 import { planToSend } from './plan.js';
 import { text } from './text.js';
@@ -15,6 +16,8 @@ import { findingsFrom, previewFrom, describedFrom } from './wire.js';
 
 /** Typing settles for this long before a refit, in milliseconds. */
 const TYPING_PAUSE = 260;
+/** Nothing was chosen for this long: the bands are calibrated. */
+const CALIBRATION_PAUSE = 700;
 /** A fit that is still running after this long makes room for a newer one, or can be stopped. */
 const SLOW_AFTER = 500;
 
@@ -32,6 +35,8 @@ export class Controller {
     /** Counts wishes; an answer to an older wish is dropped. */
     this.wish = 0;
     this.typing = 0;
+    this.pause = 0;
+    this.calibration = new Calibration(assets.module, assets.workerText);
     this.busySince = 0;
     this.shown = false;
   }
@@ -117,11 +122,11 @@ export class Controller {
 
   /** @param {Uint8Array} bytes @param {import('./types.js').Source} source @param {import('./types.js').Demo|null} demo */
   async open(bytes, source, demo) {
-    const wish = (this.wish += 1);
+    const wish = this.#wished();
     window.clearTimeout(this.typing);
     this.set(change.opening(this.state, source, demo));
     try {
-      await this.engine.open(bytes, source.name);
+      await this.engine.open(bytes);
     } catch (cause) {
       this.#troubled(cause, wish);
       return;
@@ -132,7 +137,7 @@ export class Controller {
   /** Reads the table with the present choices, then fits. */
   async refit() {
     if (!this.engine.table) return;
-    const wish = (this.wish += 1);
+    const wish = this.#wished();
     if (this.busySince && performance.now() - this.busySince > SLOW_AFTER) this.engine.replace();
     const plan = this.#planText(this.state.choices);
     const started = (this.busySince = performance.now());
@@ -146,6 +151,7 @@ export class Controller {
       if (wish !== this.wish) return;
       const findings = findingsFrom(answer.findings);
       this.set(change.fitted(this.state, findings, answer, performance.now() - started));
+      this.#calibrateLater(plan, wish);
     } catch (cause) {
       this.#troubled(cause, wish);
     } finally {
@@ -171,9 +177,47 @@ export class Controller {
     }
   }
 
-  /** Ends the work under way and takes the last choice back. */
+  /** A new wish: work for older ones is given up. */
+  #wished() {
+    window.clearTimeout(this.pause);
+    this.calibration.stop();
+    return (this.wish += 1);
+  }
+
+  /** @param {string} plan @param {number} wish */
+  #calibrateLater(plan, wish) {
+    const { comparisons } = this.state.choices.plan;
+    const settled = this.state.status === 'ready' || this.state.status === 'boundary';
+    if (!settled || comparisons.small_sample !== 'auto' || comparisons.band !== 'simultaneous') return;
+    this.pause = window.setTimeout(() => void this.#calibrate(plan, comparisons.refits, wish), CALIBRATION_PAUSE);
+  }
+
+  /** @param {string} plan @param {number} total @param {number} wish */
+  async #calibrate(plan, total, wish) {
+    const { table } = this.engine;
+    if (!table || wish !== this.wish) return;
+    try {
+      this.set({ ...this.state, calibrating: { done: 0, total, secondsLeft: null } });
+      const refits = await this.calibration.run(table, plan, total, (calibrating) => {
+        if (wish === this.wish) this.set({ ...this.state, calibrating });
+      });
+      if (wish !== this.wish) return;
+      const answer = refits === null ? null : await this.engine.calibrated(plan, refits);
+      if (wish !== this.wish) return;
+      this.set(answer ? change.calibrated(this.state, findingsFrom(answer.findings), answer) : { ...this.state, calibrating: null });
+    } catch {
+      // The findings stand as they were, with bands by degrees of freedom.
+      if (wish === this.wish) this.set({ ...this.state, calibrating: null, notice: text.notCalibrated });
+    }
+  }
+
+  /** Ends the work under way. A fit takes the last choice back; calibration leaves the findings. */
   stop() {
-    this.wish += 1;
+    this.#wished();
+    if (this.state.calibrating) {
+      this.set({ ...this.state, calibrating: null, notice: text.notCalibrated });
+      return;
+    }
     this.busySince = 0;
     this.engine.replace();
     const back = change.undone(this.state);

@@ -3,7 +3,7 @@
  * dropped; a new worker gets the table again before anything else.
  */
 
-/** @typedef {{resolve: (value: any) => void, reject: (cause: unknown) => void}} Waiting */
+/** @typedef {{op: string, resolve: (value: any) => void, reject: (cause: unknown) => void}} Waiting */
 
 /** An error that came from the computation. */
 export class EngineError extends Error {
@@ -28,7 +28,7 @@ export class Engine {
   constructor(module, workerText) {
     this.module = module;
     this.address = URL.createObjectURL(new Blob([workerText], { type: 'text/javascript' }));
-    /** @type {{bytes: Uint8Array, name: string}|null} */
+    /** @type {Uint8Array|null} */
     this.table = null;
     /** @type {Map<number, Waiting>} */
     this.waiting = new Map();
@@ -76,7 +76,7 @@ export class Engine {
     const orphans = Array.from(this.waiting.values());
     this.waiting.clear();
     this.#started();
-    if (this.table) this.#ask('open', this.table).catch(() => {});
+    if (this.table) this.#ask('open', { bytes: this.table }).catch(() => {});
     orphans.forEach(tell);
   }
 
@@ -88,7 +88,7 @@ export class Engine {
   #ask(op, args) {
     const id = (this.lastId += 1);
     return new Promise((resolve, reject) => {
-      this.waiting.set(id, { resolve, reject });
+      this.waiting.set(id, { op, resolve, reject });
       this.worker.postMessage({ id, op, args });
     });
   }
@@ -96,12 +96,11 @@ export class Engine {
   /**
    * Gives the worker a table.
    * @param {Uint8Array} bytes
-   * @param {string} name
    */
-  open(bytes, name) {
-    if (this.waiting.size > 1) this.replace();
-    this.table = { bytes, name };
-    return this.#ask('open', this.table);
+  open(bytes) {
+    if (Array.from(this.waiting.values()).some((waiting) => waiting.op !== 'start')) this.replace();
+    this.table = bytes;
+    return this.#ask('open', { bytes });
   }
 
   /** @param {string} plan @returns {Promise<string>} */
@@ -117,5 +116,15 @@ export class Engine {
   /** @param {string} plan @returns {Promise<{findings: string, traces: string}>} */
   run(plan) {
     return this.#ask('run', { plan });
+  }
+
+  /** @param {string} plan @param {number} first @param {number} count @returns {Promise<string>} */
+  refits(plan, first, count) {
+    return this.#ask('refits', { plan, first, count });
+  }
+
+  /** @param {string} plan @param {string} refits @returns {Promise<{findings: string, traces: string}>} */
+  calibrated(plan, refits) {
+    return this.#ask('calibrated', { plan, refits });
   }
 }

@@ -4,7 +4,7 @@
  */
 
 import { alternativesOf } from './alternatives.js';
-import { calledName } from './context.js';
+import { calledName, responseName } from './context.js';
 import { percentLevel } from './numbers.js';
 import { text } from './text.js';
 
@@ -77,9 +77,9 @@ function followed(choices, context, open) {
   ] : [], open);
   /** @type {Part[]} */
   const parts = [
-    { text: calledName(choices, response, words.choices.response.none), choice: 'response' },
+    { text: responseName(choices, context), choice: 'response' },
     { text: words.by },
-    { text: calledName(choices, time, words.choices.time.none), choice: 'time' },
+    { text: calledName(choices, time, context.timeWord), choice: 'time' },
     { text: words.aCourse },
     chosen('shape', choices, context),
     { text: group === null ? words.oneCourse : words.coursePer },

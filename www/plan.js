@@ -18,7 +18,7 @@ export function defaultPlan() {
     errors: { serial: 'none', spread: 'common', nugget: false },
     comparisons: {
       pairs: 'all', control: null, level: 0.95, margin: 0, margin_unit: 'response',
-      band: 'simultaneous', small_sample: 'auto',
+      band: 'simultaneous', small_sample: 'auto', refits: 1000, landmark: null,
     },
     grid: { start: null, end: null, count: 101 },
     reading: { day_zero: 'common', date_order: null, layout: null, merges: [] },

@@ -121,6 +121,7 @@ export function readingAt(findings, time) {
     upper: valueAt(difference, 'response_upper', time),
     state: gapState(difference, time),
   }));
+  gaps.sort((a, b) => (b.value ?? -Infinity) - (a.value ?? -Infinity) || a.pair - b.pair);
   return { time, visit: findings.visits.includes(time), groups, gaps };
 }
 

@@ -3,7 +3,7 @@
  * state and gives the next one.
  */
 
-import { changedSentences, onsetChange } from './changes.js';
+import { changedSentences, onset, onsetChange } from './changes.js';
 import { completePlan, defaultPlan } from './plan.js';
 import { firstStop, nearest, stops } from './reading.js';
 import { text } from './text.js';
@@ -25,7 +25,7 @@ export function initialState() {
     room: 'courses', status: 'empty', source: null, preview: null, description: null,
     choices: freshChoices(), history: { past: [], future: [] },
     findings: null, drawing: null, change: null, message: null, notice: null,
-    cursor: null, seen: false, slow: false, took: null, openPairs: [], demos: [], announcement: '',
+    cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], demos: [], announcement: '',
   };
 }
 
@@ -111,7 +111,7 @@ export function chosen(state, label, change, typing) {
   const joined = typing && last !== undefined && last.label === `${label}\u200b`;
   const step = { label: typing ? `${label}\u200b` : label, choices: state.choices };
   return {
-    ...state, choices, notice: null,
+    ...state, choices, notice: null, calibrating: null,
     history: { past: joined ? past : [...past, step], future: [] },
     change: { label, back: false, before: null, after: null, pair: null },
   };
@@ -124,7 +124,7 @@ export function undone(state) {
   if (!step) return state;
   const future = [{ label: step.label, choices: state.choices }, ...state.history.future];
   return {
-    ...state, choices: step.choices, notice: null, history: { past, future },
+    ...state, choices: step.choices, notice: null, calibrating: null, history: { past, future },
     change: { label: text.change.undone(step.label.replace('\u200b', '')), back: true, before: null, after: null, pair: null },
   };
 }
@@ -135,14 +135,9 @@ export function redone(state) {
   if (!step) return state;
   const past = [...state.history.past, { label: step.label, choices: state.choices }];
   return {
-    ...state, choices: step.choices, notice: null, history: { past, future },
+    ...state, choices: step.choices, notice: null, calibrating: null, history: { past, future },
     change: { label: text.change.redone(step.label.replace('\u200b', '')), back: false, before: null, after: null, pair: null },
   };
-}
-
-/** @param {State} state @returns {State} */
-export function fitting(state) {
-  return { ...state, status: 'fitting', slow: false };
 }
 
 /**
@@ -158,13 +153,30 @@ export function fitted(state, findings, drawing, took) {
   if (findings.fit.status === 'failed') {
     return { ...failed(state, findings.fit.remarks.join(' ')), took };
   }
-  const onset = state.change ? onsetChange(state.findings, findings) : null;
+  const days = state.change ? onsetChange(state.findings, findings) : null;
   const status = findings.fit.status === 'boundary' ? 'boundary' : 'ready';
   return {
     ...state, status, findings, drawing, took, message: null, slow: false, seen: true,
-    change: state.change ? { ...state.change, ...(onset ?? {}) } : null,
+    change: state.change ? { ...state.change, ...(days ?? {}) } : null,
     cursor: keptCursor(state.cursor, findings),
     openPairs: state.openPairs.filter((pair) => pair < findings.differences.length),
+    announcement: announcementOf(state.findings, findings),
+  };
+}
+
+/**
+ * The same findings with calibrated bands: the choice before them now leads
+ * to these days.
+ * @param {State} state
+ * @param {Findings} findings
+ * @param {{findings: string, traces: string}} drawing
+ * @returns {State}
+ */
+export function calibrated(state, findings, drawing) {
+  const { change } = state;
+  return {
+    ...state, findings, drawing, calibrating: null,
+    change: change?.pair ? { ...change, after: onset(findings, change.pair) } : change,
     announcement: announcementOf(state.findings, findings),
   };
 }

@@ -42,6 +42,11 @@ export const text = {
     /** @param {string} subjects @param {string} rows @param {string} milliseconds */
     ready: (subjects, rows, milliseconds) => `Fitted ${subjects}, ${rows}, in ${milliseconds}\u00a0ms.`,
   },
+  /** @param {number} done @param {number} total @param {number|null} seconds */
+  calibrating: (done, total, seconds) =>
+    `Bands being calibrated by refits, ${done} of ${total}${seconds === null ? '' : `, ${seconds}\u00a0s left`}. Days are provisional until then.`,
+  notCalibrated: 'Bands were not calibrated; they rest on degrees of freedom.',
+  provisional: 'provisional',
   stop: 'Stop',
   retry: 'Fit again',
   stopped: 'Stopped. The last choice was taken back.',

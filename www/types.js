@@ -19,7 +19,7 @@
  * @property {'none'|'intercept'|'slope'|'curve'} subjects
  * @property {'common'|'by-group'} subjects_spread
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
- * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto'}} comparisons
+ * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null}} comparisons
  * @property {{start: number|null, end: number|null, count: number}} grid
  * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[]}} reading
  * @property {{subject: string, subjects: string, time: string|null, response: string|null}} words
@@ -81,6 +81,7 @@
  * @property {Problem[]} problems
  * @property {Question[]} questions
  * @property {string[]} notes
+ * @property {{from: string, into: string}[]} nearSpellings Group names that may be misspelt.
  */
 
 /** @typedef {{group: string, time: number, n: number, mean: number|null, sd: number|null, median: number|null}} DescriptionRow */
@@ -106,7 +107,7 @@
  */
 
 /** @typedef {{label: string, choices: Choices}} Step */
-/** @typedef {{label: string, back: boolean, before: string|null, after: string|null, pair: string|null}} Change `back`: it took a choice back. */
+/** @typedef {{label: string, back: boolean, before: string|null, after: string|null, pair: {from: string, to: string}|null}} Change `back`: it took a choice back. */
 
 /**
  * @typedef {Object} State
@@ -125,6 +126,7 @@
  * @property {number|null} cursor
  * @property {boolean} seen Findings of this table have been on screen.
  * @property {boolean} slow The work under way takes long enough to be stopped.
+ * @property {{done: number, total: number, secondsLeft: number|null}|null} calibrating
  * @property {number|null} took Milliseconds of the last fit.
  * @property {number[]} openPairs Pairs whose gap strip is open.
  * @property {Demo[]} demos

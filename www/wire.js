@@ -3,8 +3,6 @@
  * the JSON of the computing module.
  */
 
-import { text } from './text.js';
-
 /** @typedef {import('./types.js').Preview} Preview */
 /** @typedef {import('./types.js').Description} Description */
 /** @typedef {import('./types.js').Findings} Findings */
@@ -19,36 +17,17 @@ export function previewFrom(json) {
   const read = JSON.parse(json);
   return {
     columns: (read.columns ?? []).map((/** @type {any} */ column) => ({
-      name: column.name, role: column.role ?? null, reason: column.reason ?? aboutColumn(column),
+      name: column.name, role: column.role ?? null, reason: column.reason ?? '',
     })),
     rows: read.rows ?? [],
     totalRows: read.total_rows ?? 0,
-    format: text.data.table.layouts[/** @type {'long'} */ (read.layout)] ?? '',
+    format: read.format ?? '',
     problems: read.problems ?? [],
-    questions: (read.questions ?? []).map(questionFrom),
+    questions: (read.questions ?? []).map((/** @type {any} */ asked) => ({
+      id: asked.id, text: asked.text, answers: asked.answers, blocking: asked.needs_answer,
+    })),
     notes: read.notes ?? [],
-  };
-}
-
-/**
- * A column without a role, by what it holds.
- * @param {{samples?: string[], numbers?: number}} column
- */
-function aboutColumn({ samples }) {
-  return samples && samples.length > 0 ? text.data.table.holds(samples.slice(0, 3).join(', ')) : '';
-}
-
-/**
- * A question about a role, its answers as partial plans.
- * @param {{topic: string, text: string, choices: string[], needs_answer: boolean}} asked
- * @returns {import('./types.js').Question}
- */
-function questionFrom({ topic, text: sentence, choices, needs_answer: blocking }) {
-  return {
-    id: `${topic}:${sentence}`,
-    text: sentence,
-    blocking,
-    answers: choices.map((choice) => ({ label: choice, detail: '', columns: { [topic]: choice } })),
+    nearSpellings: read.near_spellings ?? [],
   };
 }
 

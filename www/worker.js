@@ -20,13 +20,15 @@
       session = new wasm_bindgen.Session();
       return null;
     },
-    open: ({ bytes, name }) => session.open(bytes, name),
+    open: ({ bytes }) => session.open(bytes),
     preview: ({ plan }) => session.preview(plan),
     describe: ({ plan }) => session.describe(plan),
     run: ({ plan }) => {
       const findings = session.run(plan);
       return { findings, traces: session.traces() };
     },
+    refits: ({ plan, first, count }) => session.refits(plan, first, count),
+    calibrated: ({ plan, refits }) => ({ findings: session.run_calibrated(plan, refits), traces: session.traces() }),
   };
 
   /** @param {unknown} cause */

@@ -63,7 +63,7 @@ test('a choice that changes nothing is no step', () => {
 test('a refit says which day was and which is', () => {
   const chosen = change.chosen(fitted(), 'log', toLog, false);
   const after = change.fitted(chosen, findings({ start: 5.1, headline: 'B is above A.' }), drawing, 20);
-  assert.deepEqual(after.change, { label: 'log', back: false, pair: 'B', before: '4.2', after: '5.1' });
+  assert.deepEqual(after.change, { label: 'log', back: false, pair: { from: 'A', to: 'B' }, before: '4.2', after: '5.1' });
   assert.match(after.announcement, /^1 of 1\u00a0finding changed: B is above A\./);
 });
 

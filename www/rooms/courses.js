@@ -43,7 +43,7 @@ export const coursesRoom = {
       } else {
         aside.replaceChildren(reading, findings, notes);
         body.replaceChildren(strips, aside);
-        root.replaceChildren(plan, change, question, body);
+        root.replaceChildren(question, plan, change, body);
       }
     };
     narrow.addEventListener('change', arrange);

@@ -36,7 +36,7 @@ export const dataRoom = {
       update(state) {
         views.forEach((view) => view.update(state));
         show(table, state.preview !== null);
-        show(columns, state.preview !== null);
+        show(columns, state.source !== null);
         show(next, state.status === 'ready' || state.status === 'boundary');
       },
     };

@@ -27,12 +27,6 @@ export const data = {
     called: (/** @type {string} */ column) => `Short name for ${column}`,
     calledShort: 'called',
     line: 'line',
-    holds: (/** @type {string} */ samples) => `Holds ${samples} \u2026`,
-    layouts: {
-      long: 'Read as long: one row for each visit.',
-      'wide-by-time': 'Read as wide: one row for each subject, one column for each time.',
-      'wide-by-subject': 'Read as wide: one row for each time, one column for each subject.',
-    },
     roles: {
       subject: 'subject', time: 'time', group: 'group', response: 'response', cluster: 'cage or site', unused: 'not used',
     },
@@ -52,6 +46,9 @@ export const data = {
     leaveOut: 'leave this row out',
     leaveOutLabel: (/** @type {number} */ row) => `Leave line ${row} out`,
     more: (/** @type {number} */ count) => `${count} more`,
+    near: (/** @type {string} */ from, /** @type {string} */ into) => `Group \u2018${from}\u2019 may be a spelling of \u2018${into}\u2019.`,
+    unite: 'unite them',
+    united: (/** @type {string} */ from, /** @type {string} */ into) => `${from} united with ${into}`,
     reason: 'Why? The reason stays in the record.',
     confirm: 'Leave it out',
     cancel: 'Keep it',

@@ -10,7 +10,7 @@ function sentence({ change, findings, status }) {
   if (!change) return '';
   const settled = status === 'ready' || status === 'boundary';
   if (!settled || change.pair === null) return change.label;
-  return text.change.line(change.label, change.pair, change.before, change.after, findings?.scale.time_word ?? '');
+  return text.change.line(change.label, change.pair.to, change.before, change.after, findings?.scale.time_word ?? '');
 }
 
 /**

@@ -14,7 +14,7 @@ const words = text.data.description;
 export function mountDescription(root) {
   const body = el('tbody');
   const none = el('p', { class: 'hint' }, words.none);
-  const heads = [words.time, words.group, words.n, words.mean, words.sd, words.median];
+  const heads = [words.group, words.time, words.n, words.mean, words.sd, words.median];
   const table = el('table', { class: 'description-table' }, el('caption', { class: 'hint' }, words.caption),
     el('thead', {}, el('tr', {}, ...heads.map((head) => el('th', { scope: 'col' }, head)))), body);
   const scroller = el('div', { class: 'table-scroller tall', tabindex: '0', role: 'region', 'aria-label': words.title }, table);
@@ -31,9 +31,10 @@ export function mountDescription(root) {
 
 /** @param {DescriptionRow} row @param {DescriptionRow|undefined} before */
 function mountRow(row, before) {
-  const opens = before?.time !== row.time;
+  const opens = before?.group !== row.group;
   const cells = [String(row.n), significant(row.mean), significant(row.sd), significant(row.median)];
   return el('tr', { class: opens ? 'opens' : '' },
-    el('td', { class: 'number' }, opens ? plainTime(row.time, row.time || 1) : ''), el('th', { scope: 'row' }, row.group),
+    el('th', { scope: 'row' }, opens ? row.group : el('span', { class: 'unseen' }, row.group)),
+    el('td', { class: 'number' }, plainTime(row.time, row.time || 1)),
     ...cells.map((cell) => el('td', { class: 'number' }, cell)));
 }

@@ -15,7 +15,8 @@ const SHOWN = 5;
 
 /** @param {HTMLElement} root @returns {import('../types.js').View} */
 export function mountFindings(root) {
-  const title = el('h2', {}, words.title);
+  const provisional = el('span', { class: 'provisional', hidden: true }, text.provisional);
+  const title = el('h2', {}, words.title, ' ', provisional);
   const list = el('div', { class: 'sentences', 'data-region': 'findings', 'aria-label': words.title, role: 'region' });
   const first = el('div', {});
   const rest = el('div', {});
@@ -26,22 +27,29 @@ export function mountFindings(root) {
   list.append(first, more, empty);
   root.append(title, list, depends);
 
+  const drawn = whenChanged((state) => [state.findings, state.status], draw);
   return {
-    update: whenChanged((state) => [state.findings, state.status], (state) => {
-      const { findings } = state;
-      const shown = findings !== null && state.status !== 'failed' && state.status !== 'question';
-      const sentences = shown ? findings.sentences : [];
-      drawSentences(first, sentences.slice(0, SHOWN), findings);
-      drawSentences(rest, sentences.slice(SHOWN), findings);
-      show(more, sentences.length > SHOWN);
-      const later = sentences.slice(SHOWN);
-      setText(moreLabel, words.more(later.length, later.every((row) => row.kind === 'undecided' || row.kind === 'none-apart')));
-      setText(empty, emptyWords(state, sentences.length));
-      show(empty, sentences.length === 0);
-      const on = sentences[0]?.depends ?? '';
-      setText(depends, on ? `${words.depends} ${on}` : '');
-    }),
+    update(state) {
+      drawn(state);
+      show(provisional, state.calibrating !== null);
+    },
   };
+
+  /** @param {State} state */
+  function draw(state) {
+    const { findings } = state;
+    const shown = findings !== null && state.status !== 'failed' && state.status !== 'question';
+    const sentences = shown ? findings.sentences : [];
+    drawSentences(first, sentences.slice(0, SHOWN), findings);
+    drawSentences(rest, sentences.slice(SHOWN), findings);
+    show(more, sentences.length > SHOWN);
+    const later = sentences.slice(SHOWN);
+    setText(moreLabel, words.more(later.length, later.every((row) => row.kind === 'undecided' || row.kind === 'none-apart')));
+    setText(empty, emptyWords(state, sentences.length));
+    show(empty, sentences.length === 0);
+    const on = sentences[0]?.depends ?? '';
+    setText(depends, on ? `${words.depends} ${on}` : '');
+  }
 }
 
 /** @param {State} state @param {number} count */

@@ -4,6 +4,7 @@
 
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
 import { parseNumber } from '../numbers.js';
+import { withSection } from '../plan.js';
 import { text } from '../text.js';
 
 /** @typedef {import('../types.js').Problem} Problem */
@@ -15,14 +16,15 @@ const SHOWN = 12;
 /** @param {HTMLElement} root @param {Acts} acts @returns {import('../types.js').View} */
 export function mountProblems(root, acts) {
   const none = el('p', { class: 'hint' }, words.none);
+  const offers = el('ul', { class: 'problem-list' });
   const list = el('ul', { class: 'problem-list' });
   const rest = el('ul', { class: 'problem-list' });
   const label = el('summary');
   const more = el('details', {}, label, rest);
   const other = mountOther(acts);
-  root.append(el('h2', {}, words.title), none, list, more, other.node);
+  root.append(el('h2', {}, words.title), none, offers, list, more, other.node);
   return {
-    update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.seen], (state) => {
+    update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.message], (state) => {
       const out = new Set(state.choices.leftOut.map((row) => row.row));
       const known = [...(state.preview?.problems ?? []), ...(state.findings?.problems ?? [])];
       const problems = unique(known).filter((problem) => !out.has(problem.row));
@@ -30,11 +32,31 @@ export function mountProblems(root, acts) {
         reconcile(to, rows, keyOf, (problem) => mountProblem(problem, acts));
       draw(list, problems.slice(0, SHOWN));
       draw(rest, problems.slice(SHOWN, 200));
-      show(none, problems.length === 0);
+      reconcile(offers, state.preview?.nearSpellings ?? [], (row) => `${row.from}:${row.into}`, (row) => mountOffer(row, acts));
+      show(none, problems.length === 0 && offers.children.length === 0 && state.preview !== null);
+      other.suggest(state.status === 'problem' ? rowIn(state.message ?? '') : null);
       show(more, problems.length > SHOWN);
       setText(label, words.more(problems.length - SHOWN));
     }),
   };
+}
+
+/**
+ * The row that a refusal names, if it names one.
+ * @param {string} message
+ */
+function rowIn(message) {
+  const named = /\b(?:row|line) (\d+)\b/i.exec(message);
+  return named ? Number(named[1]) : null;
+}
+
+/** @param {{from: string, into: string}} near @param {Acts} acts */
+function mountOffer({ from, into }, acts) {
+  const unite = () => acts.choose(words.united(from, into), (choices) => ({
+    ...choices,
+    plan: withSection(choices.plan, 'reading', { merges: [...choices.plan.reading.merges, { from, into }] }),
+  }));
+  return el('li', {}, words.near(from, into), ' ', el('button', { type: 'button', class: 'quiet', onclick: unite }, words.unite));
 }
 
 /** @param {Problem} problem */
@@ -110,5 +132,13 @@ function mountOther(acts) {
   start.addEventListener('click', () => (number() === null ? line.focus() : ask.open(start)));
   const node = el('details', { class: 'other-row' }, el('summary', {}, words.any),
     el('p', {}, el('label', { class: 'field' }, el('span', {}, words.line), line), ' ', start), ask.node);
-  return { node };
+  return {
+    node,
+    /** @param {number|null} row */
+    suggest(row) {
+      if (row === null) return;
+      node.open = true;
+      line.value = String(row);
+    },
+  };
 }

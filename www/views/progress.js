@@ -12,6 +12,7 @@ import { counted, text } from '../text.js';
 function sentence(state) {
   const { status, findings } = state;
   if (status === 'fitting' && state.slow) return text.states.slow;
+  if (state.calibrating) return text.calibrating(state.calibrating.done, state.calibrating.total, state.calibrating.secondsLeft);
   if (status === 'ready' && findings) {
     const subjects = counted(findings.subjects, state.choices.noun.one, state.choices.noun.many);
     return text.states.ready(subjects, counted(findings.rows, 'visit', 'visits'), fixed(state.took ?? 0, 0));
@@ -34,7 +35,7 @@ export function mountProgress(acts) {
       const message = state.message ?? state.notice ?? '';
       setText(detail, state.status === 'failed' && !state.notice ? `${message} ${text.tryInstead}` : message);
       show(detail, message !== '');
-      show(stop, state.status === 'fitting' && state.slow);
+      show(stop, (state.status === 'fitting' && state.slow) || state.calibrating !== null);
       show(retry, state.status === 'failed');
     },
   };

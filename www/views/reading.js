@@ -33,15 +33,15 @@ export function mountReading(root, acts) {
     show(root, readable);
     if (!readable) return;
     const reading = readingAt(findings, cursor);
-    setText(place, placeAmongVisits(reading, findings));
+    setText(place, [findings.scale.response, placeAmongVisits(reading, findings)].filter(Boolean).join(' \u00b7 '));
     stepper.update(findings, cursor);
-    reconcile(groups, reading.groups, (row) => row.group, (row) => mountRow(row.index, row.group), (node, row) => {
+    reconcile(groups, reading.groups, (row) => `${row.index}:${row.group}`, (row) => mountRow(row.index, row.group), (node, row) => {
       const numbers = withInterval(row.value, row.lower, row.upper);
       fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed));
     });
     const many = reading.gaps.length > MANY_PAIRS;
     table.classList.toggle('many', many);
-    reconcile(gaps, reading.gaps, (row) => `${row.pair}${many}`,
+    reconcile(gaps, reading.gaps, (row) => `${row.pair}:${row.from}:${row.to}:${many}`,
       (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
         const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);

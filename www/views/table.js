@@ -47,6 +47,7 @@ export function mountTable(root, acts) {
     if (state.source !== table) {
       table = state.source;
       limit = FIRST_ROWS;
+      body.replaceChildren();
     }
     if (!preview) return;
     setText(format, preview.format);
