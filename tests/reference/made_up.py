@@ -1,0 +1,42 @@
+"""Writes data/uneven.csv and data/spread.csv: invented tables for the dense reference, seeded."""
+
+import math
+import pathlib
+import random
+
+HERE = pathlib.Path(__file__).resolve().parent / "data"
+
+
+def uneven():
+    draw = random.Random(41)
+    lines = ["subject,group,time,y"]
+    for s in range(16):
+        level, state, previous = draw.gauss(0, 0.8), draw.gauss(0, 0.9), None
+        times = sorted(round(draw.uniform(0, 12) * 2) / 2 for _ in range(8))
+        for t in times:
+            if previous is not None and t > previous:
+                carry = 0.7 ** (t - previous)
+                state = carry * state + math.sqrt(1 - carry * carry) * draw.gauss(0, 0.9)
+            previous = t
+            mean = math.sin(t / 2) * (1 + s % 2) + 5
+            lines.append(f"u{s},{'ab'[s % 2]},{t},{mean + level + state + draw.gauss(0, 0.4):.4f}")
+    (HERE / "uneven.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
+
+
+def spread():
+    draw = random.Random(42)
+    lines = ["subject,group,time,y"]
+    for s in range(20):
+        wide = 3.0 if s % 2 else 1.0
+        level, trend = draw.gauss(0, wide), draw.gauss(0, 0.1 * wide)
+        for t in [0, 1, 2, 4, 6, 9, 13]:
+            if t and draw.random() < 0.1:
+                continue
+            y = 10 + math.sqrt(t + 1) * (1 + 0.3 * (s % 2)) + level + trend * t + draw.gauss(0, 0.5 * wide)
+            lines.append(f"v{s},{'ab'[s % 2]},{t},{y:.4f}")
+    (HERE / "spread.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
+
+
+if __name__ == "__main__":
+    uneven()
+    spread()
