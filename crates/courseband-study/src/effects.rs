@@ -9,11 +9,13 @@
 
 use crate::evaluate::Evaluation;
 use crate::findings::*;
-use courseband_engine::special::{Rng, t_quantile};
+use courseband_engine::special::{Rng, t_quantile, t_sf};
 use courseband_engine::{Contrast, Estimate, runs_above_zero};
 
 /// Posterior draws behind extremes and probabilities.
 const DRAWS: usize = 1000;
+/// Random directions behind the test of the gap's shape.
+const SHAPE_DIRECTIONS: usize = 2048;
 /// Pieces of the integration; within each a cubic is integrated exactly by two points.
 const PIECES: usize = 200;
 
@@ -29,7 +31,11 @@ impl Evaluation<'_> {
     }
 
     /// Average of a contrast over `[low, high]` (Gauss-Legendre, two points a piece).
-    fn average(&self, contrast: impl Fn(f64) -> Contrast, [low, high]: [f64; 2]) -> Option<Estimate> {
+    fn average(&self, contrast: impl Fn(f64) -> Contrast, support: [f64; 2]) -> Option<Estimate> {
+        self.average_contrast(contrast, support).map(|contrast| self.posterior.estimate(&contrast))
+    }
+
+    fn average_contrast(&self, contrast: impl Fn(f64) -> Contrast, [low, high]: [f64; 2]) -> Option<Contrast> {
         if high <= low {
             return None;
         }
@@ -47,7 +53,7 @@ impl Evaluation<'_> {
                 });
             }
         }
-        sum.map(|contrast| self.posterior.estimate(&contrast))
+        sum
     }
 
     pub(crate) fn pair_effects(&self, differences: &[Difference]) -> Vec<PairEffects> {
@@ -76,7 +82,26 @@ impl Evaluation<'_> {
             area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
             onset,
             onset_direction,
+            level_p: average.filter(|e| e.se > 0.0).map(|e| 2.0 * t_sf(e.mean.abs() / e.se, e.df)),
+            shape_p: support.and_then(|support| self.shape_p(support, &gap)),
         }
+    }
+
+    /// Departures of the gap from its average: one test over the whole support.
+    fn shape_p(&self, support: [f64; 2], gap: &impl Fn(f64) -> Contrast) -> Option<f64> {
+        let average = self.average_contrast(gap, support)?;
+        let members: Vec<(Contrast, Estimate)> = (self.inside(support).iter())
+            .map(|&t| {
+                let contrast = gap(t).plus(-1.0, &average);
+                let estimate = self.posterior.estimate(&contrast);
+                (contrast, estimate)
+            })
+            .filter(|(_, e)| e.se > 0.0)
+            .collect();
+        let most = members.iter().map(|(_, e)| *e).max_by(|a, b| (a.mean.abs() / a.se).total_cmp(&(b.mean.abs() / b.se)))?;
+        let contrasts: Vec<Contrast> = members.into_iter().map(|(c, _)| c).collect();
+        let maxima = self.posterior.family(&contrasts, SHAPE_DIRECTIONS, self.plan.seed);
+        Some(maxima.tail(most.mean.abs() / most.se, Some(most.df).filter(|df| df.is_finite())).clamp(0.0, 1.0))
     }
 
     fn is_ratio(&self) -> bool {

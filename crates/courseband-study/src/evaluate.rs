@@ -3,6 +3,7 @@
 use crate::cohort::Cohort;
 use crate::findings::*;
 use crate::plan::{BandKind, MarginUnit, Pairs, Plan, Shape, SmallSample, Transform};
+use courseband_engine::special::DirectionMaxima;
 use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
 
 /// Random directions behind a critical value. The radius is integrated, so that its error is
@@ -16,14 +17,16 @@ pub(crate) struct Evaluation<'a> {
     pub(crate) fit: &'a Fit,
     pub(crate) posterior: Posterior<'a>,
     grid: Vec<f64>,
-    calibrated: Option<CalibratedValues>,
+    pub(crate) calibrated: Option<CalibratedValues<'a>>,
 }
 
 /// Critical values from refits.
 #[derive(Debug, Clone, Copy)]
-pub(crate) struct CalibratedValues {
+pub(crate) struct CalibratedValues<'a> {
     pub(crate) curves: f64,
     pub(crate) differences: f64,
+    /// Largest |error| / SE over all gaps, one per refit.
+    pub(crate) kept: &'a [f64],
 }
 
 /// Degrees of freedom over a family, and its critical values.
@@ -31,6 +34,8 @@ struct Family {
     values: CriticalValues,
     least: f64,
     most: f64,
+    /// Behind a simultaneous band without calibration.
+    maxima: Option<DirectionMaxima>,
 }
 
 impl Family {
@@ -47,7 +52,7 @@ impl Family {
 }
 
 impl<'a> Evaluation<'a> {
-    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit, calibrated: Option<CalibratedValues>) -> Self {
+    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit, calibrated: Option<CalibratedValues<'a>>) -> Self {
         let posterior = match plan.comparisons.small_sample {
             SmallSample::None => fit.plug_in(),
             _ => fit.corrected(),
@@ -92,6 +97,7 @@ impl<'a> Evaluation<'a> {
         let used: Vec<(Contrast, Estimate)> = members.into_iter().filter(|(_, e)| e.se > 0.0).collect();
         let least = used.iter().map(|(_, e)| e.df).fold(f64::INFINITY, f64::min);
         let most = used.iter().map(|(_, e)| e.df).fold(1.0, f64::max);
+        let mut kept = None;
         let values = if let Some(value) = calibrated {
             CriticalValues::fixed(value)
         } else if self.plan.comparisons.band == BandKind::Pointwise || used.is_empty() {
@@ -99,9 +105,11 @@ impl<'a> Evaluation<'a> {
         } else {
             let contrasts: Vec<Contrast> = used.into_iter().map(|(c, _)| c).collect();
             let maxima = self.posterior.family(&contrasts, directions, self.plan.seed);
-            CriticalValues::simultaneous(&maxima, level, least, most)
+            let values = CriticalValues::simultaneous(&maxima, level, least, most);
+            kept = Some(maxima);
+            values
         };
-        Family { values, least, most: most.max(least) }
+        Family { values, least, most: most.max(least), maxima: kept }
     }
 
     fn asked(&self, contrast: impl Fn(f64) -> Contrast, times: &[f64]) -> Vec<(Contrast, Estimate)> {
@@ -253,11 +261,29 @@ impl<'a> Evaluation<'a> {
             grid: self.difference_points(self.grid.clone(), &estimates, family),
             support,
             margin,
+            p_adjusted: support.and_then(|support| self.p_adjusted(&self.inside(support), &gap, family)),
             stretches,
             beyond,
             inside,
             at_visits: self.difference_points(visits, &at_visits, family),
         }
+    }
+
+    /// Chance of so large a largest |gap| / SE, anywhere and for any compared pair, were the courses one.
+    fn p_adjusted(&self, points: &[f64], gap: &impl Fn(f64) -> Contrast, family: &Family) -> Option<f64> {
+        let estimates = points.iter().map(|&t| self.posterior.estimate(&gap(t))).filter(|e| e.se > 0.0);
+        if let Some(calibrated) = self.calibrated {
+            let largest = estimates.map(|e| e.mean.abs() / e.se).fold(0.0, f64::max);
+            let reached = calibrated.kept.iter().filter(|&&kept| kept >= largest).count();
+            // The table itself counts as one (Davison & Hinkley 1997, Bootstrap Methods, eq 4.11).
+            return Some((1 + reached) as f64 / (1 + calibrated.kept.len()) as f64);
+        }
+        let maxima = family.maxima.as_ref()?;
+        // Where degrees of freedom differ over time the point that says most decides, as in the band.
+        let ratio = |e: &Estimate| e.mean.abs() / e.se / family.at(e.df);
+        let most = estimates.max_by(|a, b| ratio(a).total_cmp(&ratio(b)))?;
+        let df = Some(most.df).filter(|df| df.is_finite()).map(|df| df.clamp(family.least, family.most));
+        Some(maxima.tail(most.mean.abs() / most.se, df).clamp(0.0, 1.0))
     }
 
     fn difference_points(&self, time: Vec<f64>, estimates: &[Option<Estimate>], family: &Family) -> DifferencePoints {

@@ -206,6 +206,9 @@ pub struct Difference {
     pub support: Option<[f64; 2]>,
     /// The margin on the modelled scale, as [lower, upper]; [0, 0] without one.
     pub margin: [f64; 2],
+    /// Were the courses one: chance of so large a largest gap in standard errors, adjusted over all compared
+    /// pairs. Below `1 - level` exactly where there are stretches (simultaneous bands only).
+    pub p_adjusted: Option<f64>,
     /// Maximal runs where the band excludes zero.
     pub stretches: Vec<Stretch>,
     /// Maximal runs where the band lies beyond the margin.
@@ -352,6 +355,10 @@ pub struct PairEffects {
     pub onset: Option<TimeEffect>,
     /// Direction of `onset`.
     pub onset_direction: Option<Direction>,
+    /// Were the average gap zero: chance of one so large (t test).
+    pub level_p: Option<f64>,
+    /// Were the gap the same at all times: chance of so large a largest departure from its average.
+    pub shape_p: Option<f64>,
 }
 
 /// Effect sizes of a group, in the order of `groups`.

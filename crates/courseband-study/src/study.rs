@@ -214,7 +214,7 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
 }
 
 /// Quantiles of the refits, with a note that says how sure they are. `None` where too many refits failed.
-fn calibrated_values(refits: &Refits, plan: &Plan, notes: &mut Vec<Note>) -> Option<CalibratedValues> {
+fn calibrated_values<'a>(refits: &'a Refits, plan: &Plan, notes: &mut Vec<Note>) -> Option<CalibratedValues<'a>> {
     let level = plan.comparisons.level;
     let failed = refits.differences.iter().chain(&refits.curves).filter(|x| x.is_infinite()).count();
     let values = |kept: &[f64]| if kept.is_empty() { (f64::INFINITY, [f64::INFINITY; 2]) } else { calibrated_quantile(kept, level) };
@@ -236,7 +236,7 @@ fn calibrated_values(refits: &Refits, plan: &Plan, notes: &mut Vec<Note>) -> Opt
             plan.words.subjects, reach[0], reach[1], plan.seed
         ),
     });
-    Some(CalibratedValues { curves, differences })
+    Some(CalibratedValues { curves, differences, kept: &refits.differences })
 }
 
 fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
