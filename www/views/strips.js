@@ -12,6 +12,9 @@ import { spoken } from '../spoken.js';
 import { text } from '../text.js';
 import { drawCursor } from './cursor.js';
 
+/** Free room above the strips, for the cursor's flag. */
+const HEAD_ROOM = 24;
+
 /** @typedef {import('../types.js').State} State */
 /** @typedef {import('../types.js').Layout} Layout */
 
@@ -41,7 +44,7 @@ export function mountStrips(root, acts) {
     const width = Math.floor(root.clientWidth);
     if (!last?.drawing || width < 100) return;
     layout = drawStrips(canvas, last.drawing, {
-      width, ratio: window.devicePixelRatio || 1, dark: matchMedia('(prefers-color-scheme: dark)').matches,
+      width, ratio: window.devicePixelRatio || 1, head_room: HEAD_ROOM, dark: matchMedia('(prefers-color-scheme: dark)').matches,
       open_pairs: last.openPairs, noun: last.choices.noun.many,
     });
     frame.style.height = `${layout.height}px`;
