@@ -65,11 +65,16 @@ export class Controller {
       openFile: (file) => void this.openFile(file),
       openDemo: (demo) => void this.openDemo(demo),
       go: (room) => { window.location.hash = `#/${room}`; },
+      bringTable: () => {
+        window.location.hash = '#/data';
+        window.setTimeout(() => document.getElementById('paste-box')?.focus(), 50);
+      },
       stop: () => this.stop(),
       retry: () => void this.refit(),
       togglePair: (pair) => this.set(change.pairToggled(this.state, pair)),
-      leaveOut: (row, reason) => this.choose(text.data.leftOut.label(row), change.leavingOut(row, reason, this.state.seen), false),
-      takeBack: (row) => this.choose(text.data.leftOut.back(row), change.takingBack(row), false),
+      leaveOut: (row, column, reason) =>
+        this.choose(text.data.leftOut.label(row), change.leavingOut({ row, column, reason, seen: this.state.seen }), false),
+      takeBack: (row, column) => this.choose(text.data.leftOut.back(row), change.takingBack(row, column), false),
     };
   }
 

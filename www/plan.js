@@ -65,7 +65,7 @@ export function planToSend(choices, response) {
   const { plan, noun, called, leftOut } = choices;
   return {
     ...plan,
-    exclusions: leftOut.map(({ row, reason }) => ({ row, reason })),
+    exclusions: leftOut.map(({ row, column, reason }) => (column === null ? { row, reason } : { row, column, reason })),
     words: {
       ...plan.words, subject: noun.one, subjects: noun.many,
       response: (response && called[response]) || plan.words.response,

@@ -52,7 +52,7 @@ export function opening(state, source, demo) {
 /** @param {Choices} choices @param {import('./types.js').Demo} demo @returns {Choices} */
 function demoChoices(choices, demo) {
   const plan = completePlan(/** @type {Record<string, any>} */ (demo.plan));
-  const leftOut = plan.exclusions.map(({ row, reason }) => ({ row, reason, seen: false }));
+  const leftOut = plan.exclusions.map(({ row, column = null, reason }) => ({ row, column, reason, seen: false }));
   return {
     ...choices, plan: { ...plan, exclusions: [] }, leftOut,
     noun: { one: plan.words.subject, many: plan.words.subjects }, called: demo.called ?? choices.called,
@@ -213,21 +213,19 @@ export function pairToggled(state, pair) {
 }
 
 /**
- * Leaves a row out, with its reason, and whether findings had been seen.
- * @param {number} row
- * @param {string} reason
- * @param {boolean} seen
+ * Leaves a row (or one cell of a wide table) out, with its reason, and whether
+ * findings had been seen.
+ * @param {import('./types.js').LeftOut} left
  * @returns {(choices: Choices) => Choices}
  */
-export function leavingOut(row, reason, seen) {
+export function leavingOut(left) {
   return (choices) => {
-    const others = choices.leftOut.filter((one) => one.row !== row);
-    const leftOut = [...others, { row, reason, seen }].sort((a, b) => a.row - b.row);
-    return { ...choices, leftOut };
+    const others = takingBack(left.row, left.column)(choices).leftOut;
+    return { ...choices, leftOut: [...others, left].sort((a, b) => a.row - b.row) };
   };
 }
 
-/** @param {number} row @returns {(choices: Choices) => Choices} */
-export function takingBack(row) {
-  return (choices) => ({ ...choices, leftOut: choices.leftOut.filter((one) => one.row !== row) });
+/** @param {number} row @param {string|null} column @returns {(choices: Choices) => Choices} */
+export function takingBack(row, column) {
+  return (choices) => ({ ...choices, leftOut: choices.leftOut.filter((one) => one.row !== row || one.column !== column) });
 }

@@ -113,6 +113,17 @@ export const text = {
     onlyOne: 'There is one group, so nothing is compared. The strip shows its course.',
   },
 
+  tables: {
+    title: 'As tables: visits and stretches',
+    visits: (/** @type {string} */ response) => `${response || 'Response'} at the visits, with bands`,
+    stretches: 'Stretches of every gap',
+    from: (/** @type {string} */ word) => `from ${word}`,
+    to: (/** @type {string} */ word) => `to ${word}`,
+    first: 'first visit',
+    last: 'last visit',
+    directions: { above: 'above', below: 'below' },
+  },
+
   change: {
     /** @param {string} label @param {string} pair @param {string|null} before @param {string|null} after @param {string} word */
     line: (label, pair, before, after, word) => {

@@ -32,7 +32,7 @@
 /** @typedef {{time: number[], estimate: Series, se: Series, lower: Series, upper: Series, response_estimate: Series, response_lower: Series, response_upper: Series}} DifferencePoints */
 /** @typedef {{start: number, end: number, direction?: 'above'|'below', open_start: boolean, open_end: boolean}} Stretch */
 /** @typedef {DifferencePoints & {from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
-/** @typedef {{row: number, column: string, value: string, message: string}} Problem */
+/** @typedef {{row: number, column: string, value: string, message: string, kept?: boolean}} Problem `kept`: the value is fitted all the same. */
 /** @typedef {{kind: string, pair: number|null, headline: string, text: string, depends: string}} Sentence */
 /** @typedef {{name: string, subjects: number, rows: number, last_times: number[], at_visit: number[]}} GroupInfo */
 
@@ -60,6 +60,7 @@
  * @property {string} name
  * @property {Role|null} role The role it was taken for.
  * @property {string} reason Why, or why not, in words.
+ * @property {boolean} measured In a wide table: the values of one visit, or of one subject.
  */
 
 /**
@@ -76,6 +77,7 @@
  * @typedef {Object} Preview
  * @property {PreviewColumn[]} columns
  * @property {{line: number, cells: string[]}[]} rows
+ * @property {'long'|'wide-by-time'|'wide-by-subject'} layout
  * @property {number} totalRows
  * @property {string} format How the text was read, in words.
  * @property {Problem[]} problems
@@ -94,7 +96,7 @@
 
 /** @typedef {{file: string, title: string, blurb: string, plan: Object, called?: Record<string, string>}} Demo */
 /** @typedef {{kind: 'demo'|'own', name: string}} Source */
-/** @typedef {{row: number, reason: string, seen: boolean}} LeftOut */
+/** @typedef {{row: number, column: string|null, reason: string, seen: boolean}} LeftOut `column`: only this cell of a wide table. */
 
 /**
  * Everything that undo covers.
@@ -144,11 +146,12 @@
  * @property {(file: File) => void} openFile
  * @property {(demo: Demo) => void} openDemo
  * @property {(room: string) => void} go
+ * @property {() => void} bringTable Goes to the paste box.
  * @property {() => void} stop
  * @property {() => void} retry
  * @property {(pair: number) => void} togglePair
- * @property {(row: number, reason: string) => void} leaveOut
- * @property {(row: number) => void} takeBack
+ * @property {(row: number, column: string|null, reason: string) => void} leaveOut
+ * @property {(row: number, column: string|null) => void} takeBack
  */
 
 /**

@@ -17,9 +17,10 @@ export function previewFrom(json) {
   const read = JSON.parse(json);
   return {
     columns: (read.columns ?? []).map((/** @type {any} */ column) => ({
-      name: column.name, role: column.role ?? null, reason: column.reason ?? '',
+      name: column.name, role: column.role ?? null, reason: column.reason ?? '', measured: column.measured ?? false,
     })),
     rows: read.rows ?? [],
+    layout: read.layout ?? 'long',
     totalRows: read.total_rows ?? 0,
     format: read.format ?? '',
     problems: read.problems ?? [],

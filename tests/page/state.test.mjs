@@ -7,7 +7,7 @@ import { findings } from './fixture.mjs';
 const drawing = { findings: '', traces: '' };
 const toLog = (choices) => ({ ...choices, plan: withTransform(choices.plan, 'log') });
 const fitted = () => change.fitted(change.opening(change.initialState(), { kind: 'own', name: 'x' }, null), findings(), drawing, 20);
-const preview = (questions) => ({ columns: [], rows: [], totalRows: 0, format: '', problems: [], questions, notes: [] });
+const preview = (questions) => ({ columns: [], rows: [], layout: 'long', nearSpellings: [], totalRows: 0, format: '', problems: [], questions, notes: [] });
 
 test('a table that opens leaves nothing of the one before', () => {
   const state = change.opening({ ...fitted(), cursor: 3 }, { kind: 'own', name: 'y' }, null);
@@ -22,7 +22,7 @@ test('a demo brings its plan, its words and its exclusions', () => {
   const { choices } = change.opening(change.initialState(), { kind: 'demo', name: 'A' }, demo);
   assert.equal(choices.plan.response.transform, 'log');
   assert.deepEqual(choices.noun, { one: 'mouse', many: 'mice' });
-  assert.deepEqual(choices.leftOut, [{ row: 3, reason: 'x', seen: false }]);
+  assert.deepEqual(choices.leftOut, [{ row: 3, column: null, reason: 'x', seen: false }]);
 });
 
 test('findings stay hidden while a question is open', () => {
@@ -100,7 +100,7 @@ test('at most three gap strips are open', () => {
 
 test('a row left out after findings were seen is marked so', () => {
   const state = fitted();
-  const { leftOut } = change.leavingOut(9, 'Wrong animal', state.seen)(state.choices);
-  assert.deepEqual(leftOut, [{ row: 9, reason: 'Wrong animal', seen: true }]);
-  assert.deepEqual(change.takingBack(9)({ ...state.choices, leftOut }).leftOut, []);
+  const { leftOut } = change.leavingOut({ row: 9, column: null, reason: 'Wrong animal', seen: state.seen })(state.choices);
+  assert.deepEqual(leftOut, [{ row: 9, column: null, reason: 'Wrong animal', seen: true }]);
+  assert.deepEqual(change.takingBack(9, null)({ ...state.choices, leftOut }).leftOut, []);
 });

@@ -11,6 +11,7 @@ import { mountPlan } from '../views/plan.js';
 import { mountQuestion } from '../views/question.js';
 import { mountReading } from '../views/reading.js';
 import { mountStrips } from '../views/strips.js';
+import { mountTables } from '../views/tables.js';
 
 /** @typedef {import('../types.js').Room} Room */
 
@@ -26,23 +27,27 @@ export const coursesRoom = {
     const change = el('p', { class: 'change', 'data-region': 'change' });
     const question = el('section', { class: 'question', hidden: true });
     const strips = el('section', { class: 'strips' });
+    const tables = el('section', { class: 'tables', 'data-region': 'tables' });
+    const column = el('div', { class: 'strips-column' }, strips, tables);
     const reading = el('section', { class: 'reading' });
     const findings = el('section', { class: 'findings' });
     const notes = el('section', { class: 'beside' });
     const views = [
       mountPlan(plan, acts), mountChange(change, acts), mountQuestion(question, acts), mountStrips(strips, acts),
-      mountReading(reading, acts), mountFindings(findings), mountNotes(notes),
+      mountReading(reading, acts), mountFindings(findings), mountNotes(notes), mountTables(tables),
     ];
     const aside = el('div', { class: 'aside' });
     const body = el('div', { class: 'courses-body' });
     const narrow = matchMedia(NARROW);
     const arrange = () => {
       if (narrow.matches) {
-        body.replaceChildren(strips, reading);
-        root.replaceChildren(question, change, findings, body, plan, notes);
+        column.replaceChildren(strips);
+        body.replaceChildren(column, reading);
+        root.replaceChildren(question, change, findings, body, plan, notes, tables);
       } else {
         aside.replaceChildren(reading, findings, notes);
-        body.replaceChildren(strips, aside);
+        column.replaceChildren(strips, tables);
+        body.replaceChildren(column, aside);
         root.replaceChildren(question, plan, change, body);
       }
     };

@@ -30,10 +30,7 @@ export const data = {
     roles: {
       subject: 'subject', time: 'time', group: 'group', response: 'response', cluster: 'cage or site', unused: 'not used',
     },
-    roleHint: {
-      subject: 'Who was measured.', time: 'When.', group: 'In which group.', response: 'What was measured.',
-      cluster: 'Cage, litter or site.', unused: '',
-    },
+    measured: { long: '', 'wide-by-time': 'values of one visit', 'wide-by-subject': 'values of one subject' },
     shown: (/** @type {number} */ shown, /** @type {number} */ all) => `First ${shown} of ${all} rows.`,
     all: (/** @type {number} */ all) => `All ${all} rows.`,
     more: 'Show more rows',
@@ -44,6 +41,7 @@ export const data = {
     none: 'Nothing stood out.',
     where: (/** @type {number} */ row, /** @type {string} */ column) => (column ? `Line ${row}, ${column}` : `Line ${row}`),
     leaveOut: 'leave this row out',
+    leaveCellOut: 'leave this value out',
     leaveOutLabel: (/** @type {number} */ row) => `Leave line ${row} out`,
     more: (/** @type {number} */ count) => `${count} more`,
     near: (/** @type {string} */ from, /** @type {string} */ into) => `Group \u2018${from}\u2019 may be a spelling of \u2018${into}\u2019.`,

@@ -40,9 +40,19 @@ export function mountFrame(body, acts) {
     return { room, home, view: room.mount(home, acts) };
   });
 
+  /** @type {string|null} */
+  let shown = null;
+  /** A room is entered: the title says so, and the focus goes there. @param {string} id */
+  function enter(id) {
+    document.title = `${rooms.find((room) => room.id === id)?.title ?? ''} \u00b7 ${text.name}`;
+    if (shown !== null && document.activeElement?.closest('main')) main.focus();
+    shown = id;
+  }
+
   return {
     update(state) {
       document.documentElement.dataset.state = state.status;
+      if (state.room !== shown) enter(state.room);
       for (const { room, home, view } of homes) {
         show(home, room.id === state.room);
         if (room.id === state.room) view.update(state);
@@ -77,7 +87,7 @@ function mountNavigation(acts) {
 /** @param {import('../types.js').Acts} acts */
 function mountMark(acts) {
   const title = el('strong');
-  const toOwn = el('button', { type: 'button', 'data-act': 'own-table', onclick: () => acts.go('data') }, text.demo.own);
+  const toOwn = el('button', { type: 'button', 'data-act': 'own-table', onclick: () => acts.bringTable() }, text.demo.own);
   const node = el('section', { class: 'mark', 'data-region': 'invented', 'aria-label': text.demo.label, hidden: true }, title, el('span', {}, text.demo.strip), toOwn);
   const update = whenChanged((state) => [state.source, state.room], ({ source, room }) => {
     show(node, source?.kind === 'demo');

@@ -19,10 +19,10 @@ export function mountLeftOut(root, acts) {
   return {
     update: whenChanged((state) => [state.choices.leftOut], ({ choices: { leftOut } }) => {
       show(root, leftOut.length > 0);
-      reconcile(list, leftOut, (row) => `${row.row}:${row.reason}`, (row) => el('li', {},
-        el('strong', {}, text.data.problems.where(row.row, '')), ' ', row.reason, ' ',
+      reconcile(list, leftOut, (row) => `${row.row}:${row.column}:${row.reason}`, (row) => el('li', {},
+        el('strong', {}, text.data.problems.where(row.row, row.column ?? '')), ' ', row.reason, ' ',
         el('span', { class: 'hint' }, `(${row.seen ? words.seen : words.before})`), ' ',
-        el('button', { type: 'button', class: 'quiet', onclick: () => acts.takeBack(row.row) }, words.takeBack)));
+        el('button', { type: 'button', class: 'quiet', onclick: () => acts.takeBack(row.row, row.column) }, words.takeBack)));
     }),
   };
 }

@@ -25,11 +25,10 @@ export function mountProblems(root, acts) {
   root.append(el('h2', {}, words.title), none, offers, list, more, other.node);
   return {
     update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.message], (state) => {
-      const out = new Set(state.choices.leftOut.map((row) => row.row));
       const known = [...(state.preview?.problems ?? []), ...(state.findings?.problems ?? [])];
-      const problems = unique(known).filter((problem) => !out.has(problem.row));
+      const problems = unique(known).filter((problem) => !isOut(problem, state.choices.leftOut));
       const draw = (/** @type {HTMLElement} */ to, /** @type {Problem[]} */ rows) =>
-        reconcile(to, rows, keyOf, (problem) => mountProblem(problem, acts));
+        reconcile(to, rows, keyOf, (problem) => mountProblem(problem, (state.preview?.layout ?? 'long') !== 'long', acts));
       draw(list, problems.slice(0, SHOWN));
       draw(rest, problems.slice(SHOWN, 200));
       reconcile(offers, state.preview?.nearSpellings ?? [], (row) => `${row.from}:${row.into}`, (row) => mountOffer(row, acts));
@@ -69,23 +68,29 @@ function unique(problems) {
   return Array.from(new Map(problems.map((problem) => [keyOf(problem), problem])).values());
 }
 
-/** @param {Problem} problem @param {Acts} acts */
-function mountProblem(problem, acts) {
-  const ask = askForReason(acts, () => problem.row);
+/** @param {Problem} problem @param {import('../types.js').LeftOut[]} leftOut */
+function isOut(problem, leftOut) {
+  return leftOut.some((one) => one.row === problem.row && (one.column === null || one.column === problem.column));
+}
+
+/** @param {Problem} problem @param {boolean} wide @param {Acts} acts */
+function mountProblem(problem, wide, acts) {
+  const ask = askForReason(acts, () => problem.row, wide ? problem.column : null);
   const start = el('button', {
     type: 'button', class: 'quiet', 'aria-label': words.leaveOutLabel(problem.row), onclick: () => ask.open(start),
-  }, words.leaveOut);
+  }, wide ? words.leaveCellOut : words.leaveOut);
   const value = problem.value === '' ? null : el('code', {}, problem.value);
   return el('li', {}, el('strong', {}, words.where(problem.row, problem.column)), ' ', value, ' ',
-    el('span', {}, problem.message), ' ', start, ask.node);
+    el('span', {}, problem.message), ' ', ...(problem.kept === false ? [] : [start, ask.node]));
 }
 
 /**
  * A small form for the reason, which the record keeps.
  * @param {Acts} acts
  * @param {() => number|null} row
+ * @param {string|null} column
  */
-function askForReason(acts, row) {
+function askForReason(acts, row, column) {
   const reason = el('input', { type: 'text', autocomplete: 'off', required: true });
   const node = el('form', { class: 'ask', hidden: true, novalidate: true },
     el('label', { class: 'field' }, el('span', {}, words.reason), reason),
@@ -107,7 +112,7 @@ function askForReason(acts, row) {
     reason.setAttribute('aria-invalid', String(why === ''));
     if (line === null || why === '') return reason.focus();
     close();
-    acts.leaveOut(line, why);
+    acts.leaveOut(line, column, why);
   });
   return {
     node,
@@ -127,7 +132,7 @@ function mountOther(acts) {
     const value = parseNumber(line.value);
     return value !== null && Number.isInteger(value) && value > 1 ? value : null;
   };
-  const ask = askForReason(acts, number);
+  const ask = askForReason(acts, number, null);
   const start = el('button', { type: 'button', class: 'quiet' }, words.leaveOut);
   start.addEventListener('click', () => (number() === null ? line.focus() : ask.open(start)));
   const node = el('details', { class: 'other-row' }, el('summary', {}, words.any),

@@ -64,19 +64,22 @@ export function mountTable(root, acts) {
 /** @param {HTMLElement} heads @param {State} state @param {Preview} preview @param {Acts} acts */
 function drawHeads(heads, state, preview, acts) {
   const used = columnsUsed(state);
-  const corner = { name: '', role: null, reason: '' };
+  const corner = { name: '', role: null, reason: '', measured: false };
   reconcile(heads, [corner, ...preview.columns], (column, index) => `${index}:${column.name}`,
     (column, index) => (index === 0 ? el('th', { scope: 'col', class: 'line' }, words.line) : mountHead(column.name, acts)),
     (node, column, index) => {
       if (index === 0) return;
       const role = ROLES.find((one) => used[one] === column.name) ?? 'unused';
       const select = /** @type {HTMLSelectElement} */ (node.querySelector('select'));
+      const called = /** @type {HTMLInputElement} */ (node.querySelector('input'));
       const chosen = role !== 'unused' && state.choices.plan.columns[role] === column.name;
       select.value = role;
-      node.dataset.role = role;
+      node.dataset.role = column.measured ? 'measured' : role;
+      setText(/** @type {Element} */ (node.querySelector('.measured')), column.measured ? words.measured[preview.layout] : '');
+      show(select, !column.measured);
+      show(called, !column.measured);
       node.used = used;
       setText(/** @type {Element} */ (node.querySelector('.why')), chosen || role === 'unused' && !column.reason ? '' : column.reason);
-      const called = /** @type {HTMLInputElement} */ (node.querySelector('input'));
       if (document.activeElement !== called) called.value = state.choices.called[column.name] ?? '';
     });
 }
@@ -92,7 +95,7 @@ function mountHead(column, acts) {
     placeholder: words.calledShort,
   });
   const head = el('th', { scope: 'col' }, el('span', { class: 'column-name', title: column, tabindex: '-1' }, column),
-    select, called, el('span', { class: 'why' }));
+    select, el('span', { class: 'measured' }), called, el('span', { class: 'why' }));
   select.addEventListener('change', () => {
     const role = /** @type {Role|'unused'} */ (select.value);
     const { used } = /** @type {any} */ (head);
@@ -108,17 +111,18 @@ function mountHead(column, acts) {
 
 /** @param {HTMLElement} body @param {Preview['rows']} rows @param {State} state @param {Preview} preview */
 function drawRows(body, rows, state, preview) {
-  const out = new Set(state.choices.leftOut.map((row) => row.row));
+  const out = new Set(state.choices.leftOut.map((one) => `${one.row}:${one.column ?? ''}`));
   /** @type {Map<string, string>} */
   const troubled = new Map(preview.problems.map((problem) => [`${problem.row}:${problem.column}`, problem.message]));
   reconcile(body, rows, (row) => String(row.line), (row) => el('tr', {}, el('th', { scope: 'row', class: 'line' }, String(row.line)),
     ...preview.columns.map(() => el('td'))), (node, row) => {
-    node.classList.toggle('is-out', out.has(row.line));
+    node.classList.toggle('is-out', out.has(`${row.line}:`));
     preview.columns.forEach((column, index) => {
       const cell = /** @type {HTMLTableCellElement} */ (node.children[index + 1]);
       setText(cell, row.cells[index] ?? '');
       const message = troubled.get(`${row.line}:${column.name}`);
       cell.classList.toggle('is-troubled', message !== undefined);
+      cell.classList.toggle('is-out', out.has(`${row.line}:${column.name}`));
       if (message) cell.title = message;
       else cell.removeAttribute('title');
     });
