@@ -15,9 +15,11 @@ mod plan;
 mod refusal;
 mod remarks;
 mod sentences;
+mod size;
 mod study;
 
 pub use findings::*;
 pub use plan::*;
 pub use refusal::Refusal;
+pub use size::{CourseMeans, Counts, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
 pub use study::{Calibrator, Refits, Study, run};

@@ -303,7 +303,7 @@ fn decimals(width: f64) -> usize {
 }
 
 /// A number with a true minus sign.
-fn number(value: f64, digits: usize) -> String {
+pub(crate) fn number(value: f64, digits: usize) -> String {
     let text = format!("{value:.digits$}");
     let zero = text.trim_start_matches('-').chars().all(|c| c == '0' || c == '.');
     match text.strip_prefix('-') {
@@ -314,7 +314,7 @@ fn number(value: f64, digits: usize) -> String {
 }
 
 /// A number as short as it was given.
-fn plain(value: f64) -> String {
+pub(crate) fn plain(value: f64) -> String {
     let rounded = (value * 1e6).round() / 1e6;
     let text = format!("{rounded}");
     text.strip_prefix('-').map_or(text.clone(), |rest| format!("\u{2212}{rest}"))
