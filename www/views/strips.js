@@ -123,7 +123,7 @@ function keyTarget(event, { findings, cursor }) {
 
 /**
  * Pointer moves the cursor: a mouse by hovering, a finger by moving sideways
- * (up and down scrolls the page).
+ * (up and down scrolls the page). A click on a pair's row opens its strip.
  * @param {HTMLElement} slider
  * @param {() => Layout|null} layoutNow
  * @param {import('../types.js').Acts} acts
@@ -139,6 +139,11 @@ function follow(slider, layoutNow, acts) {
   };
   slider.addEventListener('pointermove', point);
   slider.addEventListener('pointerdown', point);
+  slider.addEventListener('click', (event) => {
+    const y = event.clientY - slider.getBoundingClientRect().top;
+    const strip = layoutNow()?.strips.find(({ kind, top, bottom }) => kind === 'row' && top <= y && y < bottom);
+    if (strip && strip.pair !== null) acts.togglePair(strip.pair);
+  });
 }
 
 /**
