@@ -103,7 +103,7 @@ export class Controller {
 
   /** @param {import('./types.js').Choices} choices */
   #planText(choices) {
-    return JSON.stringify(planToSend(choices, columnsUsed(this.state).response));
+    return JSON.stringify(planToSend(choices, columnsUsed(this.state)));
   }
 
   /** @param {import('./types.js').Demo} demo */

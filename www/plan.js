@@ -58,17 +58,20 @@ export function withSection(plan, section, values) {
  * The plan as the worker takes it: rows left out come with their reasons, and
  * the page's words for subjects and response go into the sentences.
  * @param {Choices} choices
- * @param {string|null} response The response column in use.
+ * @param {{time: string|null, response: string|null}} columns The columns in use.
  * @returns {Plan}
  */
-export function planToSend(choices, response) {
+export function planToSend(choices, columns) {
   const { plan, noun, called, leftOut } = choices;
+  /** @param {string|null} column */
+  const byHand = (column) => (column === null ? null : called[column] || null);
   return {
     ...plan,
     exclusions: leftOut.map(({ row, column, reason }) => (column === null ? { row, reason } : { row, column, reason })),
     words: {
       ...plan.words, subject: noun.one, subjects: noun.many,
-      response: (response && called[response]) || plan.words.response,
+      time: byHand(columns.time) ?? plan.words.time,
+      response: byHand(columns.response) ?? plan.words.response,
     },
   };
 }

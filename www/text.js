@@ -47,6 +47,7 @@ export const text = {
     `Bands being calibrated by refits, ${done} of ${total}${seconds === null ? '' : `, ${seconds}\u00a0s left`}. Days are provisional until then.`,
   notCalibrated: 'Bands were not calibrated; they rest on degrees of freedom.',
   provisional: 'provisional',
+  seeTable: 'Go to the table',
   stop: 'Stop',
   retry: 'Fit again',
   stopped: 'Stopped. The last choice was taken back.',

@@ -27,7 +27,7 @@ test('a short plan is filled in, section by section', () => {
 
 test('rows left out and words travel with the plan', () => {
   const choices = { ...freshChoices(), leftOut: [{ row: 14, column: null, reason: 'Died', seen: true }, { row: 15, column: 'day 3', reason: 'Slip', seen: true }], noun: { one: 'mouse', many: 'mice' }, called: { area: 'Wound' } };
-  const sent = planToSend(choices, 'area');
+  const sent = planToSend(choices, { time: 'day', response: 'area' });
   assert.deepEqual(sent.exclusions, [{ row: 14, reason: 'Died' }, { row: 15, column: 'day 3', reason: 'Slip' }]);
   assert.deepEqual(sent.words, { subject: 'mouse', subjects: 'mice', time: null, response: 'Wound' });
 });

@@ -26,7 +26,8 @@ export function mountProgress(acts) {
   const detail = el('span', { class: 'progress-detail', 'data-region': 'message' });
   const stop = el('button', { type: 'button', class: 'quiet', onclick: acts.stop }, text.stop);
   const retry = el('button', { type: 'button', class: 'quiet', onclick: acts.retry }, text.retry);
-  const node = el('section', { class: 'progress', 'aria-label': text.progress }, line, detail, stop, retry);
+  const toData = el('a', { href: '#/data' }, text.seeTable);
+  const node = el('section', { class: 'progress', 'aria-label': text.progress }, line, detail, toData, stop, retry);
   return {
     node,
     /** @param {State} state */
@@ -36,6 +37,7 @@ export function mountProgress(acts) {
       setText(detail, state.status === 'failed' && !state.notice ? `${message} ${text.tryInstead}` : message);
       show(detail, message !== '');
       show(stop, (state.status === 'fitting' && state.slow) || state.calibrating !== null);
+      show(toData, (state.status === 'problem' || state.status === 'empty') && state.room !== 'data');
       show(retry, state.status === 'failed');
     },
   };
