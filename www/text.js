@@ -20,7 +20,6 @@ export function counted(count, one, many) {
 
 export const text = {
   name: 'Courseband',
-  purpose: 'When groups followed over time come apart, by how much, and how surely.',
   plan,
   data,
   privacy,
@@ -91,7 +90,6 @@ export const text = {
     pairs: 'Gap',
     state: 'Lane',
     none: 'not observed by both',
-    beforeFirst: 'before the first visit',
     /** @param {string} lower @param {string} upper */
     range: (lower, upper) => `${lower} to ${upper}`,
     /** @param {string} to @param {string} from */

@@ -61,7 +61,7 @@ export const data = {
     label: (/** @type {number} */ row) => `Line ${row} left out`,
     back: (/** @type {number} */ row) => `Line ${row} taken back in`,
   },
-  question: { title: 'One question first', reopen: 'Asked and answered; change it through the roles under the column heads.' },
+  question: { title: 'One question first' },
   description: {
     title: 'By group and visit',
     group: 'Group', time: 'Time', n: 'n', mean: 'Mean', sd: 'SD', median: 'Median',

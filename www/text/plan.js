@@ -16,10 +16,9 @@ export const plan = {
   propose: (control, pairs, fewer) =>
     `${control} is named like a control. All ${pairs} pairs at once make every band wider; with ${control} there are ${fewer}.`,
   proposeAct: (/** @type {string} */ control) => `Compare each with ${control}`,
-  marginLost: 'The margin was set aside: it has a meaning on the other scale only.',
+  marginLost: 'The margin was set aside: it has a meaning on the other scale only',
 
   by: ' by ',
-  comma: ', ',
   aCourse: ', a ',
   coursePer: ' course per ',
   oneCourse: ' course, ',
@@ -42,7 +41,7 @@ export const plan = {
   ratio: (/** @type {string} */ low, /** @type {string} */ high) => ` (ratio ${low} to ${high})`,
 
   choices: {
-    response: { label: 'What was measured', none: 'response', pick: 'Each column that holds numbers can be followed.' },
+    response: { label: 'What was measured', none: 'response' },
     time: { label: 'When', none: 'time' },
     group: { label: 'Groups', none: 'no group', absent: 'No group: one course', absentFits: 'One course for all; nothing is compared.' },
     shape: {

@@ -92,7 +92,8 @@ export class ChoiceList {
     if (!row || row.greyed) return;
     this.close();
     if (row.chosen) return;
-    const label = `${text.plan.choices[choice].label}: ${row.name}`;
+    const lost = row.plan.comparisons.margin !== state.choices.plan.comparisons.margin;
+    const label = `${text.plan.choices[choice].label}: ${row.name}${lost ? `. ${text.plan.marginLost}` : ''}`;
     this.acts.choose(label, (choices) => ({ ...choices, plan: row.plan }));
   }
 
