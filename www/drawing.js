@@ -10,7 +10,7 @@
  * @property {number} width CSS pixels.
  * @property {number} ratio Device pixels per CSS pixel.
  * @property {number} head_room Free room at the top.
- * @property {boolean} dark
+ * @property {'light'|'dark'|'print'} theme
  * @property {number[]} open_pairs
  * @property {string} noun What several subjects are called.
  */

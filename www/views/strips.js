@@ -40,11 +40,16 @@ export function mountStrips(root, acts) {
   /** @type {Layout|null} */
   let layout = null;
 
+  let printing = false;
+  window.addEventListener('beforeprint', () => { printing = true; redraw(); });
+  window.addEventListener('afterprint', () => { printing = false; redraw(); });
+
   function redraw() {
     const width = Math.floor(root.clientWidth);
     if (!last?.drawing || width < 100) return;
     layout = drawStrips(canvas, last.drawing, {
-      width, ratio: window.devicePixelRatio || 1, head_room: HEAD_ROOM, dark: matchMedia('(prefers-color-scheme: dark)').matches,
+      width, ratio: window.devicePixelRatio || 1, head_room: HEAD_ROOM, 
+      theme: printing ? 'print' : matchMedia('(prefers-color-scheme: dark)').matches ? 'dark' : 'light',
       open_pairs: last.openPairs, noun: last.choices.noun.many,
     });
     frame.style.height = `${layout.height}px`;
