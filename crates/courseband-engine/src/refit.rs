@@ -2,7 +2,7 @@
 
 use crate::criterion::Criterion;
 use crate::fit::Fit;
-use crate::optimise::{Bounds, hessian, plain_inverse, quasi_newton, start};
+use crate::optimise::{Bounds, hessian, newton, plain_inverse, quasi_newton, start};
 use crate::reduce::Design;
 use nalgebra::DMatrix;
 
@@ -45,5 +45,22 @@ impl Refitter {
         let curvature = hessian(&mut criterion, &point.theta, &free)?;
         let solved = criterion.evaluate(&point.theta, false)?.solved;
         Some(Fit { design: design.clone(), solved, theta: point.theta, value: point.value, free, hessian: curvature, ..self.pattern.clone() })
+    }
+
+    /// The refit followed to the last digits, without what inference needs beyond the curves.
+    pub(crate) fn refit_closely(&self, design: Design, theta: &[f64]) -> Option<Fit> {
+        let layout = &self.pattern.layout;
+        let mut criterion = Criterion::new(&design, layout);
+        let bounds = Bounds { lower: &layout.lower, upper: &layout.upper };
+        let begin = start(&mut criterion, &bounds, theta.to_vec())?;
+        let near = quasi_newton(&mut criterion, &bounds, begin, &self.inverse, 1e-6, 60);
+        let polished = newton(&mut criterion, &bounds, near, 6)?;
+        if polished.decrement > 1e-6 {
+            return None;
+        }
+        let (theta, value) = (polished.point.theta, polished.point.value);
+        let solved = criterion.evaluate(&theta, false)?.solved;
+        let (free, hessian) = (polished.free, polished.hessian);
+        Some(Fit { design: design.clone(), solved, theta, value, free, hessian, ..self.pattern.clone() })
     }
 }
