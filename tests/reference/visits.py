@@ -158,7 +158,7 @@ if __name__ == "__main__":
         file.write("case,subject,group,time,y\n")
         for case, rows in tables().items():
             values(case, rows, lambda *row: out.append(row))
-            file.writelines(f"{case},{s},{g},{t:g},{y:g}\n" for s, g, t, y in rows)
+            file.writelines(f"{case},{s},{g},{t:g},{y!r}\n" for s, g, t, y in rows)
     with open(DATA / "visits.csv", "w", encoding="utf-8") as file:
         file.write(f"# numpy {np.__version__}, scipy {scipy.__version__}; by tests/reference/visits.py\ncase,quantity,value\n")
         file.writelines(f"{case},{name},{float(value)!r}\n" for case, name, value in out)
