@@ -1,7 +1,7 @@
 //! The rows that are fitted: on the modelled scale, subject by subject.
 
 use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
-use crate::plan::{Plan, Serial, Shape, Transform};
+use crate::plan::{Pairs, Plan, Serial, Shape, Transform};
 use crate::refusal::Refusal;
 use courseband_engine::{Data, SubjectRows};
 use courseband_table::{Observations, Reading};
@@ -54,6 +54,21 @@ impl Cohort {
         }
         refuse_many_means(plan, &data, &groups)?;
         Ok(Cohort { data, groups, supports, visits, control, notes })
+    }
+
+    /// Pairs that are compared, as group indices `(from, to)`.
+    pub(crate) fn pairs(&self, plan: &Plan) -> Vec<(usize, usize)> {
+        let groups = self.groups.len();
+        let mut pairs = Vec::new();
+        for a in 0..groups {
+            for b in a + 1..groups {
+                let pair = if Some(b) == self.control { (b, a) } else { (a, b) };
+                if plan.comparisons.pairs == Pairs::All || Some(pair.0) == self.control {
+                    pairs.push(pair);
+                }
+            }
+        }
+        pairs
     }
 }
 

@@ -2,7 +2,7 @@
 
 use crate::cohort::Cohort;
 use crate::findings::*;
-use crate::plan::{BandKind, MarginUnit, Pairs, Plan, Shape, SmallSample, Transform};
+use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample, Transform};
 use courseband_engine::special::DirectionMaxima;
 use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
 
@@ -72,17 +72,7 @@ impl<'a> Evaluation<'a> {
 
     /// Pairs that are compared, as group indices `(from, to)`.
     pub(crate) fn pairs(&self) -> Vec<(usize, usize)> {
-        let groups = self.cohort.groups.len();
-        let mut pairs = Vec::new();
-        for a in 0..groups {
-            for b in a + 1..groups {
-                let pair = if Some(b) == self.cohort.control { (b, a) } else { (a, b) };
-                if self.plan.comparisons.pairs == Pairs::All || Some(pair.0) == self.cohort.control {
-                    pairs.push(pair);
-                }
-            }
-        }
-        pairs
+        self.cohort.pairs(self.plan)
     }
 
     /// Grid and visits inside `support`, with its ends, ascending.

@@ -274,7 +274,7 @@ fn few_left(findings: &Findings) -> Option<Sentence> {
 }
 
 /// `a`, `a and b`, `a, b and c`.
-fn joined(parts: &[String]) -> String {
+pub(crate) fn joined(parts: &[String]) -> String {
     match parts {
         [] => String::new(),
         [one] => one.clone(),
@@ -294,7 +294,7 @@ fn shares(estimate: f64, lower: f64, upper: f64) -> [String; 3] {
 }
 
 /// Decimals that give a quantity of this width two or three digits.
-fn decimals(width: f64) -> usize {
+pub(crate) fn decimals(width: f64) -> usize {
     if !(width > 0.0) || !width.is_finite() {
         return 2;
     }
