@@ -23,6 +23,9 @@ pub struct Residual {
     pub around_course: f64,
     /// Made independent with unit variance.
     pub independent: f64,
+    /// Response minus its prediction from all other rows of the subject, over that prediction's
+    /// standard deviation: `(V^-1 r)_j / sqrt((V^-1)_jj)`.
+    pub given_rest: f64,
 }
 
 impl Fit {
@@ -34,12 +37,14 @@ impl Fit {
         for pattern in self.design.patterns.iter().filter(|p| p.times.len() <= 2000) {
             let g = pattern.group;
             let Some(factor) = Cholesky::new(self.subject_total(g, &pattern.times)) else { continue };
+            let inverse = factor.inverse();
             let mean: Vec<f64> = pattern.times.iter().map(|&t| self.inner_course(g, t)).collect();
             let m = pattern.subjects.len();
             for (s, &subject) in pattern.subjects.iter().enumerate() {
                 let r = DVector::from_fn(mean.len(), |j, _| pattern.responses[j * m + s] - mean[j]);
                 let mut w = r.clone();
                 factor.l_dirty().solve_lower_triangular_mut(&mut w);
+                let weighed = &inverse * &r;
                 all.extend((0..mean.len()).map(|j| Residual {
                     subject,
                     group: g,
@@ -47,6 +52,7 @@ impl Fit {
                     course: units.response_centre + units.response_scale * mean[j],
                     around_course: units.response_scale * r[j],
                     independent: w[j],
+                    given_rest: weighed[j] / libm::sqrt(inverse[(j, j)]),
                 }));
             }
         }
@@ -112,6 +118,8 @@ mod tests {
         let n = all.len() as f64;
         let square = all.iter().map(|r| r.independent * r.independent).sum::<f64>() / n;
         assert!((square - 1.0).abs() < 0.05, "{square}");
+        let rest = all.iter().map(|r| r.given_rest * r.given_rest).sum::<f64>() / n;
+        assert!((rest - 1.0).abs() < 0.1, "{rest}");
         let lag = all.windows(2).filter(|w| w[0].subject == w[1].subject).map(|w| w[0].independent * w[1].independent);
         assert!((lag.sum::<f64>() / (60.0 * 7.0)).abs() < 0.12);
         let first = &data.subjects[0];

@@ -7,6 +7,7 @@
 //! `courseband-table`'s work, mathematics is `courseband-engine`'s.
 
 mod check_plan;
+mod checks;
 mod cohort;
 mod effects;
 mod evaluate;
@@ -18,6 +19,7 @@ mod sentences;
 mod size;
 mod study;
 
+pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
 pub use plan::*;
 pub use refusal::Refusal;

@@ -127,7 +127,7 @@ impl Study {
         find(self.answered(plan)?, plan, Some(refits))
     }
 
-    fn answered(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
+    pub(crate) fn answered(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
         let reading = self.reading(plan)?;
         match reading.open_question() {
             Some(question) => Err(Refusal { about: "question", message: question.refusal() }),
