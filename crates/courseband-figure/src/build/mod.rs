@@ -1,0 +1,87 @@
+//! From the findings to the description of a figure. All statistics of the
+//! figure (percentile ranges, counts followed) are here, none in the drawing.
+
+mod axis;
+mod courses;
+mod followed;
+mod gaps;
+mod lane;
+mod points;
+mod range;
+
+use crate::figure::{Dash, Figure, GroupLook, Strip, TimeAxis, Tone, Words};
+use crate::source::{Source, Traces};
+use crate::text::shortened;
+use crate::view::View;
+
+/// Describes the figure of an analysis.
+#[must_use]
+pub fn describe(source: &Source, traces: &Traces, view: &View) -> Figure {
+    let builder = Builder { source, traces, view, time: axis::time_axis(source), looks: looks(source) };
+    let mut strips: Vec<Strip> = Vec::new();
+    if !source.curves.is_empty() {
+        strips.push(builder.courses());
+    }
+    strips.extend(builder.gaps());
+    strips.push(builder.followed());
+    Figure { view: view.clone(), time: builder.time, groups: builder.looks, strips }
+}
+
+/// What every strip is built from.
+struct Builder<'a> {
+    source: &'a Source,
+    traces: &'a Traces,
+    view: &'a View,
+    time: TimeAxis,
+    looks: Vec<GroupLook>,
+}
+
+impl Builder<'_> {
+    /// Index of a group by its name.
+    fn group(&self, name: &str) -> usize {
+        self.source.groups.iter().position(|g| g.name == name).unwrap_or(0)
+    }
+
+    /// What several subjects are called.
+    fn noun(&self) -> &str {
+        self.view.noun.as_deref().filter(|n| !n.is_empty()).unwrap_or(&self.source.plan.words.subjects)
+    }
+
+    /// Length of the time axis that one pixel stands for, roughly.
+    fn pixel(&self) -> f64 {
+        (self.time.end - self.time.start) / self.view.safe_width()
+    }
+
+    /// Letters and names, where curves carry letters.
+    fn key(&self) -> Vec<Words> {
+        if !self.view.is_narrow() {
+            return Vec::new();
+        }
+        let words = |(g, look): (usize, &GroupLook)| Words {
+            text: format!("{}\u{a0}{}", look.letter, shortened(&look.name, 24).replace(' ', "\u{a0}")),
+            tone: Tone::Group(g),
+            bold: true,
+        };
+        self.looks.iter().enumerate().map(words).collect()
+    }
+}
+
+/// Colour and line style by the groups' order; both differ as long as they can.
+fn looks(source: &Source) -> Vec<GroupLook> {
+    let look = |(k, group): (usize, &crate::source::Group)| GroupLook {
+        name: group.name.clone(),
+        letter: letter(k),
+        colour: k % 6,
+        dash: Dash::ALL[(k + k / 6) % 6],
+    };
+    source.groups.iter().enumerate().map(look).collect()
+}
+
+/// A, B ... Z, AA, AB ...
+fn letter(k: usize) -> String {
+    let last = char::from(b'A' + (k % 26) as u8);
+    if k < 26 { last.to_string() } else { format!("{}{last}", letter(k / 26 - 1)) }
+}
+
+#[cfg(test)]
+mod tests;

@@ -1,0 +1,97 @@
+//! How a figure is to look: size, colours, what is opened.
+
+use serde::Deserialize;
+
+/// For which surface colours are chosen.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Deserialize)]
+#[serde(rename_all = "lowercase")]
+pub enum Theme {
+    /// Light page.
+    #[default]
+    Light,
+    /// Dark page.
+    Dark,
+    /// White paper.
+    Print,
+}
+
+/// How a figure is to look. Lengths are in CSS pixels.
+#[derive(Debug, Clone, Deserialize)]
+#[serde(default, deny_unknown_fields)]
+pub struct View {
+    /// Width of the whole figure, at least 240.
+    pub width: f64,
+    /// Device pixels per CSS pixel.
+    pub ratio: f64,
+    /// For which surface.
+    pub theme: Theme,
+    /// Short for the dark theme.
+    pub dark: bool,
+    /// Size of the text.
+    pub font: f64,
+    /// Room kept free at the top, for the cursor's flag.
+    pub head_room: f64,
+    /// Stretches the strips' heights.
+    pub tall: f64,
+    /// Gaps whose strips are open, where there are more pairs than [`View::FEW_PAIRS`].
+    pub open_pairs: Vec<usize>,
+    /// Draws the courses on a logarithmic axis or not; `None`: where gaps are ratios.
+    pub log: Option<bool>,
+    /// A group whose traces are shown and whose course stands out.
+    pub focus: Option<usize>,
+    /// A subject whose trace stands out.
+    pub pointed: Option<usize>,
+    /// What several subjects are called; `None`: as in the plan.
+    pub noun: Option<String>,
+    /// Draws no more points than the pixels can show.
+    pub decimate: bool,
+    /// Groups are labelled by letters at their curves; `None`: on narrow figures.
+    pub letters: Option<bool>,
+}
+
+impl Default for View {
+    fn default() -> Self {
+        View {
+            width: 900.0,
+            ratio: 1.0,
+            theme: Theme::Light,
+            dark: false,
+            font: 12.0,
+            head_room: 0.0,
+            tall: 1.0,
+            open_pairs: Vec::new(),
+            log: None,
+            focus: None,
+            pointed: None,
+            noun: None,
+            decimate: true,
+            letters: None,
+        }
+    }
+}
+
+impl View {
+    /// Up to so many pairs each has its own strip.
+    pub const FEW_PAIRS: usize = 3;
+
+    /// The theme, `dark` considered.
+    #[must_use]
+    pub fn surface(&self) -> Theme {
+        if self.dark { Theme::Dark } else { self.theme }
+    }
+
+    /// Width that can be worked with.
+    pub(crate) fn safe_width(&self) -> f64 {
+        if self.width.is_finite() { self.width.clamp(240.0, 4000.0) } else { 900.0 }
+    }
+
+    /// Text size that can be worked with.
+    pub(crate) fn safe_font(&self) -> f64 {
+        if self.font.is_finite() { self.font.clamp(6.0, 40.0) } else { 12.0 }
+    }
+
+    /// Too narrow for names at the curves' ends.
+    pub(crate) fn is_narrow(&self) -> bool {
+        self.letters.unwrap_or(self.safe_width() < 46.0 * self.safe_font())
+    }
+}

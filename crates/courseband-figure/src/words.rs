@@ -1,0 +1,84 @@
+//! Captions and names.
+
+use crate::numbers::plain;
+use crate::scale::Kind;
+use crate::source::{Gap, Source};
+
+/// `95 %`.
+fn percent(level: f64) -> String {
+    format!("{}\u{a0}%", plain((level * 1e6).round() / 1e4))
+}
+
+/// What the courses strip shows.
+pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, is_hatched: bool) -> String {
+    let mut parts = Vec::new();
+    let response = &source.scale.response;
+    match (response.is_empty(), kind) {
+        (false, Kind::Log) => parts.push(format!("{response}, log scale")),
+        (false, Kind::Linear) => parts.push(response.clone()),
+        (true, Kind::Log) => parts.push("log scale".into()),
+        (true, Kind::Linear) => {}
+    }
+    let subject = &source.plan.words.subject;
+    parts.push(if source.scale.ratio {
+        format!("lines: typical {subject} (geometric mean)")
+    } else {
+        "lines: group mean".into()
+    });
+    parts.push(band(source));
+    if is_ranged {
+        parts.push(format!("thin outlines: 10 to 90\u{a0}% of {noun}"));
+    }
+    if is_hatched {
+        parts.push(format!("hatched: under half the {noun} or under 5 left"));
+    }
+    if !source.differences.is_empty() {
+        parts.push("judge gaps below, not by overlap".into());
+    }
+    parts.join(" · ")
+}
+
+/// What the bands promise.
+fn band(source: &Source) -> String {
+    let level = percent(source.plan.comparisons.level);
+    if source.plan.comparisons.band == "pointwise" {
+        format!("bands: {level}, each {} by itself", source.scale.time_word)
+    } else {
+        format!("bands: {level}, whole course")
+    }
+}
+
+/// What the gap strips show.
+pub(crate) fn gaps(source: &Source, pairs: usize) -> String {
+    let mut parts = Vec::new();
+    let level = percent(source.plan.comparisons.level);
+    parts.push(match (source.plan.comparisons.band.as_str(), pairs) {
+        ("pointwise", _) => format!("{level} bands, each {} by itself", source.scale.time_word),
+        (_, 1) => format!("{level} band over the whole course"),
+        (_, n) => format!("{level} bands over the whole course and all {n} pairs"),
+    });
+    if source.plan.comparisons.margin > 0.0 {
+        parts.push(format!("dotted: a gap of {}", margin(source)));
+    }
+    parts.join(" · ")
+}
+
+/// The margin, as `10 %` or in the response's unit.
+pub(crate) fn margin(source: &Source) -> String {
+    let margin = plain(source.plan.comparisons.margin);
+    if source.plan.comparisons.margin_unit == "percent" { format!("{margin}\u{a0}%") } else { margin }
+}
+
+/// What a pair's numbers are.
+pub(crate) fn pair(gap: &Gap, ratio: bool, as_percent: bool) -> String {
+    match (ratio, as_percent) {
+        (true, true) => format!("{} as % of {}", gap.to, gap.from),
+        (true, false) => format!("{} / {}", gap.to, gap.from),
+        (false, _) => format!("{} \u{2212} {}", gap.to, gap.from),
+    }
+}
+
+/// What the followed strip shows.
+pub(crate) fn followed(source: &Source, noun: &str) -> String {
+    format!("{noun} with a visit on or after this {}", source.scale.time_word)
+}

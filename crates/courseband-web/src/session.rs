@@ -1,0 +1,129 @@
+//! A table held open in a worker.
+
+use crate::refused::Refused;
+use crate::wire;
+use courseband_study::{Calibrator, Plan, Refits, Study};
+use wasm_bindgen::prelude::wasm_bindgen;
+
+/// Rows of the table that a preview shows.
+const PREVIEW_ROWS: usize = 200;
+
+/// A table held open, with the answers to one plan after another.
+///
+/// Plans and answers are JSON text. Every method but `open` needs a table.
+#[wasm_bindgen]
+#[derive(Default)]
+pub struct Session {
+    open: Option<Study>,
+    /// The plan of the last run.
+    last: Option<Plan>,
+    calibrator: Option<(String, Option<Calibrator>)>,
+}
+
+#[wasm_bindgen]
+impl Session {
+    /// A session without a table.
+    #[wasm_bindgen(constructor)]
+    #[must_use]
+    pub fn new() -> Session {
+        Session::default()
+    }
+
+    /// Reads a table from the bytes of a file or of pasted text. The table before it is given up.
+    ///
+    /// # Errors
+    /// Bytes that are no table.
+    pub fn open(&mut self, bytes: &[u8]) -> Result<(), Refused> {
+        (self.open, self.last, self.calibrator) = (None, None, None);
+        self.open = Some(Study::open(bytes)?);
+        Ok(())
+    }
+
+    /// The table as it was read under a plan: columns with roles and reasons, first rows, problems,
+    /// questions and notes.
+    ///
+    /// # Errors
+    /// A plan that cannot be read, or a table that cannot be used as asked.
+    pub fn preview(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        let shown = study.table().preview(PREVIEW_ROWS);
+        let delimiter = study.table().sheet().delimiter();
+        let reading = study.reading(&plan)?;
+        wire::text(&wire::Preview::new(&shown, delimiter, reading))
+    }
+
+    /// Count, mean, standard deviation and median of each group at each time, and the lines with
+    /// values that a log scale cannot take.
+    ///
+    /// # Errors
+    /// As [`Session::preview`].
+    pub fn describe(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        wire::text(&wire::Description::new(&study.reading(&plan)?.observations))
+    }
+
+    /// Findings under a plan.
+    ///
+    /// # Errors
+    /// As [`Session::preview`], and questions that need an answer first.
+    pub fn run(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        let findings = wire::text(&study.run(&plan)?)?;
+        self.last = Some(plan);
+        Ok(findings)
+    }
+
+    /// The subjects' own courses under the plan of the last run, as the drawing takes them.
+    ///
+    /// # Errors
+    /// Without a run before it.
+    pub fn traces(&mut self) -> Result<String, Refused> {
+        match (&mut self.open, &self.last) {
+            (Some(study), Some(plan)) => wire::text(&wire::Traces::new(&study.reading(plan)?.observations)),
+            _ => Err(Refused::page("There are no courses before a run.")),
+        }
+    }
+
+    /// Refits number `first` to `first + count` of a plan's calibration, as JSON for
+    /// [`Session::run_calibrated`]. Chunks may come from several workers, in any order. An empty
+    /// text where nothing can be calibrated.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn refits(&mut self, plan: &str, first: u32, count: u32) -> Result<String, Refused> {
+        if self.calibrator.as_ref().is_none_or(|(of, _)| of != plan) {
+            let (study, parsed) = self.with(plan)?;
+            let calibrator = study.calibration(&parsed)?;
+            self.calibrator = Some((plan.to_owned(), calibrator));
+        }
+        match &self.calibrator {
+            Some((_, Some(calibrator))) => {
+                wire::text(&wire::Refits::from(&calibrator.refits(u64::from(first), u64::from(count))))
+            }
+            _ => Ok(String::new()),
+        }
+    }
+
+    /// Findings with the critical values that refits gave. `refits` is a JSON list of what
+    /// [`Session::refits`] returned.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn run_calibrated(&mut self, plan: &str, refits: &str) -> Result<String, Refused> {
+        let chunks: Vec<wire::Refits> = wire::parsed(refits, "refits")?;
+        let mut all = Refits::default();
+        chunks.into_iter().for_each(|chunk| all.add(&chunk.into()));
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.run_calibrated(&plan, &all)?)
+    }
+}
+
+impl Session {
+    fn with(&mut self, plan: &str) -> Result<(&mut Study, Plan), Refused> {
+        let plan = Plan::from_json(plan)?;
+        match &mut self.open {
+            Some(study) => Ok((study, plan)),
+            None => Err(Refused::page("There is no table yet. Paste or choose one first.")),
+        }
+    }
+}
