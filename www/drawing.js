@@ -11,6 +11,7 @@
  * @property {number} ratio Device pixels per CSS pixel.
  * @property {number} head_room Free room at the top.
  * @property {'light'|'dark'|'print'} theme
+ * @property {boolean} letters Letters instead of names at the curves' ends.
  * @property {number[]} open_pairs
  * @property {string} noun What several subjects are called.
  */

@@ -21,11 +21,12 @@ const MANY_PAIRS = 3;
 export function mountReading(root, acts) {
   const stepper = mountStepper(acts);
   const groups = el('tbody');
-  const gaps = el('tbody');
+  const gaps = el('tbody', { class: 'pairs' });
+  const gapHead = head([words.pairs, words.value, words.interval, words.state]);
   const place = el('span', { class: 'hint' });
   const table = el('table', { class: 'reading-table' },
     head([words.groups, words.value, words.interval, words.followed]), groups,
-    head([words.pairs, words.value, words.interval, words.state]), gaps);
+    gapHead, gaps);
   root.append(stepper.node, place, table);
   const draw = whenChanged((state) => [state.findings, state.cursor, state.status, state.openPairs], (state) => {
     const { findings, cursor } = state;
@@ -41,11 +42,14 @@ export function mountReading(root, acts) {
     });
     const many = reading.gaps.length > MANY_PAIRS;
     table.classList.toggle('many', many);
+    show(gapHead, reading.gaps.length > 0);
     reconcile(gaps, reading.gaps, (row) => `${row.pair}:${row.from}:${row.to}:${many}`,
       (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
         const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
-        fillRow(node, name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state]);
+        fillRow(node, many ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state]);
+        node.cells[0]?.setAttribute('aria-label', name);
+        node.cells[0]?.setAttribute('title', name);
         node.dataset.lane = row.state;
         const button = node.querySelector('button');
         if (!button) return;
@@ -56,6 +60,21 @@ export function mountReading(root, acts) {
       });
   });
   return { update: draw };
+}
+
+/**
+ * A pair in letters, which the rows of the groups spell out.
+ * @param {import('../types.js').Findings} findings
+ * @param {import('../reading.js').GapReading} gap
+ */
+function inLetters(findings, gap) {
+  const [to, from] = [gap.to, gap.from].map((group) => letterOf(groupIndex(findings, group)));
+  return findings.scale.ratio ? words.ratio(to ?? '', from ?? '') : words.difference(to ?? '', from ?? '');
+}
+
+/** @param {number} index */
+function letterOf(index) {
+  return String.fromCharCode(65 + index);
 }
 
 /** @param {string[]} titles */
@@ -80,16 +99,16 @@ export function lineSample(index) {
 
 /** @param {number} index @param {string} name @param {Node|null} [extra] */
 function mountRow(index, name, extra = null) {
-  const label = el('span', { class: 'row-name', title: name });
+  const label = el('span', { class: 'row-name' });
+  const letter = name === '' ? null : el('b', { class: 'letter', 'aria-hidden': 'true' }, letterOf(index));
   return el('tr', { class: `of-group-${(index % 6) + 1}` },
-    el('th', { scope: 'row' }, extra, lineSample(index), label), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
+    el('th', { scope: 'row' }, extra, lineSample(index), letter, label), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
 }
 
 /** @param {HTMLTableRowElement} row @param {string} name @param {string} value @param {{lower: string, upper: string}|null} numbers @param {string} last */
 function fillRow(row, name, value, numbers, last) {
   const label = /** @type {HTMLElement} */ (row.querySelector('.row-name'));
   setText(label, name);
-  if (label.title !== name) label.title = name;
   const [, number, interval, end] = Array.from(row.cells);
   if (number) setText(number, value);
   if (interval) setText(interval, numbers ? words.range(numbers.lower, numbers.upper) : words.none);

@@ -12,6 +12,8 @@ import { spoken } from '../spoken.js';
 import { text } from '../text.js';
 import { drawCursor } from './cursor.js';
 
+/** Strips narrower than this carry letters, which the reading spells out. */
+const NARROW = 552;
 /** Free room above the strips, for the cursor's flag. */
 const HEAD_ROOM = 24;
 
@@ -30,7 +32,7 @@ export function mountStrips(root, acts) {
     class: 'strips-slider', role: 'slider', tabindex: '0', 'aria-label': text.strips.slider, 'aria-describedby': 'strips-keys',
   });
   const frame = el('div', { class: 'strips-frame' }, canvas, overlay, slider);
-  const caption = el('p', { class: 'caption' });
+  const caption = el('p', { class: 'unseen' });
   const grey = el('p', { class: 'strips-grey' }, text.strips.grey);
   root.append(el('h2', { class: 'unseen' }, text.strips.label), caption, grey, frame,
     el('p', { class: 'unseen', id: 'strips-keys' }, text.strips.keys));
@@ -50,8 +52,9 @@ export function mountStrips(root, acts) {
     layout = drawStrips(canvas, last.drawing, {
       width, ratio: window.devicePixelRatio || 1, head_room: HEAD_ROOM, 
       theme: printing ? 'print' : matchMedia('(prefers-color-scheme: dark)').matches ? 'dark' : 'light',
-      open_pairs: last.openPairs, noun: last.choices.noun.many,
+      letters: width < NARROW, open_pairs: last.openPairs, noun: last.choices.noun.many,
     });
+    document.body.classList.toggle('with-letters', width < NARROW);
     frame.style.height = `${layout.height}px`;
     moveCursor(last);
   }
