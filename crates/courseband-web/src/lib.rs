@@ -11,11 +11,13 @@
 mod drawing;
 mod panic;
 mod refused;
+mod rooms;
 mod session;
 mod wire;
 
 pub use drawing::{draw_strips, strips_svg};
 pub use refused::Refused;
+pub use rooms::{size_answer, size_run};
 pub use session::Session;
 
 use wasm_bindgen::prelude::wasm_bindgen;

@@ -119,7 +119,7 @@ impl Session {
 }
 
 impl Session {
-    fn with(&mut self, plan: &str) -> Result<(&mut Study, Plan), Refused> {
+    pub(crate) fn with(&mut self, plan: &str) -> Result<(&mut Study, Plan), Refused> {
         let plan = Plan::from_json(plan)?;
         match &mut self.open {
             Some(study) => Ok((study, plan)),

@@ -5,7 +5,7 @@ use courseband_engine::special::Rng;
 use courseband_engine::{
     Contrast, CriticalValues, Data, Dimension, Estimate, Fit, Model, Serial, Shape, SubjectEffects, SubjectRows, fit,
 };
-use serde::Serialize;
+use serde::{Deserialize, Serialize};
 
 /// Random directions behind a critical value here: its noise averages out over studies.
 const DIRECTIONS: usize = 1024;
@@ -13,7 +13,7 @@ const DIRECTIONS: usize = 1024;
 const POINTS: usize = 25;
 
 /// How many simulated studies met the goal.
-#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, Serialize)]
+#[derive(Debug, Clone, Copy, Default, PartialEq, Eq, Serialize, Deserialize)]
 pub struct Counts {
     /// Simulated.
     pub studies: usize,

@@ -1,0 +1,44 @@
+//! What the rooms beyond the time courses ask of the worker: checks and sample size.
+
+use crate::refused::Refused;
+use crate::session::Session;
+use crate::wire;
+use courseband_study::{Counts, SizeRequest};
+use wasm_bindgen::prelude::wasm_bindgen;
+
+#[wasm_bindgen]
+impl Session {
+    /// Checks of a plan's model against the table.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn checks(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.checks(&plan)?)
+    }
+}
+
+/// Simulated studies number `first` to `first + count` of design number `design` of a request, as JSON counts
+/// `{studies, met, failed}`. Needs no table. Chunks may come from several workers, in any order, and are added up.
+///
+/// # Errors
+/// A request that cannot be read or cannot be simulated, or a design that it does not have.
+#[wasm_bindgen]
+pub fn size_run(request: &str, design: u32, first: u32, count: u32) -> Result<String, Refused> {
+    let request = SizeRequest::from_json(request)?;
+    let Some(&design) = request.designs.get(design as usize) else {
+        return Err(Refused::page("There is no such design."));
+    };
+    wire::text(&request.simulate(design, first as usize, count as usize))
+}
+
+/// The answer of a request from the counts of each of its designs, given as a JSON list in their order.
+///
+/// # Errors
+/// A request or counts that cannot be read.
+#[wasm_bindgen]
+pub fn size_answer(request: &str, counts: &str) -> Result<String, Refused> {
+    let request = SizeRequest::from_json(request)?;
+    let counts: Vec<Counts> = wire::parsed(counts, "counts")?;
+    wire::text(&request.answer(&counts))
+}
