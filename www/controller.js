@@ -151,7 +151,7 @@ export class Controller {
     }, SLOW_AFTER);
     try {
       await this.#read(plan, wish);
-      if (wish !== this.wish || this.state.status === 'question') return;
+      if (wish !== this.wish || this.state.status === 'question' || this.state.status === 'problem') return;
       const answer = await this.engine.run(plan);
       if (wish !== this.wish) return;
       const findings = findingsFrom(answer.findings);

@@ -76,6 +76,7 @@ export function openQuestions(state) {
  */
 export function understood(state, preview, description) {
   const next = { ...state, preview, description };
+  if (preview.refusal !== null) return refused(next, preview.refusal);
   return openQuestions(next).length > 0 ? withoutFindings(next, 'question', null) : { ...next, status: 'fitting' };
 }
 

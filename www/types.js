@@ -83,6 +83,7 @@
  * @property {Problem[]} problems
  * @property {Question[]} questions
  * @property {string[]} notes
+ * @property {string|null} refusal Why the table cannot be used as asked; the rest then only shows it.
  * @property {{from: string, into: string}[]} nearSpellings Group names that may be misspelt.
  */
 

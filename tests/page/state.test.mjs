@@ -7,7 +7,7 @@ import { findings } from './fixture.mjs';
 const drawing = { findings: '', traces: '' };
 const toLog = (choices) => ({ ...choices, plan: withTransform(choices.plan, 'log') });
 const fitted = () => change.fitted(change.opening(change.initialState(), { kind: 'own', name: 'x' }, null), findings(), drawing, 20);
-const preview = (questions) => ({ columns: [], rows: [], layout: 'long', nearSpellings: [], totalRows: 0, format: '', problems: [], questions, notes: [] });
+const preview = (questions) => ({ columns: [], rows: [], layout: 'long', nearSpellings: [], refusal: null, totalRows: 0, format: '', problems: [], questions, notes: [] });
 
 test('a table that opens leaves nothing of the one before', () => {
   const state = change.opening({ ...fitted(), cursor: 3 }, { kind: 'own', name: 'y' }, null);
