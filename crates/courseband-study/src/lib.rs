@@ -18,6 +18,7 @@ mod remarks;
 mod sentences;
 mod size;
 mod study;
+mod usual;
 
 pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
@@ -25,3 +26,4 @@ pub use plan::*;
 pub use refusal::Refusal;
 pub use size::{CourseMeans, Counts, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
 pub use study::{Calibrator, Refits, Study, run};
+pub use usual::*;
