@@ -1,48 +1,70 @@
-"""Straight-line mixed models by statsmodels MixedLM (REML): writes expected/mixed.csv."""
+"""Straight-line mixed models by statsmodels MixedLM (REML): writes expected/mixed.csv.
 
-import csv
-import pathlib
+Every case of cases.json with a straight mean, common spreads and independent errors. The best of three optimisers is
+kept, since each of them stops early now and then.
+"""
+
+import itertools
 import warnings
 
 import numpy as np
-import pandas as pd
 import statsmodels.api as sm
 
-HERE = pathlib.Path(__file__).resolve().parent
+from cases import plans, read, write
+
+
+def wanted(plan):
+    common = plan["errors"] == {"serial": "none", "spread": "common", "nugget": False}
+    return plan["curves"]["shape"] == "straight" and common and plan["subjects"] != "none" and plan["grid"]["count"] == 21
+
+
+def fitted(table, slope):
+    """Design with (1, t) per group, and MixedLM's best fit; subject effects count from the first time."""
+    groups = range(len(table["names"]))
+    design = np.column_stack([column for g in groups for column in (table["group"] == g, (table["group"] == g) * table["t"])])
+    since = table["t"] - table["t"].min()
+    random = np.column_stack([np.ones_like(since), since] if slope else [np.ones_like(since)])
+    model = sm.MixedLM(table["y"], design * 1.0, table["subject"], random)
+    with warnings.catch_warnings():
+        warnings.simplefilter("ignore")
+        fits = [model.fit(reml=True, method=method, maxiter=2000) for method in ("lbfgs", "powell", "bfgs")]
+    return max(fits, key=lambda fit: fit.llf)
+
+
+def at(table, g, t):
+    """The row of the design for group `g` at time `t`."""
+    x = np.zeros(2 * len(table["names"]))
+    x[2 * g], x[2 * g + 1] = 1, t
+    return x
+
+
+def report(table, fit):
+    names, ends = table["names"], (table["t"].min(), table["t"].max())
+    yield "log_reml", "", "", fit.llf
+    yield "residual_sd", "all", "", np.sqrt(fit.scale)
+    subjects = np.asarray(fit.cov_re)
+    yield "sd_level", "all", "", np.sqrt(subjects[0, 0])
+    if len(subjects) > 1:
+        yield "sd_trend", "all", "", np.sqrt(subjects[1, 1])
+    covariance = np.asarray(fit.cov_params())[: 2 * len(names), : 2 * len(names)]
+    for g, t in itertools.product(range(len(names)), ends):
+        x = at(table, g, t)
+        yield "mean", names[g], t, x @ fit.fe_params
+        yield "se", names[g], t, np.sqrt(x @ covariance @ x)
+    for (a, b), t in itertools.product(itertools.combinations(range(len(names)), 2), ends):
+        x = at(table, b, t) - at(table, a, t)
+        yield "difference", f"{names[b]} - {names[a]}", t, x @ fit.fe_params
+        yield "difference_se", f"{names[b]} - {names[a]}", t, np.sqrt(x @ covariance @ x)
 
 
 def main():
-    rows = [("case", "quantity", "group", "time", "value")]
-    for name in ("sleepstudy", "dietox", "sitka1988"):
-        table = pd.read_csv(HERE / "data" / f"{name}.csv")
-        group = table["group"].astype(str) if "group" in table else pd.Series("all", index=table.index)
-        names = list(dict.fromkeys(group))
-        design = np.column_stack([f(g) for g in names for f in (
-            lambda g: (group == g) * 1.0, lambda g: (group == g) * table["time"])])
-        for effects in ("intercept", "slope"):
-            random = np.ones((len(table), 1)) if effects == "intercept" else np.column_stack(
-                [np.ones(len(table)), table["time"] - table["time"].min()])
-            with warnings.catch_warnings():
-                warnings.simplefilter("ignore")
-                model = sm.MixedLM(table["y"].to_numpy(), design, table["subject"].to_numpy(), random)
-                best = None
-                for method in ("lbfgs", "powell", "bfgs"):
-                    fit = model.fit(reml=True, method=method, maxiter=2000)
-                    if best is None or fit.llf > best.llf:
-                        best = fit
-            case = f"{name}.straight.{effects}"
-            rows.append((case, "log_reml", "", "", repr(float(best.llf))))
-            rows.append((case, "residual_sd", names[0], "", repr(float(np.sqrt(best.scale)))))
-            rows.append((case, "sd_level", names[0], "", repr(float(np.sqrt(np.asarray(best.cov_re)[0, 0])))))
-            for k, g in enumerate(names):
-                for t in (float(table["time"].min()), float(table["time"].max())):
-                    x = np.zeros(design.shape[1])
-                    x[2 * k], x[2 * k + 1] = 1, t
-                    covariance = np.asarray(best.cov_params())[: len(x), : len(x)]
-                    rows.append((case, "mean", g, repr(t), repr(float(x @ best.fe_params))))
-                    rows.append((case, "se", g, repr(t), repr(float(np.sqrt(x @ covariance @ x)))))
-    with open(HERE / "expected" / "mixed.csv", "w", encoding="utf-8", newline="\n") as file:
-        csv.writer(file, lineterminator="\n").writerows(rows)
+    rows = []
+    for case, (name, plan) in plans().items():
+        if wanted(plan):
+            table = read(name, plan)
+            for quantity, group, t, value in report(table, fitted(table, plan["subjects"] == "slope")):
+                rows.append((case, quantity, group, t if t == "" else repr(float(t)), f"{value:.10g}"))
+    write("mixed.csv", rows)
 
 
 if __name__ == "__main__":
