@@ -18,6 +18,15 @@ async function fetched(url) {
 }
 
 /**
+ * Compiled while it comes in, where the server names its type.
+ * @param {Response} response
+ */
+async function compiled(response) {
+  if (response.headers.get('content-type') === 'application/wasm') return WebAssembly.compileStreaming(response);
+  return WebAssembly.compile(await response.arrayBuffer());
+}
+
+/**
  * The invented examples; a page without them still works.
  * @returns {Promise<Pick<Assets, 'demos'|'tables'>>}
  */
@@ -36,13 +45,12 @@ async function loadDemos() {
 
 /** @returns {Promise<Assets>} */
 export async function loadAssets() {
-  const [bytes, glue, worker, demos] = await Promise.all([
-    fetched(WASM).then((response) => response.arrayBuffer()),
+  const [module, glue, worker, demos] = await Promise.all([
+    fetched(WASM).then(compiled),
     fetched(GLUE).then((response) => response.text()),
     fetched(WORKER).then((response) => response.text()),
     loadDemos(),
   ]);
-  const module = await WebAssembly.compile(bytes);
   shutTheDoor();
   return { module, workerText: `${glue}\n${worker}`, ...demos };
 }

@@ -16,12 +16,15 @@ import { el } from './dom.js';
 
 async function start() {
   const assets = await loadAssets();
-  startDrawing(assets.module);
+  // The worker first: it computes while this thread sets up the page.
   const engine = new Engine(assets.module, assets.workerText);
   /** @type {import('./types.js').View|null} */
   let frame = null;
   const controller = new Controller(engine, assets, (state) => frame?.update(state));
   const acts = controller.acts();
+  const [first] = assets.demos;
+  const opened = first ? controller.openDemo(first) : null;
+  startDrawing(assets.module);
   frame = mountFrame(document.body, acts);
   acceptDrops(document.body, acts);
 
@@ -29,8 +32,7 @@ async function start() {
   window.addEventListener('hashchange', enter);
   enter();
   frame.update(controller.state);
-  const [first] = assets.demos;
-  if (first) await controller.openDemo(first);
+  await opened;
 }
 
 start().catch((cause) => {
