@@ -85,6 +85,7 @@ fn result(context: &Context, anova: &RepeatedAnova, used: Used) -> String {
             let shown = if e.p < alpha { "are shown to differ" } else { "are not shown to differ" };
             said.push(format!("Averaged over visits the groups {shown}: {}.", f_said(e.f, e.df, e.df_error, e.p)));
         }
+        Err(Undefined::OneGroup) if context.cohort.groups.len() == 1 => {}
         Err(reason) => said.push(format!("Groups are not tested: {}.", why(context, *reason))),
     }
     match (&anova.times, &anova.sphericity) {
@@ -104,6 +105,9 @@ fn result(context: &Context, anova: &RepeatedAnova, used: Used) -> String {
             context.subjects(used.dropped_subjects),
             counted(used.dropped_rows, "measurement", "measurements")
         ));
+    }
+    for (g, _) in anova.complete_by_group.iter().enumerate().filter(|(_, n)| **n == 0) {
+        said.push(format!("{} has nobody with all visits and takes no part.", context.group(g)));
     }
     said.join(" ")
 }
@@ -169,7 +173,7 @@ fn sphericity_table(context: &Context, s: &Sphericity) -> UsualTable {
         rows: vec![row(
             &["Differences between visits"],
             vec![
-                maybe(mauchly.map(|m| m.w), |w| fixed(w, 3)),
+                maybe(mauchly.map(|m| m.w), |w| cell(w, small(w))),
                 maybe(mauchly.map(|m| m.df), df_cell),
                 maybe(mauchly.map(|m| m.p), p_cell),
                 fixed(s.greenhouse_geisser, 3),
@@ -180,6 +184,11 @@ fn sphericity_table(context: &Context, s: &Sphericity) -> UsualTable {
         )],
         note,
     }
+}
+
+fn w_said(w: f64) -> String {
+    let text = small(w);
+    if text.starts_with('<') { format!("W {text}") } else { format!("W = {text}") }
 }
 
 fn bearing(context: &Context, anova: &RepeatedAnova, used: Used) -> Bearing {
@@ -195,8 +204,8 @@ fn bearing(context: &Context, anova: &RepeatedAnova, used: Used) -> Bearing {
                 Ok(m) if m.p < 0.05 => (
                     Borne::No,
                     format!(
-                        "Mauchly's test speaks against sphericity (W = {}, {}; epsilon {}): read the corrected p-values.",
-                        crate::sentences::number(m.w, 3),
+                        "Mauchly's test speaks against sphericity ({}, {}; epsilon {}): read the corrected p-values.",
+                        w_said(m.w),
                         p_said(m.p),
                         crate::sentences::number(s.greenhouse_geisser, 2)
                     ),
@@ -204,8 +213,8 @@ fn bearing(context: &Context, anova: &RepeatedAnova, used: Used) -> Bearing {
                 Ok(m) => (
                     Borne::Yes,
                     format!(
-                        "Mauchly's test does not speak against sphericity (W = {}, {}), which with few subjects says little.",
-                        crate::sentences::number(m.w, 3),
+                        "Mauchly's test does not speak against sphericity ({}, {}), which with few subjects says little.",
+                        w_said(m.w),
                         p_said(m.p)
                     ),
                 ),
@@ -250,7 +259,8 @@ fn beside(context: &Context, anova: &RepeatedAnova, used: Used) -> Beside {
     }
     let agrees = questions.iter().all(|(agree, _)| *agree);
     let said: Vec<String> = questions.into_iter().map(|(_, text)| text).collect();
-    let mut sentence = format!("{}. This analysis names no {}.", said.join("; "), context.time_word());
+    let over = if context.pairs.len() > 1 { " (curves: smallest p over the pairs, times their number)" } else { "" };
+    let mut sentence = format!("{}{over}. This analysis names no {}.", said.join("; "), context.time_word());
     if !agrees {
         let mut whys = Vec::new();
         if used.dropped_subjects > 0 {

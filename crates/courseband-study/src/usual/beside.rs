@@ -40,6 +40,7 @@ pub(super) fn compare(context: &Context, outcomes: &[Vec<DayOutcome>], manner: M
     };
     let differ: Vec<&PairBeside> = pairs.iter().filter(|p| differs(p)).collect();
     let sentence = match differ.as_slice() {
+        [] if pairs.iter().all(|p| p.days.is_empty()) => "Neither it nor the curves call any visit apart.".to_string(),
         [] => "It calls the same visits apart as the curves.".to_string(),
         some => {
             let said: Vec<&str> = some.iter().take(3).map(|p| p.sentence.as_str()).collect();
@@ -146,8 +147,7 @@ fn reason(difference: &Difference, on: &[DayOutcome], manner: Manner, here: bool
             format!("assuming straight lines makes the standard error {ratio} times the curves'")
         }
         (Manner::Lines, false) if wider > 1.1 => format!("the lines' standard error is {ratio} times the curves'"),
-        (_, true) => "the curves' band holds over the whole course at once and is wider for it".into(),
-        (_, false) => "the two are close there, on either side of the limit".into(),
+        _ => "the two are close there, on either side of the limit".into(),
     }
 }
 

@@ -298,7 +298,7 @@ fn by_ar1(context: &Context, panel: &Panel, error: &VisitsError, used: Used) -> 
     let all = context.pairs.iter().map(|&pair| (0..panel.times.len()).map(|v| gap(pair, v)).collect()).collect();
     let gaps = DayGaps::new(panel.times.clone(), all);
     let phi = fitted.serial_correlation().map_or(String::new(), |phi| {
-        format!(" The correlation of values one {} apart is {}.", context.time_word(), number(phi, 2))
+        format!(" The correlation of values one {} apart is {}.", unit(context.time_word()), number(phi, 2))
     });
     let mean = |g: usize, v: usize| {
         has(g, v).then(|| {

@@ -98,8 +98,13 @@ impl DayGaps {
             label_heads: heads(&["From", "To", "Visit"]),
             heads: heads(&all),
             rows,
-            note: if missing.is_empty() { String::new() } else { format!("Not compared: {}.", missing.join("; ")) },
+            note: self.note(context, &missing),
         }
+    }
+
+    fn note(&self, context: &Context, missing: &[String]) -> String {
+        let limits = format!("Limits are {} for each difference by itself.", crate::sentences::percent(context.level()));
+        if missing.is_empty() { limits } else { format!("{limits} Not compared: {}.", missing.join("; ")) }
     }
 
     /// Which days are apart and the strongest of them, for up to three pairs.

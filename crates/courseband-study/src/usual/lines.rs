@@ -7,7 +7,7 @@ use super::findings::*;
 use super::print::*;
 use crate::evaluate::Evaluation;
 use crate::findings::{Difference, FitStatus};
-use crate::plan::{Plan, Shape, SmallSample, Smoothness};
+use crate::plan::{Plan, Shape, SmallSample, Smoothness, SubjectEffects};
 use crate::sentences::{joined, number};
 use courseband_engine as engine;
 use courseband_engine::special::{chi2_sf, t_quantile};
@@ -72,6 +72,26 @@ fn mixture_tail(statistic: f64, variances: usize) -> f64 {
     tail
 }
 
+/// How much better lines fit whose slopes differ from subject to subject, where the plan has a level only.
+struct Trends {
+    gain: f64,
+    p: f64,
+}
+
+impl Trends {
+    fn new(context: &Context, straight: f64) -> Option<Trends> {
+        if context.plan.subjects != SubjectEffects::Intercept {
+            return None;
+        }
+        let subjects = engine::SubjectEffects::Slope;
+        let model = engine::Model { shape: engine::Shape::Straight, subjects, ..context.plan.model() };
+        let gain = (fit(&context.cohort.data, &model).ok()?.log_reml() - straight).max(0.0);
+        // A variance at its bound and a covariance: Stram & Lee 1994, Biometrics 50:1171.
+        let p = if gain > 0.0 { 0.5 * (chi2_sf(2.0 * gain, 1.0) + chi2_sf(2.0 * gain, 2.0)) } else { 1.0 };
+        Some(Trends { gain, p })
+    }
+}
+
 fn assumption(context: &Context) -> String {
     format!("Every group's course is a straight line{}; the rest as in the plan.", if context.is_log() { " on the log scale" } else { "" })
 }
@@ -91,6 +111,7 @@ pub(super) fn analyse(context: &Context) -> (UsualAnalysis, Option<Bend>) {
     };
     let differences = Evaluation::new(&plan, context.cohort, &fitted, None).differences();
     let bend = Bend::new(context, fitted.log_reml());
+    let trends = Trends::new(context, fitted.log_reml());
     let posterior = fitted.corrected();
     let slopes = Slopes::new(context, &fitted, &posterior);
     let analysis = UsualAnalysis {
@@ -100,7 +121,7 @@ pub(super) fn analyse(context: &Context) -> (UsualAnalysis, Option<Bend>) {
         result: slopes.result(context),
         tables: slopes.tables(context),
         assumption: assumption(context),
-        bearing: bearing(&bend),
+        bearing: bearing(context, &bend, &trends),
         beside: beside(context, &slopes, &outcomes(context, &plan, &differences)),
         used: context.used(context.cohort.data.subjects.len(), context.cohort.data.rows()),
         lines: lines(context, &fitted, &posterior),
@@ -130,14 +151,14 @@ impl Slopes {
     }
 
     fn result(&self, context: &Context) -> String {
-        let word = context.time_word();
+        let word = unit(context.time_word());
         let say = |(&(from, to), (g, p_holm)): (&(usize, usize), &(DayGap, f64))| {
             let (from, to) = (context.group(from), context.group(to));
             let test = t_said(g.estimate / g.se, g.df, g.p);
             let holm = if self.pairs.len() > 1 { format!(", adjusted {}", p_said(*p_holm)) } else { String::new() };
             let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
             let shown = if *p_holm < context.alpha() { "differ" } else { "are not shown to differ" };
-            format!("The slopes of {to} and {from} {shown}: per {word} {to} changes {}, {test}{holm}.", slope_said(context, gap, from))
+            format!("The slopes of {to} and {from} {shown}: per {word} {}, {test}{holm}.", slope_said(context, gap, from, to))
         };
         let mut said: Vec<String> = context.pairs.iter().zip(&self.pairs).take(3).map(say).collect();
         if self.pairs.len() > 3 {
@@ -151,7 +172,7 @@ impl Slopes {
     }
 
     fn tables(&self, context: &Context) -> Vec<UsualTable> {
-        let word = context.time_word();
+        let word = unit(context.time_word());
         let cells = |g: &DayGap| {
             let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
             let mut cells = context.gap_cells(gap, g.se);
@@ -185,35 +206,50 @@ impl Slopes {
     }
 }
 
-/// `1.23 less than Saline (difference -1.50 to -0.96)`, `by 95 % of Saline's factor (93 % to 97 %)`.
-fn slope_said(context: &Context, gap: Gap, from: &str) -> String {
+/// `Gel changes 1.23 less than Saline (difference -1.50 to -0.96)`, `Gel's factor is 95 % of Saline's (93 % to 97 %)`.
+fn slope_said(context: &Context, gap: Gap, from: &str, to: &str) -> String {
     if context.is_log() {
-        let said = context.gap_said(gap, &format!("{from}'s factor"));
-        return format!("by {said}");
+        return format!("{to}'s factor is {}", context.gap_said(gap, &format!("{from}'s")));
     }
     let digits = crate::sentences::decimals(gap.upper - gap.lower);
     let word = if gap.estimate >= 0.0 { "more" } else { "less" };
     format!(
-        "{} {word} than {from} (difference {} to {})",
+        "{to} changes {} {word} than {from} (difference {} to {})",
         number(gap.estimate.abs(), digits),
         number(gap.lower, digits),
         number(gap.upper, digits)
     )
 }
 
-fn bearing(bend: &Option<Bend>) -> Bearing {
+fn bearing(context: &Context, bend: &Option<Bend>, trends: &Option<Trends>) -> Bearing {
     let Some(bend) = bend else {
         let sentence = "Curved courses could not be fitted, so it is not checked whether the courses are straight.".into();
         return Bearing { verdict: Borne::Unknown, sentence, numbers: Vec::new() };
     };
-    let (verdict, lead) = match bend.p {
+    let (mut verdict, lead) = match bend.p {
         p if p < 0.05 => (Borne::No, "The courses bend."),
         p if p < 0.2 => (Borne::Doubtful, "The courses may bend."),
         _ => (Borne::Yes, "The data show no bend."),
     };
     let mut numbers = vec![named("Gain in log restricted likelihood", fixed(bend.gain, 2)), named("p", p_cell(bend.p))];
     numbers.extend(bend.effective_df.iter().map(|(name, df)| named(&format!("Effective df, {name}"), fixed(*df, 1))));
-    Bearing { verdict, sentence: format!("{lead} {}", bend.said()), numbers }
+    let mut sentence = format!("{lead} {}", bend.said());
+    if let Some(trends) = trends {
+        numbers.push(named("p of slopes that differ within groups", p_cell(trends.p)));
+        if trends.p < 0.05 {
+            verdict = Borne::No;
+            let words = &context.plan.words;
+            sentence.push_str(&format!(
+                " Slopes differ from {} to {}, which the plan leaves out (log restricted likelihood rises by {}, {}): with \
+                 levels only the slope tests are too sure.",
+                words.subject,
+                words.subject,
+                number(trends.gain, 2),
+                p_said(trends.p)
+            ));
+        }
+    }
+    Bearing { verdict, sentence, numbers }
 }
 
 /// What the lines say at the visits; apart by their own band.

@@ -93,7 +93,7 @@ pub(super) fn days(word: &str, times: &[f64]) -> String {
     let named: Vec<String> = times.iter().map(|&t| plain(t)).collect();
     match named.as_slice() {
         [first, .., last] if named.len() > 8 => {
-            format!("{} visits from {word} {first} to {last}", named.len())
+            format!("{} visits between {word} {first} and {last}", named.len())
         }
         _ => format!("{word} {}", crate::sentences::joined(&named)),
     }
@@ -102,6 +102,17 @@ pub(super) fn days(word: &str, times: &[f64]) -> String {
 /// A share as whole percent.
 pub(super) fn share(part: usize, whole: usize) -> String {
     format!("{} %", number(100.0 * part as f64 / whole.max(1) as f64, 0))
+}
+
+/// A number between 0 and 1, such as Mauchly's W.
+pub(super) fn small(value: f64) -> String {
+    if value < 0.001 { "< 0.001".into() } else { number(value, 3) }
+}
+
+/// The unit of a rate: `day`, or `unit of time` where the unit is not known.
+pub(super) fn unit(time_word: &str) -> &str {
+    const KNOWN: [&str; 8] = ["second", "minute", "hour", "day", "week", "month", "quarter", "year"];
+    if KNOWN.contains(&time_word) { time_word } else { "unit of time" }
 }
 
 /// First letter in upper case.

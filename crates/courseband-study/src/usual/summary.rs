@@ -54,7 +54,7 @@ pub(super) fn analyse(context: &Context, bend: Option<&Bend>) -> UsualAnalysis {
         tables: measured.iter().map(|m| table(context, m)).collect(),
         assumption,
         bearing: bearing(context, &spans, bend),
-        beside: beside(context, &measured),
+        beside: beside(context, &measured, &spans),
         used: context.used(subjects, rows),
         lines: Vec::new(),
     }
@@ -82,15 +82,23 @@ fn course(subject: &courseband_engine::SubjectRows) -> Vec<(f64, f64)> {
 /// How many subjects were seen from the first to the last time.
 struct Spans {
     all: usize,
+    /// At the very first and last time.
     full: usize,
+    /// Within a twentieth of the follow-up of both.
+    near: usize,
 }
 
 impl Spans {
     fn of(context: &Context, courses: &[Vec<(f64, f64)>]) -> Spans {
         let visits = &context.cohort.visits;
-        let ends = (visits.first().copied(), visits.last().copied());
-        let is_full = |points: &&Vec<(f64, f64)>| (points.first().map(|p| p.0), points.last().map(|p| p.0)) == ends;
-        Spans { all: courses.len(), full: courses.iter().filter(is_full).count() }
+        let (first, last) = (visits[0], visits[visits.len() - 1]);
+        let within = |room: f64| {
+            let spans = |points: &&Vec<(f64, f64)>| {
+                points.first().is_some_and(|p| p.0 <= first + room) && points.last().is_some_and(|p| p.0 >= last - room)
+            };
+            courses.iter().filter(spans).count()
+        };
+        Spans { all: courses.len(), full: within(0.0), near: within(0.05 * (last - first)) }
     }
 }
 
@@ -121,8 +129,8 @@ fn called(context: &Context, measure: SummaryMeasure) -> String {
     match measure {
         SummaryMeasure::Area => "Area under the course".into(),
         SummaryMeasure::MeanLevel => "Mean level".into(),
-        SummaryMeasure::Slope if context.is_log() => format!("Factor per {}", context.time_word()),
-        SummaryMeasure::Slope => format!("Slope per {}", context.time_word()),
+        SummaryMeasure::Slope if context.is_log() => format!("Factor per {}", unit(context.time_word())),
+        SummaryMeasure::Slope => format!("Slope per {}", unit(context.time_word())),
     }
 }
 
@@ -202,14 +210,14 @@ fn table(context: &Context, m: &Measured) -> UsualTable {
 fn bearing(context: &Context, spans: &Spans, bend: Option<&Bend>) -> Bearing {
     let words = &context.plan.words;
     let mut numbers =
-        vec![named("Share seen from first to last time", cell(spans.full as f64 / spans.all as f64, share(spans.full, spans.all)))];
-    let mut doubtful = 20 * (spans.all - spans.full) > spans.all;
-    let mut sentence = if spans.full == spans.all {
+        vec![named("Share seen from first to last time", cell(spans.near as f64 / spans.all as f64, share(spans.near, spans.all)))];
+    let mut doubtful = 20 * (spans.all - spans.near) > spans.all;
+    let mut sentence = if spans.near == spans.all {
         format!("All {} {} were seen from the first time to the last.", spans.all, words.subjects)
     } else {
         format!(
             "{} of {} {} were seen from the first time to the last; the numbers of the others speak of less, and are less sure.",
-            spans.full, spans.all, words.subjects
+            spans.near, spans.all, words.subjects
         )
     };
     let mut bent = false;
@@ -229,7 +237,7 @@ fn bearing(context: &Context, spans: &Spans, bend: Option<&Bend>) -> Bearing {
     Bearing { verdict, sentence, numbers }
 }
 
-fn beside(context: &Context, measured: &[Measured]) -> Beside {
+fn beside(context: &Context, measured: &[Measured], spans: &Spans) -> Beside {
     let mut differ = Vec::new();
     let mut compared = 0;
     for m in measured {
@@ -248,9 +256,11 @@ fn beside(context: &Context, measured: &[Measured]) -> Beside {
             let (agree, said) = compare_tests(context.alpha(), &question, c.p, curves);
             if !agree {
                 let why = if slope {
-                    "a slope sees only steady change, the curves also what comes and goes"
+                    "a slope sees only steady change, the curves also what comes and goes".to_string()
+                } else if spans.near < spans.all {
+                    "each counts alike here however long it was seen".to_string()
                 } else {
-                    "each subject counts alike here however long it was seen"
+                    format!("Welch's test gives each group a spread of its own, with {} degrees of freedom", degrees(c.df))
                 };
                 differ.push(format!("{said}: {why}."));
             }

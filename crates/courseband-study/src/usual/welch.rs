@@ -64,16 +64,21 @@ fn bearing(context: &Context, by_visit: &ByVisit) -> Bearing {
     let whole = panel.values.len() * visits;
     let missing = panel.values.iter().flatten().filter(|y| y.is_none()).count();
     let doubtful = fewest < 5 || 20 * missing > whole;
-    let lead = if doubtful { "Thin or incomplete data: read with care." } else { "Enough values on every day, hardly any missing." };
+    let missed = match missing {
+        0 => "No values are missing.".to_string(),
+        _ => format!(
+            "{} of all values by {} and visit are missing; days after someone has left compare only those who stayed.",
+            share(missing, whole),
+            context.plan.words.subject
+        ),
+    };
+    let lead = if doubtful { "Thin or incomplete data: read with care." } else { "Enough values on every day." };
     Bearing {
         verdict: if doubtful { Borne::Doubtful } else { Borne::Yes },
         sentence: format!(
-            "{lead} Fewest values: {fewest} in {} at {}. {} of all values by {} and visit are missing; days after someone has \
-             left compare only those who stayed.",
+            "{lead} Fewest values: {fewest} in {} at {}. {missed}",
             context.group(g),
-            context.when(panel.times[v]),
-            share(missing, whole),
-            context.plan.words.subject
+            context.when(panel.times[v])
         ),
         numbers: vec![
             named("Fewest values of a group at a visit", cell(fewest as f64, fewest.to_string())),
