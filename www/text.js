@@ -70,6 +70,8 @@ export const text = {
     /** @param {string} time @param {string} word */
     at: (time, word) => `${word} ${time}`,
     slider: 'Day read',
+    hold: 'Click to hold the cursor; click again to let go',
+    held: (/** @type {string} */ flag) => `${flag} \u00b7 held`,
     earlier: 'Visit before',
     later: 'Visit after',
     field: 'Read at',

@@ -11,6 +11,7 @@ import { readingAt, step, stops } from '../reading.js';
 import { spoken } from '../spoken.js';
 import { text } from '../text.js';
 import { drawCursor } from './cursor.js';
+import { followPointer } from './pointer.js';
 
 /** Strips narrower than this carry letters, which the reading spells out. */
 const NARROW = 552;
@@ -29,7 +30,7 @@ export function mountStrips(root, acts) {
   const canvas = el('canvas', { class: 'strips-drawing', 'aria-hidden': 'true' });
   const overlay = el('canvas', { class: 'strips-overlay', 'aria-hidden': 'true' });
   const slider = el('div', {
-    class: 'strips-slider', role: 'slider', tabindex: '0', 'aria-label': text.strips.slider, 'aria-describedby': 'strips-keys',
+    class: 'strips-slider', role: 'slider', tabindex: '0', 'aria-label': text.strips.slider, 'aria-describedby': 'strips-keys', title: text.strips.hold,
   });
   const frame = el('div', { class: 'strips-frame' }, canvas, overlay, slider);
   const caption = el('p', { class: 'unseen' });
@@ -64,14 +65,15 @@ export function mountStrips(root, acts) {
     const { findings, cursor } = state;
     if (!layout || !findings || cursor === null) return;
     const time = plainTime(cursor, span(findings));
-    drawCursor(overlay, layout, cursor, text.strips.at(time, findings.scale.time_word));
+    const flag = text.strips.at(time, findings.scale.time_word);
+    drawCursor(overlay, layout, cursor, pointer.isHeld() ? text.strips.held(flag) : flag);
     slider.setAttribute('aria-valuemin', String(layout.x.start));
     slider.setAttribute('aria-valuemax', String(layout.x.end));
     slider.setAttribute('aria-valuenow', String(cursor));
     slider.setAttribute('aria-valuetext', spoken(readingAt(findings, cursor), findings));
   }
 
-  follow(slider, () => layout, acts);
+  const pointer = followPointer(slider, () => layout, acts, () => last && moveCursor(last));
   slider.addEventListener('keydown', (event) => {
     const to = last ? keyTarget(event, last) : null;
     if (to === null) return;
@@ -127,31 +129,6 @@ function keyTarget(event, { findings, cursor }) {
     default:
       return null;
   }
-}
-
-/**
- * Pointer moves the cursor: a mouse by hovering, a finger by moving sideways
- * (up and down scrolls the page). A click on a pair's row opens its strip.
- * @param {HTMLElement} slider
- * @param {() => Layout|null} layoutNow
- * @param {import('../types.js').Acts} acts
- */
-function follow(slider, layoutNow, acts) {
-  /** @param {PointerEvent} event */
-  const point = (event) => {
-    const layout = layoutNow();
-    if (!layout) return;
-    const { left, right, start, end } = layout.x;
-    const at = event.clientX - slider.getBoundingClientRect().left;
-    if (right > left) acts.moveCursor(start + ((at - left) / (right - left)) * (end - start));
-  };
-  slider.addEventListener('pointermove', point);
-  slider.addEventListener('pointerdown', point);
-  slider.addEventListener('click', (event) => {
-    const y = event.clientY - slider.getBoundingClientRect().top;
-    const strip = layoutNow()?.strips.find(({ kind, top, bottom }) => kind === 'row' && top <= y && y < bottom);
-    if (strip && strip.pair !== null) acts.togglePair(strip.pair);
-  });
 }
 
 /**
