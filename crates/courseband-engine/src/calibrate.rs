@@ -17,6 +17,7 @@
 //! as infinite. Refit `k` depends on the seed and `k` alone, so that work can be
 //! split over workers and continued, with the same digits.
 
+use crate::spectral::symmetric_eigen;
 use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::params::Parameter;
@@ -151,7 +152,7 @@ fn inner_start(fit: &Fit) -> Vec<f64> {
 fn step_factor(fit: &Fit) -> DMatrix<f64> {
     let n = fit.theta.len();
     let mut covariance = DMatrix::identity(n, n);
-    let eigen = fit.hessian.clone().symmetric_eigen();
+    let eigen = symmetric_eigen(&fit.hessian);
     let bounded = eigen.eigenvalues.map(|value: f64| 1.0 / value.max(0.5));
     let inner = &eigen.eigenvectors * DMatrix::from_diagonal(&bounded) * eigen.eigenvectors.transpose();
     for (i, &row) in fit.free.iter().enumerate() {

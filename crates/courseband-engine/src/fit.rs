@@ -130,7 +130,12 @@ fn check(data: &Data) -> Result<(), FitError> {
         }
     }
     let finite = |s: &crate::model::SubjectRows| s.times.iter().chain(&s.responses).all(|x| x.is_finite());
-    if data.subjects.iter().all(finite) { Ok(()) } else { Err(FitError::NotFinite) }
+    if !data.subjects.iter().all(finite) {
+        return Err(FitError::NotFinite);
+    }
+    let mut responses = data.subjects.iter().flat_map(|s| &s.responses);
+    let first = responses.next();
+    if responses.all(|y| Some(y) == first) { Err(FitError::NoVariation) } else { Ok(()) }
 }
 
 struct Found {

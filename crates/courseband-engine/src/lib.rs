@@ -16,6 +16,7 @@ pub mod special;
 mod refit;
 mod residuals;
 mod simulate;
+mod spectral;
 mod spline;
 pub mod usual;
 pub mod visits;

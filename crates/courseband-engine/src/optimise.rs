@@ -5,6 +5,7 @@
 //! backtracking, then Newton steps with a Hessian from differences of the
 //! analytic gradient. Every loop is bounded.
 
+use crate::spectral::symmetric_eigen;
 use nalgebra::{DMatrix, DVector};
 
 /// A point, with the function and its gradient there.
@@ -116,7 +117,7 @@ fn direction(inverse: &DMatrix<f64>, point: &Point, free: &[usize]) -> DVector<f
     for &i in free {
         result[i] = -free.iter().map(|&j| inverse[(i, j)] * point.gradient[j]).sum::<f64>();
     }
-    let longest = result.amax();
+    let longest = result.iter().fold(0.0, |most: f64, value| most.max(value.abs()));
     if longest > LONGEST_MOVE {
         result *= LONGEST_MOVE / longest;
     }
@@ -208,8 +209,8 @@ pub(crate) fn newton(objective: &mut dyn Objective, bounds: &Bounds, mut point: 
         let free = bounds.free(&point);
         let hessian = hessian(objective, &point.theta, &free)?;
         let gradient = DVector::from_fn(free.len(), |k, _| point.gradient[free[k]]);
-        let eigen = hessian.clone().symmetric_eigen();
-        let largest = eigen.eigenvalues.amax().max(1e-12);
+        let eigen = symmetric_eigen(&hessian);
+        let largest = eigen.eigenvalues.iter().fold(1e-12, |most: f64, value| most.max(value.abs()));
         let definite = eigen.eigenvalues.iter().all(|&value| value > 1e-9 * largest);
         let rotated = eigen.eigenvectors.tr_mul(&gradient);
         let floored = eigen.eigenvalues.map(|value| value.abs().max(1e-7 * largest));
@@ -221,7 +222,7 @@ pub(crate) fn newton(objective: &mut dyn Objective, bounds: &Bounds, mut point: 
         let step = -(&eigen.eigenvectors * rotated.component_div(&floored));
         let mut whole = DVector::zeros(point.theta.len());
         free.iter().enumerate().for_each(|(k, &j)| whole[j] = step[k]);
-        let longest = whole.amax();
+        let longest = whole.iter().fold(0.0, |most: f64, value| most.max(value.abs()));
         if longest > LONGEST_MOVE {
             whole *= LONGEST_MOVE / longest;
         }

@@ -14,6 +14,7 @@
 //! Parameters at a bound take no part. `W` is kept finite: no log-parameter is
 //! taken to be less certain than a standard deviation of 4.
 
+use crate::spectral::symmetric_eigen;
 use crate::criterion::{Criterion, Solved};
 use crate::fit::Fit;
 use crate::special::DirectionMaxima;
@@ -137,7 +138,7 @@ fn offsets(fit: &Fit) -> Vec<usize> {
 impl Correction {
     fn of(fit: &Fit) -> Option<Self> {
         let free = &fit.free;
-        let eigen = fit.hessian.clone().symmetric_eigen();
+        let eigen = symmetric_eigen(&fit.hessian);
         let floored = eigen.eigenvalues.map(|value| value.max(1.0 / 16.0));
         let root = &eigen.eigenvectors * DMatrix::from_diagonal(&floored.map(|value| 1.0 / value.sqrt()));
         let parameters = &root * root.transpose();
@@ -357,7 +358,7 @@ fn reduce_rank(rows: &[Vec<f64>]) -> (Vec<f64>, usize) {
         }
     }
     gram.fill_upper_triangle_with_lower_triangle();
-    let eigen = gram.symmetric_eigen();
+    let eigen = symmetric_eigen(&gram);
     let mut order: Vec<usize> = (0..width).collect();
     let size = |k: usize| -> f64 { eigen.eigenvalues[k] };
     order.sort_by(|&a, &b| size(b).total_cmp(&size(a)).then(a.cmp(&b)));

@@ -1,5 +1,6 @@
 //! A quick refit of a simulated table, from a start that is known to be near.
 
+use crate::spectral::symmetric_eigen;
 use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::optimise::{Bounds, hessian, newton, plain_inverse, quasi_newton, start};
@@ -18,7 +19,7 @@ impl Refitter {
         let n = fit.theta.len();
         let rows: usize = fit.design.rows.iter().sum();
         let mut inverse = plain_inverse(n, rows as f64 / 4.0);
-        let eigen = fit.hessian.clone().symmetric_eigen();
+        let eigen = symmetric_eigen(&fit.hessian);
         let bounded = eigen.eigenvalues.map(|value: f64| 1.0 / value.max(0.5));
         let inner = &eigen.eigenvectors * DMatrix::from_diagonal(&bounded) * eigen.eigenvectors.transpose();
         for (i, &row) in fit.free.iter().enumerate() {
