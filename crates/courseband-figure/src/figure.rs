@@ -14,6 +14,8 @@ pub struct Figure {
     pub time: TimeAxis,
     /// Groups, in their order.
     pub groups: Vec<GroupLook>,
+    /// Share of their usual strength with which bands and traces are filled: less where many overlap.
+    pub strength: f64,
     /// From the top.
     pub strips: Vec<Strip>,
 }
@@ -231,10 +233,12 @@ pub enum Mark {
         /// Steps back behind a group in focus.
         faded: bool,
     },
-    /// Estimates at visits with their intervals: (time, value, low, high).
+    /// Estimates at visits, with their intervals where there is no band: (time, value, low, high).
     Dots {
         /// Whose.
         tone: Tone,
+        /// Draws the intervals, this many dot widths beside the visit so that groups do not hide each other.
+        beside: Option<f64>,
         /// Its points.
         points: Vec<(f64, f64, f64, f64)>,
     },

@@ -8,6 +8,8 @@
 
 mod build;
 mod draw;
+#[cfg(test)]
+mod fixture;
 mod figure;
 mod layout;
 mod numbers;
@@ -15,6 +17,8 @@ mod palette;
 mod scale;
 mod source;
 mod svg;
+#[cfg(test)]
+mod testing;
 mod text;
 mod ticks;
 mod view;

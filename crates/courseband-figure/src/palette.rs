@@ -64,17 +64,17 @@ const LIGHT: Palette = Palette {
     hair: Rgb::hex(0xe4_e1_d9),
     groups: LIGHT_GROUPS,
     band: 0.12,
-    edge: 0.66,
+    edge: 0.79,
     trace: 0.2,
 };
 
 const LIGHT_GROUPS: [Rgb; 6] = [
-    Rgb::hex(0x3f_45_4d),
-    Rgb::hex(0x7a_5c_00),
-    Rgb::hex(0x7a_2a_6d),
-    Rgb::hex(0x0b_64_67),
-    Rgb::hex(0xa8_43_2a),
-    Rgb::hex(0x2f_55_9c),
+    Rgb::hex(0x23_1c_22),
+    Rgb::hex(0x8d_6d_29),
+    Rgb::hex(0x79_64_bc),
+    Rgb::hex(0x2c_7a_70),
+    Rgb::hex(0x60_2d_0e),
+    Rgb::hex(0x05_38_75),
 ];
 
 const DARK: Palette = Palette {
@@ -83,15 +83,15 @@ const DARK: Palette = Palette {
     soft: Rgb::hex(0xa9_ae_b4),
     hair: Rgb::hex(0x2c_31_36),
     groups: [
-        Rgb::hex(0xc3_c8_ce),
-        Rgb::hex(0xd9_b2_4a),
-        Rgb::hex(0xd9_91_cb),
-        Rgb::hex(0x5f_c0_bf),
-        Rgb::hex(0xee_8d_70),
-        Rgb::hex(0x90_b1_ee),
+        Rgb::hex(0x8e_8f_8e),
+        Rgb::hex(0xc6_d5_6c),
+        Rgb::hex(0xe7_be_fe),
+        Rgb::hex(0x8c_de_c4),
+        Rgb::hex(0xb5_77_27),
+        Rgb::hex(0x6b_82_dc),
     ],
     band: 0.16,
-    edge: 0.62,
+    edge: 0.74,
     trace: 0.24,
 };
 
@@ -102,7 +102,7 @@ const PRINT: Palette = Palette {
     hair: Rgb::hex(0xdd_dd_dd),
     groups: LIGHT_GROUPS,
     band: 0.12,
-    edge: 0.7,
+    edge: 0.78,
     trace: 0.25,
 };
 

@@ -129,7 +129,7 @@ mod tests {
     #[test]
     fn ratios_are_marked_around_one() {
         let percent = |low, high| labels(ratio_ticks(Scale::new(Kind::Log, low, high), 4, true));
-        assert_eq!(percent(0.23, 1.2), "25 50 100");
+        assert_eq!(percent(0.23, 1.2), "25 50 75 100");
         assert_eq!(percent(0.93, 1.25), "100 110 120");
         let times = labels(ratio_ticks(Scale::new(Kind::Log, 0.5, 200.0), 4, false));
         assert_eq!(times, "1× 10× 100×");

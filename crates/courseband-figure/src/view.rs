@@ -29,6 +29,8 @@ pub struct View {
     pub dark: bool,
     /// Size of the text.
     pub font: f64,
+    /// Room kept free on all sides.
+    pub margin: f64,
     /// Room kept free at the top, for the cursor's flag.
     pub head_room: f64,
     /// Stretches the strips' heights.
@@ -57,6 +59,7 @@ impl Default for View {
             theme: Theme::Light,
             dark: false,
             font: 12.0,
+            margin: 0.0,
             head_room: 0.0,
             tall: 1.0,
             open_pairs: Vec::new(),

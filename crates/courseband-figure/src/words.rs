@@ -35,7 +35,7 @@ pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, 
     if !source.differences.is_empty() {
         parts.push("judge gaps below, not by overlap".into());
     }
-    parts.join(" · ")
+    parts.join("\u{a0}· ")
 }
 
 /// What the bands promise.
@@ -60,7 +60,7 @@ pub(crate) fn gaps(source: &Source, pairs: usize) -> String {
     if source.plan.comparisons.margin > 0.0 {
         parts.push(format!("dotted: a gap of {}", margin(source)));
     }
-    parts.join(" · ")
+    parts.join("\u{a0}· ")
 }
 
 /// The margin, as `10 %` or in the response's unit.

@@ -69,6 +69,9 @@ impl Builder<'_> {
 
     fn bands(&self, curves: &[Vec<(f64, f64, f64, f64)>]) -> Vec<Mark> {
         let mut marks = Vec::new();
+        if self.is_by_time() {
+            return marks;
+        }
         for (g, points) in curves.iter().enumerate() {
             marks.push(Mark::Band { tone: Tone::Group(g), points: band(points), faded: self.is_faded(g) });
             let group = &self.source.groups[g];
@@ -95,7 +98,9 @@ impl Builder<'_> {
                     [&at.response_upper, &none.1],
                     curve.support,
                 );
-                marks.push(Mark::Dots { tone: Tone::Group(g), points });
+                let middle = 0.5 * (curves.len() as f64 - 1.0);
+                let beside = self.is_by_time().then_some(g as f64 - middle);
+                marks.push(Mark::Dots { tone: Tone::Group(g), beside, points });
             }
         }
         marks
@@ -103,7 +108,12 @@ impl Builder<'_> {
 
     /// With few visits, or a mean per visit, the points carry the evidence.
     pub(super) fn marks_visits(&self) -> bool {
-        self.source.visits.len() <= FEW_VISITS || self.source.plan.curves.shape == "by-time"
+        self.source.visits.len() <= FEW_VISITS || self.is_by_time()
+    }
+
+    /// A mean per visit: nothing is known between visits, so there is no band.
+    pub(super) fn is_by_time(&self) -> bool {
+        self.source.plan.curves.shape == "by-time"
     }
 
     fn is_faded(&self, group: usize) -> bool {

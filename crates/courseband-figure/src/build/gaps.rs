@@ -41,7 +41,7 @@ impl Builder<'_> {
     fn gap_strip(&self, pair: usize, plot: Option<Plot>, scale: Scale) -> Strip {
         let gap = &self.source.differences[pair];
         let tone = Tone::Group(self.group(&gap.to));
-        let name = words::pair(gap, self.source.scale.ratio, plot.is_none() || as_percent(scale));
+        let name = words::pair(gap, self.source.scale.ratio, plot.is_some() && as_percent(scale));
         Strip {
             kind: if plot.is_some() { StripKind::Gap } else { StripKind::Row },
             pair: Some(pair),
@@ -57,13 +57,17 @@ impl Builder<'_> {
         let gap = &self.source.differences[pair];
         let to = self.group(&gap.to);
         let tone = Tone::Group(to);
-        let mut marks = vec![Mark::Band { tone, points: band(points), faded: false }];
-        if let Some(start) = self.few_in_pair(gap) {
-            marks.push(Mark::Hatch { tone, points: band_from(&band(points), start) });
+        let mut marks = Vec::new();
+        if !self.is_by_time() {
+            marks.push(Mark::Band { tone, points: band(points), faded: false });
+            if let Some(start) = self.few_in_pair(gap) {
+                marks.push(Mark::Hatch { tone, points: band_from(&band(points), start) });
+            }
         }
         marks.push(Mark::Curve { tone, dash: self.looks[to].dash, points: line(points), faded: false });
         if self.marks_visits() {
-            marks.push(Mark::Dots { tone, points: visit_points(gap) });
+            let beside = self.is_by_time().then_some(0.0);
+            marks.push(Mark::Dots { tone, beside, points: visit_points(gap) });
         }
         let height = match shown {
             1 => 150.0,

@@ -24,7 +24,8 @@ pub fn describe(source: &Source, traces: &Traces, view: &View) -> Figure {
     }
     strips.extend(builder.gaps());
     strips.push(builder.followed());
-    Figure { view: view.clone(), time: builder.time, groups: builder.looks, strips }
+    let strength = (3.0 / source.groups.len().max(3) as f64).max(0.4);
+    Figure { view: view.clone(), time: builder.time, groups: builder.looks, strength, strips }
 }
 
 /// What every strip is built from.

@@ -9,6 +9,8 @@ use plotters_backend::DrawingBackend;
 
 /// Width of a group's curve.
 const CURVE: f64 = 2.1;
+/// Radius of a dot.
+const DOT: f64 = 3.1;
 /// Distance of hatching lines.
 const HATCH: f64 = 6.0;
 
@@ -57,7 +59,7 @@ pub(super) fn draw_mark<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place
             let colour = pen.colour(*tone);
             place.line(points).iter().try_for_each(|part| pen.dashed(part, *dash, colour, alpha, CURVE))
         }
-        Mark::Dots { tone, points } => dots(pen, place, *tone, points),
+        Mark::Dots { tone, beside, points } => dots(pen, place, *tone, *beside, points),
         Mark::Steps { tone, dash, points } => steps(pen, place, *tone, *dash, points),
     }
 }
@@ -135,16 +137,22 @@ fn height_at(line: &[(f64, f64)], x: f64) -> f64 {
     if b.0 > a.0 { a.1 + (x - a.0) / (b.0 - a.0) * (b.1 - a.1) } else { a.1 }
 }
 
-/// Estimates at visits, each with its interval.
-fn dots<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, points: &[(f64, f64, f64, f64)]) -> Outcome<DB> {
+/// Estimates at visits, each with its interval if asked for.
+fn dots<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, beside: Option<f64>, points: &[(f64, f64, f64, f64)]) -> Outcome<DB> {
     let colour = pen.colour(tone);
+    let shift = 2.0 * DOT * beside.unwrap_or(0.0);
+    let at = |time: f64, value: f64| {
+        let (x, y) = place.at(time, value);
+        ((x + shift).clamp(place.rect.left, place.rect.right), y)
+    };
     for &(time, value, low, high) in points {
-        let upright = [place.at(time, low), place.at(time, high)];
-        for part in line_inside(&upright, place.rect) {
-            pen.path(&part, colour, 0.85, 1.2)?;
+        if beside.is_some() {
+            for part in line_inside(&[at(time, low), at(time, high)], place.rect) {
+                pen.path(&part, colour, 0.9, 1.4)?;
+            }
         }
         if place.scale.holds(value) {
-            pen.disc(place.at(time, value), 3.1, colour)?;
+            pen.disc(at(time, value), DOT, colour)?;
         }
     }
     Ok(())

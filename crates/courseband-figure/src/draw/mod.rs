@@ -30,7 +30,9 @@ pub struct Surface<'a> {
 /// # Errors
 /// What the backend could not draw.
 pub fn draw<DB: DrawingBackend>(figure: &Figure, layout: &Layout, backend: &mut DB, surface: Surface<'_>) -> Outcome<DB> {
-    let palette = Palette::of(figure.view.surface());
+    let mut palette = Palette::of(figure.view.surface());
+    palette.band *= figure.strength;
+    palette.trace *= figure.strength;
     let mut pen = Pen { backend, surface, palette, groups: &figure.groups };
     let whole = Rect { left: 0.0, right: layout.width, top: 0.0, bottom: layout.height };
     pen.fill(whole, palette.paper, 1.0)?;

@@ -27,7 +27,7 @@ pub(super) fn place_lane(setter: &Setter<'_>, lane: &Lane, top: f64, name_end: O
     let widths: Vec<f64> = chosen.iter().map(|s| label_width(setter, s)).collect();
     let wishes: Vec<(f64, f64)> = chosen.iter().zip(widths).map(|(s, w)| (setter.x.at(s.start), w)).collect();
     let undecided: Vec<bool> = chosen.iter().map(|s| is_quiet(s)).collect();
-    let places = lines(&wishes, &undecided, name_end, [setter.x.left, setter.width], em);
+    let places = lines(&wishes, &undecided, name_end, [setter.x.left, setter.right], em);
     let used = places.iter().flatten().map(|p| p.0 + 1).max().unwrap_or(0);
     let (lane_top, first_line) = match name_end {
         None => (top + 0.75 * em, top + 1.75 * em + 0.3 * em),

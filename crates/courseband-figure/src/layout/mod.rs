@@ -156,7 +156,7 @@ pub struct Arrow {
 pub fn lay_out(figure: &Figure, measure: &dyn Measure) -> Layout {
     let setter = Setter::new(figure, measure);
     let mut strips = Vec::new();
-    let mut y = figure.view.head_room.clamp(0.0, 200.0);
+    let mut y = setter.edge + figure.view.head_room.clamp(0.0, 200.0);
     for (k, strip) in figure.strips.iter().enumerate() {
         if k > 0 {
             y += setter.distance(&figure.strips[k - 1], strip);
@@ -166,14 +166,17 @@ pub fn lay_out(figure: &Figure, measure: &dyn Measure) -> Layout {
         strips.push(placed);
     }
     let (ticks, word, bottom) = setter.time_axis(y);
-    Layout { width: setter.width, height: libm::ceil(bottom), x: setter.x, strips, ticks, word }
+    Layout { width: setter.right + setter.edge, height: libm::ceil(bottom + setter.edge), x: setter.x, strips, ticks, word }
 }
 
 /// What every strip is laid out with.
 struct Setter<'a> {
     figure: &'a Figure,
     measure: &'a dyn Measure,
-    width: f64,
+    /// Free room on all sides.
+    edge: f64,
+    /// Where that room begins on the right.
+    right: f64,
     em: f64,
     small: f64,
     x: TimeRange,
@@ -182,7 +185,8 @@ struct Setter<'a> {
 impl<'a> Setter<'a> {
     fn new(figure: &'a Figure, measure: &'a dyn Measure) -> Self {
         let em = figure.view.safe_font();
-        let width = figure.view.safe_width();
+        let edge = figure.view.margin.clamp(0.0, 60.0);
+        let width = figure.view.safe_width() - 2.0 * edge;
         let small = 0.92 * em;
         let plots = || figure.strips.iter().filter_map(|s| s.plot.as_ref());
         let widest = |texts: &mut dyn Iterator<Item = &String>, size: f64, bold: bool| {
@@ -192,11 +196,11 @@ impl<'a> Setter<'a> {
         let labels = widest(&mut plots().flat_map(|p| p.ends.iter().flat_map(|e| &e.lines)), em, true);
         let last = figure.time.ticks.last().map_or(0.0, |t| 0.5 * measure.width(&t.label, small, false));
         let first = figure.time.ticks.first().map_or(0.0, |t| 0.5 * measure.width(&t.label, small, false));
-        let left = libm::ceil((marks + 0.8 * em).max(first + 2.0).min(0.3 * width));
+        let left = edge + libm::ceil((marks + 0.8 * em).max(first + 2.0).min(0.3 * width));
         let right_room = (labels + 1.25 * em).max(last + 2.0).min(0.34 * width);
-        let right = libm::floor(width - right_room);
+        let right = libm::floor(edge + width - right_room);
         let x = TimeRange { left, right, start: figure.time.start, end: figure.time.end };
-        Setter { figure, measure, width, em, small, x }
+        Setter { figure, measure, edge, right: edge + width, em, small, x }
     }
 
     /// Room between two strips: rows stand closer.
@@ -213,7 +217,7 @@ impl<'a> Setter<'a> {
         let mut placed = StripBox {
             kind: strip.kind,
             pair: strip.pair,
-            outer: Rect { left: 0.0, right: self.width, top, bottom: y },
+            outer: Rect { left: self.edge, right: self.right, top, bottom: y },
             plot: None,
             scale: None,
             lane: None,
@@ -222,7 +226,7 @@ impl<'a> Setter<'a> {
             arrows: Vec::new(),
         };
         if let Some(plot) = &strip.plot {
-            let rect = self.plot_rect(plot, y + 0.55 * self.em);
+            let rect = self.plot_rect(plot, y + 0.75 * self.em);
             self.value_labels(plot, rect, &mut texts);
             placed.ends = self.ends(plot, rect);
             placed.plot = Some(rect);
@@ -248,14 +252,14 @@ impl<'a> Setter<'a> {
     fn captions(&self, strip: &Strip, top: f64, texts: &mut Vec<Text>) -> f64 {
         let mut y = top;
         if !strip.title.is_empty() || !strip.caption.is_empty() {
-            let mut flow = Flow::new(self.measure, 0.0, y, self.width, 1.4 * self.em);
+            let mut flow = Flow::new(self.measure, self.edge, y, self.right, 1.4 * self.em);
             flow.words(&strip.title, self.em, true, Tone::Ink);
             flow.skip(0.8 * self.em);
             flow.words(&strip.caption, self.em, false, Tone::Soft);
             y = flow.finish(texts);
         }
         if !strip.subject.is_empty() {
-            let mut flow = Flow::new(self.measure, self.x.left, y + 0.25 * self.em, self.width, 1.4 * self.em);
+            let mut flow = Flow::new(self.measure, self.x.left, y + 0.25 * self.em, self.right, 1.4 * self.em);
             for words in &strip.subject {
                 flow.words(&words.text, self.em, words.bold, words.tone);
                 flow.skip(self.em);
@@ -341,7 +345,7 @@ impl<'a> Setter<'a> {
         }
         let word = &self.figure.time.word;
         let first = kept.first().map_or(self.x.left, |(x, t)| x - 0.5 * width(&t.text)) - 0.6 * self.em;
-        let beside = first - width(word) >= 0.0;
+        let beside = first - width(word) >= self.edge;
         let (x, word_y, anchor) = if beside { (first, y, Anchor::End) } else { (self.x.right, y + 1.3 * self.em, Anchor::End) };
         let text = Text { x, y: word_y, text: word.clone(), size, bold: false, tone: Tone::Soft, anchor };
         (kept, text, word_y + 0.8 * self.em)
