@@ -99,7 +99,11 @@ fn main() {
     println!("Whole way from bytes to findings; best of several runs.\n");
     println!("{:<58} {:>12} {:>10}", "", "time", "ratio");
     let line = |what: &str, time: Duration, yardstick: Duration| {
-        println!("{what:<58} {:>9.1} ms {:>10.2}", time.as_secs_f64() * 1e3, time.as_secs_f64() / yardstick.as_secs_f64());
+        println!(
+            "{what:<58} {:>9.1} ms {:>10.2}",
+            time.as_secs_f64() * 1e3,
+            time.as_secs_f64() / yardstick.as_secs_f64()
+        );
     };
     line("900 rows, 60 subjects, 3 groups, slope + AR(1)", typical, typical);
     line("the fit alone, without bands and findings", fit_alone(&small), typical);
@@ -113,5 +117,8 @@ fn main() {
     line("100,000 rows, 1,000 subjects, a tenth missing", hundred, typical);
     let million = timed(&table(10_000, 111, 0.1, 3), serial, 1);
     line("1,000,000 rows, 10,000 subjects, a tenth missing", million, hundred);
-    println!("\nThe last ratio is growth from 100,000 to 1,000,000 rows. Peak memory of this process: {}.", peak_memory());
+    println!(
+        "\nThe last ratio is growth from 100,000 to 1,000,000 rows. Peak memory of this process: {}.",
+        peak_memory()
+    );
 }

@@ -21,7 +21,10 @@ pub(crate) fn got(findings: &Findings, e: &Expected) -> Got {
         "phi" => plain(fit.serial_correlation.unwrap()),
         "nugget" => plain(fit.measurement_error_share.unwrap()),
         "residual_sd" => plain(fit.residual_sd.0[group(findings, e)].1),
-        "var_residual" => plain(fit.residual_sd.0[group(findings, e)].1.powi(2)),
+        "var_residual" => {
+            let sd = fit.residual_sd.0[group(findings, e)].1;
+            plain(sd * sd)
+        }
         "effective_df" => plain(fit.effective_df.0[group(findings, e)].1),
         "sd_level" => plain(covariance(findings, e)[0][0].sqrt()),
         "var_level" => plain(covariance(findings, e)[0][0]),
