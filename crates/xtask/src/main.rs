@@ -5,6 +5,8 @@ mod failure;
 mod places;
 mod run;
 mod serve;
+mod test;
+mod tidy;
 mod wasm;
 mod words;
 
@@ -33,9 +35,21 @@ fn done(task: &Task) -> Outcome<()> {
             wasm::build(&places)?;
             serve::serve(&places, *port, *open)
         }
-        _ => {
+        Task::Test { only, quick } => test::test(&places, only, *quick),
+        Task::Tidy => tidy::check(&places),
+        Task::Reference => run::show(run::command("bash").arg("tests/reference/run.sh").current_dir(places.root())),
+        Task::Bench { args } => bin(&places, "bench", args),
+        Task::Evidence { args } => bin(&places, "evidence", args),
+        Task::Help => {
             println!("{}", words::HELP);
             Ok(())
         }
     }
+}
+
+/// Runs a program of the tests package, optimised.
+fn bin(places: &Places, name: &str, args: &[String]) -> Outcome<()> {
+    let mut command = run::command("cargo");
+    command.args(["run", "--release", "--quiet", "--package", "courseband-tests", "--bin", name, "--"]);
+    run::show(command.args(args).current_dir(places.root()))
 }

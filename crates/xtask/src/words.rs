@@ -13,7 +13,11 @@ cargo xtask test                  run everything that is checked
     --quick                       without wasm and browser
 cargo xtask tidy                  check the texts and the layout of the repository
 cargo xtask reference             recompute the reference values of the tests
-cargo xtask bench                 print how long fits take";
+cargo xtask bench                 print how long fits take
+cargo xtask evidence FILE         simulate studies and add to the counts in FILE
+    --cells TEXT                  cells whose name holds this text
+    --studies N --refits N        further studies per cell, refits per study
+    --minutes N                   begin no cell after this time";
 
 /// What is asked for.
 #[derive(Debug, PartialEq, Eq)]
@@ -24,6 +28,7 @@ pub(crate) enum Task {
     Tidy,
     Reference,
     Bench { args: Vec<String> },
+    Evidence { args: Vec<String> },
     Help,
 }
 
@@ -44,6 +49,7 @@ impl Task {
             "bench" => Self::Bench {
                 args: words.by_ref().collect(),
             },
+            "evidence" => Self::Evidence { args: words.by_ref().collect() },
             "help" | "--help" | "-h" => Self::Help,
             other => return Err(unknown(other)),
         };

@@ -1,0 +1,143 @@
+/** The page, used as a person uses it, in a real browser. */
+
+import assert from 'node:assert/strict';
+import { after, before, test } from 'node:test';
+import { ADDRESS, enter, findingsOf, launch, openPage, paste, rested, stateOf } from './harness.mjs';
+
+let browser;
+before(async () => { browser = await launch(); });
+after(async () => { await browser?.close(); });
+
+/** A made-up table: `b` falls away from `a` late. */
+function made(line, head) {
+  const rows = [head];
+  for (let s = 0; s < 12; s += 1) rows.push(...line(s));
+  return rows.join('\n');
+}
+const value = (s, t) => (30 + (s % 5) * 0.4 + Math.sin(s * 7 + t * 3) * 0.5 - (s % 2 ? Math.max(0, t - 4) * 1.5 : 0)).toFixed(2);
+const LONG = made((s) => [0, 2, 4, 6, 8, 10].map((t) => `fish${s},${s % 2 ? 'warm' : 'cold'},${t},${value(s, t)}`), 'fish,tank water,week,length');
+const WIDE = made((s) => [[`r${s}`, s % 2 ? 'late' : 'early', ...[0, 2, 4, 6, 8, 10].map((t) => value(s, t))].join('\t')], 'plant\tsowing\tday 0\tday 2\tday 4\tday 6\tday 8\tday 10');
+
+test('opens on an invented example with findings, without complaints or foreign requests', async () => {
+  const page = await openPage(browser);
+  assert.match(await stateOf(page), /ready|boundary/);
+  assert.match(await findingsOf(page), /runs below Plain gauze/);
+  assert.match(await page.locator('body').innerText(), /[Ii]nvented/);
+  assert.deepEqual(page.problems, []);
+  for (const url of page.requests) assert.ok(url.startsWith(ADDRESS) || url.startsWith('blob:') || url.startsWith('data:'), url);
+  await page.context().close();
+});
+
+test('first findings soon after a cold load', async (t) => {
+  const context = await browser.newContext({ viewport: { width: 1440, height: 900 } });
+  const page = await context.newPage();
+  await page.goto(ADDRESS, { waitUntil: 'commit' });
+  await page.waitForFunction(() => document.querySelector('[data-region="findings"]')?.textContent?.includes('runs below'), null, { polling: 20 });
+  const ms = await page.evaluate(() => Math.round(performance.now()));
+  t.diagnostic(`first findings ${ms} ms after the start of a cold load`);
+  await context.close();
+});
+
+test('a pasted long table of an unknown kind gives findings', async () => {
+  const page = await openPage(browser);
+  await paste(page, LONG);
+  assert.match(await findingsOf(page), /warm runs below cold|cold runs above warm/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('a pasted wide table gives findings', async () => {
+  const page = await openPage(browser);
+  await paste(page, WIDE);
+  assert.match(await findingsOf(page), /late runs below early|early runs above late/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('what is no table is said, and nothing is lost', async () => {
+  const page = await openPage(browser);
+  await enter(page, 'data');
+  await page.fill('[data-region="paste"] textarea', 'hello world');
+  await page.waitForTimeout(400);
+  await rested(page);
+  assert.equal(await stateOf(page), 'problem');
+  assert.equal(await page.inputValue('[data-region="paste"] textarea'), 'hello world');
+  await page.context().close();
+});
+
+test('a changed word of the plan changes the findings, and can be undone', async () => {
+  const page = await openPage(browser);
+  const first = await findingsOf(page);
+  await page.click('[data-choice="shape"]');
+  await page.click('[data-alternative="straight"]');
+  await rested(page);
+  const second = await findingsOf(page);
+  assert.notEqual(second, first);
+  await page.click('[data-region="change"] button');
+  await rested(page);
+  assert.equal(await findingsOf(page), first);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('by keyboard alone: a choice and the cursor', async () => {
+  const page = await openPage(browser);
+  const first = await findingsOf(page);
+  await page.focus('[data-choice="shape"]');
+  await page.keyboard.press('Enter');
+  await page.keyboard.press('ArrowDown');
+  await page.keyboard.press('Enter');
+  await rested(page);
+  assert.notEqual(await findingsOf(page), first);
+  await page.focus('[role="slider"]');
+  const before = await page.getAttribute('[role="slider"]', 'aria-valuetext');
+  await page.keyboard.press('Home');
+  await page.waitForTimeout(100);
+  const atHome = await page.getAttribute('[role="slider"]', 'aria-valuetext');
+  assert.notEqual(atHome, before);
+  assert.match(atHome ?? '', /Plain gauze/);
+  await page.context().close();
+});
+
+test('column names and cells are text, never markup', async () => {
+  const page = await openPage(browser);
+  await paste(page, LONG.replaceAll('warm', '<img src=x onerror=document.title=1>').replace('length', '<b>length</b>'));
+  assert.equal(await page.locator('img, main b b').count(), 0);
+  assert.notEqual(await page.title(), '1');
+  await page.context().close();
+});
+
+test('the policy refuses the ways out', async () => {
+  const page = await openPage(browser);
+  const tried = await page.evaluate(async () => {
+    const refused = {};
+    try { await fetch('https://example.org/'); refused.fetch = false; } catch { refused.fetch = true; }
+    try { new WebSocket('wss://example.org/').close(); } catch { /* refused at once */ }
+    refused.image = await new Promise((done) => {
+      const image = new Image();
+      image.onerror = () => done(true);
+      image.onload = () => done(false);
+      image.src = 'https://example.org/a.png';
+    });
+    try { eval('1'); refused.eval = false; } catch { refused.eval = true; }
+    return refused;
+  });
+  assert.deepEqual(tried, { fetch: true, image: true, eval: true });
+  await page.context().close();
+});
+
+for (const [width, dark] of [[1440, false], [1440, true], [390, false], [390, true]]) {
+  test(`no sideways scrolling at ${width} px, ${dark ? 'dark' : 'light'}`, async () => {
+    const page = await openPage(browser, { width, height: width === 390 ? 844 : 900, dark });
+    for (const room of ['courses', 'data']) {
+      await enter(page, room);
+      const over = await page.evaluate(() => document.documentElement.scrollWidth - document.documentElement.clientWidth);
+      assert.ok(over <= 0, `${room}: ${over} px`);
+      if (process.env.COURSEBAND_SHOTS) {
+        await page.screenshot({ path: `${process.env.COURSEBAND_SHOTS}/${room}-${width}-${dark ? 'dark' : 'light'}.png`, fullPage: true });
+      }
+    }
+    assert.deepEqual(page.problems, []);
+    await page.context().close();
+  });
+}
