@@ -16,6 +16,15 @@ impl Session {
         let (study, plan) = self.with(plan)?;
         wire::text(&study.checks(&plan)?)
     }
+
+    /// The usual analyses of the same rows.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn usual(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.usual(&plan)?)
+    }
 }
 
 /// Simulated studies number `first` to `first + count` of design number `design` of a request, as JSON counts
