@@ -73,7 +73,7 @@ impl Dash {
         match self {
             Dash::Solid => &[],
             Dash::Long => &[5.5, 2.2],
-            Dash::Dots => &[1.0, 1.6],
+            Dash::Dots => &[1.25, 1.5],
             Dash::DashDot => &[6.0, 1.8, 1.2, 1.8],
             Dash::Short => &[2.8, 1.7],
             Dash::DashDotDot => &[8.0, 1.8, 1.2, 1.5, 1.2, 1.8],

@@ -41,10 +41,11 @@ pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, 
 /// What the bands promise.
 fn band(source: &Source) -> String {
     let level = percent(source.plan.comparisons.level);
+    let what = if source.plan.curves.shape == "by-time" { "bars" } else { "bands" };
     if source.plan.comparisons.band == "pointwise" {
-        format!("bands: {level}, each {} by itself", source.scale.time_word)
+        format!("{what}: {level}, each {} by itself", source.scale.time_word)
     } else {
-        format!("bands: {level}, whole course")
+        format!("{what}: {level}, whole course")
     }
 }
 

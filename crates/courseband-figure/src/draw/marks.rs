@@ -143,11 +143,13 @@ fn dots<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, be
     let shift = 2.0 * DOT * beside.unwrap_or(0.0);
     let at = |time: f64, value: f64| {
         let (x, y) = place.at(time, value);
-        ((x + shift).clamp(place.rect.left, place.rect.right), y)
+        (x + shift, y)
     };
+    let room = shift.abs() + 1.0;
+    let rect = Rect { left: place.rect.left - room, right: place.rect.right + room, ..place.rect };
     for &(time, value, low, high) in points {
         if beside.is_some() {
-            for part in line_inside(&[at(time, low), at(time, high)], place.rect) {
+            for part in line_inside(&[at(time, low), at(time, high)], rect) {
                 pen.path(&part, colour, 0.9, 1.4)?;
             }
         }

@@ -55,9 +55,9 @@ impl<'a> Flow<'a> {
         self.x += self.measure.width(piece, size, bold);
     }
 
-    /// Hands the texts over; returns where the last line ends.
-    pub(super) fn finish(self, texts: &mut Vec<Text>) -> f64 {
+    /// Hands the texts over; returns where the last line ends, down and across.
+    pub(super) fn finish(self, texts: &mut Vec<Text>) -> (f64, f64) {
         texts.extend(self.texts);
-        self.y + self.line
+        (self.y + self.line, self.x)
     }
 }

@@ -212,7 +212,7 @@ impl<'a> Setter<'a> {
 
     fn strip(&self, strip: &Strip, top: f64) -> StripBox {
         let mut texts = Vec::new();
-        let mut y = self.captions(strip, top, &mut texts);
+        let (mut y, name_end) = self.captions(strip, top, &mut texts);
         let mut arrows = Vec::new();
         let mut placed = StripBox {
             kind: strip.kind,
@@ -234,8 +234,6 @@ impl<'a> Setter<'a> {
             y = rect.bottom;
         }
         if let Some(lane) = &strip.lane {
-            let name_end = texts.iter().filter(|_| strip.plot.is_none()).map(|t| t.x + self.measure.width(&t.text, t.size, t.bold));
-            let name_end = name_end.fold(0.0, f64::max);
             let set = place_lane(self, lane, y, strip.plot.is_none().then_some(name_end));
             texts.extend(set.texts);
             arrows = set.arrows;
@@ -248,15 +246,15 @@ impl<'a> Setter<'a> {
         placed
     }
 
-    /// Title and caption, then the name; returns where they end.
-    fn captions(&self, strip: &Strip, top: f64, texts: &mut Vec<Text>) -> f64 {
-        let mut y = top;
+    /// Title and caption, then the name; returns where they end, down and across.
+    fn captions(&self, strip: &Strip, top: f64, texts: &mut Vec<Text>) -> (f64, f64) {
+        let (mut y, mut x) = (top, self.x.left);
         if !strip.title.is_empty() || !strip.caption.is_empty() {
             let mut flow = Flow::new(self.measure, self.edge, y, self.right, 1.4 * self.em);
             flow.words(&strip.title, self.em, true, Tone::Ink);
             flow.skip(0.8 * self.em);
             flow.words(&strip.caption, self.em, false, Tone::Soft);
-            y = flow.finish(texts);
+            (y, _) = flow.finish(texts);
         }
         if !strip.subject.is_empty() {
             let mut flow = Flow::new(self.measure, self.x.left, y + 0.25 * self.em, self.right, 1.4 * self.em);
@@ -264,9 +262,10 @@ impl<'a> Setter<'a> {
                 flow.words(&words.text, self.em, words.bold, words.tone);
                 flow.skip(self.em);
             }
-            y = flow.finish(texts);
+            (y, x) = flow.finish(texts);
+            x -= self.em;
         }
-        y
+        (y, x)
     }
 
     fn plot_rect(&self, plot: &Plot, top: f64) -> Rect {
