@@ -56,6 +56,7 @@ pub(crate) fn gaps(source: &Source, pairs: usize) -> String {
     parts.push(match (source.plan.comparisons.band.as_str(), pairs) {
         ("pointwise", _) => format!("{level} bands, each {} by itself", source.scale.time_word),
         (_, 1) => format!("{level} band over the whole course"),
+        (_, 2) => format!("{level} bands over the whole course and both pairs"),
         (_, n) => format!("{level} bands over the whole course and all {n} pairs"),
     });
     if source.plan.comparisons.margin > 0.0 {

@@ -312,6 +312,7 @@ fn band_notes(plan: &Plan, evaluation: &Evaluation, calibrated: bool) -> Vec<Not
     let reach = match (c.band, pairs) {
         (BandKind::Pointwise, _) => format!("{percent} bands hold at each time by itself, not over the whole course."),
         (BandKind::Simultaneous, 0 | 1) => format!("{percent} bands hold over the whole course at once."),
+        (BandKind::Simultaneous, 2) => format!("{percent} bands hold over the whole course and both pairs at once."),
         (BandKind::Simultaneous, n) => format!("{percent} bands hold over the whole course and all {n} pairs at once."),
     };
     let small = match (c.small_sample, evaluation.is_corrected()) {
