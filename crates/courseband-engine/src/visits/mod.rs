@@ -204,7 +204,9 @@ fn hold(
     upper: &mut [f64],
 ) -> Option<Vec<f64>> {
     let vanished = |&(column, k): &(usize, usize)| {
-        point.theta[k] < LOWEST + 8.0 && lower[k] < upper[k] && covariance.without(&point.theta, column, LOWEST).is_some()
+        point.theta[k] < LOWEST + 8.0
+            && lower[k] < upper[k]
+            && covariance.without(&point.theta, column, LOWEST).is_some()
     };
     let (column, _) = covariance.diagonal().enumerate().find(vanished)?;
     let theta = covariance.without(&point.theta, column, LOWEST)?;

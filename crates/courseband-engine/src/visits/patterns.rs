@@ -80,8 +80,7 @@ impl Reduced {
 
     /// Two visits that no subject has both of, if there are any.
     pub(super) fn never_together(&self) -> Option<(usize, usize)> {
-        let together =
-            |a: usize, b: usize| self.patterns.iter().any(|p| p.seen.contains(&a) && p.seen.contains(&b));
+        let together = |a: usize, b: usize| self.patterns.iter().any(|p| p.seen.contains(&a) && p.seen.contains(&b));
         (0..self.visits).flat_map(|a| (a + 1..self.visits).map(move |b| (a, b))).find(|&(a, b)| !together(a, b))
     }
 }

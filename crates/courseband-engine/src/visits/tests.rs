@@ -112,9 +112,8 @@ fn complete(sizes: &[usize], visits: usize, seed: u64) -> Panel {
     for (group, &size) in sizes.iter().enumerate() {
         for _ in 0..size {
             let level = 2.0 * rng.normal();
-            let value = |v: usize, rng: &mut Rng| {
-                50.0 + level + (group * v) as f64 + (1.0 + 0.3 * v as f64) * rng.normal()
-            };
+            let value =
+                |v: usize, rng: &mut Rng| 50.0 + level + (group * v) as f64 + (1.0 + 0.3 * v as f64) * rng.normal();
             panel.group_of_subject.push(group);
             panel.values.push((0..visits).map(|v| Some(value(v, &mut rng))).collect());
         }
@@ -259,9 +258,17 @@ fn what_cannot_be_estimated_says_why() {
     };
     assert_eq!(with(&|_, row| row[0] = Some(100.0)), Err(VisitsError::NoVariation { visit: 0 }));
     assert_eq!(with(&|_, row| row[1] = Some(f64::NAN)), Err(VisitsError::NotFinite));
-    assert_eq!(with(&|k, row| row[if k % 2 == 0 { 0 } else { 2 }] = None), Err(VisitsError::NeverTogether { first: 0, second: 2 }));
+    assert_eq!(
+        with(&|k, row| row[if k % 2 == 0 { 0 } else { 2 }] = None),
+        Err(VisitsError::NeverTogether { first: 0, second: 2 })
+    );
     let few = VisitsError::TooFewAtVisit { visit: 2, have: 1, need: 2 };
-    assert_eq!(with(&|k, row| if k > 0 { row[2] = None }), Err(few));
+    assert_eq!(
+        with(&|k, row| if k > 0 {
+            row[2] = None
+        }),
+        Err(few)
+    );
     // The last visit repeats the first: the likelihood has no limit.
     assert_eq!(with(&|_, row| row[3] = row[0]), Err(VisitsError::Singular));
     let few = VisitsError::TooFewSubjects { have: 3, need: 4 };

@@ -77,7 +77,11 @@ fn result(context: &Context, anova: &RepeatedAnova, used: Used) -> String {
     let alpha = context.alpha();
     let mut said = Vec::new();
     if let (Ok(test), Ok(sphericity)) = (&anova.groups_by_times, &anova.sphericity) {
-        let shown = if test.p_greenhouse_geisser < alpha { "are shown not to run parallel" } else { "are not shown to differ in shape" };
+        let shown = if test.p_greenhouse_geisser < alpha {
+            "are shown not to run parallel"
+        } else {
+            "are not shown to differ in shape"
+        };
         said.push(format!("The courses {shown}: groups by visits {}.", corrected_said(test, sphericity)));
     }
     match &anova.groups {
@@ -219,7 +223,9 @@ fn bearing(context: &Context, anova: &RepeatedAnova, used: Used) -> Bearing {
                     ),
                 ),
                 Err(Undefined::TwoTimes) => (Borne::Yes, "With two visits sphericity holds by itself.".into()),
-                Err(reason) => (Borne::Unknown, format!("Mauchly's test cannot be computed: {}.", why(context, reason))),
+                Err(reason) => {
+                    (Borne::Unknown, format!("Mauchly's test cannot be computed: {}.", why(context, reason)))
+                }
             }
         }
     };
@@ -269,7 +275,9 @@ fn beside(context: &Context, anova: &RepeatedAnova, used: Used) -> Beside {
         if context.cohort.groups.len() > 2 {
             whys.push("one F asks about all groups, the curves about each pair".to_string());
         }
-        whys.push("it gives all visits the same weight whatever the time between them, and does not smooth".to_string());
+        whys.push(
+            "it gives all visits the same weight whatever the time between them, and does not smooth".to_string(),
+        );
         sentence.push_str(&format!(" Why: {}.", crate::sentences::joined(&whys)));
     }
     Beside { agrees: Some(agrees), sentence, pairs: Vec::new() }

@@ -86,11 +86,17 @@ fn compare_pair(
     let mut said = Vec::new();
     if !only_curves.is_empty() {
         let why = reason(difference, &only_curves, manner, false);
-        said.push(format!("{names} are apart on the curves but not here at {}: {why}.", days(word, &times(&only_curves))));
+        said.push(format!(
+            "{names} are apart on the curves but not here at {}: {why}.",
+            days(word, &times(&only_curves))
+        ));
     }
     if !only_here.is_empty() {
         let why = reason(difference, &only_here, manner, true);
-        said.push(format!("{names} are apart here but not on the curves at {}: {why}.", days(word, &times(&only_here))));
+        said.push(format!(
+            "{names} are apart here but not on the curves at {}: {why}.",
+            days(word, &times(&only_here))
+        ));
     }
     let sentence = match (said.is_empty(), days_here.is_empty()) {
         (false, _) => said.join(" "),
@@ -113,20 +119,24 @@ fn reason(difference: &Difference, on: &[DayOutcome], manner: Manner, here: bool
         && !here
         && 2 * on.iter().filter(|o| o.apart_alone).count() > on.len()
     {
-        return format!("by themselves these days differ, but not after Holm's correction for {comparisons} comparisons");
+        return format!(
+            "by themselves these days differ, but not after Holm's correction for {comparisons} comparisons"
+        );
     }
-    let known: Vec<(&DayOutcome, (f64, f64))> =
-        on.iter().filter_map(|o| curve_at(difference, o.time).map(|c| (o, c))).filter(|(_, c)| c.1 > 0.0).collect();
-    if known.is_empty() {
+    // By day: standard error here over the curves', and how much further apart the groups are here, in the curves' SE.
+    let against = |o: &DayOutcome| {
+        let (estimate, se) = curve_at(difference, o.time).filter(|c| c.1 > 0.0)?;
+        Some((o.se / se, (o.estimate * estimate.signum() - estimate.abs()) / se))
+    };
+    let (mut wider, mut further): (Vec<f64>, Vec<f64>) = on.iter().filter_map(against).unzip();
+    if wider.is_empty() {
         return "the curves have no value of their own there".into();
     }
-    let middle = |value: &dyn Fn(&(&DayOutcome, (f64, f64))) -> f64| {
-        let mut all: Vec<f64> = known.iter().map(value).collect();
-        all.sort_by(f64::total_cmp);
-        all[all.len() / 2]
+    let middle = |values: &mut Vec<f64>| {
+        values.sort_by(f64::total_cmp);
+        values[values.len() / 2]
     };
-    let wider = middle(&|(o, c)| o.se / c.1);
-    let further = middle(&|(o, c)| (o.estimate * c.0.signum() - c.0.abs()) / c.1);
+    let (wider, further) = (middle(&mut wider), middle(&mut further));
     let ratio = number(wider, 2);
     match (manner, here) {
         (Manner::OwnMeans(_), false) if wider > 1.1 => format!(

@@ -27,7 +27,8 @@ pub(super) fn analyse(context: &Context, by_visit: Result<&ByVisit, &String>) ->
 }
 
 fn assumption(context: &Context, ar1: bool) -> String {
-    let covariance = if ar1 { "correlation that fades with time (AR(1)), one spread" } else { "any covariance between visits" };
+    let covariance =
+        if ar1 { "correlation that fades with time (AR(1)), one spread" } else { "any covariance between visits" };
     format!(
         "Every visit has its own mean and tells nothing of its neighbours; {covariance}, the same in all groups; gaps at \
          random given what was measured{}.",
@@ -80,7 +81,8 @@ fn unstructured(context: &Context, panel: &Panel, fit: &VisitFit, used: Used) ->
         said.push("The covariance is estimated at the edge of what is possible: some visits repeat others.".into());
     }
     said.retain(|s| !s.is_empty());
-    let mut tables = vec![overall_table(context, panel, fit), means_table(context, panel, |g, v| fit.mean(g, v, level))];
+    let mut tables =
+        vec![overall_table(context, panel, fit), means_table(context, panel, |g, v| fit.mean(g, v, level))];
     if !context.pairs.is_empty() {
         tables.insert(0, gaps.table(context, "Differences by visit", &[], |_, _| Vec::new()));
     }
@@ -124,8 +126,11 @@ fn overall_said(name: &str, test: Result<VisitTest, VisitTestUndefined>, context
 }
 
 fn overall_table(context: &Context, panel: &Panel, fit: &VisitFit) -> UsualTable {
-    let tests =
-        [("Groups", fit.groups_test()), ("Visits", fit.visits_test()), ("Groups by visits", fit.groups_by_visits_test())];
+    let tests = [
+        ("Groups", fit.groups_test()),
+        ("Visits", fit.visits_test()),
+        ("Groups by visits", fit.groups_by_visits_test()),
+    ];
     let cells = |test: &Result<VisitTest, VisitTestUndefined>| match test {
         Ok(t) => vec![df_cell(t.df), df_cell(t.df_error), fixed(t.f, 2), p_cell(t.p)],
         Err(_) => (0..4).map(|_| no_cell()).collect(),
@@ -237,10 +242,18 @@ fn bearing(context: &Context, panel: &Panel, fit: Option<&VisitFit>) -> Bearing 
     if let Some((t, ratio)) = largest_ratio(panel) {
         // Twice the standard deviation, four times the variance: common practice, no source.
         doubtful |= ratio > 2.0;
-        sentence.push_str(&format!(" The groups' standard deviations differ most at {}, by a factor of {}.", context.when(t), number(ratio, 1)));
+        sentence.push_str(&format!(
+            " The groups' standard deviations differ most at {}, by a factor of {}.",
+            context.when(t),
+            number(ratio, 1)
+        ));
         numbers.push(named("Largest ratio of group SDs", fixed(ratio, 2)));
     }
-    let lead = if doubtful { "Thin or uneven data: read with care." } else { "Enough values at every visit, and like spreads." };
+    let lead = if doubtful {
+        "Thin or uneven data: read with care."
+    } else {
+        "Enough values at every visit, and like spreads."
+    };
     let verdict = if doubtful { Borne::Doubtful } else { Borne::Yes };
     Bearing { verdict, sentence: format!("{lead} {sentence}"), numbers }
 }
@@ -253,8 +266,12 @@ fn error_said(context: &Context, panel: &Panel, error: &VisitsError) -> String {
             format!("{visits} visits are too many (at most {})", courseband_engine::visits::MOST_VISITS)
         }
         VisitsError::NotFinite => "a value is too large".into(),
-        VisitsError::TooFewSubjects { have, need } => format!("subjects less groups are {have}, and {need} are needed for {need} visits"),
-        VisitsError::TooFewAtVisit { visit, have, need } => format!("{} has {have} values and {need} are needed", when(visit)),
+        VisitsError::TooFewSubjects { have, need } => {
+            format!("subjects less groups are {have}, and {need} are needed for {need} visits")
+        }
+        VisitsError::TooFewAtVisit { visit, have, need } => {
+            format!("{} has {have} values and {need} are needed", when(visit))
+        }
         VisitsError::NeverTogether { first, second } => {
             format!("no subject has both {} and {}", when(first), when(second))
         }
@@ -283,7 +300,9 @@ fn by_ar1(context: &Context, panel: &Panel, error: &VisitsError, used: Used) -> 
     let fitted = if panel.times.len() < 2 { Err(engine::FitError::NoStart) } else { engine::fit(&data, &model) };
     let fitted = match fitted {
         Ok(fitted) => fitted,
-        Err(_) => return context.refused(KIND, NAME, assumption(context, false), format!("{why} Nor can one with AR(1).")),
+        Err(_) => {
+            return context.refused(KIND, NAME, assumption(context, false), format!("{why} Nor can one with AR(1)."));
+        }
     };
     let posterior = fitted.corrected();
     let has = |g: usize, v: usize| !panel.values_at(g, v).is_empty();
@@ -304,7 +323,14 @@ fn by_ar1(context: &Context, panel: &Panel, error: &VisitsError, used: Used) -> 
         has(g, v).then(|| {
             let e = posterior.estimate(&fitted.course(g, panel.times[v]));
             let gap = DayGap::new(e.mean, e.se, e.df, level);
-            VisitEstimate { estimate: gap.estimate, se: gap.se, df: gap.df, t: gap.estimate / gap.se, p: gap.p, interval: gap.interval }
+            VisitEstimate {
+                estimate: gap.estimate,
+                se: gap.se,
+                df: gap.df,
+                t: gap.estimate / gap.se,
+                p: gap.p,
+                interval: gap.interval,
+            }
         })
     };
     let result = if context.pairs.is_empty() { String::new() } else { format!(" {}", gaps.result(context)) };

@@ -125,7 +125,11 @@ impl<'a> Context<'a> {
             result: why,
             tables: Vec::new(),
             assumption,
-            bearing: Bearing { verdict: Borne::Unknown, sentence: "Not checked: nothing was computed.".into(), numbers: vec![] },
+            bearing: Bearing {
+                verdict: Borne::Unknown,
+                sentence: "Not checked: nothing was computed.".into(),
+                numbers: vec![],
+            },
             beside: Beside { agrees: None, sentence: "Nothing to compare with the curves.".into(), pairs: vec![] },
             used: self.used(0, 0),
             lines: Vec::new(),

@@ -103,7 +103,8 @@ impl DayGaps {
     }
 
     fn note(&self, context: &Context, missing: &[String]) -> String {
-        let limits = format!("Limits are {} for each difference by itself.", crate::sentences::percent(context.level()));
+        let limits =
+            format!("Limits are {} for each difference by itself.", crate::sentences::percent(context.level()));
         if missing.is_empty() { limits } else { format!("{limits} Not compared: {}.", missing.join("; ")) }
     }
 
@@ -145,7 +146,10 @@ impl DayGaps {
         let more = said.len().saturating_sub(3);
         said.truncate(3);
         if more > 0 {
-            said.push(format!("{} apart at some visit: see the table.", counted(more, "more pair is", "more pairs are")));
+            said.push(format!(
+                "{} apart at some visit: see the table.",
+                counted(more, "more pair is", "more pairs are")
+            ));
         }
         match (said.is_empty(), quiet) {
             (true, 1) => said.push(format!("The pair is not apart at any visit{corrected}.")),

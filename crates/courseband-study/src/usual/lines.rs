@@ -93,7 +93,10 @@ impl Trends {
 }
 
 fn assumption(context: &Context) -> String {
-    format!("Every group's course is a straight line{}; the rest as in the plan.", if context.is_log() { " on the log scale" } else { "" })
+    format!(
+        "Every group's course is a straight line{}; the rest as in the plan.",
+        if context.is_log() { " on the log scale" } else { "" }
+    )
 }
 
 /// The analysis, and how much better curves fit.
@@ -158,7 +161,10 @@ impl Slopes {
             let holm = if self.pairs.len() > 1 { format!(", adjusted {}", p_said(*p_holm)) } else { String::new() };
             let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
             let shown = if *p_holm < context.alpha() { "differ" } else { "are not shown to differ" };
-            format!("The slopes of {to} and {from} {shown}: per {word} {}, {test}{holm}.", slope_said(context, gap, from, to))
+            format!(
+                "The slopes of {to} and {from} {shown}: per {word} {}, {test}{holm}.",
+                slope_said(context, gap, from, to)
+            )
         };
         let mut said: Vec<String> = context.pairs.iter().zip(&self.pairs).take(3).map(say).collect();
         if self.pairs.len() > 3 {
@@ -166,7 +172,11 @@ impl Slopes {
         }
         if self.pairs.is_empty() {
             let g = &self.groups[0];
-            said.push(format!("The slope per {word} is {}, {}.", number(g.estimate, crate::sentences::decimals(g.se) + 1), t_said(g.estimate / g.se, g.df, g.p)));
+            said.push(format!(
+                "The slope per {word} is {}, {}.",
+                number(g.estimate, crate::sentences::decimals(g.se) + 1),
+                t_said(g.estimate / g.se, g.df, g.p)
+            ));
         }
         said.join(" ")
     }
@@ -193,7 +203,11 @@ impl Slopes {
             cells.push(p_cell(*p_holm));
             row(&[context.group(from), context.group(to)], cells)
         };
-        let gap_head = if context.is_log() { format!("Ratio of factors per {word}") } else { format!("Slope difference per {word}") };
+        let gap_head = if context.is_log() {
+            format!("Ratio of factors per {word}")
+        } else {
+            format!("Slope difference per {word}")
+        };
         let columns = [gap_head.as_str(), "Lower", "Upper", context.se_head(), "df", "t", "p", "p, Holm"];
         let pairs = UsualTable {
             title: "Differences of slopes".into(),
@@ -223,7 +237,8 @@ fn slope_said(context: &Context, gap: Gap, from: &str, to: &str) -> String {
 
 fn bearing(context: &Context, bend: &Option<Bend>, trends: &Option<Trends>) -> Bearing {
     let Some(bend) = bend else {
-        let sentence = "Curved courses could not be fitted, so it is not checked whether the courses are straight.".into();
+        let sentence =
+            "Curved courses could not be fitted, so it is not checked whether the courses are straight.".into();
         return Bearing { verdict: Borne::Unknown, sentence, numbers: Vec::new() };
     };
     let (mut verdict, lead) = match bend.p {

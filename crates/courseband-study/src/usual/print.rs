@@ -28,7 +28,7 @@ pub(super) fn degrees(df: f64) -> String {
     if !df.is_finite() {
         return "infinite".into();
     }
-    if (df - df.round()).abs() < 1e-6 || df >= 1000.0 { format!("{:.0}", df.round()) } else { format!("{df:.1}") }
+    if (df - df.round()).abs() < 1e-3 || df >= 1000.0 { format!("{:.0}", df.round()) } else { format!("{df:.1}") }
 }
 
 /// `F(2, 24) = 3.10, p = 0.063`.

@@ -41,10 +41,14 @@ pub(super) fn analyse(context: &Context, bend: Option<&Bend>) -> UsualAnalysis {
     }
     let spans = Spans::of(context, &courses);
     // Areas over different spans cannot be compared, and an area of logarithms has no meaning of its own.
-    let level = if spans.full == spans.all && !context.is_log() { SummaryMeasure::Area } else { SummaryMeasure::MeanLevel };
+    let level =
+        if spans.full == spans.all && !context.is_log() { SummaryMeasure::Area } else { SummaryMeasure::MeanLevel };
     let measured: Vec<Measured> =
         [level, SummaryMeasure::Slope].into_iter().map(|measure| compare(context, &courses, measure)).collect();
-    let rows = (courses.iter().zip(&context.cohort.data.subjects)).filter(|(c, _)| usable(c)).map(|(_, s)| s.times.len()).sum();
+    let rows = (courses.iter().zip(&context.cohort.data.subjects))
+        .filter(|(c, _)| usable(c))
+        .map(|(_, s)| s.times.len())
+        .sum();
     let done = measured.iter().any(|m| m.pairs.iter().any(Result::is_ok));
     UsualAnalysis {
         kind: KIND,
@@ -143,7 +147,8 @@ fn result(context: &Context, m: &Measured) -> String {
             Ok((c, p_holm)) => {
                 let gap = Gap { estimate: c.difference, lower: c.interval.0, upper: c.interval.1 };
                 let shown = if *p_holm < context.alpha() { "" } else { ", not shown to differ" };
-                let adjusted = if m.pairs.len() > 1 { format!(", adjusted {}", p_said(*p_holm)) } else { String::new() };
+                let adjusted =
+                    if m.pairs.len() > 1 { format!(", adjusted {}", p_said(*p_holm)) } else { String::new() };
                 format!("{to} {}, {}{adjusted}{shown}", context.gap_said(gap, from), t_said(c.t, c.df, c.p))
             }
             Err(reason) => format!("{to} and {from} are not compared: {}", super::anova::why(context, *reason)),
@@ -209,8 +214,10 @@ fn table(context: &Context, m: &Measured) -> UsualTable {
 
 fn bearing(context: &Context, spans: &Spans, bend: Option<&Bend>) -> Bearing {
     let words = &context.plan.words;
-    let mut numbers =
-        vec![named("Share seen from first to last time", cell(spans.near as f64 / spans.all as f64, share(spans.near, spans.all)))];
+    let mut numbers = vec![named(
+        "Share seen from first to last time",
+        cell(spans.near as f64 / spans.all as f64, share(spans.near, spans.all)),
+    )];
     let mut doubtful = 20 * (spans.all - spans.near) > spans.all;
     let mut sentence = if spans.near == spans.all {
         format!("All {} {} were seen from the first time to the last.", spans.all, words.subjects)
@@ -226,7 +233,10 @@ fn bearing(context: &Context, spans: &Spans, bend: Option<&Bend>) -> Bearing {
         bent = bend.p < 0.05;
         doubtful |= bend.p < 0.2;
         if bent {
-            sentence.push_str(&format!(" The courses bend ({}), so one slope does not say what matters of them.", p_said(bend.p)));
+            sentence.push_str(&format!(
+                " The courses bend ({}), so one slope does not say what matters of them.",
+                p_said(bend.p)
+            ));
         }
     }
     let verdict = match (bent, doubtful) {
@@ -252,7 +262,11 @@ fn beside(context: &Context, measured: &[Measured], spans: &Spans) -> Beside {
             compared += 1;
             let (from, to) = context.pairs[k];
             let names = format!("{} and {}", context.group(to), context.group(from));
-            let question = if slope { format!("A gap of {names} that changes over time") } else { format!("A gap of {names} on average") };
+            let question = if slope {
+                format!("A gap of {names} that changes over time")
+            } else {
+                format!("A gap of {names} on average")
+            };
             let (agree, said) = compare_tests(context.alpha(), &question, c.p, curves);
             if !agree {
                 let why = if slope {
@@ -260,7 +274,10 @@ fn beside(context: &Context, measured: &[Measured], spans: &Spans) -> Beside {
                 } else if spans.near < spans.all {
                     "each counts alike here however long it was seen".to_string()
                 } else {
-                    format!("Welch's test gives each group a spread of its own, with {} degrees of freedom", degrees(c.df))
+                    format!(
+                        "Welch's test gives each group a spread of its own, with {} degrees of freedom",
+                        degrees(c.df)
+                    )
                 };
                 differ.push(format!("{said}: {why}."));
             }
@@ -273,7 +290,10 @@ fn beside(context: &Context, measured: &[Measured], spans: &Spans) -> Beside {
     let agrees = differ.is_empty();
     differ.truncate(3);
     let sentence = match (agrees, more) {
-        (true, _) => format!("Level and change of the gaps agree with the curves (each pair by itself). It names no {}.", context.time_word()),
+        (true, _) => format!(
+            "Level and change of the gaps agree with the curves (each pair by itself). It names no {}.",
+            context.time_word()
+        ),
         (false, 0) => differ.join(" "),
         (false, n) => format!("{} {}.", differ.join(" "), counted(n, "more differs", "more differ")),
     };

@@ -31,7 +31,13 @@ pub(super) fn analyse(context: &Context, by_visit: Result<&ByVisit, &String>) ->
     let panel = &by_visit.panel;
     let mut all: Vec<Vec<Result<DayGap, String>>> = vec![Vec::new(); context.pairs.len()];
     for (k, test) in tests_by_time(panel, &context.pairs, Variances::Unequal, context.level()).iter().enumerate() {
-        let gap = test.comparison.map(|c| DayGap { estimate: c.difference, se: c.se, df: c.df, p: c.p, interval: c.interval });
+        let gap = test.comparison.map(|c| DayGap {
+            estimate: c.difference,
+            se: c.se,
+            df: c.df,
+            p: c.p,
+            interval: c.interval,
+        });
         all[k / panel.times.len()].push(gap.map_err(|reason| super::anova::why(context, reason)));
     }
     let gaps = DayGaps::new(panel.times.clone(), all);
