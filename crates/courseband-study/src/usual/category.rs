@@ -2,17 +2,17 @@
 
 use super::beside::{Manner, compare};
 use super::by_visit::ByVisit;
-use super::context::Context;
+use super::context::{Context, Gap};
 use super::days::{DayGap, DayGaps};
 use super::findings::*;
 use super::print::*;
 use crate::sentences::number;
 use courseband_engine as engine;
 use courseband_engine::usual::Panel;
-use courseband_engine::visits::{VisitEstimate, VisitFit, VisitTest, VisitTestUndefined, VisitsError, fit_visits};
+use courseband_engine::visits::{VisitEstimate, VisitFit, VisitTest, VisitTestUndefined, fit_visits};
 
-const KIND: UsualKind = UsualKind::DayAsCategory;
-const NAME: &str = "Day as a category";
+pub(super) const KIND: UsualKind = UsualKind::DayAsCategory;
+pub(super) const NAME: &str = "Day as a category";
 
 pub(super) fn analyse(context: &Context, by_visit: Result<&ByVisit, &String>) -> UsualAnalysis {
     let by_visit = match by_visit {
@@ -22,11 +22,11 @@ pub(super) fn analyse(context: &Context, by_visit: Result<&ByVisit, &String>) ->
     let Kept { panel, used } = Kept::new(context, by_visit);
     match fit_visits(&panel) {
         Ok(fit) => unstructured(context, &panel, &fit, used),
-        Err(error) => by_ar1(context, &panel, &error, used),
+        Err(error) => super::ar1::analyse(context, &panel, &error, used),
     }
 }
 
-fn assumption(context: &Context, ar1: bool) -> String {
+pub(super) fn assumption(context: &Context, ar1: bool) -> String {
     let covariance =
         if ar1 { "correlation that fades with time (AR(1)), one spread" } else { "any covariance between visits" };
     format!(
@@ -148,7 +148,11 @@ fn overall_table(context: &Context, panel: &Panel, fit: &VisitFit) -> UsualTable
     }
 }
 
-fn means_table(context: &Context, panel: &Panel, mean: impl Fn(usize, usize) -> Option<VisitEstimate>) -> UsualTable {
+pub(super) fn means_table(
+    context: &Context,
+    panel: &Panel,
+    mean: impl Fn(usize, usize) -> Option<VisitEstimate>,
+) -> UsualTable {
     let mut rows = Vec::new();
     for g in 0..panel.groups {
         for (v, t) in panel.times.iter().enumerate() {
@@ -156,7 +160,7 @@ fn means_table(context: &Context, panel: &Panel, mean: impl Fn(usize, usize) -> 
             let mut cells = vec![cell(n as f64, n.to_string())];
             match mean(g, v) {
                 Some(e) => {
-                    let gap = super::context::Gap { estimate: e.estimate, lower: e.interval.0, upper: e.interval.1 };
+                    let gap = Gap { estimate: e.estimate, lower: e.interval.0, upper: e.interval.1 };
                     cells.extend(context.gap_cells(gap, e.se));
                     cells.push(df_cell(e.df));
                 }
@@ -218,7 +222,7 @@ fn largest_ratio(panel: &Panel) -> Option<(f64, f64)> {
     most
 }
 
-fn bearing(context: &Context, panel: &Panel, fit: Option<&VisitFit>) -> Bearing {
+pub(super) fn bearing(context: &Context, panel: &Panel, fit: Option<&VisitFit>) -> Bearing {
     let visits = panel.times.len();
     let cells = (0..panel.groups).flat_map(|g| (0..visits).map(move |v| (g, v)));
     let fewest = cells.map(|(g, v)| (panel.values_at(g, v).len(), g, v)).min().unwrap_or((0, 0, 0));
@@ -256,98 +260,4 @@ fn bearing(context: &Context, panel: &Panel, fit: Option<&VisitFit>) -> Bearing 
     };
     let verdict = if doubtful { Borne::Doubtful } else { Borne::Yes };
     Bearing { verdict, sentence: format!("{lead} {sentence}"), numbers }
-}
-
-fn error_said(context: &Context, panel: &Panel, error: &VisitsError) -> String {
-    let when = |visit: usize| context.when(panel.times[visit]);
-    match *error {
-        VisitsError::OneVisit => "fewer than two visits have enough values".into(),
-        VisitsError::TooManyVisits { visits } => {
-            format!("{visits} visits are too many (at most {})", courseband_engine::visits::MOST_VISITS)
-        }
-        VisitsError::NotFinite => "a value is too large".into(),
-        VisitsError::TooFewSubjects { have, need } => {
-            format!("subjects less groups are {have}, and {need} are needed for {need} visits")
-        }
-        VisitsError::TooFewAtVisit { visit, have, need } => {
-            format!("{} has {have} values and {need} are needed", when(visit))
-        }
-        VisitsError::NeverTogether { first, second } => {
-            format!("no subject has both {} and {}", when(first), when(second))
-        }
-        VisitsError::NoVariation { visit } => format!("the values at {} do not vary", when(visit)),
-        VisitsError::Singular => "some visits can be computed from others".into(),
-        VisitsError::NotDetermined | VisitsError::NotConverged { .. } => "no optimum was found".into(),
-    }
-}
-
-/// Means by visit with AR(1) errors, where any covariance is too much to ask.
-fn by_ar1(context: &Context, panel: &Panel, error: &VisitsError, used: Used) -> UsualAnalysis {
-    let why = format!("An unstructured covariance cannot be estimated: {}.", error_said(context, panel, error));
-    let rows = |(values, &group): (&Vec<Option<f64>>, &usize)| {
-        let seen = || panel.times.iter().zip(values).filter(|(_, y)| y.is_some());
-        let responses: Vec<f64> = seen().filter_map(|(_, y)| *y).collect();
-        engine::SubjectRows { group, times: seen().map(|(t, _)| *t).collect(), responses }
-    };
-    let subjects = panel.values.iter().zip(&panel.group_of_subject).map(rows).filter(|s| !s.times.is_empty());
-    let data = engine::Data { groups: panel.groups, subjects: subjects.collect() };
-    let model = engine::Model {
-        shape: engine::Shape::ByTime,
-        subjects: engine::SubjectEffects::None,
-        serial: engine::Serial::Ar1,
-        ..engine::Model::default()
-    };
-    let fitted = if panel.times.len() < 2 { Err(engine::FitError::NoStart) } else { engine::fit(&data, &model) };
-    let fitted = match fitted {
-        Ok(fitted) => fitted,
-        Err(_) => {
-            return context.refused(KIND, NAME, assumption(context, false), format!("{why} Nor can one with AR(1)."));
-        }
-    };
-    let posterior = fitted.corrected();
-    let has = |g: usize, v: usize| !panel.values_at(g, v).is_empty();
-    let level = context.level();
-    let gap = |(from, to): (usize, usize), v: usize| {
-        if !has(from, v) || !has(to, v) {
-            return Err("a group has no value".to_string());
-        }
-        let e = posterior.estimate(&fitted.gap(from, to, panel.times[v]));
-        Ok(DayGap::new(e.mean, e.se, e.df, level))
-    };
-    let all = context.pairs.iter().map(|&pair| (0..panel.times.len()).map(|v| gap(pair, v)).collect()).collect();
-    let gaps = DayGaps::new(panel.times.clone(), all);
-    let phi = fitted.serial_correlation().map_or(String::new(), |phi| {
-        format!(" The correlation of values one {} apart is {}.", unit(context.time_word()), number(phi, 2))
-    });
-    let mean = |g: usize, v: usize| {
-        has(g, v).then(|| {
-            let e = posterior.estimate(&fitted.course(g, panel.times[v]));
-            let gap = DayGap::new(e.mean, e.se, e.df, level);
-            VisitEstimate {
-                estimate: gap.estimate,
-                se: gap.se,
-                df: gap.df,
-                t: gap.estimate / gap.se,
-                p: gap.p,
-                interval: gap.interval,
-            }
-        })
-    };
-    let result = if context.pairs.is_empty() { String::new() } else { format!(" {}", gaps.result(context)) };
-    let mut tables = vec![means_table(context, panel, mean)];
-    if !context.pairs.is_empty() {
-        tables.insert(0, gaps.table(context, "Differences by visit", &[], |_, _| Vec::new()));
-    }
-    UsualAnalysis {
-        kind: KIND,
-        name: format!("{NAME}, AR(1) covariance"),
-        done: true,
-        result: format!("{why} AR(1) is used instead.{result}{phi}"),
-        tables,
-        assumption: assumption(context, true),
-        bearing: bearing(context, panel, None),
-        beside: compare(context, &gaps.outcomes(context), Manner::OwnMeans(gaps.comparisons())),
-        used,
-        lines: Vec::new(),
-    }
 }

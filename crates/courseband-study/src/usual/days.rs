@@ -23,6 +23,11 @@ impl DayGap {
         let p = (2.0 * t_sf((estimate / se).abs(), df)).min(1.0);
         DayGap { estimate, se, df, p, interval: (estimate - half, estimate + half) }
     }
+
+    /// Estimate and limits.
+    pub(super) fn said(&self) -> Gap {
+        Gap { estimate: self.estimate, lower: self.interval.0, upper: self.interval.1 }
+    }
 }
 
 /// All pairs at all visits.
@@ -69,19 +74,10 @@ impl DayGaps {
         for (pair, days) in self.gaps.iter().enumerate() {
             let (from, to) = context.pairs[pair];
             for (visit, gap) in days.iter().enumerate() {
-                let mut cells = extra(pair, visit);
-                match gap {
-                    Ok((g, p_holm)) => {
-                        let shown = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
-                        cells.extend(context.gap_cells(shown, g.se));
-                        cells.extend([df_cell(g.df), fixed(g.estimate / g.se, 2), p_cell(g.p), p_cell(*p_holm)]);
-                    }
-                    Err(why) => {
-                        cells.extend((0..8).map(|_| no_cell()));
-                        missing.push(format!("{}: {why}", context.when(self.times[visit])));
-                    }
-                }
                 let when = context.when(self.times[visit]);
+                missing.extend(gap.as_ref().err().map(|why| format!("{when}: {why}")));
+                let mut cells = extra(pair, visit);
+                cells.extend(gap_cells(context, gap));
                 rows.push(row(&[context.group(from), context.group(to), &when], cells));
             }
         }
@@ -118,30 +114,10 @@ impl DayGaps {
         let mut said = Vec::new();
         let mut quiet = 0;
         for (pair, days) in self.gaps.iter().enumerate() {
-            let (from, to) = context.pairs[pair];
-            let strong = (self.times.iter().zip(days))
-                .filter_map(|(t, gap)| gap.as_ref().ok().map(|(g, p_holm)| (*t, *g, *p_holm)))
-                .filter(|(_, _, p_holm)| *p_holm < context.alpha());
-            let apart: Vec<(f64, DayGap, f64)> = strong.collect();
-            let size = |g: &DayGap| (g.estimate / g.se).abs();
-            let Some((t, g, p_holm)) = apart.iter().max_by(|a, b| size(&a.1).total_cmp(&size(&b.1))) else {
-                quiet += 1;
-                continue;
-            };
-            let times: Vec<f64> = apart.iter().map(|(t, _, _)| *t).collect();
-            let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
-            said.push(format!(
-                "{} and {} are apart at {}{corrected}; most clearly at {}: {} {}, t({}) = {}, adjusted {}.",
-                context.group(to),
-                context.group(from),
-                super::print::days(context.time_word(), &times),
-                context.when(*t),
-                context.group(to),
-                context.gap_said(gap, context.group(from)),
-                degrees(g.df),
-                crate::sentences::number(g.estimate / g.se, 2),
-                p_said(*p_holm),
-            ));
+            match self.pair_said(context, pair, days, &corrected) {
+                Some(sentence) => said.push(sentence),
+                None => quiet += 1,
+            }
         }
         let more = said.len().saturating_sub(3);
         said.truncate(3);
@@ -159,4 +135,41 @@ impl DayGaps {
         }
         said.join(" ")
     }
+
+    /// Days at which a pair is apart and the clearest of them; none where it is not.
+    fn pair_said(
+        &self,
+        context: &Context,
+        pair: usize,
+        days: &[Result<(DayGap, f64), String>],
+        corrected: &str,
+    ) -> Option<String> {
+        let apart: Vec<(f64, DayGap, f64)> = (self.times.iter().zip(days))
+            .filter_map(|(t, gap)| gap.as_ref().ok().map(|(g, p_holm)| (*t, *g, *p_holm)))
+            .filter(|(_, _, p_holm)| *p_holm < context.alpha())
+            .collect();
+        let size = |g: &DayGap| (g.estimate / g.se).abs();
+        let (t, g, p_holm) = apart.iter().max_by(|a, b| size(&a.1).total_cmp(&size(&b.1)))?;
+        let times: Vec<f64> = apart.iter().map(|(t, _, _)| *t).collect();
+        let (from, to) = context.pairs[pair];
+        let (from, to) = (context.group(from), context.group(to));
+        Some(format!(
+            "{to} and {from} are apart at {}{corrected}; most clearly at {}: {to} {}, t({}) = {}, adjusted {}.",
+            super::print::days(context.time_word(), &times),
+            context.when(*t),
+            context.gap_said(g.said(), from),
+            degrees(g.df),
+            crate::sentences::number(g.estimate / g.se, 2),
+            p_said(*p_holm),
+        ))
+    }
+}
+
+fn gap_cells(context: &Context, gap: &Result<(DayGap, f64), String>) -> Vec<UsualCell> {
+    let Ok((g, p_holm)) = gap else {
+        return (0..8).map(|_| no_cell()).collect();
+    };
+    let mut cells = context.gap_cells(g.said(), g.se);
+    cells.extend([df_cell(g.df), fixed(g.estimate / g.se, 2), p_cell(g.p), p_cell(*p_holm)]);
+    cells
 }

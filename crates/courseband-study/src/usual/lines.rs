@@ -159,11 +159,10 @@ impl Slopes {
             let (from, to) = (context.group(from), context.group(to));
             let test = t_said(g.estimate / g.se, g.df, g.p);
             let holm = if self.pairs.len() > 1 { format!(", adjusted {}", p_said(*p_holm)) } else { String::new() };
-            let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
             let shown = if *p_holm < context.alpha() { "differ" } else { "are not shown to differ" };
             format!(
                 "The slopes of {to} and {from} {shown}: per {word} {}, {test}{holm}.",
-                slope_said(context, gap, from, to)
+                slope_said(context, g.said(), from, to)
             )
         };
         let mut said: Vec<String> = context.pairs.iter().zip(&self.pairs).take(3).map(say).collect();
@@ -184,8 +183,7 @@ impl Slopes {
     fn tables(&self, context: &Context) -> Vec<UsualTable> {
         let word = unit(context.time_word());
         let cells = |g: &DayGap| {
-            let gap = Gap { estimate: g.estimate, lower: g.interval.0, upper: g.interval.1 };
-            let mut cells = context.gap_cells(gap, g.se);
+            let mut cells = context.gap_cells(g.said(), g.se);
             cells.extend([df_cell(g.df), fixed(g.estimate / g.se, 2), p_cell(g.p)]);
             cells
         };

@@ -5,6 +5,7 @@
 //! `courseband_engine::usual` and `::visits`; straight lines are the plan's own model with another shape.
 
 mod anova;
+mod ar1;
 mod beside;
 mod by_visit;
 mod category;
