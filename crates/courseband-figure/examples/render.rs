@@ -21,8 +21,12 @@ fn main() -> Result<(), Box<dyn Error>> {
 }
 
 fn traces(observations: &courseband_table::Observations) -> Traces {
-    let mut traces =
-        Traces { offsets: vec![0], time: observations.time.clone(), response: observations.response.clone(), group: Vec::new() };
+    let mut traces = Traces {
+        offsets: vec![0],
+        time: observations.time.clone(),
+        response: observations.response.clone(),
+        group: Vec::new(),
+    };
     let mut end = 0;
     for rows in observations.subject.chunk_by(|a, b| a == b) {
         end += rows.len() as u32;

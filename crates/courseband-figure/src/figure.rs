@@ -14,10 +14,19 @@ pub struct Figure {
     pub time: TimeAxis,
     /// Groups, in their order.
     pub groups: Vec<GroupLook>,
-    /// Share of their usual strength with which bands and traces are filled: less where many overlap.
-    pub strength: f64,
+    /// How strongly bands and traces are drawn.
+    pub strength: Strength,
     /// From the top.
     pub strips: Vec<Strip>,
+}
+
+/// Shares of the usual strength: less where many overlap.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct Strength {
+    /// Of bands' areas.
+    pub bands: f64,
+    /// Of traces.
+    pub traces: f64,
 }
 
 /// The shared axis.

@@ -1,15 +1,21 @@
 //! Hand-made findings for tests: invented numbers on ten visits.
 
-use crate::source::{Comparisons, Course, CoursePoints, Direction, Gap, GapPoints, Group, Names, Nouns, Run, Series, Source, Traces};
+use crate::source::{
+    Comparisons, Course, CoursePoints, Direction, Gap, GapPoints, Group, Names, Nouns, Run, Series, Source, Traces,
+};
 
 const VISITS: [f64; 10] = [0.0, 2.0, 4.0, 7.0, 9.0, 11.0, 14.0, 16.0, 18.0, 21.0];
-const NAMES: [&str; 6] = ["Saline", "Silver-coated foam dressing", "Hydrogel", "Honey gauze", "Collagen with zinc", "Sham"];
+const NAMES: [&str; 6] =
+    ["Saline", "Silver-coated foam dressing", "Hydrogel", "Honey gauze", "Collagen with zinc", "Sham"];
 
 /// Groups on a ratio scale, all pairs compared, eight subjects each, all followed to the end.
 pub(crate) fn source(groups: usize) -> Source {
     let pairs = (0..groups).flat_map(|a| (a + 1..groups).map(move |b| (a, b)));
     Source {
-        groups: NAMES[..groups].iter().map(|name| Group { name: (*name).into(), subjects: 8, last_times: vec![21.0; 8] }).collect(),
+        groups: NAMES[..groups]
+            .iter()
+            .map(|name| Group { name: (*name).into(), subjects: 8, last_times: vec![21.0; 8] })
+            .collect(),
         curves: (0..groups).map(course).collect(),
         differences: pairs.map(|(a, b)| gap(a, b)).collect(),
         visits: VISITS.to_vec(),

@@ -8,9 +8,9 @@
 
 mod build;
 mod draw;
+mod figure;
 #[cfg(test)]
 mod fixture;
-mod figure;
 mod layout;
 mod numbers;
 mod palette;

@@ -98,7 +98,8 @@ mod tests {
 
     #[test]
     fn no_axis_is_empty() {
-        for (low, high) in [(5.0, 5.0), (0.0, 0.0), (f64::NAN, 1.0), (f64::INFINITY, f64::NEG_INFINITY), (1e300, 1e300)] {
+        for (low, high) in [(5.0, 5.0), (0.0, 0.0), (f64::NAN, 1.0), (f64::INFINITY, f64::NEG_INFINITY), (1e300, 1e300)]
+        {
             for kind in [Kind::Linear, Kind::Log] {
                 let scale = Scale::new(kind, low, high);
                 assert!(scale.high() > scale.low(), "{low} to {high}: {scale:?}");

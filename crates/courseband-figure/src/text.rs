@@ -68,7 +68,10 @@ mod tests {
     fn names_take_two_lines_at_most() {
         assert_eq!(two_lines("Saline"), ["Saline"]);
         assert_eq!(two_lines("Silver-coated foam dressing"), ["Silver-coated foam", "dressing"]);
-        assert_eq!(two_lines("Hydrogel with a very long addition here"), ["Hydrogel with a", "very long additio\u{2026}"]);
+        assert_eq!(
+            two_lines("Hydrogel with a very long addition here"),
+            ["Hydrogel with a", "very long additio\u{2026}"]
+        );
         assert_eq!(two_lines("Abcdefghijklmnopqrstuvwxyz"), ["Abcdefghijklmnopqr", "stuvwxyz"]);
         for name in ["", " ", "äöü äöü äöü äöü äöü äöü äöü äöü äöü äöü äöü"] {
             assert!(two_lines(name).iter().all(|line| line.chars().count() <= 18), "{name}");

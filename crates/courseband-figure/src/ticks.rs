@@ -28,7 +28,10 @@ pub(crate) fn value_ticks(scale: Scale, about: usize) -> Vec<Tick> {
 
 /// Marks of a ratio axis: 1 and its doublings or tens, written as percent or as multiples.
 pub(crate) fn ratio_ticks(scale: Scale, about: usize, as_percent: bool) -> Vec<Tick> {
-    let write = |value: f64| Tick { value, label: if as_percent { plain(100.0 * value) } else { format!("{}×", plain(value)) } };
+    let write = |value: f64| Tick {
+        value,
+        label: if as_percent { plain(100.0 * value) } else { format!("{}×", plain(value)) },
+    };
     let within = |values: &[f64]| values.iter().copied().filter(|&v| scale.holds(v)).collect::<Vec<f64>>();
     let steps: [&[f64]; 5] = [
         &[0.8, 0.9, 1.0, 1.1, 1.2],

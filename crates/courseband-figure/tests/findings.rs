@@ -11,7 +11,10 @@ fn table() -> String {
         for day in [0, 3, 7, 10, 14] {
             let wobble = f64::from((mouse * 7 + day * 5) % 11) / 11.0 - 0.5;
             let gain = if mouse % 2 == 0 { 0.2 } else { 0.8 };
-            text += &format!("m{mouse},{diet},{day},{:.3}\n", 20.0 + 0.3 * f64::from(mouse % 5) + gain * f64::from(day) + wobble);
+            text += &format!(
+                "m{mouse},{diet},{day},{:.3}\n",
+                20.0 + 0.3 * f64::from(mouse % 5) + gain * f64::from(day) + wobble
+            );
         }
     }
     text
@@ -77,5 +80,8 @@ fn text_sizes_in_the_file_are_the_asked_ones() {
     let sizes = svg.match_indices("font-size=\"").map(|(at, key)| &svg[at + key.len()..]);
     let sizes: Vec<f64> = sizes.filter_map(|rest| rest.split('"').next()?.parse().ok()).collect();
     // Text of 12 and 0.92 times 12 pixels on a grid of ten.
-    assert!(sizes.len() > 10 && sizes.iter().all(|s| (s - 120.0).abs() < 1e-6 || (s - 110.4).abs() < 1e-6), "{sizes:?}");
+    assert!(
+        sizes.len() > 10 && sizes.iter().all(|s| (s - 120.0).abs() < 1e-6 || (s - 110.4).abs() < 1e-6),
+        "{sizes:?}"
+    );
 }

@@ -11,7 +11,9 @@ pub(crate) fn say_in_words() {
 }
 
 fn words(info: &PanicHookInfo<'_>) -> String {
-    let message = info.payload_as_str().unwrap_or("no message");
+    let payload = info.payload();
+    let text = payload.downcast_ref::<&str>().copied().or_else(|| payload.downcast_ref::<String>().map(String::as_str));
+    let message = text.unwrap_or("no message");
     let place = info.location().map(|at| format!(" ({}:{})", at.file(), at.line())).unwrap_or_default();
     format!("The computation stopped: {message}{place}")
 }

@@ -12,6 +12,7 @@ pub(super) fn time_axis(source: &Source) -> TimeAxis {
     let first = source.visits.first().copied().unwrap_or(0.0);
     let last = source.visits.last().copied().unwrap_or(1.0);
     let (start, end) = if last > first { (first, last) } else { (first - 0.5, first + 0.5) };
-    let ticks = if source.visits.len() <= MARKED_VISITS { visit_ticks(&source.visits) } else { time_ticks(start, end, 10) };
+    let ticks =
+        if source.visits.len() <= MARKED_VISITS { visit_ticks(&source.visits) } else { time_ticks(start, end, 10) };
     TimeAxis { start, end, ticks, word: source.scale.time_word.clone() }
 }

@@ -1,8 +1,8 @@
 //! The courses strip: subjects' traces, group curves with their bands.
 
+use super::Builder;
 use super::points::{band, band_from, banded, few_after, line, thinned};
 use super::range::ten_to_ninety;
-use super::Builder;
 use crate::figure::{EndLabel, Mark, Plot, Strip, StripKind, Tone};
 use crate::scale::{Kind, Scale};
 use crate::source::Course;
@@ -51,7 +51,8 @@ impl Builder<'_> {
         let mut marks = Vec::new();
         let many = self.traces.len() > MOST_TRACES;
         if many {
-            let ranges = (0..self.source.groups.len()).map(|g| Mark::Range { tone: Tone::Group(g), points: ten_to_ninety(self.traces, g) });
+            let ranges = (0..self.source.groups.len())
+                .map(|g| Mark::Range { tone: Tone::Group(g), points: ten_to_ninety(self.traces, g) });
             marks.extend(ranges.filter(|m| matches!(m, Mark::Range { points, .. } if points.len() > 1)));
         }
         let pixel = if self.view.decimate { self.pixel() } else { 0.0 };

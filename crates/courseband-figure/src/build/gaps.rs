@@ -1,7 +1,7 @@
 //! Gap strips and rows of pairs.
 
-use super::points::{band, band_from, banded, few_after, line};
 use super::Builder;
+use super::points::{band, band_from, banded, few_after, line};
 use crate::figure::{Mark, Plot, Rule, RuleKind, Strip, StripKind, Tone, Words};
 use crate::scale::{Kind, Scale};
 use crate::source::Gap;

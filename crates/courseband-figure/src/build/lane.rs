@@ -29,7 +29,8 @@ impl Builder<'_> {
         let is_first = !segments[..k].iter().any(compared);
         let is_last = !segments[k + 1..].iter().any(compared);
         let when = |t: f64| format!("{} {}", self.time.word, self.edge(t));
-        let continued = segments.get(k + 1).is_some_and(|next| next.up == segment.up && next.state == LaneState::Beyond);
+        let continued =
+            segments.get(k + 1).is_some_and(|next| next.up == segment.up && next.state == LaneState::Beyond);
         match (is_first, is_last) {
             (true, true) => format!("{state} over the whole course"),
             (true, false) => format!("{state} to {}", when(segment.end)),

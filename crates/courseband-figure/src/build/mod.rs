@@ -9,7 +9,7 @@ mod lane;
 mod points;
 mod range;
 
-use crate::figure::{Dash, Figure, GroupLook, Strip, TimeAxis, Tone, Words};
+use crate::figure::{Dash, Figure, GroupLook, Mark, Strength, Strip, TimeAxis, Tone, Words};
 use crate::source::{Source, Traces};
 use crate::text::shortened;
 use crate::view::View;
@@ -19,13 +19,18 @@ use crate::view::View;
 pub fn describe(source: &Source, traces: &Traces, view: &View) -> Figure {
     let builder = Builder { source, traces, view, time: axis::time_axis(source), looks: looks(source) };
     let mut strips: Vec<Strip> = Vec::new();
-    if !source.curves.is_empty() {
+    if !source.curves.is_empty() && source.curves.len() <= source.groups.len() {
         strips.push(builder.courses());
+        strips.extend(builder.gaps());
     }
-    strips.extend(builder.gaps());
     strips.push(builder.followed());
-    let strength = (3.0 / source.groups.len().max(3) as f64).max(0.4);
-    Figure { view: view.clone(), time: builder.time, groups: builder.looks, strength, strips }
+    Figure {
+        view: view.clone(),
+        time: builder.time,
+        strength: strength(source, &strips),
+        groups: builder.looks,
+        strips,
+    }
 }
 
 /// What every strip is built from.
@@ -65,6 +70,14 @@ impl Builder<'_> {
         };
         self.looks.iter().enumerate().map(words).collect()
     }
+}
+
+/// Bands weaken from the fourth group on, traces also where more than forty are drawn.
+fn strength(source: &Source, strips: &[Strip]) -> Strength {
+    let marks = strips.iter().filter_map(|s| s.plot.as_ref()).flat_map(|p| &p.marks);
+    let traces = marks.filter(|m| matches!(m, Mark::Trace { .. })).count();
+    let bands = (3.0 / source.groups.len().max(3) as f64).max(0.4);
+    Strength { bands, traces: bands.max(0.6) * libm::sqrt(40.0 / traces.max(40) as f64) }
 }
 
 /// Colour and line style by the groups' order; both differ as long as they can.

@@ -27,7 +27,9 @@ pub(super) fn ten_to_ninety(traces: &Traces, group: usize) -> Vec<(f64, f64, f64
     };
     let times = points.chunk_by(|a, b| a.0 == b.0).count();
     let width = (last - first) / WINDOWS as f64;
-    let window = |t: f64| if times <= OWN_TIMES || width <= 0.0 { t } else { libm::floor((t - first) / width).min(WINDOWS as f64 - 1.0) };
+    let window = |t: f64| {
+        if times <= OWN_TIMES || width <= 0.0 { t } else { libm::floor((t - first) / width).min(WINDOWS as f64 - 1.0) }
+    };
     points.chunk_by(|a, b| window(a.0) == window(b.0)).filter(|run| run.len() >= LEAST).map(range).collect()
 }
 

@@ -1,7 +1,7 @@
 //! Descriptions are compared as text with `tests/cases`; `UPDATE_EXPECT=1` rewrites those.
 
 use super::*;
-use crate::figure::{LaneState, Mark, StripKind};
+use crate::figure::{LaneState, StripKind};
 use crate::fixture::{gap_rows, source, traces};
 use crate::source::Run;
 use crate::testing::check;
@@ -33,10 +33,23 @@ fn dump(figure: &Figure) -> String {
     text += &figure.time.ticks.iter().map(|t| t.label.clone()).collect::<Vec<_>>().join(" ");
     for strip in &figure.strips {
         let subject: Vec<&str> = strip.subject.iter().map(|w| w.text.as_str()).collect();
-        text += &format!("\n\n{} {:?}: {} | {} | {}", strip.kind.word(), strip.pair, strip.title, subject.join(", "), strip.caption);
+        text += &format!(
+            "\n\n{} {:?}: {} | {} | {}",
+            strip.kind.word(),
+            strip.pair,
+            strip.title,
+            subject.join(", "),
+            strip.caption
+        );
         if let Some(plot) = &strip.plot {
             let labels: Vec<&str> = plot.ticks.iter().map(|t| t.label.as_str()).collect();
-            text += &format!("\n  {:?} {:.3} to {:.3}: {}", plot.scale.kind(), plot.scale.low(), plot.scale.high(), labels.join(" "));
+            text += &format!(
+                "\n  {:?} {:.3} to {:.3}: {}",
+                plot.scale.kind(),
+                plot.scale.low(),
+                plot.scale.high(),
+                labels.join(" ")
+            );
             plot.rules.iter().for_each(|r| text += &format!("\n  rule {:?} at {:.3}", r.kind, r.value));
             plot.marks.iter().for_each(|m| text += &format!("\n  {}", mark(m)));
             plot.ends.iter().for_each(|e| text += &format!("\n  end {:?} at {:.2}, {:.3}", e.lines, e.time, e.value));
@@ -100,8 +113,11 @@ fn many_pairs_are_rows_until_they_are_opened() {
     let mut view = View { open_pairs: vec![5, 0, 9, 12, 99], ..View::default() };
     let source = source(6);
     assert_eq!(source.differences.len(), 15);
-    let kinds = |view: &View| -> Vec<StripKind> { describe(&source, &Traces::default(), view).strips.iter().map(|s| s.kind).collect() };
-    let open: Vec<usize> = kinds(&view)[1..16].iter().enumerate().filter(|(_, k)| **k == StripKind::Gap).map(|(p, _)| p).collect();
+    let kinds = |view: &View| -> Vec<StripKind> {
+        describe(&source, &Traces::default(), view).strips.iter().map(|s| s.kind).collect()
+    };
+    let open: Vec<usize> =
+        kinds(&view)[1..16].iter().enumerate().filter(|(_, k)| **k == StripKind::Gap).map(|(p, _)| p).collect();
     assert_eq!(open, [0, 5, 9], "at most three, whatever is asked");
     view.open_pairs.clear();
     assert!(kinds(&view)[1..16].iter().all(|k| *k == StripKind::Row));
@@ -110,7 +126,13 @@ fn many_pairs_are_rows_until_they_are_opened() {
 #[test]
 fn all_gap_strips_have_one_scale() {
     let figure = described(|source, _| gap_rows(&mut source.differences[1], 0.5));
-    let scales: Vec<_> = figure.strips.iter().filter(|s| s.kind == StripKind::Gap).filter_map(|s| s.plot.as_ref()).map(|p| p.scale).collect();
+    let scales: Vec<_> = figure
+        .strips
+        .iter()
+        .filter(|s| s.kind == StripKind::Gap)
+        .filter_map(|s| s.plot.as_ref())
+        .map(|p| p.scale)
+        .collect();
     assert_eq!(scales.len(), 3);
     assert!(scales.windows(2).all(|w| w[0] == w[1]));
 }
@@ -130,9 +152,14 @@ fn a_band_that_runs_away_does_not_flatten_the_rest() {
 #[test]
 fn over_sixty_traces_become_ranges() {
     let source = source(2);
-    let marks = |subjects: usize, view: &View| describe(&source, &traces(&source, subjects), view).strips[0].plot.clone().map(|p| p.marks).unwrap_or_default();
+    let marks = |subjects: usize, view: &View| {
+        describe(&source, &traces(&source, subjects), view).strips[0].plot.clone().map(|p| p.marks).unwrap_or_default()
+    };
     let count = |marks: &[Mark]| {
-        (marks.iter().filter(|m| matches!(m, Mark::Trace { .. })).count(), marks.iter().filter(|m| matches!(m, Mark::Range { .. })).count())
+        (
+            marks.iter().filter(|m| matches!(m, Mark::Trace { .. })).count(),
+            marks.iter().filter(|m| matches!(m, Mark::Range { .. })).count(),
+        )
     };
     assert_eq!(count(&marks(30, &View::default())), (60, 0));
     assert_eq!(count(&marks(31, &View::default())), (0, 2));
@@ -145,7 +172,10 @@ fn few_left_is_hatched_from_the_visit_on() {
     let figure = described(|source, _| source.groups[1].last_times = vec![7.0, 7.0, 7.0, 14.0, 14.0, 21.0, 21.0, 21.0]);
     let starts = |strip: usize| -> Vec<f64> {
         let plot = figure.strips[strip].plot.as_ref().expect("a plot");
-        plot.marks.iter().filter_map(|m| if let Mark::Hatch { points, .. } = m { Some(points[0].0) } else { None }).collect()
+        plot.marks
+            .iter()
+            .filter_map(|m| if let Mark::Hatch { points, .. } = m { Some(points[0].0) } else { None })
+            .collect()
     };
     // Eight, five after day 7, three after day 14.
     assert_eq!(starts(0), [14.0]);
@@ -163,7 +193,8 @@ fn followed_counts_subjects_with_a_visit_on_or_after_each_day() {
 
 #[test]
 fn dense_traces_are_thinned_to_the_pixels() {
-    let dense: Vec<(f64, f64)> = (0..100_000).map(|k| (f64::from(k) / 1e3, if k == 51_234 { 9.0 } else { 0.0 })).collect();
+    let dense: Vec<(f64, f64)> =
+        (0..100_000).map(|k| (f64::from(k) / 1e3, if k == 51_234 { 9.0 } else { 0.0 })).collect();
     let kept = points::thinned(dense.clone(), 0.1);
     assert!(kept.len() <= 4 * 1001, "{}", kept.len());
     assert!(kept.contains(&(51.234, 9.0)), "a peak stays");
@@ -175,6 +206,25 @@ fn nothing_to_show_is_no_fault() {
     let figure = describe(&Source::default(), &Traces::default(), &View::default());
     assert_eq!(figure.strips.len(), 1);
     assert!(figure.time.end > figure.time.start);
+}
+
+#[test]
+fn findings_that_do_not_fit_together_are_no_fault() {
+    let mut source = source(3);
+    source.groups.truncate(1);
+    let figure = describe(&source, &traces(&source, 2), &View::default());
+    assert_eq!(figure.strips.iter().map(|s| s.kind).collect::<Vec<_>>(), [StripKind::Followed]);
+}
+
+#[test]
+fn many_bands_and_traces_weaken() {
+    let of = |groups: usize, subjects: usize| {
+        let source = source(groups);
+        describe(&source, &traces(&source, subjects), &View { focus: Some(0), ..View::default() }).strength
+    };
+    assert_eq!(of(3, 10), Strength { bands: 1.0, traces: 1.0 });
+    assert_eq!(of(6, 5).bands, 0.5);
+    assert!(of(2, 160).traces < 0.51);
 }
 
 #[test]

@@ -7,7 +7,12 @@ use crate::layout::{Arrow, Rect, TimeRange};
 use plotters_backend::DrawingBackend;
 
 /// Draws a lane.
-pub(super) fn draw_lane<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, x: &TimeRange, lane: &Lane, rect: Rect) -> Outcome<DB> {
+pub(super) fn draw_lane<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    x: &TimeRange,
+    lane: &Lane,
+    rect: Rect,
+) -> Outcome<DB> {
     let colour = pen.colour(lane.tone);
     let middle = 0.5 * (rect.top + rect.bottom);
     let tall = rect.bottom - rect.top;

@@ -64,12 +64,25 @@ pub(super) fn draw_mark<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place
     }
 }
 
-fn lines<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, points: &[(f64, f64)], alpha: f64, width: f64) -> Outcome<DB> {
+fn lines<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    place: &Place,
+    tone: Tone,
+    points: &[(f64, f64)],
+    alpha: f64,
+    width: f64,
+) -> Outcome<DB> {
     let colour = pen.colour(tone);
     place.line(points).iter().try_for_each(|part| pen.path(part, colour, alpha, width))
 }
 
-fn area<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, points: &[(f64, f64, f64)], alpha: f64) -> Outcome<DB> {
+fn area<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    place: &Place,
+    tone: Tone,
+    points: &[(f64, f64, f64)],
+    alpha: f64,
+) -> Outcome<DB> {
     let [mut corners, lower] = place.edges(points);
     corners.extend(lower.into_iter().rev());
     let colour = pen.colour(tone);
@@ -92,15 +105,18 @@ fn outline<DB: DrawingBackend>(
 }
 
 /// Lines rising to the right, inside the band only.
-fn hatch<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, points: &[(f64, f64, f64)]) -> Outcome<DB> {
+fn hatch<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    place: &Place,
+    tone: Tone,
+    points: &[(f64, f64, f64)],
+) -> Outcome<DB> {
     let [upper, lower] = place.edges(points);
     let (Some(first), Some(last)) = (upper.first(), upper.last()) else { return Ok(()) };
     let (left, right) = (first.0, last.0);
     let rect = place.rect;
     let colour = pen.colour(tone);
-    let inside = |x: f64, y: f64| {
-        y > height_at(&upper, x).max(rect.top) && y < height_at(&lower, x).min(rect.bottom)
-    };
+    let inside = |x: f64, y: f64| y > height_at(&upper, x).max(rect.top) && y < height_at(&lower, x).min(rect.bottom);
     // Each line is x + y = sum; the sums are fixed, so that neighbouring bands share one pattern.
     let mut sum = libm::ceil((left + rect.top) / HATCH) * HATCH;
     while sum < right + rect.bottom {
@@ -138,7 +154,13 @@ fn height_at(line: &[(f64, f64)], x: f64) -> f64 {
 }
 
 /// Estimates at visits, each with its interval if asked for.
-fn dots<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, beside: Option<f64>, points: &[(f64, f64, f64, f64)]) -> Outcome<DB> {
+fn dots<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    place: &Place,
+    tone: Tone,
+    beside: Option<f64>,
+    points: &[(f64, f64, f64, f64)],
+) -> Outcome<DB> {
     let colour = pen.colour(tone);
     let shift = 2.0 * DOT * beside.unwrap_or(0.0);
     let at = |time: f64, value: f64| {
@@ -161,7 +183,13 @@ fn dots<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, be
 }
 
 /// A line that keeps its value until the next point.
-fn steps<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place, tone: Tone, dash: Dash, points: &[(f64, f64)]) -> Outcome<DB> {
+fn steps<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    place: &Place,
+    tone: Tone,
+    dash: Dash,
+    points: &[(f64, f64)],
+) -> Outcome<DB> {
     let mut path: Vec<(f64, f64)> = Vec::new();
     for &(time, value) in points {
         let at = place.at(time, value);

@@ -29,10 +29,15 @@ pub struct Surface<'a> {
 ///
 /// # Errors
 /// What the backend could not draw.
-pub fn draw<DB: DrawingBackend>(figure: &Figure, layout: &Layout, backend: &mut DB, surface: Surface<'_>) -> Outcome<DB> {
+pub fn draw<DB: DrawingBackend>(
+    figure: &Figure,
+    layout: &Layout,
+    backend: &mut DB,
+    surface: Surface<'_>,
+) -> Outcome<DB> {
     let mut palette = Palette::of(figure.view.surface());
-    palette.band *= figure.strength;
-    palette.trace *= figure.strength;
+    palette.band *= figure.strength.bands;
+    palette.trace *= figure.strength.traces;
     let mut pen = Pen { backend, surface, palette, groups: &figure.groups };
     let whole = Rect { left: 0.0, right: layout.width, top: 0.0, bottom: layout.height };
     pen.fill(whole, palette.paper, 1.0)?;
@@ -51,7 +56,13 @@ pub fn draw<DB: DrawingBackend>(figure: &Figure, layout: &Layout, backend: &mut 
     draw_time_axis(&mut pen, layout)
 }
 
-fn draw_plot<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, layout: &Layout, plot: &Plot, placed: &StripBox, rect: Rect) -> Outcome<DB> {
+fn draw_plot<DB: DrawingBackend>(
+    pen: &mut Pen<'_, DB>,
+    layout: &Layout,
+    plot: &Plot,
+    placed: &StripBox,
+    rect: Rect,
+) -> Outcome<DB> {
     let y = |value: f64| StripBox::y(rect, plot.scale, value);
     for tick in plot.ticks.iter().filter(|t| plot.scale.holds(t.value)) {
         pen.hair(rect.left, rect.right, y(tick.value), pen.palette.hair)?;

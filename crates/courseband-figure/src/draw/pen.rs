@@ -120,7 +120,14 @@ impl<DB: DrawingBackend> Pen<'_, DB> {
     }
 
     /// A line in one of the line styles.
-    pub(super) fn dashed(&mut self, points: &[(f64, f64)], dash: Dash, colour: Rgb, alpha: f64, width: f64) -> Outcome<DB> {
+    pub(super) fn dashed(
+        &mut self,
+        points: &[(f64, f64)],
+        dash: Dash,
+        colour: Rgb,
+        alpha: f64,
+        width: f64,
+    ) -> Outcome<DB> {
         let lengths: Vec<f64> = dash.lengths().iter().map(|l| l * width).collect();
         if lengths.is_empty() {
             return self.path(points, colour, alpha, width);
@@ -139,8 +146,22 @@ impl<DB: DrawingBackend> Pen<'_, DB> {
     }
 
     /// A line of text; `at` is its anchor, across, and its middle, down.
-    pub(super) fn write(&mut self, text: &str, at: (f64, f64), size: f64, bold: bool, colour: Rgb, anchor: Anchor) -> Outcome<DB> {
-        let style = Type { colour, size: size * self.surface.grid * self.surface.text, bold, anchor, family: self.surface.family };
+    pub(super) fn write(
+        &mut self,
+        text: &str,
+        at: (f64, f64),
+        size: f64,
+        bold: bool,
+        colour: Rgb,
+        anchor: Anchor,
+    ) -> Outcome<DB> {
+        let style = Type {
+            colour,
+            size: size * self.surface.grid * self.surface.text,
+            bold,
+            anchor,
+            family: self.surface.family,
+        };
         let at = self.at(at);
         self.backend.draw_text(text, &style, at)
     }
@@ -217,7 +238,12 @@ impl BackendTextStyle for Type<'_> {
     }
 
     /// Backends that write text by themselves never ask.
-    fn draw<E, D: FnMut(i32, i32, BackendColor) -> Result<(), E>>(&self, _: &str, _: BackendCoord, _: D) -> Result<Result<(), E>, Infallible> {
+    fn draw<E, D: FnMut(i32, i32, BackendColor) -> Result<(), E>>(
+        &self,
+        _: &str,
+        _: BackendCoord,
+        _: D,
+    ) -> Result<Result<(), E>, Infallible> {
         Ok(Ok(()))
     }
 }
@@ -230,6 +256,9 @@ mod tests {
     fn dashes_keep_their_length_around_corners() {
         let corner = [(0.0, 0.0), (3.0, 0.0), (3.0, 10.0)];
         let all = pieces(&corner, &[4.0, 2.0]);
-        assert_eq!(all, [vec![(0.0, 0.0), (3.0, 0.0), (3.0, 1.0)], vec![(3.0, 3.0), (3.0, 7.0)], vec![(3.0, 9.0), (3.0, 10.0)]]);
+        assert_eq!(
+            all,
+            [vec![(0.0, 0.0), (3.0, 0.0), (3.0, 1.0)], vec![(3.0, 3.0), (3.0, 7.0)], vec![(3.0, 9.0), (3.0, 10.0)]]
+        );
     }
 }

@@ -80,7 +80,13 @@ fn label_width(setter: &Setter<'_>, segment: &Segment) -> f64 {
 
 /// Line and left edge of each label, given its wished left edge and width; `None` for a quiet label
 /// that says nothing new and has no room on the first line.
-fn lines(wishes: &[(f64, f64)], quiet: &[bool], name_end: Option<f64>, [left, right]: [f64; 2], em: f64) -> Vec<Option<(usize, f64)>> {
+fn lines(
+    wishes: &[(f64, f64)],
+    quiet: &[bool],
+    name_end: Option<f64>,
+    [left, right]: [f64; 2],
+    em: f64,
+) -> Vec<Option<(usize, f64)>> {
     let pad = 1.1 * em;
     let mut ends: Vec<f64> = vec![name_end.unwrap_or(f64::NEG_INFINITY)];
     let mut said_quiet = false;
@@ -135,7 +141,8 @@ mod tests {
 
     #[test]
     fn a_second_undecided_label_gives_way() {
-        let places = lines(&[(40.0, 60.0), (60.0, 60.0), (80.0, 60.0)], &[true, false, true], None, [40.0, 300.0], 10.0);
+        let places =
+            lines(&[(40.0, 60.0), (60.0, 60.0), (80.0, 60.0)], &[true, false, true], None, [40.0, 300.0], 10.0);
         assert_eq!(places[2], None);
     }
 }

@@ -166,7 +166,14 @@ pub fn lay_out(figure: &Figure, measure: &dyn Measure) -> Layout {
         strips.push(placed);
     }
     let (ticks, word, bottom) = setter.time_axis(y);
-    Layout { width: setter.right + setter.edge, height: libm::ceil(bottom + setter.edge), x: setter.x, strips, ticks, word }
+    Layout {
+        width: setter.right + setter.edge,
+        height: libm::ceil(bottom + setter.edge),
+        x: setter.x,
+        strips,
+        ticks,
+        word,
+    }
 }
 
 /// What every strip is laid out with.
@@ -207,7 +214,14 @@ impl<'a> Setter<'a> {
     fn distance(&self, above: &Strip, below: &Strip) -> f64 {
         let both_rows = above.kind == StripKind::Row && below.kind == StripKind::Row && below.title.is_empty();
         let within_gaps = above.pair.is_some() && below.pair.is_some() && below.title.is_empty();
-        self.em * if both_rows { 0.55 } else if within_gaps { 1.1 } else { 1.9 }
+        self.em
+            * if both_rows {
+                0.55
+            } else if within_gaps {
+                1.1
+            } else {
+                1.9
+            }
     }
 
     fn strip(&self, strip: &Strip, top: f64) -> StripBox {
@@ -339,13 +353,15 @@ impl<'a> Setter<'a> {
             if x - half < after || (!is_last && x + half + 0.7 * self.em > last_start) {
                 continue;
             }
-            let text = Text { x, y, text: tick.label.clone(), size, bold: false, tone: Tone::Soft, anchor: Anchor::Middle };
+            let text =
+                Text { x, y, text: tick.label.clone(), size, bold: false, tone: Tone::Soft, anchor: Anchor::Middle };
             kept.push((x, text));
         }
         let word = &self.figure.time.word;
         let first = kept.first().map_or(self.x.left, |(x, t)| x - 0.5 * width(&t.text)) - 0.6 * self.em;
         let beside = first - width(word) >= self.edge;
-        let (x, word_y, anchor) = if beside { (first, y, Anchor::End) } else { (self.x.right, y + 1.3 * self.em, Anchor::End) };
+        let (x, word_y, anchor) =
+            if beside { (first, y, Anchor::End) } else { (self.x.right, y + 1.3 * self.em, Anchor::End) };
         let text = Text { x, y: word_y, text: word.clone(), size, bold: false, tone: Tone::Soft, anchor };
         (kept, text, word_y + 0.8 * self.em)
     }

@@ -38,7 +38,8 @@ mod tests {
     use super::spread;
 
     fn overlap(wishes: &[(f64, f64)], places: &[f64]) -> bool {
-        let mut boxes: Vec<(f64, f64)> = wishes.iter().zip(places).map(|(w, p)| (p - 0.5 * w.1, p + 0.5 * w.1)).collect();
+        let mut boxes: Vec<(f64, f64)> =
+            wishes.iter().zip(places).map(|(w, p)| (p - 0.5 * w.1, p + 0.5 * w.1)).collect();
         boxes.sort_by(|a, b| a.0.total_cmp(&b.0));
         boxes.windows(2).any(|w| w[1].0 < w[0].1 - 1e-9)
     }

@@ -35,7 +35,10 @@ fn assert_clear(layout: &Layout, what: &str) {
         assert!(p.top >= -0.5 && p.bottom <= layout.height + 0.5, "{what}: \"{}\" is cut off: {p:?}", a.text);
         for b in &texts[k + 1..] {
             let q = frame(b);
-            let apart = p.right <= q.left + 0.1 || q.right <= p.left + 0.1 || p.bottom <= q.top + 0.1 || q.bottom <= p.top + 0.1;
+            let apart = p.right <= q.left + 0.1
+                || q.right <= p.left + 0.1
+                || p.bottom <= q.top + 0.1
+                || q.bottom <= p.top + 0.1;
             assert!(apart, "{what}: \"{}\" {p:?} and \"{}\" {q:?}", a.text, b.text);
         }
     }
@@ -69,7 +72,9 @@ fn many_short_stretches_keep_their_labels_apart() {
     let mut source = source(3);
     for gap in &mut source.differences {
         let run = gap.stretches[0];
-        gap.stretches = (0..7).map(|k| crate::source::Run { start: 3.0 * f64::from(k), end: 3.0 * f64::from(k) + 1.5, ..run }).collect();
+        gap.stretches = (0..7)
+            .map(|k| crate::source::Run { start: 3.0 * f64::from(k), end: 3.0 * f64::from(k) + 1.5, ..run })
+            .collect();
         gap.beyond = vec![];
     }
     for width in [360.0, 860.0] {

@@ -18,7 +18,8 @@ pub(crate) struct Traces {
 impl Traces {
     pub(crate) fn new(observations: &Observations) -> Self {
         let groups = kept_groups(observations);
-        let mut traces = Traces { time: observations.time.clone(), response: observations.response.clone(), ..Self::default() };
+        let mut traces =
+            Traces { time: observations.time.clone(), response: observations.response.clone(), ..Self::default() };
         let mut start = 0;
         for rows in observations.subject.chunk_by(|a, b| a == b) {
             let subject = &observations.subjects[rows[0] as usize];
