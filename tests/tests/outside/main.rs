@@ -21,8 +21,9 @@ struct Allowed {
     critical: f64,
 }
 
-/// What a full-dimension smooth must hold against dense matrices.
-const DENSE: Allowed = Allowed { log_reml: 0.002, in_se: 0.02, relative: 0.01, critical: 0.01 };
+/// A tenth of what would be good enough (log-REML 0.002, curves 0.02 SE, the rest 1 %), since all of it is reached.
+/// The critical value of a band comes from random directions: three root mean square errors (30 seeds, three pairs).
+const ALLOWED: Allowed = Allowed { log_reml: 1e-4, in_se: 0.002, relative: 1e-3, critical: 0.015 };
 
 impl Allowed {
     fn at(&self, e: &Expected, got: &Got) -> f64 {
@@ -61,21 +62,22 @@ fn check(file: &str, source: &str, allowed: &Allowed, least: usize) {
 
 #[test]
 fn published_values() {
-    check("published.csv", "", &DENSE, 13);
+    check("published.csv", "", &ALLOWED, 13);
 }
 
 #[test]
 fn straight_lines_against_statsmodels() {
-    check("mixed.csv", "statsmodels 0.15.0, MixedLM", &DENSE, 110);
+    check("mixed.csv", "statsmodels 0.15.0, MixedLM", &ALLOWED, 110);
 }
 
 #[test]
 fn mixed_models_against_second_computations() {
-    let allowed = Allowed { log_reml: 1e-4, in_se: 0.002, relative: 1e-3, critical: 0.008 };
+    // Here the critical values are those of one pair at five visits, where the directions serve better.
+    let allowed = Allowed { critical: 0.008, ..ALLOWED };
     check("checked.csv", "reference/README.md, ", &allowed, 2000);
 }
 
 #[test]
 fn curves_against_dense_matrices() {
-    check("dense.csv", "numpy 2.4.6 and scipy 1.17.1, reference/dense.py", &DENSE, 1000);
+    check("dense.csv", "numpy 2.4.6 and scipy 1.17.1, reference/dense.py", &ALLOWED, 1000);
 }
