@@ -5,6 +5,8 @@
 # names a Python that has them. What changed is then shown by `git diff --stat`.
 set -eu
 cd "$(dirname "$0")"
+# One thread: sums of matrices are then taken in one order, and the last digits stay.
+export OMP_NUM_THREADS=1 OPENBLAS_NUM_THREADS=1
 engine=../../crates/courseband-engine/tests/data
 python=${COURSEBAND_PYTHON:-}
 if [ -z "$python" ]; then
