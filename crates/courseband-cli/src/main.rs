@@ -46,7 +46,8 @@ fn act(arguments: &[String]) -> Result<(), String> {
         Task::Find(ask) => {
             let (table, plan) = inputs(&ask)?;
             let findings = run(&table, &plan).map_err(in_words)?;
-            let mut text = serde_json::to_vec_pretty(&findings).map_err(|error| format!("The findings cannot be written: {error}."))?;
+            let mut text = serde_json::to_vec_pretty(&findings)
+                .map_err(|error| format!("The findings cannot be written: {error}."))?;
             text.push(b'\n');
             put(ask.out.as_deref(), &text)
         }
@@ -62,7 +63,8 @@ fn inputs(ask: &Ask) -> Result<(Vec<u8>, Plan), String> {
         None => Plan::default(),
         Some(path) => {
             let bytes = get(path)?;
-            let text = String::from_utf8(bytes).map_err(|_| format!("{path}: the plan is not UTF-8 text. Save it as UTF-8."))?;
+            let text = String::from_utf8(bytes)
+                .map_err(|_| format!("{path}: the plan is not UTF-8 text. Save it as UTF-8."))?;
             Plan::from_json(text.trim_start_matches('\u{feff}')).map_err(in_words)?
         }
     };

@@ -102,7 +102,10 @@ fn findings_have_the_keys_of_the_contract() {
 #[test]
 fn plug_in_gives_one_critical_value_for_all_pairs() {
     let three = table().replace("s5,", "s5,").replace("s4,0,a", "s4,0,c").replace(",a,", ",a,");
-    let three: String = three.lines().map(|l| if l.starts_with("s4,") { l.replace(",a,", ",c,") + "\n" } else { format!("{l}\n") }).collect();
+    let three: String = three
+        .lines()
+        .map(|l| if l.starts_with("s4,") { l.replace(",a,", ",c,") + "\n" } else { format!("{l}\n") })
+        .collect();
     let f = found(&three, json!({ "comparisons": { "small_sample": "none" }, "subjects": "none" }));
     let criticals: Vec<&Value> = f["differences"].as_array().unwrap().iter().map(|d| &d["critical"]).collect();
     assert_eq!(criticals.len(), 3);

@@ -17,7 +17,6 @@
 //! as infinite. Refit `k` depends on the seed and `k` alone, so that work can be
 //! split over workers and continued, with the same digits.
 
-use crate::spectral::symmetric_eigen;
 use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::params::Parameter;
@@ -25,6 +24,7 @@ use crate::posterior::{Contrast, contrast_value, draw_coefficients};
 use crate::refit::Refitter;
 use crate::simulate::simulate_responses;
 use crate::special::Rng;
+use crate::spectral::symmetric_eigen;
 use nalgebra::{DMatrix, DVector};
 
 /// Steps of the chain before the first draw is kept, and between draws.
@@ -121,7 +121,13 @@ fn chain(fit: &Fit, seed: u64) -> Option<Vec<Vec<f64>>> {
         }
         if round < BURN_IN && round % 50 == 49 {
             let rate = f64::from(accepted) / 50.0;
-            steps *= if rate < 0.15 { 0.6 } else if rate > 0.4 { 1.5 } else { 1.0 };
+            steps *= if rate < 0.15 {
+                0.6
+            } else if rate > 0.4 {
+                1.5
+            } else {
+                1.0
+            };
             accepted = 0;
         }
         if round >= BURN_IN && (round - BURN_IN) % THIN == THIN - 1 {

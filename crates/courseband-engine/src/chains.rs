@@ -108,7 +108,11 @@ fn group_gram(design: &Design, g: usize, links: &[Link], unit: f64) -> DMatrix<f
     }
     for (step, link) in design.steps[g].iter().zip(links) {
         if link.b != 0.0 {
-            add(&table[step.from * k..(step.from + 1) * k], &table[step.to * k..(step.to + 1) * k], -step.count * link.b);
+            add(
+                &table[step.from * k..(step.from + 1) * k],
+                &table[step.to * k..(step.to + 1) * k],
+                -step.count * link.b,
+            );
         }
     }
     DMatrix::from_fn(k, k, |i, j| upper[i.min(j) * k + i.max(j)])

@@ -198,10 +198,8 @@ impl Pass<'_> {
     ) {
         let groups = factors.len();
         // Derivative for F'V^-1 F of each group.
-        let adjoints: Vec<DMatrix<f64>> = solved
-            .iter()
-            .map(|s| s.factor.inverse() + &s.coefficients * s.coefficients.transpose())
-            .collect();
+        let adjoints: Vec<DMatrix<f64>> =
+            solved.iter().map(|s| s.factor.inverse() + &s.coefficients * s.coefficients.transpose()).collect();
         for g in 0..groups {
             self.group_backward(g, &adjoints[g], &fits[g], &solved[g], derivatives, gradient);
         }

@@ -373,7 +373,8 @@ fn finish(design: Design, model: &Model, layout: Layout, found: Found) -> Result
     if !definite {
         remarks.push(Remark::FlatDirection);
     }
-    let verdict = if remarks.iter().any(|r| *r != Remark::LevelOrSerial) { Verdict::Boundary } else { Verdict::Converged };
+    let verdict =
+        if remarks.iter().any(|r| *r != Remark::LevelOrSerial) { Verdict::Boundary } else { Verdict::Converged };
     Ok(Fit {
         model: *model,
         design,

@@ -41,8 +41,10 @@ impl Fit {
                         contrasts.iter().map(|c| posterior.estimate(c).mean).collect()
                     })
                     .unwrap_or_default();
-                let moves = values.iter().zip(&full).map(|(v, e)| if e.se > 0.0 { (v - e.mean).abs() / e.se } else { 0.0 });
-                let (at, largest) = moves.enumerate().fold((0, 0.0), |best, (k, m)| if m > best.1 { (k, m) } else { best });
+                let moves =
+                    values.iter().zip(&full).map(|(v, e)| if e.se > 0.0 { (v - e.mean).abs() / e.se } else { 0.0 });
+                let (at, largest) =
+                    moves.enumerate().fold((0, 0.0), |best, (k, m)| if m > best.1 { (k, m) } else { best });
                 Influence { subject, values, largest, at }
             })
             .collect()
@@ -83,7 +85,8 @@ mod tests {
             let level = 0.8 * rng.normal();
             let times: Vec<f64> = (0..7).map(f64::from).filter(|t| *t == 0.0 || rng.uniform() < 0.85).collect();
             let off = if k == 5 { 6.0 } else { 0.0 };
-            let responses = times.iter().map(|t| libm::sin(t / 2.0) + level + off * t / 6.0 + 0.4 * rng.normal()).collect();
+            let responses =
+                times.iter().map(|t| libm::sin(t / 2.0) + level + off * t / 6.0 + 0.4 * rng.normal()).collect();
             subjects.push(SubjectRows { group: k % 2, times, responses, ..SubjectRows::default() });
         }
         Data { groups: 2, subjects }

@@ -203,7 +203,12 @@ pub(crate) struct Polished {
 }
 
 /// Newton steps to the optimum. `None` where the Hessian cannot be computed.
-pub(crate) fn newton(objective: &mut dyn Objective, bounds: &Bounds, mut point: Point, most: usize) -> Option<Polished> {
+pub(crate) fn newton(
+    objective: &mut dyn Objective,
+    bounds: &Bounds,
+    mut point: Point,
+    most: usize,
+) -> Option<Polished> {
     let mut round = 0;
     loop {
         let free = bounds.free(&point);

@@ -14,10 +14,10 @@
 //! Parameters at a bound take no part. `W` is kept finite: no log-parameter is
 //! taken to be less certain than a standard deviation of 4.
 
-use crate::spectral::symmetric_eigen;
 use crate::criterion::{Criterion, Solved};
 use crate::fit::Fit;
 use crate::special::DirectionMaxima;
+use crate::spectral::symmetric_eigen;
 use nalgebra::{DMatrix, DVector};
 
 /// A linear function of the groups' curves.
@@ -257,10 +257,8 @@ impl Posterior<'_> {
     #[must_use]
     pub fn joint(&self, contrasts: &[Contrast]) -> Joint {
         let scale = self.fit.design.units.response_scale;
-        let rows: Vec<Vec<f64>> = contrasts
-            .iter()
-            .map(|c| self.factor_row(c).into_iter().map(|x| x * scale).collect())
-            .collect();
+        let rows: Vec<Vec<f64>> =
+            contrasts.iter().map(|c| self.factor_row(c).into_iter().map(|x| x * scale).collect()).collect();
         let means = contrasts.iter().map(|c| self.estimate(c).mean).collect();
         let (flat, rank) = reduce_rank(&rows);
         Joint { means, flat, rank }
@@ -301,9 +299,7 @@ impl Correction {
 
 /// Value of a contrast for given coefficients per group, internal unit, centre left out.
 pub(crate) fn contrast_value(contrast: &Contrast, coefficients: &[DMatrix<f64>]) -> f64 {
-    (contrast.parts.iter())
-        .map(|(g, w)| w.iter().zip(coefficients[*g].iter()).map(|(w, b)| w * b).sum::<f64>())
-        .sum()
+    (contrast.parts.iter()).map(|(g, w)| w.iter().zip(coefficients[*g].iter()).map(|(w, b)| w * b).sum::<f64>()).sum()
 }
 
 /// Coefficients drawn from their posterior given the variance parameters, K x 1 per group.

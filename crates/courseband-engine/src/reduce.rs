@@ -217,7 +217,11 @@ pub(crate) struct Products {
 ///
 /// `slopes`: which derivatives (0: `ln rate`, 1: `logit nugget`). `None` where the
 /// error correlation of some subject is singular.
-pub(crate) fn reduce(design: &Design, shape: Option<ErrorShape>, slopes: &[usize]) -> Option<(Products, Vec<Products>)> {
+pub(crate) fn reduce(
+    design: &Design,
+    shape: Option<ErrorShape>,
+    slopes: &[usize],
+) -> Option<(Products, Vec<Products>)> {
     if shape.is_none_or(|shape| shape.nugget == 0.0) {
         return reduce_chains(design, shape.map(|shape| shape.rate), !slopes.is_empty());
     }

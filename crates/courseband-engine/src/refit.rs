@@ -1,10 +1,10 @@
 //! A quick refit of a simulated table, from a start that is known to be near.
 
-use crate::spectral::symmetric_eigen;
 use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::optimise::{Bounds, hessian, newton, plain_inverse, quasi_newton, start};
 use crate::reduce::Design;
+use crate::spectral::symmetric_eigen;
 use nalgebra::DMatrix;
 
 /// What all refits of one fit share.
@@ -45,7 +45,15 @@ impl Refitter {
         }
         let curvature = hessian(&mut criterion, &point.theta, &free)?;
         let solved = criterion.evaluate(&point.theta, false)?.solved;
-        Some(Fit { design: design.clone(), solved, theta: point.theta, value: point.value, free, hessian: curvature, ..self.pattern.clone() })
+        Some(Fit {
+            design: design.clone(),
+            solved,
+            theta: point.theta,
+            value: point.value,
+            free,
+            hessian: curvature,
+            ..self.pattern.clone()
+        })
     }
 
     /// The refit followed to the last digits, without what inference needs beyond the curves.

@@ -112,7 +112,9 @@ mod tests {
             subjects.push(SubjectRows { group: k % 2, times, responses, ..SubjectRows::default() });
         }
         let data = Data { groups: 2, subjects };
-        let fitted = fit(&data, &Model { serial: Serial::Ar1, subjects: SubjectEffects::Intercept, ..Model::default() }).unwrap();
+        let fitted =
+            fit(&data, &Model { serial: Serial::Ar1, subjects: SubjectEffects::Intercept, ..Model::default() })
+                .unwrap();
         let all = fitted.residuals();
         assert_eq!(all.len(), 480);
         let n = all.len() as f64;

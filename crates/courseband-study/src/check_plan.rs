@@ -15,7 +15,9 @@ impl Plan {
     /// Names the unknown key or the value that does not fit, with its line and column.
     pub fn from_json(text: &str) -> Result<Plan, Refusal> {
         let plan: Plan = serde_json::from_str(text).map_err(|error| {
-            Refusal::plan(format!("The plan cannot be read: {error}. Correct it there; keys left out take their defaults."))
+            Refusal::plan(format!(
+                "The plan cannot be read: {error}. Correct it there; keys left out take their defaults."
+            ))
         })?;
         plan.check()?;
         Ok(plan)
@@ -41,7 +43,10 @@ impl Plan {
                 ));
             }
             if c.margin >= 100.0 {
-                return Err(Refusal::plan(format!("comparisons.margin is {} percent: give a number below 100.", c.margin)));
+                return Err(Refusal::plan(format!(
+                    "comparisons.margin is {} percent: give a number below 100.",
+                    c.margin
+                )));
             }
         }
         if c.pairs == Pairs::AgainstControl && c.control.is_none() {
@@ -54,10 +59,15 @@ impl Plan {
             ));
         }
         if c.refits < 99 || c.refits > 100_000 {
-            return Err(Refusal::plan(format!("comparisons.refits is {}: give a whole number from 99 to 100000.", c.refits)));
+            return Err(Refusal::plan(format!(
+                "comparisons.refits is {}: give a whole number from 99 to 100000.",
+                c.refits
+            )));
         }
         if c.landmark.is_some_and(|t| !t.is_finite()) {
-            return Err(Refusal::plan("comparisons.landmark is not a finite number. Give a time inside the follow-up, or null."));
+            return Err(Refusal::plan(
+                "comparisons.landmark is not a finite number. Give a time inside the follow-up, or null.",
+            ));
         }
         self.check_grid()?;
         self.check_reach()
@@ -90,7 +100,10 @@ impl Plan {
             Err(Refusal::plan(format!("{what} is not available in this version. Use {instead}.")))
         };
         if self.response.distribution != Distribution::Normal {
-            return missing("A response.distribution other than normal", "\"normal\", on the log scale where values are skewed");
+            return missing(
+                "A response.distribution other than normal",
+                "\"normal\", on the log scale where values are skewed",
+            );
         }
         if self.curves.basis != Basis::Cubic {
             return missing("A curves.basis other than cubic", "\"cubic\"");

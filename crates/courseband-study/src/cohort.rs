@@ -221,11 +221,6 @@ pub(crate) fn columns_used(reading: &Reading) -> ColumnsUsed {
 
 pub(crate) fn problems(reading: &Reading) -> Vec<Problem> {
     (reading.problems.iter())
-        .map(|p| Problem {
-            row: p.row,
-            column: p.column.clone(),
-            value: p.value.clone(),
-            message: p.message.clone(),
-        })
+        .map(|p| Problem { row: p.row, column: p.column.clone(), value: p.value.clone(), message: p.message.clone() })
         .collect()
 }

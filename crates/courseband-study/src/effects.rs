@@ -98,7 +98,8 @@ impl Evaluation<'_> {
             })
             .filter(|(_, e)| e.se > 0.0)
             .collect();
-        let most = members.iter().map(|(_, e)| *e).max_by(|a, b| (a.mean.abs() / a.se).total_cmp(&(b.mean.abs() / b.se)))?;
+        let most =
+            members.iter().map(|(_, e)| *e).max_by(|a, b| (a.mean.abs() / a.se).total_cmp(&(b.mean.abs() / b.se)))?;
         let contrasts: Vec<Contrast> = members.into_iter().map(|(c, _)| c).collect();
         let maxima = self.posterior.family(&contrasts, SHAPE_DIRECTIONS, self.plan.seed);
         Some(maxima.tail(most.mean.abs() / most.se, Some(most.df).filter(|df| df.is_finite())).clamp(0.0, 1.0))
@@ -159,7 +160,12 @@ impl Evaluation<'_> {
     }
 
     /// Shares of posterior draws that are beyond from the first time on, and that are not beyond at the end.
-    fn onset_chances(&self, points: &[f64], gap: &impl Fn(f64) -> Contrast, beyond: &impl Fn(f64) -> f64) -> (f64, f64) {
+    fn onset_chances(
+        &self,
+        points: &[f64],
+        gap: &impl Fn(f64) -> Contrast,
+        beyond: &impl Fn(f64) -> f64,
+    ) -> (f64, f64) {
         let (mut whole, mut never) = (0, 0);
         self.draw(points, gap, |values| {
             let last = values.len() - 1;

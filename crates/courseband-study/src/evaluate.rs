@@ -52,7 +52,12 @@ impl Family {
 }
 
 impl<'a> Evaluation<'a> {
-    pub(crate) fn new(plan: &'a Plan, cohort: &'a Cohort, fit: &'a Fit, calibrated: Option<CalibratedValues<'a>>) -> Self {
+    pub(crate) fn new(
+        plan: &'a Plan,
+        cohort: &'a Cohort,
+        fit: &'a Fit,
+        calibrated: Option<CalibratedValues<'a>>,
+    ) -> Self {
         let posterior = match plan.comparisons.small_sample {
             SmallSample::None => fit.plug_in(),
             _ => fit.corrected(),
@@ -211,8 +216,7 @@ impl<'a> Evaluation<'a> {
         let gap = |t: f64| self.fit.gap(from, to, t);
         let range = support.unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
         let estimates = self.estimates(gap, &self.grid, range);
-        let visits: Vec<f64> =
-            self.cohort.visits.iter().copied().filter(|&t| t >= range[0] && t <= range[1]).collect();
+        let visits: Vec<f64> = self.cohort.visits.iter().copied().filter(|&t| t >= range[0] && t <= range[1]).collect();
         let at_visits = self.estimates(gap, &visits, range);
         let margin = self.margin();
         let limits_at = |t: f64| {

@@ -24,6 +24,6 @@ pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
 pub use plan::*;
 pub use refusal::Refusal;
-pub use size::{CourseMeans, Counts, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
+pub use size::{Counts, CourseMeans, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
 pub use study::{Calibrator, Refits, Study, run};
 pub use usual::*;

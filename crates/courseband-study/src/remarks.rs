@@ -49,20 +49,30 @@ pub(crate) fn in_words(remark: Remark, groups: &[GroupInfo], plan: &Plan) -> Str
 /// Why nothing was fitted, and what to try.
 pub(crate) fn failure(error: &FitError, groups: &[GroupInfo]) -> String {
     match error {
-        FitError::EmptyGroup(g) => format!("Group {} has no usable rows. Exclude it or correct its values.", groups[*g].name),
+        FitError::EmptyGroup(g) => {
+            format!("Group {} has no usable rows. Exclude it or correct its values.", groups[*g].name)
+        }
         FitError::NotFinite => "A time or response is too large to compute with. Correct it or change its unit.".into(),
-        FitError::NoVariation => "The responses do not vary around the courses, so no standard error can be estimated. \
+        FitError::NoVariation => {
+            "The responses do not vary around the courses, so no standard error can be estimated. \
                                   Check that the right column is the response, or choose a simpler model."
-            .into(),
+                .into()
+        }
         FitError::TooFewRows { rows, needed } => format!(
             "There are {rows} rows, but this model needs at least {needed}. Choose straight courses or add data."
         ),
-        FitError::TiedTimes => "One subject has several rows at one time. Add measurement error, or exclude rows.".into(),
-        FitError::NoStart => "The model cannot be computed on these data. Try a simpler model: subjects with a level only, \
+        FitError::TiedTimes => {
+            "One subject has several rows at one time. Add measurement error, or exclude rows.".into()
+        }
+        FitError::NoStart => {
+            "The model cannot be computed on these data. Try a simpler model: subjects with a level only, \
                               independent visits, straight courses."
-            .into(),
-        FitError::NotConverged { .. } => "The fit found no optimum, so nothing is shown. Try a simpler model: subjects with a \
+                .into()
+        }
+        FitError::NotConverged { .. } => {
+            "The fit found no optimum, so nothing is shown. Try a simpler model: subjects with a \
                                           level only, independent visits, or one spread for all groups."
-            .into(),
+                .into()
+        }
     }
 }

@@ -180,7 +180,10 @@ impl Speaker<'_> {
                 self.bare(value)
             )
         } else {
-            format!("Best estimate of the {word} the gap passes {margin} for good: {} ({low} to {high}{around}).", self.bare(value))
+            format!(
+                "Best estimate of the {word} the gap passes {margin} for good: {} ({low} to {high}{around}).",
+                self.bare(value)
+            )
         })
     }
 

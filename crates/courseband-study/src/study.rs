@@ -217,7 +217,9 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
 fn calibrated_values<'a>(refits: &'a Refits, plan: &Plan, notes: &mut Vec<Note>) -> Option<CalibratedValues<'a>> {
     let level = plan.comparisons.level;
     let failed = refits.differences.iter().chain(&refits.curves).filter(|x| x.is_infinite()).count();
-    let values = |kept: &[f64]| if kept.is_empty() { (f64::INFINITY, [f64::INFINITY; 2]) } else { calibrated_quantile(kept, level) };
+    let values = |kept: &[f64]| {
+        if kept.is_empty() { (f64::INFINITY, [f64::INFINITY; 2]) } else { calibrated_quantile(kept, level) }
+    };
     let (curves, _) = values(&refits.curves);
     let (differences, reach) = values(&refits.differences);
     let count = refits.curves.len();
@@ -276,7 +278,11 @@ fn plan_notes(plan: &Plan, reading: &Reading, cohort: &Cohort) -> Vec<Note> {
     let mut notes = Vec::new();
     let mut say = |about: &str, message: String| notes.push(Note { about: about.into(), message });
     if plan.errors.nugget && plan.errors.serial == Serial::None {
-        say("fit", "Measurement error is set without serial correlation, where it has no part of its own: it is ignored.".into());
+        say(
+            "fit",
+            "Measurement error is set without serial correlation, where it has no part of its own: it is ignored."
+                .into(),
+        );
     }
     if let Some(cluster) = &reading.columns.cluster {
         say(

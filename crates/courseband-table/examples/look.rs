@@ -24,8 +24,16 @@ fn look(bytes: &[u8]) -> Result<(), TableError> {
     let reading = table.observe(&Request::default())?;
     println!("read in {read:?}, observed in {:?}", start.elapsed() - read);
     let observations = &reading.observations;
-    println!("{:?} {:?} rows {} subjects {} groups {:?} clusters {} time in {}", reading.layout, reading.columns,
-        observations.time.len(), observations.subjects.len(), observations.groups, observations.clusters.len(), observations.time_word);
+    println!(
+        "{:?} {:?} rows {} subjects {} groups {:?} clusters {} time in {}",
+        reading.layout,
+        reading.columns,
+        observations.time.len(),
+        observations.subjects.len(),
+        observations.groups,
+        observations.clusters.len(),
+        observations.time_word
+    );
     for reason in &reading.reasons {
         println!("  {}: {}", reason.role, reason.reason);
     }

@@ -25,7 +25,9 @@ pub(crate) fn check(
     for &(start, end) in &runs {
         lister.duplicates(start, end);
         if end - start == 1 {
-            lister.add(ProblemKind::OneObservation, start, Role::Subject, || "This subject has one observation only. It is kept.".to_string());
+            lister.add(ProblemKind::OneObservation, start, Role::Subject, || {
+                "This subject has one observation only. It is kept.".to_string()
+            });
         }
     }
     for far in course::far_values(observations, &runs) {
@@ -124,7 +126,12 @@ fn runs(values: &[u32]) -> Vec<(usize, usize)> {
 fn constant_start(observations: &Observations) -> Option<String> {
     let first = observations.time.iter().copied().fold(f64::INFINITY, f64::min);
     let at_first = |wanted: bool| {
-        observations.time.iter().zip(&observations.response).filter(move |(time, _)| (**time == first) == wanted).map(|(_, value)| *value)
+        observations
+            .time
+            .iter()
+            .zip(&observations.response)
+            .filter(move |(time, _)| (**time == first) == wanted)
+            .map(|(_, value)| *value)
     };
     let value = at_first(true).next()?;
     let count = at_first(true).count();

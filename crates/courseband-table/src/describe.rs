@@ -34,7 +34,13 @@ pub fn describe(observations: &Observations) -> Vec<Description> {
     });
     order
         .chunk_by(|&a, &b| group(a) == group(b) && time[a as usize] == time[b as usize])
-        .map(|cell| one(group(cell[0]), time[cell[0] as usize], &cell.iter().map(|&at| response[at as usize]).collect::<Vec<_>>()))
+        .map(|cell| {
+            one(
+                group(cell[0]),
+                time[cell[0] as usize],
+                &cell.iter().map(|&at| response[at as usize]).collect::<Vec<_>>(),
+            )
+        })
         .collect()
 }
 

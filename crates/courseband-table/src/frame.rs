@@ -58,7 +58,8 @@ pub(crate) fn find_frame(sheet: &Sheet) -> Frame {
 }
 
 fn sort_body(sheet: &Sheet, start: usize, frame: &mut Frame) {
-    let records: Vec<u32> = (start as u32..sheet.records() as u32).filter(|&record| !is_blank(sheet, record as usize)).collect();
+    let records: Vec<u32> =
+        (start as u32..sheet.records() as u32).filter(|&record| !is_blank(sheet, record as usize)).collect();
     let signs: Vec<Summary> = records.iter().map(|&record| summary_sign(sheet, record as usize)).collect();
     for (&record, summarises) in records.iter().zip(summarises(&signs)) {
         if summarises {
@@ -100,7 +101,8 @@ pub(crate) fn filled(sheet: &Sheet, record: usize) -> usize {
 
 /// The first record that is filled like the rows of the table.
 fn header_record(sheet: &Sheet) -> usize {
-    let mut counts: Vec<usize> = (0..sheet.records().min(500)).map(|record| filled(sheet, record)).filter(|&n| n > 0).collect();
+    let mut counts: Vec<usize> =
+        (0..sheet.records().min(500)).map(|record| filled(sheet, record)).filter(|&n| n > 0).collect();
     counts.sort_unstable();
     let typical = counts.get(counts.len() / 2).copied().unwrap_or(1);
     let needed = if typical <= 1 { 1 } else { 2.max((typical * 3).div_ceil(5)) };
@@ -156,7 +158,9 @@ fn spans(sheet: &Sheet, record: usize) -> bool {
     distinct.sort_unstable();
     distinct.dedup();
     let columns = sheet.width().saturating_sub(1);
-    distinct.len() >= 2 && distinct.len() < columns && labels.iter().all(|label| read_time(label, Decimal::Point).is_none())
+    distinct.len() >= 2
+        && distinct.len() < columns
+        && labels.iter().all(|label| read_time(label, Decimal::Point).is_none())
 }
 
 /// A row of spanning labels, then a row of names, then rows that start with a time or number.
@@ -217,7 +221,8 @@ pub(crate) fn column_names(sheet: &Sheet, frame: &Frame) -> Names {
         None => Vec::new(),
     };
     let body = frame.body.iter().take(200).map(|&record| sheet.width_of(record as usize));
-    let (total, one_more) = body.fold((0, 0), |(total, more), width| (total + 1, more + usize::from(width == written.len() + 1)));
+    let (total, one_more) =
+        body.fold((0, 0), |(total, more), width| (total + 1, more + usize::from(width == written.len() + 1)));
     if frame.header.is_none() {
         written = vec![String::new(); sheet.width()];
     } else if total > 0 && one_more * 10 >= total * 9 && written.iter().all(|name| !name.is_empty()) {
@@ -240,7 +245,10 @@ fn trim_blank_end(sheet: &Sheet, frame: &Frame, written: &mut Vec<String>) {
 }
 
 fn unit_of(sheet: &Sheet, frame: &Frame, column: usize, name: &str) -> Option<String> {
-    let below = frame.units.map(|record| sheet.cell(record, column).trim().trim_matches(['(', ')', '[', ']'])).filter(|unit| !unit.is_empty());
+    let below = frame
+        .units
+        .map(|record| sheet.cell(record, column).trim().trim_matches(['(', ')', '[', ']']))
+        .filter(|unit| !unit.is_empty());
     below.or(split_unit(name).1).map(str::to_string)
 }
 

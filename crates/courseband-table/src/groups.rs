@@ -107,6 +107,7 @@ pub(crate) fn is_near(a: &str, b: &str) -> bool {
     let swapped = matches!((left_short, left_long), ([p, q], [r, s]) if p == s && q == r);
     let digits = left_short.iter().chain(left_long).any(char::is_ascii_digit);
     let edge = |c: Option<&char>| c.is_none_or(|c| !c.is_alphanumeric());
-    let alone = left_long.len() == 1 && edge(start.checked_sub(1).and_then(|at| long.get(at))) && edge(long.get(start + 1));
+    let alone =
+        left_long.len() == 1 && edge(start.checked_sub(1).and_then(|at| long.get(at))) && edge(long.get(start + 1));
     !digits && !alone && (swapped || (left_short.len() <= 1 && left_long.len() == 1))
 }

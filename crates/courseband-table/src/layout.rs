@@ -39,7 +39,9 @@ pub(crate) fn long_form<'a>(framed: Framed<'a>, request: &Request) -> LongTable<
 /// False where the request names a column that this wide reading would take apart.
 fn allows(wide: &LongTable<'_>, framed: Framed<'_>, request: &Request) -> bool {
     Role::ALL.iter().all(|&role| match request.column(role) {
-        ColumnRequest::Named(name) => wide.find(name).is_some() || !framed.names.names.contains(&name.trim().to_string()),
+        ColumnRequest::Named(name) => {
+            wide.find(name).is_some() || !framed.names.names.contains(&name.trim().to_string())
+        }
         _ => true,
     })
 }
@@ -130,7 +132,8 @@ impl<'a> Framed<'a> {
 
     fn summary_note(&self, summaries: &[usize]) -> Option<String> {
         let names: Vec<String> = summaries.iter().map(|&column| self.names.names[column].clone()).collect();
-        (!names.is_empty()).then(|| format!("{} of summaries kept out: {}.", counted(names.len(), "column"), listed(&names)))
+        (!names.is_empty())
+            .then(|| format!("{} of summaries kept out: {}.", counted(names.len(), "column"), listed(&names)))
     }
 }
 

@@ -27,10 +27,51 @@ pub(crate) enum NotNumber {
 
 /// Words for a missing response, lower case.
 const MISSING: [&str; 45] = [
-    "", "na", "n/a", "n.a.", "n.a", "n a", "#n/a", "#na", "nan", "null", "none", "nil", "missing", "miss", "mis", "-", "--",
-    "---", "–", "—", ".", "..", "...", "…", "?", "*", "died", "dead", "death", "lost", "lost to follow-up", "dropout",
-    "dropped out", "withdrawn", "culled", "euthanised", "euthanized", "sacrificed", "killed", "not done", "not measured",
-    "no data", "absent", "empty", "blank",
+    "",
+    "na",
+    "n/a",
+    "n.a.",
+    "n.a",
+    "n a",
+    "#n/a",
+    "#na",
+    "nan",
+    "null",
+    "none",
+    "nil",
+    "missing",
+    "miss",
+    "mis",
+    "-",
+    "--",
+    "---",
+    "–",
+    "—",
+    ".",
+    "..",
+    "...",
+    "…",
+    "?",
+    "*",
+    "died",
+    "dead",
+    "death",
+    "lost",
+    "lost to follow-up",
+    "dropout",
+    "dropped out",
+    "withdrawn",
+    "culled",
+    "euthanised",
+    "euthanized",
+    "sacrificed",
+    "killed",
+    "not done",
+    "not measured",
+    "no data",
+    "absent",
+    "empty",
+    "blank",
 ];
 
 /// Words for a missing group, subject or time, lower case. Shorter: `none` may be a group.
@@ -154,7 +195,8 @@ fn strict(cell: &str, decimal: Decimal) -> Option<f64> {
 
 /// Digits without their thousands marks. `no_marks`: the mark could be a decimal mark, so refuse it.
 fn without_groups(whole: &str, mark: char, no_marks: bool) -> Option<String> {
-    let is_mark = |c: char| c == mark && !no_marks || matches!(c, ' ' | '\u{a0}' | '\u{202f}' | '\u{2009}' | '\'' | '’');
+    let is_mark =
+        |c: char| c == mark && !no_marks || matches!(c, ' ' | '\u{a0}' | '\u{202f}' | '\u{2009}' | '\'' | '’');
     if whole.bytes().all(|byte| byte.is_ascii_digit()) {
         return Some(if whole.is_empty() { "0".to_string() } else { whole.to_string() });
     }

@@ -67,9 +67,10 @@ impl Observer<'_> {
             cluster: name(Role::Cluster),
             covariates: self.roles.covariates.iter().map(|&column| self.table.columns[column].name.clone()).collect(),
         };
-        let response_unit = self.roles.column(Role::Response).and_then(|column| {
-            self.table.columns[column].unit.clone().or_else(|| self.profiles[column].unit.clone())
-        });
+        let response_unit = self
+            .roles
+            .column(Role::Response)
+            .and_then(|column| self.table.columns[column].unit.clone().or_else(|| self.profiles[column].unit.clone()));
         let (problems, problem_counts) = self.problems.finish(&mut self.notes);
         Reading {
             observations,
@@ -115,7 +116,9 @@ impl Observer<'_> {
             let lines = self.request.exclusions.len();
             self.notes.push(match lines == self.excluded {
                 true => format!("Excluded on request: {}.", counted(lines, "row")),
-                false => format!("Excluded on request: {} with {}.", counted(lines, "row"), counted(self.excluded, "cell")),
+                false => {
+                    format!("Excluded on request: {} with {}.", counted(lines, "row"), counted(self.excluded, "cell"))
+                }
             });
         }
         match self.kept.is_empty() {
@@ -141,8 +144,9 @@ impl Observer<'_> {
             return Err(refuse("it holds no data (a header, title, unit or summary row)".to_string()));
         }
         let Some(column) = column else { return Ok((start..end).collect()) };
-        let rows: Vec<usize> =
-            (start..end).filter(|&row| self.table.sheet_names[self.table.places[row].column as usize] == column).collect();
+        let rows: Vec<usize> = (start..end)
+            .filter(|&row| self.table.sheet_names[self.table.places[row].column as usize] == column)
+            .collect();
         match rows.is_empty() {
             true => Err(refuse(format!("it has no measurement in column {}", quoted(column)))),
             false => Ok(rows),
@@ -159,12 +163,22 @@ impl Observer<'_> {
                 continue;
             }
             last = record;
-            let surplus = (width..sheet.width_of(record as usize)).find(|&at| !sheet.cell(record as usize, at).trim().is_empty());
+            let surplus =
+                (width..sheet.width_of(record as usize)).find(|&at| !sheet.cell(record as usize, at).trim().is_empty());
             if let Some(at) = surplus {
                 let value = sheet.cell(record as usize, at);
-                self.problems.add(ProblemKind::SurplusCells, sheet.line(record as usize), &format!("column {}", at + 1), value, || {
-                    format!("The header names {}; this cell is not read. Check whether the row has shifted.", counted(width, "column"))
-                });
+                self.problems.add(
+                    ProblemKind::SurplusCells,
+                    sheet.line(record as usize),
+                    &format!("column {}", at + 1),
+                    value,
+                    || {
+                        format!(
+                            "The header names {}; this cell is not read. Check whether the row has shifted.",
+                            counted(width, "column")
+                        )
+                    },
+                );
             }
         }
     }
@@ -201,7 +215,10 @@ impl Observer<'_> {
 
     fn times(&mut self) -> Result<Times, TableError> {
         let column = self.needed(Role::Time)?;
-        let cells = self.kept.iter().map(|&row| TimeCell { text: self.table.cell(row as usize, column), line: self.table.line(row as usize) });
+        let cells = self
+            .kept
+            .iter()
+            .map(|&row| TimeCell { text: self.table.cell(row as usize, column), line: self.table.line(row as usize) });
         let unit = self.table.columns[column].unit.as_deref().and_then(crate::time::Unit::from_word);
         let unit = unit.or_else(|| crate::names::time_unit(self.name(column)));
         let times = read_times(cells, self.name(column), self.profiles[column].decimal, unit, self.request.date_order)?;
@@ -217,7 +234,10 @@ impl Observer<'_> {
             let earliest = times.values.iter().copied().fold(f64::INFINITY, f64::min);
             times.values.iter_mut().for_each(|value| *value -= earliest);
             (times.are_dates, times.unit) = (true, Some(crate::time::Unit::Day));
-            self.notes.push(format!("Column {} holds a spreadsheet's day numbers: read as dates.", quoted(self.name(column))));
+            self.notes.push(format!(
+                "Column {} holds a spreadsheet's day numbers: read as dates.",
+                quoted(self.name(column))
+            ));
         }
         times
     }
@@ -313,7 +333,11 @@ impl Observer<'_> {
             ));
         }
         if let Some(unit) = &self.profiles[column].unit {
-            self.notes.push(format!("Cells of column {} carry the unit {}: read without it.", quoted(self.name(column)), quoted(unit)));
+            self.notes.push(format!(
+                "Cells of column {} carry the unit {}: read without it.",
+                quoted(self.name(column)),
+                quoted(unit)
+            ));
         }
     }
 }

@@ -15,11 +15,24 @@ pub(crate) struct Problems {
 
 impl Problems {
     /// Counts a problem and lists it while there are not too many of its kind.
-    pub(crate) fn add(&mut self, kind: ProblemKind, row: usize, column: &str, value: &str, message: impl FnOnce() -> String) {
+    pub(crate) fn add(
+        &mut self,
+        kind: ProblemKind,
+        row: usize,
+        column: &str,
+        value: &str,
+        message: impl FnOnce() -> String,
+    ) {
         let count = &mut self.counts[kind as usize];
         *count += 1;
         if *count <= LISTED_PER_KIND {
-            self.list.push(Problem { kind, row, column: column.to_string(), value: shortened(value), message: message() });
+            self.list.push(Problem {
+                kind,
+                row,
+                column: column.to_string(),
+                value: shortened(value),
+                message: message(),
+            });
         }
     }
 
@@ -29,7 +42,10 @@ impl Problems {
 
     /// Counts in words: `3 missing groups, 1 missing responses`.
     pub(crate) fn summary(&self) -> String {
-        let counted = KINDS.iter().filter(|&&kind| self.count(kind) > 0).map(|&kind| format!("{} {}", self.count(kind), kind.words()));
+        let counted = KINDS
+            .iter()
+            .filter(|&&kind| self.count(kind) > 0)
+            .map(|&kind| format!("{} {}", self.count(kind), kind.words()));
         counted.collect::<Vec<_>>().join(", ")
     }
 

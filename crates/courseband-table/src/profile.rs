@@ -60,10 +60,15 @@ pub(crate) fn profile_all(table: &LongTable<'_>) -> Vec<Profile> {
 #[derive(Debug, Clone, Copy, PartialEq)]
 enum Look {
     Missing,
-    Number { whole: bool },
+    Number {
+        whole: bool,
+    },
     WordedTime,
     /// A number with a unit, by index into the units seen; `time`: the unit is one of time.
-    Unit { index: usize, time: bool },
+    Unit {
+        index: usize,
+        time: bool,
+    },
     Text,
 }
 
@@ -107,7 +112,13 @@ fn look_at(cell: &str, units: &mut Vec<(String, usize)>) -> Look {
                 units.push((unit, 0));
                 units.len() - 1
             });
-            Look::Unit { index, time: matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..))) }
+            Look::Unit {
+                index,
+                time: matches!(
+                    read_time(cell, Decimal::Point),
+                    Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..))
+                ),
+            }
         }
         Err(_) if is_missing(cell) => Look::Missing,
         Err(_) if read_time(cell, Decimal::Point).is_some() => Look::WordedTime,

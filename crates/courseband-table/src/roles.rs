@@ -164,7 +164,11 @@ impl<'a> Finder<'a> {
 
     fn ask(&mut self, role: Role, rivals: &[usize]) {
         let names: Vec<String> = rivals.iter().map(|&column| self.name(column).to_string()).collect();
-        let text = format!("{} columns could be the {role}: {}. Which one is it?", capital_count(rivals.len()), listed(&names));
+        let text = format!(
+            "{} columns could be the {role}: {}. Which one is it?",
+            capital_count(rivals.len()),
+            listed(&names)
+        );
         self.roles.reasons[role as usize] = format!("Open: {} could be meant.", listed(&names));
         self.put(Question { topic: Topic::Column(role), text, choices: names, needs_answer: true });
     }

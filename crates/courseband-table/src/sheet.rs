@@ -55,11 +55,8 @@ pub fn read_bytes(bytes: &[u8]) -> Result<Sheet, TableError> {
 impl Sheet {
     fn fill(&mut self, text: &str, delimiter: u8) -> Result<(), TableError> {
         let bytes = text.as_bytes();
-        let mut reader = csv::ReaderBuilder::new()
-            .has_headers(false)
-            .flexible(true)
-            .delimiter(delimiter)
-            .from_reader(bytes);
+        let mut reader =
+            csv::ReaderBuilder::new().has_headers(false).flexible(true).delimiter(delimiter).from_reader(bytes);
         let mut record = csv::ByteRecord::new();
         let mut cells = Vec::with_capacity(bytes.len());
         // Start of the last record and whether one of its cells spans lines.
@@ -71,7 +68,9 @@ impl Sheet {
             let line = position.1 as usize + skipped;
             last = (position.0, line, record.as_slice().contains(&b'\n'));
             if record.len() > MAX_COLUMNS {
-                return Err(TableError::TooLarge { what: format!("row {line} has {} columns, the limit is {MAX_COLUMNS}", record.len()) });
+                return Err(TableError::TooLarge {
+                    what: format!("row {line} has {} columns, the limit is {MAX_COLUMNS}", record.len()),
+                });
             }
             for cell in record.iter() {
                 cells.extend_from_slice(cell);

@@ -41,7 +41,14 @@ pub(crate) fn tell_apart(ids: &Labels, groups: &Labels, times: &[f64]) -> Subjec
         }
         if last.0 != (id, group) {
             let slot = *known.entry((id, group)).or_insert_with(|| {
-                found.list.push(Subject { id, group, first_row: row, earliest: times[row], latest: times[row], rows: 0 });
+                found.list.push(Subject {
+                    id,
+                    group,
+                    first_row: row,
+                    earliest: times[row],
+                    latest: times[row],
+                    rows: 0,
+                });
                 found.list.len() as u32 - 1
             });
             last = ((id, group), slot);
@@ -67,7 +74,9 @@ impl Subjects {
         }
         self.restarts = only.iter().map(|(count, _)| *count > 1).collect();
         for (row, slot) in self.of_row.iter_mut().enumerate() {
-            if *slot == Labels::NONE && let (1, index) = only[ids.index[row] as usize] {
+            if *slot == Labels::NONE
+                && let (1, index) = only[ids.index[row] as usize]
+            {
                 *slot = index;
                 let subject = &mut self.list[index as usize];
                 subject.first_row = subject.first_row.min(row);

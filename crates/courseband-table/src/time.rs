@@ -176,9 +176,16 @@ fn unreadable(cell: &TimeCell<'_>, column: &str, decimal: Decimal) -> TableError
     let message = match number(cell.text, decimal) {
         Err(NotNumber::Infinite) => "is not a finite time. Correct it, or exclude the row.",
         _ if is_missing_label(cell.text) => "is no time: the time is missing. Fill it in, or exclude the row.",
-        _ => "is no time that can be read. Write a number, a day such as ‘day 7’ or a date such as 2024-03-05, or exclude the row.",
+        _ => {
+            "is no time that can be read. Write a number, a day such as ‘day 7’ or a date such as 2024-03-05, or exclude the row."
+        }
     };
-    TableError::Cell { row: cell.line, column: column.to_string(), value: cell.text.to_string(), message: message.to_string() }
+    TableError::Cell {
+        row: cell.line,
+        column: column.to_string(),
+        value: cell.text.to_string(),
+        message: message.to_string(),
+    }
 }
 
 fn mixed_with_dates<'a>(
@@ -223,7 +230,8 @@ fn read_dates<'a>(
             row: cell.line,
             column: column.to_string(),
             value: cell.text.to_string(),
-            message: "is no date if read like the other dates of this column. Correct it, or exclude the row.".to_string(),
+            message: "is no date if read like the other dates of this column. Correct it, or exclude the row."
+                .to_string(),
         })?;
         values.push(days);
     }
@@ -245,7 +253,9 @@ fn order_of<'a>(
     }
     let fits = |order: DateOrder| dates.iter().filter(|date| date.days(order).is_some()).count();
     let (day, month) = (fits(DateOrder::DayFirst), fits(DateOrder::MonthFirst));
-    let words = |order: &str| Some(format!("Dates in column {} are read {order} first: no other order fits.", crate::text::quoted(column)));
+    let words = |order: &str| {
+        Some(format!("Dates in column {} are read {order} first: no other order fits.", crate::text::quoted(column)))
+    };
     match day.cmp(&month) {
         std::cmp::Ordering::Greater => Ok((DateOrder::DayFirst, words("day"))),
         std::cmp::Ordering::Less => Ok((DateOrder::MonthFirst, words("month"))),
@@ -263,25 +273,35 @@ fn one_unit<'a>(
     column: &str,
     header_unit: Option<Unit>,
 ) -> Result<Times, TableError> {
-    let place = |index: usize| cells.clone().nth(index).map_or((0, String::new()), |cell| (cell.line, cell.text.to_string()));
+    let place =
+        |index: usize| cells.clone().nth(index).map_or((0, String::new()), |cell| (cell.line, cell.text.to_string()));
     let mut units: Vec<(Unit, usize)> = Vec::new();
     let mut bare = None;
     for (index, time) in written.iter().enumerate() {
         match time {
-            WrittenTime::WithUnit(_, unit) if units.iter().all(|(known, _)| known != unit) => units.push((*unit, index)),
+            WrittenTime::WithUnit(_, unit) if units.iter().all(|(known, _)| known != unit) => {
+                units.push((*unit, index))
+            }
             WrittenTime::Number(value) if *value != 0.0 && bare.is_none() => bare = Some(index),
             _ => {}
         }
     }
     let Some(&(first, first_index)) = units.first() else {
-        let values = written.iter().map(|time| if let WrittenTime::Number(value) = time { *value } else { 0.0 }).collect();
+        let values =
+            written.iter().map(|time| if let WrittenTime::Number(value) = time { *value } else { 0.0 }).collect();
         return Ok(Times { values, unit: header_unit, are_dates: false, note: None });
     };
     if let (Some(index), None) = (bare, header_unit) {
-        return Err(TableError::MixedUnits { column: column.to_string(), first: place(first_index), second: place(index) });
+        return Err(TableError::MixedUnits {
+            column: column.to_string(),
+            first: place(first_index),
+            second: place(index),
+        });
     }
-    let smallest = units.iter().map(|(unit, _)| *unit).chain(header_unit.filter(|_| bare.is_some())).min().unwrap_or(first);
-    let mixed = units.iter().find(|(unit, _)| *unit != smallest && (unit.seconds().is_none() || smallest.seconds().is_none()));
+    let smallest =
+        units.iter().map(|(unit, _)| *unit).chain(header_unit.filter(|_| bare.is_some())).min().unwrap_or(first);
+    let mixed =
+        units.iter().find(|(unit, _)| *unit != smallest && (unit.seconds().is_none() || smallest.seconds().is_none()));
     if let Some(&(_, index)) = mixed {
         let other = units.iter().find(|(unit, _)| *unit == smallest).map_or(first_index, |(_, index)| *index);
         return Err(TableError::MixedUnits { column: column.to_string(), first: place(other), second: place(index) });
@@ -296,7 +316,11 @@ fn one_unit<'a>(
         WrittenTime::Date(_) | WrittenTime::Dashed(..) => f64::NAN,
     });
     let note = (units.len() > 1).then(|| {
-        format!("Column {} mixes time units; all times are converted to {}s.", crate::text::quoted(column), smallest.word())
+        format!(
+            "Column {} mixes time units; all times are converted to {}s.",
+            crate::text::quoted(column),
+            smallest.word()
+        )
     });
     Ok(Times { values: values.collect(), unit: Some(smallest), are_dates: false, note })
 }

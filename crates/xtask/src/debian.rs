@@ -9,9 +9,7 @@ use crate::run;
 /// Whether `install` can work here.
 pub(crate) fn may_install() -> bool {
     static ANSWER: OnceLock<bool> = OnceLock::new();
-    *ANSWER.get_or_init(|| {
-        Path::new("/etc/debian_version").is_file() && run::is_there("apt-get") && is_root()
-    })
+    *ANSWER.get_or_init(|| Path::new("/etc/debian_version").is_file() && run::is_there("apt-get") && is_root())
 }
 
 fn is_root() -> bool {
@@ -24,10 +22,7 @@ fn is_root() -> bool {
 /// When not root on Debian, or apt-get fails.
 pub(crate) fn install(packages: &[&str]) -> Outcome<()> {
     if !may_install() {
-        return Err(Failure::new(format!(
-            "not root on Debian, so not installed: {}",
-            packages.join(" ")
-        )));
+        return Err(Failure::new(format!("not root on Debian, so not installed: {}", packages.join(" "))));
     }
     println!("Installing with apt-get: {}", packages.join(" "));
     update_once()?;

@@ -12,8 +12,8 @@ pub(crate) struct Places {
 impl Places {
     /// Found from this crate's own folder, two levels below the root.
     pub(crate) fn find() -> Self {
-        let own = env::var_os("CARGO_MANIFEST_DIR")
-            .map_or_else(|| PathBuf::from(env!("CARGO_MANIFEST_DIR")), PathBuf::from);
+        let own =
+            env::var_os("CARGO_MANIFEST_DIR").map_or_else(|| PathBuf::from(env!("CARGO_MANIFEST_DIR")), PathBuf::from);
         let root = own.ancestors().nth(2).unwrap_or(&own).to_path_buf();
         Self { root }
     }

@@ -19,10 +19,7 @@ const CARGOS_OWN: [&str; 6] = [
 pub(crate) fn command(program: &str) -> Command {
     let mut command = Command::new(program);
     for (name, _) in std::env::vars_os() {
-        if CARGOS_OWN
-            .iter()
-            .any(|own| name.to_string_lossy().starts_with(own))
-        {
+        if CARGOS_OWN.iter().any(|own| name.to_string_lossy().starts_with(own)) {
             command.env_remove(name);
         }
     }
@@ -32,11 +29,7 @@ pub(crate) fn command(program: &str) -> Command {
 /// The command as one would type it, for messages.
 pub(crate) fn shown(command: &Command) -> String {
     let mut words = vec![command.get_program().to_string_lossy().into_owned()];
-    words.extend(
-        command
-            .get_args()
-            .map(|word| word.to_string_lossy().into_owned()),
-    );
+    words.extend(command.get_args().map(|word| word.to_string_lossy().into_owned()));
     words.join(" ")
 }
 
@@ -45,17 +38,8 @@ pub(crate) fn shown(command: &Command) -> String {
 /// # Errors
 /// When it cannot be started or ends with an error.
 pub(crate) fn show(command: &mut Command) -> Outcome<()> {
-    let status = command
-        .status()
-        .about(format!("cannot start `{}`", shown(command)))?;
-    if status.success() {
-        Ok(())
-    } else {
-        Err(Failure::new(format!(
-            "`{}` ended with {status}",
-            shown(command)
-        )))
-    }
+    let status = command.status().about(format!("cannot start `{}`", shown(command)))?;
+    if status.success() { Ok(()) } else { Err(Failure::new(format!("`{}` ended with {status}", shown(command)))) }
 }
 
 /// Runs it and gives what it wrote to standard output.
@@ -64,20 +48,12 @@ pub(crate) fn show(command: &mut Command) -> Outcome<()> {
 /// When it cannot be started or ends with an error; the message holds what it
 /// wrote to standard error.
 pub(crate) fn read(command: &mut Command) -> Outcome<String> {
-    let output = command
-        .stdin(Stdio::null())
-        .output()
-        .about(format!("cannot start `{}`", shown(command)))?;
+    let output = command.stdin(Stdio::null()).output().about(format!("cannot start `{}`", shown(command)))?;
     if output.status.success() {
         return Ok(String::from_utf8_lossy(&output.stdout).into_owned());
     }
     let said = String::from_utf8_lossy(&output.stderr);
-    Err(Failure::new(format!(
-        "`{}` ended with {}: {}",
-        shown(command),
-        output.status,
-        said.trim()
-    )))
+    Err(Failure::new(format!("`{}` ended with {}: {}", shown(command), output.status, said.trim())))
 }
 
 /// Whether this program can be started.

@@ -40,7 +40,8 @@ fn one_file(name: &str, text: &str, found: &mut Vec<String>) {
     }
     for folder in ["work", "root", "farm"] {
         let path = format!("/{folder}/");
-        let starts = |at: usize| !text[..at].ends_with(|c: char| c.is_alphanumeric() || c == '.' || c == '_' || c == '-');
+        let starts =
+            |at: usize| !text[..at].ends_with(|c: char| c.is_alphanumeric() || c == '.' || c == '_' || c == '-');
         if name != "crates/xtask/src/tidy.rs" && text.match_indices(&path).any(|(at, _)| starts(at)) {
             found.push(format!("{name}: holds a path of one machine, {path}"));
         }

@@ -46,9 +46,7 @@ impl Task {
             "test" => testing(&mut words)?,
             "tidy" => Self::Tidy,
             "reference" => Self::Reference,
-            "bench" => Self::Bench {
-                args: words.by_ref().collect(),
-            },
+            "bench" => Self::Bench { args: words.by_ref().collect() },
             "evidence" => Self::Evidence { args: words.by_ref().collect() },
             "help" | "--help" | "-h" => Self::Help,
             other => return Err(unknown(other)),
@@ -66,9 +64,9 @@ fn serving(words: &mut impl Iterator<Item = String>) -> Outcome<Task> {
         match word.as_str() {
             "--port" => {
                 let given = words.next().unwrap_or_default();
-                port = given.parse().map_err(|_| {
-                    Failure::new(format!("--port needs a number up to 65535, not `{given}`"))
-                })?;
+                port = given
+                    .parse()
+                    .map_err(|_| Failure::new(format!("--port needs a number up to 65535, not `{given}`")))?;
             }
             "--no-open" => open = false,
             other => return Err(unknown(other)),
@@ -81,11 +79,7 @@ fn testing(words: &mut impl Iterator<Item = String>) -> Outcome<Task> {
     let (mut only, mut quick) = (Vec::new(), false);
     while let Some(word) = words.next() {
         match word.as_str() {
-            "--only" => only.push(
-                words
-                    .next()
-                    .ok_or_else(|| Failure::new("--only needs the name of a step"))?,
-            ),
+            "--only" => only.push(words.next().ok_or_else(|| Failure::new("--only needs the name of a step"))?),
             "--quick" => quick = true,
             other => return Err(unknown(other)),
         }
@@ -108,31 +102,15 @@ mod tests {
     #[test]
     fn tasks_and_their_options() {
         assert_eq!(read("build"), Some(Task::Build));
-        assert_eq!(
-            read("serve --port 0 --no-open"),
-            Some(Task::Serve {
-                port: 0,
-                open: false
-            })
-        );
+        assert_eq!(read("serve --port 0 --no-open"), Some(Task::Serve { port: 0, open: false }));
         let only = vec!["rust".to_owned(), "tidy".to_owned()];
-        assert_eq!(
-            read("test --only rust --only tidy"),
-            Some(Task::Test { only, quick: false })
-        );
+        assert_eq!(read("test --only rust --only tidy"), Some(Task::Test { only, quick: false }));
         assert_eq!(read(""), Some(Task::Help));
     }
 
     #[test]
     fn unknown_words_are_refused() {
-        for line in [
-            "bild",
-            "build now",
-            "serve --port",
-            "serve --port many",
-            "test --only",
-            "test --fast",
-        ] {
+        for line in ["bild", "build now", "serve --port", "serve --port many", "test --only", "test --fast"] {
             assert_eq!(read(line), None, "{line}");
         }
     }

@@ -6,8 +6,8 @@
 use courseband_tests::evidence::{Cell, Rate, Tally, all_cells, simulate};
 use std::collections::BTreeMap;
 use std::process::ExitCode;
-use std::sync::atomic::{AtomicU64, Ordering};
 use std::sync::Mutex;
+use std::sync::atomic::{AtomicU64, Ordering};
 use std::time::Instant;
 
 type Counts = BTreeMap<(u64, String), Tally>;

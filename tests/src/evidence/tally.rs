@@ -62,7 +62,15 @@ impl Tally {
     pub fn csv(&self) -> String {
         format!(
             "{},{},{:.4},{},{},{},{},{:.4},{}",
-            self.studies, self.covered, self.across, self.stretch, self.onset, self.onsets, self.area, self.width, self.failed
+            self.studies,
+            self.covered,
+            self.across,
+            self.stretch,
+            self.onset,
+            self.onsets,
+            self.area,
+            self.width,
+            self.failed
         )
     }
 

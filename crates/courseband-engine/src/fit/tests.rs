@@ -42,7 +42,8 @@ fn all_models() -> Vec<Model> {
     let mut models = Vec::new();
     for subjects in [SubjectEffects::None, SubjectEffects::Intercept, SubjectEffects::Slope] {
         for serial in [Serial::None, Serial::Ar1, Serial::Ar1Nugget] {
-            for (subjects_spread, spread) in [(Sharing::Common, Sharing::ByGroup), (Sharing::ByGroup, Sharing::Common)] {
+            for (subjects_spread, spread) in [(Sharing::Common, Sharing::ByGroup), (Sharing::ByGroup, Sharing::Common)]
+            {
                 models.push(Model { subjects_spread, spread, ..model(subjects, serial) });
             }
         }
@@ -89,7 +90,8 @@ fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> 
             owner.push((s, subject.group, units.inner_time(*t), (r - units.response_centre) / units.response_scale));
         }
     }
-    let offset: Vec<usize> = (0..data.groups).map(|g| design.bases[..g].iter().map(GroupBasis::unpenalised).sum()).collect();
+    let offset: Vec<usize> =
+        (0..data.groups).map(|g| design.bases[..g].iter().map(GroupBasis::unpenalised).sum()).collect();
     let columns = |g: usize, t: f64| {
         let mut row = vec![0.0; design.bases[g].columns()];
         design.bases[g].fill(t, false, &mut row);
@@ -101,7 +103,9 @@ fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> 
         let p = design.bases[gi].unpenalised();
         (0..p).for_each(|j| x[(i, offset[gi] + j)] = ci[j]);
         for (j, &(sj, gj, tj, _)) in owner.iter().enumerate() {
-            if gi == gj && let Some(s2) = layout.smoothing_variance(theta, gi) {
+            if gi == gj
+                && let Some(s2) = layout.smoothing_variance(theta, gi)
+            {
                 let cj = columns(gj, tj);
                 v[(i, j)] += s2 * ci[p..].iter().zip(&cj[p..]).map(|(a, b)| a * b).sum::<f64>();
             }

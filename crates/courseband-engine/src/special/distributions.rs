@@ -72,13 +72,9 @@ pub fn t_quantile(p: f64, df: f64) -> f64 {
     let central = libm::fabs(p - 0.5) < 0.25;
     let distance = if central {
         let inside = 2.0 * libm::fabs(p - 0.5);
-        solve_log_probability(inside, guess, true, |t| {
-            LogProbability::new(t_two_sided(t, df).1, slope(t))
-        })
+        solve_log_probability(inside, guess, true, |t| LogProbability::new(t_two_sided(t, df).1, slope(t)))
     } else {
-        solve_log_probability(2.0 * tail, guess, false, |t| {
-            LogProbability::new(t_two_sided(t, df).0, -slope(t))
-        })
+        solve_log_probability(2.0 * tail, guess, false, |t| LogProbability::new(t_two_sided(t, df).0, -slope(t)))
     };
     side * distance
 }
@@ -139,13 +135,9 @@ pub fn f_quantile(p: f64, df1: f64, df2: f64) -> f64 {
     let spread = libm::sqrt(2.0 * (1.0 / df1 + 1.0 / df2));
     let guess = 1.0 / df2 - 1.0 / df1 + spread * normal_quantile(p);
     if p <= 0.5 {
-        solve_log_probability(p, guess, true, |x| {
-            LogProbability::new(f_tails(x, df1, df2).0, slope(x))
-        })
+        solve_log_probability(p, guess, true, |x| LogProbability::new(f_tails(x, df1, df2).0, slope(x)))
     } else {
-        solve_log_probability(1.0 - p, guess, false, |x| {
-            LogProbability::new(f_tails(x, df1, df2).1, -slope(x))
-        })
+        solve_log_probability(1.0 - p, guess, false, |x| LogProbability::new(f_tails(x, df1, df2).1, -slope(x)))
     }
 }
 
@@ -175,8 +167,6 @@ pub fn chi2_quantile(p: f64, df: f64) -> f64 {
     if p <= 0.5 {
         solve_log_probability(p, guess, true, |x| LogProbability::new(chi2_cdf(x, df), slope(x)))
     } else {
-        solve_log_probability(1.0 - p, guess, false, |x| {
-            LogProbability::new(chi2_sf(x, df), -slope(x))
-        })
+        solve_log_probability(1.0 - p, guess, false, |x| LogProbability::new(chi2_sf(x, df), -slope(x)))
     }
 }

@@ -97,15 +97,8 @@ pub(super) fn stirling_error(z: f64) -> f64 {
         let half_ln_two_pi = 0.918_938_533_204_672_8;
         return libm::lgamma(z) - (z - 0.5) * libm::log(z) + z - half_ln_two_pi;
     }
-    const SERIES: [f64; 7] = [
-        1.0 / 12.0,
-        -1.0 / 360.0,
-        1.0 / 1260.0,
-        -1.0 / 1680.0,
-        1.0 / 1188.0,
-        -691.0 / 360_360.0,
-        1.0 / 156.0,
-    ];
+    const SERIES: [f64; 7] =
+        [1.0 / 12.0, -1.0 / 360.0, 1.0 / 1260.0, -1.0 / 1680.0, 1.0 / 1188.0, -691.0 / 360_360.0, 1.0 / 156.0];
     let w = 1.0 / (z * z);
     SERIES.iter().rev().fold(0.0, |sum, c| sum * w + c) / z
 }
@@ -116,8 +109,7 @@ pub(super) fn deviance(k: f64, m: f64, m_less_k: f64) -> f64 {
     if libm::fabs(e) > 0.4 {
         // ln(m/k) taken apart where the quotient would overflow or vanish.
         let ratio = m / k;
-        let log_ratio =
-            if ratio.is_normal() { libm::log(ratio) } else { libm::log(m) - libm::log(k) };
+        let log_ratio = if ratio.is_normal() { libm::log(ratio) } else { libm::log(m) - libm::log(k) };
         return k * (e - log_ratio);
     }
     // With r = e/(2+e): e - ln(1+e) = e r - 2 (r^3/3 + r^5/5 + ...).

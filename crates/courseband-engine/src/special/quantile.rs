@@ -126,8 +126,7 @@ impl DirectionMaxima {
         }
         let (total, size) = (sums.iter().sum::<f64>(), sizes.iter().sum::<f64>());
         let mean = total / size;
-        let spread: f64 =
-            (0..BATCHES).map(|k| (sums[k] - mean * sizes[k]) * (sums[k] - mean * sizes[k])).sum();
+        let spread: f64 = (0..BATCHES).map(|k| (sums[k] - mean * sizes[k]) * (sums[k] - mean * sizes[k])).sum();
         let standard_error = libm::sqrt(spread * used as f64 / (used - 1) as f64) / size;
         libm::fabs(standard_error / slope)
     }
@@ -243,8 +242,7 @@ fn into_bins(maxima: Vec<f64>, r: usize, sets: usize) -> Vec<Bin> {
     let total = maxima.len();
     let batches = BATCHES.min(sets);
     let batch_of = |index: usize| (index / r) * batches / sets;
-    let mut sorted: Vec<(f64, u32)> =
-        maxima.into_iter().enumerate().map(|(i, h)| (h, batch_of(i) as u32)).collect();
+    let mut sorted: Vec<(f64, u32)> = maxima.into_iter().enumerate().map(|(i, h)| (h, batch_of(i) as u32)).collect();
     sorted.sort_unstable_by(|a, b| a.0.total_cmp(&b.0).then(a.1.cmp(&b.1)));
     let count = MOST_BINS.min(total);
     (0..count)
@@ -255,11 +253,7 @@ fn into_bins(maxima: Vec<f64>, r: usize, sets: usize) -> Vec<Bin> {
                 of_batch[*batch as usize] += 1;
             }
             let sum: f64 = members.iter().map(|(h, _)| h).sum();
-            Bin {
-                mean: sum / members.len() as f64,
-                share: members.len() as f64 / total as f64,
-                of_batch,
-            }
+            Bin { mean: sum / members.len() as f64, share: members.len() as f64 / total as f64, of_batch }
         })
         .collect()
 }

@@ -86,8 +86,7 @@ fn independent_maxima_have_the_closed_form() {
 #[test]
 fn error_is_what_other_seeds_show() {
     let rows = smooth_curve(60, 6);
-    let runs: Vec<Quantile> =
-        (0..60).map(|s| max_abs_quantile(&rows, 60, 6, 0.95, Some(12.0), 4096, s)).collect();
+    let runs: Vec<Quantile> = (0..60).map(|s| max_abs_quantile(&rows, 60, 6, 0.95, Some(12.0), 4096, s)).collect();
     let mean = runs.iter().map(|q| q.value).sum::<f64>() / 60.0;
     let spread = (runs.iter().map(|q| (q.value - mean).powi(2)).sum::<f64>() / 59.0).sqrt();
     let stated = runs.iter().map(|q| q.mc_error).sum::<f64>() / 60.0;

@@ -44,12 +44,8 @@ impl Rng {
 
     /// Moves on by 2^128 draws, as if that many numbers had been taken.
     pub fn jump(&mut self) {
-        const POLYNOMIAL: [u64; 4] = [
-            0x180e_c6d3_3cfd_0aba,
-            0xd5a6_1266_f0c9_392c,
-            0xa958_2618_e03f_c9aa,
-            0x39ab_dc45_29b1_661c,
-        ];
+        const POLYNOMIAL: [u64; 4] =
+            [0x180e_c6d3_3cfd_0aba, 0xd5a6_1266_f0c9_392c, 0xa958_2618_e03f_c9aa, 0x39ab_dc45_29b1_661c];
         let mut sum = [0u64; 4];
         for word in POLYNOMIAL {
             for bit in 0..64 {

@@ -127,9 +127,8 @@ fn values_from_seconds(step: &[f64], second: &[f64]) -> Vec<f64> {
     let mut value = vec![0.0; inner];
     for k in 0..inner {
         let i = k as isize;
-        let right_side = step[k] / 6.0 * at(i - 1)
-            + (step[k] + step[k + 1]) / 3.0 * at(i)
-            + step[k + 1] / 6.0 * at(i + 1);
+        let right_side =
+            step[k] / 6.0 * at(i - 1) + (step[k] + step[k + 1]) / 3.0 * at(i) + step[k + 1] / 6.0 * at(i + 1);
         pivot[k] = -1.0 / step[k] - 1.0 / step[k + 1];
         value[k] = right_side;
         if k > 0 {

@@ -18,18 +18,13 @@ pub struct TimeTest {
 }
 
 /// Compares each pair of groups at each time, pair by pair. `level` is that of the unadjusted intervals.
-pub fn tests_by_time(
-    panel: &Panel,
-    pairs: &[(usize, usize)],
-    variances: Variances,
-    level: f64,
-) -> Vec<TimeTest> {
+pub fn tests_by_time(panel: &Panel, pairs: &[(usize, usize)], variances: Variances, level: f64) -> Vec<TimeTest> {
     let mut tests = Vec::with_capacity(pairs.len() * panel.times.len());
     for pair in pairs {
         for time in 0..panel.times.len() {
             let (first, second) = (panel.values_at(pair.0, time), panel.values_at(pair.1, time));
-            let comparison = compare_means(&first, &second, variances, level)
-                .map_err(|reason| name_group(reason, *pair));
+            let comparison =
+                compare_means(&first, &second, variances, level).map_err(|reason| name_group(reason, *pair));
             tests.push(TimeTest { pair: *pair, time, comparison, p_holm: None });
         }
     }

@@ -96,11 +96,7 @@ pub struct PooledCurve {
 ///
 /// # Panics
 /// If the sizes do not agree.
-pub fn pool_curves(
-    curves: &[Vec<f64>],
-    covariances: &[Vec<f64>],
-    complete_df: f64,
-) -> Option<PooledCurve> {
+pub fn pool_curves(curves: &[Vec<f64>], covariances: &[Vec<f64>], complete_df: f64) -> Option<PooledCurve> {
     assert_eq!(curves.len(), covariances.len(), "one covariance per curve");
     if curves.len() < 2 {
         return None;

@@ -70,8 +70,7 @@ pub fn one_way_welch(groups: &[Vec<f64>]) -> Result<OneWay, Undefined> {
     let weight: f64 = cells.iter().map(|c| c.2).sum();
     let centre = cells.iter().map(|c| c.2 * c.1).sum::<f64>() / weight;
     let between: f64 = cells.iter().map(|c| c.2 * (c.1 - centre) * (c.1 - centre)).sum();
-    let unevenness: f64 =
-        cells.iter().map(|c| (1.0 - c.2 / weight) * (1.0 - c.2 / weight) / (c.0 - 1.0)).sum();
+    let unevenness: f64 = cells.iter().map(|c| (1.0 - c.2 / weight) * (1.0 - c.2 / weight) / (c.0 - 1.0)).sum();
     let correction = 1.0 + 2.0 * (k - 2.0) / (k * k - 1.0) * unevenness;
     let f = between / (k - 1.0) / correction;
     let df_error = (k * k - 1.0) / (3.0 * unevenness);

@@ -186,8 +186,7 @@ impl<'a> Within<'a> {
         }
         let ss_error = products.trace();
         let flat = negligible(ss_error, cells.total * cells.times, cells.scale);
-        let sphericity =
-            if flat { Err(Undefined::NoVariation) } else { Ok(sphericity(&products, cells.df_error)) };
+        let sphericity = if flat { Err(Undefined::NoVariation) } else { Ok(sphericity(&products, cells.df_error)) };
         Self { cells, means, weighted, ss_error, sphericity }
     }
 

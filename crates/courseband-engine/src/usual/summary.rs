@@ -94,8 +94,7 @@ pub fn compare_summaries(
             p_holm: None,
         })
         .collect();
-    let family: Vec<f64> =
-        comparisons.iter().filter_map(|c| c.comparison.ok().map(|m| m.p)).collect();
+    let family: Vec<f64> = comparisons.iter().filter_map(|c| c.comparison.ok().map(|m| m.p)).collect();
     let mut adjusted = holm(&family).into_iter();
     for comparison in comparisons.iter_mut().filter(|c| c.comparison.is_ok()) {
         comparison.p_holm = adjusted.next();

@@ -69,8 +69,7 @@ pub fn kaplan_meier(times: &[f64], events: &[bool], level: f64) -> SurvivalCurve
         let se = if at_risk > happened { survival * libm::sqrt(hazard_variance) } else { 0.0 };
         steps.push(SurvivalStep { time, at_risk, events: happened, survival, se, interval });
     }
-    let mut censored: Vec<f64> =
-        times.iter().zip(events).filter(|(_, event)| !**event).map(|(t, _)| *t).collect();
+    let mut censored: Vec<f64> = times.iter().zip(events).filter(|(_, event)| !**event).map(|(t, _)| *t).collect();
     censored.sort_by(f64::total_cmp);
     // Products such as (3/4)(2/3) may land a rounding above one half.
     let half = 0.5 + 1e-12;
@@ -105,12 +104,7 @@ pub struct LogRank {
 ///
 /// # Panics
 /// If the three slices differ in length.
-pub fn log_rank(
-    times: &[f64],
-    events: &[bool],
-    group: &[usize],
-    groups: usize,
-) -> Result<LogRank, Undefined> {
+pub fn log_rank(times: &[f64], events: &[bool], group: &[usize], groups: usize) -> Result<LogRank, Undefined> {
     assert!(times.len() == events.len() && times.len() == group.len(), "one entry per subject");
     let moments = event_times(times, events);
     if moments.is_empty() {
@@ -157,8 +151,7 @@ pub fn log_rank(
 
 /// Distinct event times in order.
 fn event_times(times: &[f64], events: &[bool]) -> Vec<f64> {
-    let mut distinct: Vec<f64> =
-        times.iter().zip(events).filter(|(_, event)| **event).map(|(t, _)| *t).collect();
+    let mut distinct: Vec<f64> = times.iter().zip(events).filter(|(_, event)| **event).map(|(t, _)| *t).collect();
     distinct.sort_by(f64::total_cmp);
     distinct.dedup();
     distinct

@@ -24,7 +24,8 @@ impl Subject<'_> {
         trial.errors.nugget = self.has_ties();
         let (other, rise) = self.richer(&trial)?;
         // One parameter on its edge (two with measurement error, taken as one more).
-        let p = if trial.errors.nugget { 0.5 * (chi2_sf(2.0 * rise, 1.0) + chi2_sf(2.0 * rise, 2.0)) } else { edge(rise) };
+        let p =
+            if trial.errors.nugget { 0.5 * (chi2_sf(2.0 * rise, 1.0) + chi2_sf(2.0 * rise, 2.0)) } else { edge(rise) };
         let lit = p < ALARM;
         let phi = other.serial_correlation().unwrap_or(0.0);
         Some(Check {
@@ -33,11 +34,19 @@ impl Subject<'_> {
             lit,
             p: Some(p),
             seen: if lit {
-                format!("Neighbouring visits of one {} err alike: correlation {} one time unit apart.", self.plan.words.subject, number(phi, 2))
+                format!(
+                    "Neighbouring visits of one {} err alike: correlation {} one time unit apart.",
+                    self.plan.words.subject,
+                    number(phi, 2)
+                )
             } else {
                 "Neighbouring visits do not err alike beyond what the model holds.".into()
             },
-            means: if lit { "The bands may be too narrow, and the course may follow the errors.".into() } else { String::new() },
+            means: if lit {
+                "The bands may be too narrow, and the course may follow the errors.".into()
+            } else {
+                String::new()
+            },
             advice: if lit { "Let visits be serially correlated.".into() } else { String::new() },
             trial: lit.then_some(trial),
             plot: self.lag_plot(residuals),
@@ -61,19 +70,28 @@ impl Subject<'_> {
         let (other, rise) = self.richer(&trial)?;
         let p = chi2_sf(2.0 * rise, parameters);
         let lit = p < ALARM;
-        let sds: Vec<String> =
-            (0..groups).map(|g| format!("{} {}", self.cohort.groups[g].name, number(other.residual_sd(g), 3))).collect();
+        let sds: Vec<String> = (0..groups)
+            .map(|g| format!("{} {}", self.cohort.groups[g].name, number(other.residual_sd(g), 3)))
+            .collect();
         Some(Check {
             key: "spread".into(),
             title: "Unequal spread".into(),
             lit,
             p: Some(p),
             seen: if lit {
-                format!("The groups spread unequally; within {} the standard deviations are {}.", self.plan.words.subjects, sds.join(", "))
+                format!(
+                    "The groups spread unequally; within {} the standard deviations are {}.",
+                    self.plan.words.subjects,
+                    sds.join(", ")
+                )
             } else {
                 "The groups spread alike.".into()
             },
-            means: if lit { "The gap's interval is too narrow where the group that spreads more is small.".into() } else { String::new() },
+            means: if lit {
+                "The gap's interval is too narrow where the group that spreads more is small.".into()
+            } else {
+                String::new()
+            },
             advice: if lit { "Give every group its own spread.".into() } else { String::new() },
             trial: lit.then_some(trial),
             plot: self.spread_plot(residuals),
@@ -91,11 +109,11 @@ impl Subject<'_> {
         if !self.has_several_visits() {
             return None;
         }
-        trial.subjects =
-            if parameters == 1.0 { plan::SubjectEffects::Intercept } else { plan::SubjectEffects::Slope };
+        trial.subjects = if parameters == 1.0 { plan::SubjectEffects::Intercept } else { plan::SubjectEffects::Slope };
         let (_, rise) = self.richer(&trial)?;
         // Half and half of one parameter more and of one fewer (Self & Liang 1987, cases 5 and 6).
-        let p = if parameters == 1.0 { edge(rise) } else { 0.5 * (chi2_sf(2.0 * rise, 1.0) + chi2_sf(2.0 * rise, 2.0)) };
+        let p =
+            if parameters == 1.0 { edge(rise) } else { 0.5 * (chi2_sf(2.0 * rise, 1.0) + chi2_sf(2.0 * rise, 2.0)) };
         let lit = p < ALARM;
         let many = &self.plan.words.subjects;
         Some(Check {
@@ -103,8 +121,16 @@ impl Subject<'_> {
             title: format!("{many} differ in {more}"),
             lit,
             p: Some(p),
-            seen: if lit { format!("The {many} differ in {more}, which the model does not hold.") } else { format!("The {many} do not differ in {more} beyond what the model holds.") },
-            means: if lit { "The bands are too narrow, most of all where the courses are far from their middle.".into() } else { String::new() },
+            seen: if lit {
+                format!("The {many} differ in {more}, which the model does not hold.")
+            } else {
+                format!("The {many} do not differ in {more} beyond what the model holds.")
+            },
+            means: if lit {
+                "The bands are too narrow, most of all where the courses are far from their middle.".into()
+            } else {
+                String::new()
+            },
             advice: if lit { format!("Let {many} differ in {more}.") } else { String::new() },
             trial: lit.then_some(trial),
             plot: self.trend_plot(residuals),
@@ -140,7 +166,9 @@ impl Subject<'_> {
             advice: match (lit, positive) {
                 (false, _) => String::new(),
                 (true, true) => format!("Look at the {} scale.", if log { "raw" } else { "log" }),
-                (true, false) => "The log scale needs values above zero; look for outlying rows, or another distribution.".into(),
+                (true, false) => {
+                    "The log scale needs values above zero; look for outlying rows, or another distribution.".into()
+                }
             },
             trial: (lit && positive).then_some(trial),
             plot: self.fitted_plot(residuals),
@@ -173,7 +201,10 @@ impl Subject<'_> {
             lit,
             p: Some(p),
             seen: if lit {
-                format!("Courses with {} knots describe the table better.", plain((2 * knots).clamp(3, available) as f64))
+                format!(
+                    "Courses with {} knots describe the table better.",
+                    plain((2 * knots).clamp(3, available) as f64)
+                )
             } else {
                 "More freedom for the courses changes nothing.".into()
             },
@@ -201,7 +232,13 @@ impl Subject<'_> {
         }
         pairs.sort_by(|a, b| a.0.total_cmp(&b.0));
         let bins = super::scatter::means_in_bins(&pairs, 10);
-        let envelope = bins.iter().map(|bin| { let r = 1.96 / libm::sqrt(bin.count); [-r, r] }).collect();
+        let envelope = bins
+            .iter()
+            .map(|bin| {
+                let r = 1.96 / libm::sqrt(bin.count);
+                [-r, r]
+            })
+            .collect();
         CheckPlot {
             across: "time between two visits".into(),
             up: "correlation of what the model leaves".into(),

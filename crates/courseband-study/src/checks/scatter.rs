@@ -55,7 +55,11 @@ impl Subject<'_> {
             p,
             seen,
             means: if lit { "One value can move a course and widen every band.".into() } else { String::new() },
-            advice: if lit { "Check the value at its source. Leave it out only if it is an error, with that reason.".into() } else { String::new() },
+            advice: if lit {
+                "Check the value at its source. Leave it out only if it is an error, with that reason.".into()
+            } else {
+                String::new()
+            },
             trial: None,
             plot: quantile_plot(residuals),
         }
@@ -118,7 +122,12 @@ impl Subject<'_> {
                 }
             })
             .collect();
-        CheckPlot { across: "time".into(), up: "standard deviation around the course".into(), series, envelope: Vec::new() }
+        CheckPlot {
+            across: "time".into(),
+            up: "standard deviation around the course".into(),
+            series,
+            envelope: Vec::new(),
+        }
     }
 
     /// Each subject's distance from its group's course, joined.

@@ -45,7 +45,9 @@ fn checked(fault: Fault, seed: u64) -> ChecksFindings {
 }
 
 fn lights(fault: Fault, key: &str, runs: u64) -> u64 {
-    (0..runs).filter(|&k| checked(fault, 100 + k).checks.iter().any(|c| c.lit && (key.is_empty() || c.key == key))).count() as u64
+    (0..runs)
+        .filter(|&k| checked(fault, 100 + k).checks.iter().any(|c| c.lit && (key.is_empty() || c.key == key)))
+        .count() as u64
 }
 
 #[test]

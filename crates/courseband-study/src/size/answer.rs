@@ -94,19 +94,15 @@ impl SizeRequest {
         let more = d.enrolled[0] + d.enrolled[1] - a - b;
         let losses = if more > 0 { format!(", {more} more for expected losses") } else { String::new() };
         let share = |x: f64| number(100.0 * x, 0);
-        format!(
-            "{groups}{losses}: power {} % ({} to {}).",
-            share(d.power),
-            share(d.interval[0]),
-            share(d.interval[1])
-        )
+        format!("{groups}{losses}: power {} % ({} to {}).", share(d.power), share(d.interval[0]), share(d.interval[1]))
     }
 
     fn model_text(&self) -> String {
         let s = &self.spread;
         let days: Vec<String> = self.days.iter().map(|&t| plain(t)).collect();
         let course = |c: &super::request::CourseMeans| {
-            let means: Vec<String> = c.means.iter().map(|m| format!("{} on day {}", plain(m[1]), plain(m[0]))).collect();
+            let means: Vec<String> =
+                c.means.iter().map(|m| format!("{} on day {}", plain(m[1]), plain(m[0]))).collect();
             format!("{}: {}", c.name, means.join(", "))
         };
         let scale = if self.transform == Transform::Log { " of the logarithms" } else { "" };

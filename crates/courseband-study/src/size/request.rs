@@ -142,7 +142,10 @@ impl SizeRequest {
         for course in [&self.control, &self.treated] {
             let times: Vec<f64> = course.means.iter().map(|m| m[0]).collect();
             if course.means.is_empty() || !ascending(&times) || course.means.iter().any(|m| !m[1].is_finite()) {
-                return refuse(format!("Give at least one mean for \"{}\", with days in ascending order.", course.name));
+                return refuse(format!(
+                    "Give at least one mean for \"{}\", with days in ascending order.",
+                    course.name
+                ));
             }
             if self.transform == Transform::Log && course.means.iter().any(|m| m[1] <= 0.0) {
                 return refuse(format!("The log scale needs means above zero for \"{}\".", course.name));
@@ -152,8 +155,11 @@ impl SizeRequest {
         if !(s.on_a_day > 0.0 && s.on_a_day.is_finite()) {
             return refuse("The standard deviation on one day must be above zero.".into());
         }
-        if !(0.0..1.0).contains(&s.alike) || !(0.0..1.0).contains(&s.serial) || !(s.trend >= 0.0 && s.trend.is_finite()) {
-            return refuse("Correlations are from 0 to below 1, and the trend's standard deviation is 0 or more.".into());
+        if !(0.0..1.0).contains(&s.alike) || !(0.0..1.0).contains(&s.serial) || !(s.trend >= 0.0 && s.trend.is_finite())
+        {
+            return refuse(
+                "Correlations are from 0 to below 1, and the trend's standard deviation is 0 or more.".into(),
+            );
         }
         if self.designs.is_empty() || self.designs.iter().flatten().any(|&n| !(2..=2000).contains(&n)) {
             return refuse("Give designs with 2 to 2000 per group.".into());
@@ -167,9 +173,9 @@ impl SizeRequest {
         let (first, last) = (self.days[0], self.days[self.days.len() - 1]);
         match (self.goal.find, self.goal.day) {
             (GoalKind::Landmark, None) => refuse("Name the landmark day.".into()),
-            (GoalKind::Landmark, Some(day)) if !(day >= first && day <= last) => {
-                refuse(format!("The landmark day must lie between the first and last measuring day, {first} and {last}."))
-            }
+            (GoalKind::Landmark, Some(day)) if !(day >= first && day <= last) => refuse(format!(
+                "The landmark day must lie between the first and last measuring day, {first} and {last}."
+            )),
             _ => Ok(()),
         }
     }

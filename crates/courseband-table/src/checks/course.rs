@@ -34,7 +34,8 @@ pub(super) struct Far {
 pub(super) fn far_values(observations: &Observations, runs: &[(usize, usize)]) -> Vec<Far> {
     let measured = Residuals::new(&observations.time, &observations.response, runs);
     let Some(scale) = measured.scale() else { return Vec::new() };
-    let candidates: Vec<usize> = (0..measured.value.len()).filter(|&at| measured.value[at].abs() > LIMIT * scale).collect();
+    let candidates: Vec<usize> =
+        (0..measured.value.len()).filter(|&at| measured.value[at].abs() > LIMIT * scale).collect();
     if candidates.is_empty() {
         return Vec::new();
     }
@@ -63,7 +64,11 @@ struct Residuals {
 
 impl Residuals {
     fn new(time: &[f64], response: &[f64], runs: &[(usize, usize)]) -> Residuals {
-        let mut residuals = Residuals { value: vec![0.0; time.len()], expected: vec![f64::NAN; time.len()], from: vec![(0, 0); time.len()] };
+        let mut residuals = Residuals {
+            value: vec![0.0; time.len()],
+            expected: vec![f64::NAN; time.len()],
+            from: vec![(0, 0); time.len()],
+        };
         for &(start, end) in runs {
             for at in start..end {
                 if let Some((a, b)) = neighbours(at, start, end) {
@@ -91,8 +96,13 @@ impl Residuals {
 
     /// Robust scale; none with fewer than ten residuals or if most are zero.
     fn scale(&self) -> Option<f64> {
-        let mut sizes: Vec<f64> =
-            self.value.iter().zip(&self.expected).filter(|(_, expected)| expected.is_finite()).map(|(value, _)| value.abs()).collect();
+        let mut sizes: Vec<f64> = self
+            .value
+            .iter()
+            .zip(&self.expected)
+            .filter(|(_, expected)| expected.is_finite())
+            .map(|(value, _)| value.abs())
+            .collect();
         if sizes.len() < 10 {
             return None;
         }

@@ -18,7 +18,8 @@ pub(super) fn recognise(framed: Framed<'_>, asked: bool) -> Option<LongTable<'_>
     if subjects.len() < 2 || !times_down(framed) {
         return None;
     }
-    let others = (1..framed.width()).filter(|&column| !summaries.contains(&column) && !framed.is_numeric(column)).count();
+    let others =
+        (1..framed.width()).filter(|&column| !summaries.contains(&column) && !framed.is_numeric(column)).count();
     if !asked && (others > 1 || !signs(framed, &subjects)) {
         return None;
     }
@@ -33,7 +34,8 @@ fn times_down(framed: Framed<'_>) -> bool {
 }
 
 fn are_times(mut cells: Vec<&str>) -> bool {
-    let is_time = |cell: &&&str| [Decimal::Point, Decimal::Comma].iter().any(|&decimal| read_time(cell, decimal).is_some());
+    let is_time =
+        |cell: &&&str| [Decimal::Point, Decimal::Comma].iter().any(|&decimal| read_time(cell, decimal).is_some());
     let (total, times) = (cells.len(), cells.iter().filter(is_time).count());
     cells.sort_unstable();
     cells.dedup();
@@ -45,9 +47,15 @@ fn signs(framed: Framed<'_>, subjects: &[usize]) -> bool {
     let corner = framed.written(0);
     let says_subject = clarity(corner, Role::Subject) == 4;
     let says_time = clarity(corner, Role::Time) >= 3 && !says_subject;
-    let worded = |cell: &&str| matches!(read_time(cell, Decimal::Point), Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..) | WrittenTime::Date(_)));
+    let worded = |cell: &&str| {
+        matches!(
+            read_time(cell, Decimal::Point),
+            Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..) | WrittenTime::Date(_))
+        )
+    };
     let times = says_time || framed.cells(0).filter(worded).count() * 2 > framed.frame.body.len();
-    let heads_are_times = subjects.iter().all(|&column| read_head(framed.written(column)).is_some_and(|head| head.clear));
+    let heads_are_times =
+        subjects.iter().all(|&column| read_head(framed.written(column)).is_some_and(|head| head.clear));
     let grouped = group_labels(framed, subjects).is_some();
     if times {
         return grouped || are_ids(framed, subjects);
@@ -117,9 +125,23 @@ fn melt<'a>(framed: Framed<'a>, subjects: &[usize], summaries: &[usize]) -> Long
         sheet_names: framed.names.names.clone(),
         notes: framed.summary_note(summaries).into_iter().collect(),
     };
-    add(&mut table, Role::Time, corner(Role::Time, "time"), Source::Cell(0), None, "Its rows are the times.".to_string());
+    add(
+        &mut table,
+        Role::Time,
+        corner(Role::Time, "time"),
+        Source::Cell(0),
+        None,
+        "Its rows are the times.".to_string(),
+    );
     let reason = format!("Each column is one subject, {} to {}.", quoted(first), quoted(last));
-    add(&mut table, Role::Subject, corner(Role::Subject, "subject"), Source::Across(subject_names(framed, subjects)), None, reason);
+    add(
+        &mut table,
+        Role::Subject,
+        corner(Role::Subject, "subject"),
+        Source::Across(subject_names(framed, subjects)),
+        None,
+        reason,
+    );
     if let Some(labels) = group_labels(framed, subjects) {
         let reason = match framed.names.spanner.is_empty() {
             true => "The columns' names begin with it.",
@@ -148,7 +170,12 @@ fn add(table: &mut LongTable<'_>, role: Role, name: String, source: Source, unit
 /// First cells of the header rows: they may name the times, the subjects or the groups.
 fn corners(framed: Framed<'_>) -> Vec<&str> {
     let records = [framed.frame.header, framed.frame.spanner, framed.frame.titles.last().copied()];
-    records.iter().flatten().map(|&record| framed.sheet.cell(record, 0).trim()).filter(|cell| !cell.is_empty()).collect()
+    records
+        .iter()
+        .flatten()
+        .map(|&record| framed.sheet.cell(record, 0).trim())
+        .filter(|cell| !cell.is_empty())
+        .collect()
 }
 
 fn places(framed: Framed<'_>, subjects: &[usize]) -> Vec<Place> {

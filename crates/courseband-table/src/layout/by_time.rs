@@ -61,14 +61,17 @@ fn is_plausible(framed: Framed<'_>, family: &Family) -> bool {
         true => differ,
         false => {
             let first = family.members[0].0;
-            values.len() >= 3 && ascending && (0..first).any(|column| clarity(framed.written(column), Role::Subject) >= 3)
+            values.len() >= 3
+                && ascending
+                && (0..first).any(|column| clarity(framed.written(column), Role::Subject) >= 3)
         }
     }
 }
 
 /// A column of its own says the time: then the table is long, or one column per subject.
 fn has_time_column(framed: Framed<'_>, families: &[Family]) -> bool {
-    let is_member = |column: usize| families.iter().any(|family| family.members.iter().any(|(member, _)| *member == column));
+    let is_member =
+        |column: usize| families.iter().any(|family| family.members.iter().any(|(member, _)| *member == column));
     (0..framed.width()).any(|column| {
         !is_member(column)
             && clarity(framed.written(column), Role::Time) == 4
@@ -86,7 +89,8 @@ fn changes(framed: Framed<'_>, column: usize) -> bool {
 fn melt<'a>(framed: Framed<'a>, families: &[Family]) -> LongTable<'a> {
     let lead = &families[0];
     let summaries = framed.summary_columns();
-    let is_member = |column: usize| families.iter().any(|family| family.members.iter().any(|(member, _)| *member == column));
+    let is_member =
+        |column: usize| families.iter().any(|family| family.members.iter().any(|(member, _)| *member == column));
     let beside: Vec<usize> = (0..framed.width())
         .filter(|column| !is_member(*column) && !summaries.contains(column) && !framed.is_blank(*column))
         .collect();
@@ -145,7 +149,11 @@ fn add_time(framed: Framed<'_>, lead: &Family, table: &mut LongTable<'_>) {
         reason: format!("The column heads are times, {} to {}: one row per subject.", quoted(first), quoted(last)),
     });
     let name = free_name(name, &table.columns);
-    table.columns.push(LongColumn { name, source: Source::Across(labels), unit: unit.map(|unit| unit.word().to_string()) });
+    table.columns.push(LongColumn {
+        name,
+        source: Source::Across(labels),
+        unit: unit.map(|unit| unit.word().to_string()),
+    });
 }
 
 /// One column of the long form per measurement; the response is clear where there is just one.

@@ -20,7 +20,10 @@ const SEPARATORS: [char; 5] = ['_', ' ', '.', '-', ':'];
 
 /// Reads a column head as a time.
 pub(super) fn read_head(name: &str) -> Option<TimeHead> {
-    if name.is_empty() || name.len() > 80 || !name.contains(|c: char| c.is_ascii_digit()) && !name.eq_ignore_ascii_case("baseline") {
+    if name.is_empty()
+        || name.len() > 80
+        || !name.contains(|c: char| c.is_ascii_digit()) && !name.eq_ignore_ascii_case("baseline")
+    {
         return None;
     }
     whole(name).or_else(|| after_stem(name)).or_else(|| before_stem(name))
@@ -30,10 +33,13 @@ fn head(stem: &str, text: &str, time: WrittenTime) -> Option<TimeHead> {
     let (value, unit) = match time {
         WrittenTime::Number(value) => (value, None),
         WrittenTime::WithUnit(value, unit) | WrittenTime::Dashed(value, unit) => (value, Some(unit)),
-        WrittenTime::Date(date) => (date.days(crate::request::DateOrder::DayFirst).unwrap_or(f64::NAN), Some(Unit::Day)),
+        WrittenTime::Date(date) => {
+            (date.days(crate::request::DateOrder::DayFirst).unwrap_or(f64::NAN), Some(Unit::Day))
+        }
     };
     // `s1` and `y1` are samples and responses more often than seconds and years.
-    let letter = text.chars().next().is_some_and(|c| matches!(c, 's' | 'S' | 'y' | 'Y')) && text.chars().nth(1).is_some_and(|c| c.is_ascii_digit());
+    let letter = text.chars().next().is_some_and(|c| matches!(c, 's' | 'S' | 'y' | 'Y'))
+        && text.chars().nth(1).is_some_and(|c| c.is_ascii_digit());
     let clear = stem.is_empty() || unit.is_some();
     (!letter).then(|| TimeHead { stem: stem.to_string(), text: text.to_string(), value, clear, unit })
 }
@@ -52,7 +58,9 @@ fn after_stem(name: &str) -> Option<TimeHead> {
         if stem.is_empty() || text.starts_with('.') || !stem.contains(char::is_alphabetic) {
             continue;
         }
-        if let Some(time) = read_time(text, Decimal::Point).filter(|time| !matches!(time, WrittenTime::Date(_)) || text.len() >= 8) {
+        if let Some(time) =
+            read_time(text, Decimal::Point).filter(|time| !matches!(time, WrittenTime::Date(_)) || text.len() >= 8)
+        {
             return head(stem, text, time);
         }
     }

@@ -104,9 +104,16 @@ impl Observer<'_> {
                 *ok = false;
                 if let Some(column) = self.roles.column(Role::Group) {
                     let shown = self.table.shown_column(row, column);
-                    self.problems.add(ProblemKind::MissingGroup, self.table.line(row), shown, self.table.cell(row, column), || {
-                        "No group, here or in a single group of the subject's other rows: the row is left out.".to_string()
-                    });
+                    self.problems.add(
+                        ProblemKind::MissingGroup,
+                        self.table.line(row),
+                        shown,
+                        self.table.cell(row, column),
+                        || {
+                            "No group, here or in a single group of the subject's other rows: the row is left out."
+                                .to_string()
+                        },
+                    );
                 }
                 continue;
             }
@@ -118,9 +125,13 @@ impl Observer<'_> {
                 if missing && *ok {
                     *ok = false;
                     let shown = self.table.shown_column(row, column);
-                    self.problems.add(ProblemKind::MissingCovariate, self.table.line(row), shown, self.table.cell(row, column), || {
-                        "No value that can be read: the row is left out.".to_string()
-                    });
+                    self.problems.add(
+                        ProblemKind::MissingCovariate,
+                        self.table.line(row),
+                        shown,
+                        self.table.cell(row, column),
+                        || "No value that can be read: the row is left out.".to_string(),
+                    );
                 }
             }
         }
@@ -151,7 +162,8 @@ impl Observer<'_> {
         let subject_codes = Compact::new(subjects.list.len(), order.iter().map(|&kept| subjects.of_row[kept as usize]));
         let used = |index: &u32| &subjects.list[*index as usize];
         let group_codes = Compact::new(groups.names.len(), subject_codes.kept.iter().map(|index| used(index).group));
-        let cluster_codes = Compact::new(clusters.1.len(), subject_codes.kept.iter().filter_map(|index| clusters.0[*index as usize]));
+        let cluster_codes =
+            Compact::new(clusters.1.len(), subject_codes.kept.iter().filter_map(|index| clusters.0[*index as usize]));
         let info = subject_codes.kept.iter().map(|index| {
             let subject = used(index);
             let id = &ids.names[subject.id as usize];
@@ -186,7 +198,9 @@ fn counted_without(subjects: usize) -> String {
 
 fn sorted(covariate: Covariate, order: &[u32]) -> Covariate {
     let values = match covariate.values {
-        CovariateValues::Numeric(values) => CovariateValues::Numeric(order.iter().map(|&kept| values[kept as usize]).collect()),
+        CovariateValues::Numeric(values) => {
+            CovariateValues::Numeric(order.iter().map(|&kept| values[kept as usize]).collect())
+        }
         CovariateValues::Categorical { levels, index } => {
             let codes = Compact::new(levels.len(), order.iter().map(|&kept| index[kept as usize]));
             let index = order.iter().map(|&kept| codes.new[index[kept as usize] as usize]).collect();

@@ -11,8 +11,11 @@ impl Finder<'_> {
         }
         // A column whose every cell is different numbers the rows, not the subjects.
         let rows = self.table.rows();
-        let repeated: Vec<usize> =
-            self.free().into_iter().filter(|&column| rows < 4 || self.profiles[column].distinct * 10 <= rows * 9).collect();
+        let repeated: Vec<usize> = self
+            .free()
+            .into_iter()
+            .filter(|&column| rows < 4 || self.profiles[column].distinct * 10 <= rows * 9)
+            .collect();
         self.take_by_name(Role::Subject, &repeated, 3);
     }
 
@@ -55,13 +58,22 @@ impl Finder<'_> {
         for column in self.free() {
             let profile = &self.profiles[column];
             let label = profile.whole == profile.numbers;
-            let other = [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 2);
-            let fits = label && !other && !is_beside(self.name(column)) && profile.distinct >= 2 && profile.distinct * 2 <= rows;
+            let other =
+                [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 2);
+            let fits = label
+                && !other
+                && !is_beside(self.name(column))
+                && profile.distinct >= 2
+                && profile.distinct * 2 <= rows;
             if fits && self.repeats(&[column, time]) < 0.05 {
                 candidates.push(column);
             }
         }
-        self.take_only(Role::Subject, &candidates, "Its labels come back at different times, and no other column does so.");
+        self.take_only(
+            Role::Subject,
+            &candidates,
+            "Its labels come back at different times, and no other column does so.",
+        );
         if self.is_open(Role::Subject) && candidates.is_empty() {
             let free = self.free();
             self.take_by_name(Role::Subject, &free, 3);
@@ -76,7 +88,8 @@ impl Finder<'_> {
         let mut candidates = Vec::new();
         for column in self.free() {
             let profile = &self.profiles[column];
-            let named_else = [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 3);
+            let named_else =
+                [Role::Group, Role::Cluster, Role::Response].iter().any(|&role| clarity(self.name(column), role) >= 3);
             let shared = profile.distinct >= 2 && profile.distinct * 2 <= rows;
             if profile.is_timely() && shared && !named_else && self.repeats(&[subject, column]) < 0.05 {
                 candidates.push(column);
@@ -109,7 +122,9 @@ impl Finder<'_> {
         for column in self.free() {
             if clarity(self.name(column), Role::Cluster) >= 3 && self.profiles[column].distinct > 1 {
                 match self.why_no_cluster(column) {
-                    Some(why) => self.roles.forget(Role::Cluster, format!("Column {} {why}: not used.", quoted(self.name(column)))),
+                    Some(why) => self
+                        .roles
+                        .forget(Role::Cluster, format!("Column {} {why}: not used.", quoted(self.name(column)))),
                     None => candidates.push(column),
                 }
             }
@@ -135,7 +150,11 @@ impl Finder<'_> {
         if !self.is_open(Role::Group) {
             return;
         }
-        let few: Vec<usize> = self.free().into_iter().filter(|&column| self.profiles[column].distinct <= self.table.rows() / 2 + 1).collect();
+        let few: Vec<usize> = self
+            .free()
+            .into_iter()
+            .filter(|&column| self.profiles[column].distinct <= self.table.rows() / 2 + 1)
+            .collect();
         let candidates = self.group_candidates();
         let named: Vec<usize> = few
             .into_iter()
@@ -152,10 +171,17 @@ impl Finder<'_> {
         let plain: Vec<usize> = candidates.iter().copied().filter(|column| !beside.contains(column)).collect();
         let best = self.without_copies(if plain.is_empty() { beside } else { plain });
         let best = if best.is_empty() { self.restarting() } else { best };
-        self.take_only(Role::Group, &best, "It has few values, each subject has one of them, and several subjects share it.");
+        self.take_only(
+            Role::Group,
+            &best,
+            "It has few values, each subject has one of them, and several subjects share it.",
+        );
         if self.is_open(Role::Group) {
             self.close(Role::Group);
-            self.roles.forget(Role::Group, "No column has few values that several subjects share: all are one group.".to_string());
+            self.roles.forget(
+                Role::Group,
+                "No column has few values that several subjects share: all are one group.".to_string(),
+            );
         }
     }
 
@@ -186,7 +212,9 @@ impl Finder<'_> {
             return false;
         };
         let levels = self.profiles[column].distinct;
-        (2..=60).contains(&levels) && self.repeats(&[subject, time]) > 0.2 && self.repeats(&[subject, column, time]) < 0.02
+        (2..=60).contains(&levels)
+            && self.repeats(&[subject, time]) > 0.2
+            && self.repeats(&[subject, column, time]) < 0.02
     }
 
     /// Columns of words under which ids restart.
@@ -202,7 +230,10 @@ impl Finder<'_> {
         let numeric: Vec<usize> = self
             .free()
             .into_iter()
-            .filter(|&column| self.profiles[column].is_numeric(0.5) && self.profiles[column].worded_times * 2 < self.profiles[column].rows)
+            .filter(|&column| {
+                self.profiles[column].is_numeric(0.5)
+                    && self.profiles[column].worded_times * 2 < self.profiles[column].rows
+            })
             .filter(|&column| !self.counts_rows(column))
             .collect();
         let changing: Vec<usize> = match self.roles.column(Role::Subject) {
@@ -212,7 +243,8 @@ impl Finder<'_> {
         let candidates = if changing.is_empty() { numeric } else { changing };
         if candidates.len() != 1 {
             // `y` and `value` settle it; of several measurements none is the clearer for its name.
-            let named: Vec<usize> = candidates.iter().copied().filter(|&column| clarity(self.name(column), Role::Response) >= 2).collect();
+            let named: Vec<usize> =
+                candidates.iter().copied().filter(|&column| clarity(self.name(column), Role::Response) >= 2).collect();
             if self.take_by_name(Role::Response, &candidates, 4) {
                 return;
             }
@@ -230,7 +262,11 @@ impl Finder<'_> {
         if !self.is_open(Role::Response) {
             return;
         }
-        self.take_only(Role::Response, &candidates, "It is the only further column of numbers that changes within subjects.");
+        self.take_only(
+            Role::Response,
+            &candidates,
+            "It is the only further column of numbers that changes within subjects.",
+        );
         if self.is_open(Role::Response) {
             // A clear name without numbers: reading it will say so.
             let free = self.free();
@@ -269,8 +305,13 @@ impl Finder<'_> {
                 .map(|column| self.name(column).to_string())
                 .collect();
             let text = match choices.is_empty() {
-                true => format!("No column is left for the {role}. The table needs a subject, a time and a response column."),
-                false => format!("No column is clearly the {role}. The columns left are {}. Which one is it?", listed(&choices)),
+                true => format!(
+                    "No column is left for the {role}. The table needs a subject, a time and a response column."
+                ),
+                false => format!(
+                    "No column is clearly the {role}. The columns left are {}. Which one is it?",
+                    listed(&choices)
+                ),
             };
             self.roles.reasons[role as usize] = "Open: no column is clearly meant.".to_string();
             self.put(Question { topic: Topic::Column(role), text, choices, needs_answer: true });

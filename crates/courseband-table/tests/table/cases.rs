@@ -4,8 +4,6 @@
 //! is meant, `UPDATE_EXPECT=1 cargo test -p courseband-table` writes the
 //! readings anew; look at the difference before keeping it.
 
-
-
 use crate::common;
 use std::path::Path;
 
@@ -34,7 +32,8 @@ fn written(case: &Case, reading: &str) -> String {
 #[test]
 fn every_case_reads_as_written() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/cases");
-    let mut paths: Vec<_> = std::fs::read_dir(folder).expect("cases").map(|entry| entry.expect("a case").path()).collect();
+    let mut paths: Vec<_> =
+        std::fs::read_dir(folder).expect("cases").map(|entry| entry.expect("a case").path()).collect();
     paths.sort();
     assert!(paths.len() > 40, "only {} cases", paths.len());
     let mut wrong = String::new();

@@ -1,8 +1,8 @@
 //! Text forms of readings, and cases in files.
 
 use courseband_table::{
-    ColumnRequest, CovariateValues, DateOrder, DayZero, Exclusion, Layout, Merge, Observations, Reading, Request, Table,
-    TableError,
+    ColumnRequest, CovariateValues, DateOrder, DayZero, Exclusion, Layout, Merge, Observations, Reading, Request,
+    Table, TableError,
 };
 use std::fmt::Write;
 
@@ -94,7 +94,8 @@ pub(crate) fn request(text: &str) -> Request {
             "cluster" => request.cluster = column(),
             "covariate" => request.covariates.push(value.to_string()),
             "exclude" => {
-                let (row, column) = value.split_once(' ').map_or((value, None), |(row, column)| (row, Some(column.to_string())));
+                let (row, column) =
+                    value.split_once(' ').map_or((value, None), |(row, column)| (row, Some(column.to_string())));
                 let row = row.parse().expect("a row number");
                 request.exclusions.push(Exclusion { row, column, reason: "test".to_string() });
             }
@@ -111,7 +112,9 @@ pub(crate) fn request(text: &str) -> Request {
                 });
             }
             "zero" => request.day_zero = if value == "subject" { DayZero::PerSubject } else { DayZero::Common },
-            "dates" => request.date_order = Some(if value == "day" { DateOrder::DayFirst } else { DateOrder::MonthFirst }),
+            "dates" => {
+                request.date_order = Some(if value == "day" { DateOrder::DayFirst } else { DateOrder::MonthFirst })
+            }
             other => panic!("no request {other}"),
         }
     }

@@ -1,7 +1,5 @@
 //! Encodings, and tables that nobody should have made. Nothing here may panic.
 
-
-
 use crate::common;
 use courseband_table::{ColumnRequest, LISTED_PER_KIND, Layout, ProblemKind, Request, Table, TableError, read_bytes};
 use std::path::Path;
@@ -22,7 +20,12 @@ fn utf16(text: &str, big: bool, mark: bool) -> Vec<u8> {
 fn encodings_and_line_ends_make_no_difference() {
     let expected = told(PLAIN.as_bytes());
     assert!(expected.contains("[Grün]: 0=5@2 7=4@3"), "{expected}");
-    for text in [PLAIN.replace('\n', "\r\n"), PLAIN.replace('\n', "\r"), format!("\u{feff}{PLAIN}"), PLAIN.trim_end().to_string()] {
+    for text in [
+        PLAIN.replace('\n', "\r\n"),
+        PLAIN.replace('\n', "\r"),
+        format!("\u{feff}{PLAIN}"),
+        PLAIN.trim_end().to_string(),
+    ] {
         assert_eq!(told(text.as_bytes()), expected, "{text:?}");
     }
     for (big, mark) in [(false, true), (true, true), (false, false), (true, false)] {
@@ -90,11 +93,26 @@ fn try_all(bytes: &[u8]) {
 #[test]
 fn damaged_tables_do_not_panic() {
     let folder = Path::new(env!("CARGO_MANIFEST_DIR")).join("tests/cases");
-    let mut paths: Vec<_> = std::fs::read_dir(folder).expect("cases").map(|entry| entry.expect("a case").path()).collect();
+    let mut paths: Vec<_> =
+        std::fs::read_dir(folder).expect("cases").map(|entry| entry.expect("a case").path()).collect();
     paths.sort();
     let mut numbers = Numbers(20_260);
-    let pieces: [&[u8]; 14] =
-        [b",", b"\n", b"\"", b";", b"\t", b"-", b"1e999", b"\xC3", b"NaN", b"day 7", b"2024-02-30", b"Mean", b"\xE2\x88\x92", b"<"];
+    let pieces: [&[u8]; 14] = [
+        b",",
+        b"\n",
+        b"\"",
+        b";",
+        b"\t",
+        b"-",
+        b"1e999",
+        b"\xC3",
+        b"NaN",
+        b"day 7",
+        b"2024-02-30",
+        b"Mean",
+        b"\xE2\x88\x92",
+        b"<",
+    ];
     for path in paths {
         let text = std::fs::read(&path).expect("a case");
         let start = text.windows(9).position(|window| window == b"== table\n").expect("a table") + 9;
@@ -167,7 +185,11 @@ fn a_flood_of_problems_is_counted_not_listed() {
     let listed = reading.problems.iter().filter(|problem| problem.kind == ProblemKind::NotANumber).count();
     assert_eq!(listed, LISTED_PER_KIND);
     assert!(reading.problem_counts.contains(&(ProblemKind::NotANumber, 3000)));
-    assert!(reading.notes.iter().any(|note| note.contains("3000 responses that are not numbers")), "{:?}", reading.notes);
+    assert!(
+        reading.notes.iter().any(|note| note.contains("3000 responses that are not numbers")),
+        "{:?}",
+        reading.notes
+    );
 }
 
 #[test]

@@ -1,7 +1,5 @@
 //! The descriptive table, the preview, and what a page needs to offer.
 
-
-
 use crate::common;
 use courseband_table::{Merge, Request, Role, Table, Topic, describe};
 

@@ -13,10 +13,7 @@ pub(crate) struct Site {
 
 impl Site {
     pub(crate) fn of(places: &Places) -> Self {
-        Self {
-            page: places.www(),
-            demos: places.demo_data(),
-        }
+        Self { page: places.www(), demos: places.demo_data() }
     }
 
     #[cfg(test)]
@@ -29,10 +26,7 @@ impl Site {
         let path = path.strip_prefix('/')?;
         let (folder, rest) = match path.strip_prefix("demo-data/") {
             Some(rest) => (&self.demos, rest),
-            None => (
-                &self.page,
-                if path.is_empty() { "index.html" } else { path },
-            ),
+            None => (&self.page, if path.is_empty() { "index.html" } else { path }),
         };
         if !is_plain(rest) {
             return None;
@@ -49,18 +43,12 @@ fn is_plain(path: &str) -> bool {
     path.split('/').all(|part| {
         !part.is_empty()
             && !part.starts_with('.')
-            && part
-                .bytes()
-                .all(|byte| byte.is_ascii_alphanumeric() || b"-_.".contains(&byte))
+            && part.bytes().all(|byte| byte.is_ascii_alphanumeric() || b"-_.".contains(&byte))
     })
 }
 
 fn kind_of(file: &Path) -> &'static str {
-    match file
-        .extension()
-        .and_then(|extension| extension.to_str())
-        .unwrap_or_default()
-    {
+    match file.extension().and_then(|extension| extension.to_str()).unwrap_or_default() {
         "html" => "text/html; charset=utf-8",
         "js" | "mjs" => "text/javascript; charset=utf-8",
         "css" => "text/css; charset=utf-8",

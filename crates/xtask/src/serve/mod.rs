@@ -36,13 +36,9 @@ impl Server {
     /// # Errors
     /// When the port is taken.
     pub(crate) fn on(port: u16, places: &Places) -> Outcome<Self> {
-        let listener = TcpListener::bind((Ipv4Addr::LOCALHOST, port)).about(format!(
-            "port {port} (another one can be given with --port)"
-        ))?;
-        Ok(Self {
-            listener,
-            site: Arc::new(Site::of(places)),
-        })
+        let listener = TcpListener::bind((Ipv4Addr::LOCALHOST, port))
+            .about(format!("port {port} (another one can be given with --port)"))?;
+        Ok(Self { listener, site: Arc::new(Site::of(places)) })
     }
 
     /// Where it answers, as a browser wants it.
@@ -50,11 +46,7 @@ impl Server {
     /// # Errors
     /// When the system does not tell the port.
     pub(crate) fn address(&self) -> Outcome<String> {
-        let port = self
-            .listener
-            .local_addr()
-            .map(|address: SocketAddr| address.port())
-            .about("own address")?;
+        let port = self.listener.local_addr().map(|address: SocketAddr| address.port()).about("own address")?;
         Ok(format!("http://localhost:{port}/"))
     }
 
@@ -91,17 +83,10 @@ fn reply(request: &Request, site: &Site) -> Answer {
         return Answer::text("403 Forbidden", "This server answers on localhost only.");
     }
     if !request.only_reads() {
-        return Answer::text(
-            "405 Method Not Allowed",
-            "This server only gives files out.",
-        );
+        return Answer::text("405 Method Not Allowed", "This server only gives files out.");
     }
     match site.file(request.path()) {
-        Some((kind, body)) => Answer {
-            status: "200 OK",
-            kind,
-            body,
-        },
+        Some((kind, body)) => Answer { status: "200 OK", kind, body },
         None => Answer::text("404 Not Found", "There is no such file."),
     }
 }
@@ -115,11 +100,7 @@ struct Answer {
 
 impl Answer {
     fn text(status: &'static str, words: &str) -> Self {
-        Self {
-            status,
-            kind: "text/plain; charset=utf-8",
-            body: words.as_bytes().to_vec(),
-        }
+        Self { status, kind: "text/plain; charset=utf-8", body: words.as_bytes().to_vec() }
     }
 
     fn bytes(&self, with_body: bool) -> Vec<u8> {

@@ -26,8 +26,7 @@ impl Request {
             return Ok(None);
         }
         let mut words = line.split_whitespace();
-        let (Some(method), Some(path), Some(version)) = (words.next(), words.next(), words.next())
-        else {
+        let (Some(method), Some(path), Some(version)) = (words.next(), words.next(), words.next()) else {
             return Err(io::Error::other("not a request"));
         };
         let mut request = Self {
@@ -51,9 +50,7 @@ impl Request {
             };
             match name.to_ascii_lowercase().as_str() {
                 "host" => self.host = value.trim().to_ascii_lowercase(),
-                "connection" if value.trim().eq_ignore_ascii_case("close") => {
-                    self.keeps_open = false
-                }
+                "connection" if value.trim().eq_ignore_ascii_case("close") => self.keeps_open = false,
                 _ => {}
             }
         }

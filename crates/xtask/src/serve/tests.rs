@@ -21,20 +21,13 @@ fn started(name: &str) -> (TcpStream, PathBuf) {
     fs::write(root.join("secret.txt"), "secret").expect("a file");
     let listener = TcpListener::bind((Ipv4Addr::LOCALHOST, 0)).expect("a free port");
     let address = listener.local_addr().expect("an address");
-    let server = Server {
-        listener,
-        site: Arc::new(Site::new(page, demos)),
-    };
+    let server = Server { listener, site: Arc::new(Site::new(page, demos)) };
     thread::spawn(move || server.answer());
     (TcpStream::connect(address).expect("a connection"), root)
 }
 
 fn asked(stream: &mut TcpStream, line: &str, host: &str) -> String {
-    write!(
-        stream,
-        "{line} HTTP/1.1\r\nHost: {host}\r\nConnection: close\r\n\r\n"
-    )
-    .expect("written");
+    write!(stream, "{line} HTTP/1.1\r\nHost: {host}\r\nConnection: close\r\n\r\n").expect("written");
     let mut answer = Vec::new();
     stream.read_to_end(&mut answer).expect("an answer");
     String::from_utf8_lossy(&answer).into_owned()
@@ -53,22 +46,15 @@ fn the_root_is_the_page_under_its_policy() {
     let answer = answer("root", "GET /", "localhost:80");
     assert!(answer.starts_with("HTTP/1.1 200 OK\r\n"), "{answer}");
     assert!(answer.contains("Content-Type: text/html; charset=utf-8\r\n"));
-    assert!(answer.contains(
-        "Content-Security-Policy: default-src 'none'; script-src 'self' 'wasm-unsafe-eval';"
-    ));
+    assert!(answer.contains("Content-Security-Policy: default-src 'none'; script-src 'self' 'wasm-unsafe-eval';"));
     assert!(answer.contains("Cache-Control: no-cache\r\n"));
     assert!(answer.ends_with("\r\n\r\n<p>page"));
 }
 
 #[test]
 fn kinds_are_what_browsers_insist_on() {
-    assert!(
-        answer("wasm", "GET /wasm/a.wasm", "127.0.0.1")
-            .contains("Content-Type: application/wasm\r\n")
-    );
-    assert!(
-        answer("js", "GET /main.js?x=1", "localhost").contains("Content-Type: text/javascript")
-    );
+    assert!(answer("wasm", "GET /wasm/a.wasm", "127.0.0.1").contains("Content-Type: application/wasm\r\n"));
+    assert!(answer("js", "GET /main.js?x=1", "localhost").contains("Content-Type: text/javascript"));
 }
 
 #[test]
@@ -78,13 +64,9 @@ fn the_invented_tables_stand_beside_the_page() {
 
 #[test]
 fn nothing_outside_the_folders_is_given_out() {
-    for path in [
-        "/../secret.txt",
-        "/wasm/../../secret.txt",
-        "/%2e%2e/secret.txt",
-        "//etc/passwd",
-        "/demo-data/../secret.txt",
-    ] {
+    for path in
+        ["/../secret.txt", "/wasm/../../secret.txt", "/%2e%2e/secret.txt", "//etc/passwd", "/demo-data/../secret.txt"]
+    {
         let answer = answer("outside", &format!("GET {path}"), "localhost");
         assert!(answer.starts_with("HTTP/1.1 404"), "{path}: {answer}");
     }
@@ -93,19 +75,14 @@ fn nothing_outside_the_folders_is_given_out() {
 #[test]
 fn other_names_and_other_methods_are_refused() {
     assert!(answer("name", "GET /", "elsewhere.example").starts_with("HTTP/1.1 403"));
-    assert!(
-        answer("suffix", "GET /", "localhost.elsewhere.example:80").starts_with("HTTP/1.1 403")
-    );
+    assert!(answer("suffix", "GET /", "localhost.elsewhere.example:80").starts_with("HTTP/1.1 403"));
     assert!(answer("post", "POST /", "localhost").starts_with("HTTP/1.1 405"));
 }
 
 #[test]
 fn head_gives_the_length_without_the_body() {
     let answer = answer("head", "HEAD /main.js", "localhost");
-    assert!(
-        answer.contains("Content-Length: 6\r\n") && answer.ends_with("\r\n\r\n"),
-        "{answer}"
-    );
+    assert!(answer.contains("Content-Length: 6\r\n") && answer.ends_with("\r\n\r\n"), "{answer}");
 }
 
 #[test]

@@ -13,8 +13,12 @@ use crate::{debian, run};
 pub(crate) fn types(places: &Places) -> Outcome<usize> {
     packages(places)?;
     let compiler = places.browser().join("node_modules/.bin/tsc");
-    run::show(run::command(&compiler.to_string_lossy()).args(["--project", "tests/page/tsconfig.json"]).current_dir(places.root()))
-        .map(|()| 1)
+    run::show(
+        run::command(&compiler.to_string_lossy())
+            .args(["--project", "tests/page/tsconfig.json"])
+            .current_dir(places.root()),
+    )
+    .map(|()| 1)
 }
 
 /// Serves the built page and drives it; compares wasm and native findings.
@@ -22,7 +26,9 @@ pub(crate) fn tests(places: &Places) -> Outcome<usize> {
     packages(places)?;
     let chromium = browser()?;
     run::show(
-        run::command("cargo").args(["build", "--release", "--locked", "--package", "courseband-cli"]).current_dir(places.root()),
+        run::command("cargo")
+            .args(["build", "--release", "--locked", "--package", "courseband-cli"])
+            .current_dir(places.root()),
     )?;
     let server = Server::on(0, places)?;
     let address = server.address()?;

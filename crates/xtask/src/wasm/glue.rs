@@ -9,14 +9,8 @@ use crate::failure::{Failure, Outcome};
 /// What is replaced, and by what. Both stand in wasm-bindgen 0.2.130's glue
 /// of the kind without modules.
 const REPLACED: [(&str, &str); 2] = [
-    (
-        "new URL(document.currentScript.src, location.href).toString()",
-        "undefined",
-    ),
-    (
-        "module_or_path = fetch(module_or_path)",
-        "throw new TypeError('hand over the compiled module, not an address')",
-    ),
+    ("new URL(document.currentScript.src, location.href).toString()", "undefined"),
+    ("module_or_path = fetch(module_or_path)", "throw new TypeError('hand over the compiled module, not an address')"),
 ];
 
 /// What may not be left over.
@@ -44,9 +38,7 @@ fn expect(text: &str, word: &str, times: usize) -> Outcome<()> {
     if found == times {
         return Ok(());
     }
-    Err(Failure::new(format!(
-        "the glue holds `{word}` {found} times, expected {times}: wasm-bindgen has changed"
-    )))
+    Err(Failure::new(format!("the glue holds `{word}` {found} times, expected {times}: wasm-bindgen has changed")))
 }
 
 #[cfg(test)]

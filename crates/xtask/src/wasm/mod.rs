@@ -84,11 +84,7 @@ fn write_page(places: &Places, bytes: Vec<u8>, stamp: &str) -> Outcome<()> {
 }
 
 fn files() -> [String; 3] {
-    [
-        format!("{NAME}.js"),
-        format!("{NAME}.d.ts"),
-        format!("{NAME}_bg.wasm"),
-    ]
+    [format!("{NAME}.js"), format!("{NAME}.d.ts"), format!("{NAME}_bg.wasm")]
 }
 
 /// Names the module's bytes and how they are treated.
@@ -114,10 +110,7 @@ impl Hidden {
         let mut pairs = Vec::new();
         if let Some(home) = home() {
             pairs.push((home.clone(), "/home"));
-            pairs.push((
-                env::var_os("CARGO_HOME").map_or_else(|| home.join(".cargo"), PathBuf::from),
-                "/cargo",
-            ));
+            pairs.push((env::var_os("CARGO_HOME").map_or_else(|| home.join(".cargo"), PathBuf::from), "/cargo"));
         }
         let mut sysroots = route.sysroots();
         sysroots.reverse();
@@ -145,10 +138,7 @@ impl Hidden {
     fn check(&self, wasm: &[u8]) -> Outcome<()> {
         for (path, _) in &self.0 {
             if holds(wasm, path) {
-                return Err(Failure::new(format!(
-                    "the wasm names a folder of this machine: {}",
-                    path.display()
-                )));
+                return Err(Failure::new(format!("the wasm names a folder of this machine: {}", path.display())));
             }
         }
         Ok(())
@@ -158,16 +148,11 @@ impl Hidden {
 fn holds(bytes: &[u8], path: &Path) -> bool {
     // Debian's toolchain sits in /usr, too short a name to search for.
     let needle = format!("{}/", path.display());
-    needle.len() > "/usr/".len()
-        && bytes
-            .windows(needle.len())
-            .any(|window| window == needle.as_bytes())
+    needle.len() > "/usr/".len() && bytes.windows(needle.len()).any(|window| window == needle.as_bytes())
 }
 
 fn home() -> Option<PathBuf> {
-    env::var_os("HOME")
-        .or_else(|| env::var_os("USERPROFILE"))
-        .map(PathBuf::from)
+    env::var_os("HOME").or_else(|| env::var_os("USERPROFILE")).map(PathBuf::from)
 }
 
 #[cfg(test)]
@@ -176,14 +161,8 @@ mod tests {
 
     #[test]
     fn a_machine_path_is_found() {
-        assert!(holds(
-            b"panicked at /somewhere/else/lib.rs",
-            Path::new("/somewhere/else")
-        ));
-        assert!(!holds(
-            b"panicked at /courseband/lib.rs",
-            Path::new("/somewhere/else")
-        ));
+        assert!(holds(b"panicked at /somewhere/else/lib.rs", Path::new("/somewhere/else")));
+        assert!(!holds(b"panicked at /courseband/lib.rs", Path::new("/somewhere/else")));
     }
 
     #[test]

@@ -79,9 +79,7 @@ impl Route {
         cargo.args(["build", "--target", TARGET]);
         if let Self::Debian { linker, .. } = self {
             as_debian(&mut cargo);
-            cargo
-                .env("RUSTC", "/usr/bin/rustc")
-                .env("RUSTC_BOOTSTRAP", "1");
+            cargo.env("RUSTC", "/usr/bin/rustc").env("RUSTC_BOOTSTRAP", "1");
             cargo.env("CARGO_TARGET_WASM32_UNKNOWN_UNKNOWN_LINKER", linker);
             cargo.arg("-Zbuild-std=std,panic_abort");
         }
@@ -109,20 +107,11 @@ impl Route {
 
 /// Takes away what points at another toolchain than Debian's.
 fn as_debian(command: &mut Command) {
-    for name in [
-        "RUSTUP_TOOLCHAIN",
-        "RUSTUP_HOME",
-        "CARGO",
-        "RUSTC",
-        "RUSTDOC",
-        "LD_LIBRARY_PATH",
-    ] {
+    for name in ["RUSTUP_TOOLCHAIN", "RUSTUP_HOME", "CARGO", "RUSTC", "RUSTDOC", "LD_LIBRARY_PATH"] {
         command.env_remove(name);
     }
     let path = env::var_os("PATH").unwrap_or_default();
-    let first = [PathBuf::from("/usr/bin")]
-        .into_iter()
-        .chain(env::split_paths(&path));
+    let first = [PathBuf::from("/usr/bin")].into_iter().chain(env::split_paths(&path));
     if let Ok(joined) = env::join_paths(first) {
         command.env("PATH", joined);
     }
@@ -131,17 +120,12 @@ fn as_debian(command: &mut Command) {
 /// The active toolchain, when its wasm32 library is really there: rustc names
 /// the folder without looking whether it exists.
 fn active() -> Option<Route> {
-    let folder =
-        run::read(run::command("rustc").args(["--print", "target-libdir", "--target", TARGET]))
-            .ok()?;
+    let folder = run::read(run::command("rustc").args(["--print", "target-libdir", "--target", TARGET])).ok()?;
     let has_core = fs::read_dir(folder.trim()).ok()?.flatten().any(|entry| {
         let name = entry.file_name().to_string_lossy().into_owned();
         name.starts_with("libcore-") && name.ends_with(".rlib")
     });
-    let version = run::read(run::command("rustc").arg("--version"))
-        .ok()?
-        .trim()
-        .to_owned();
+    let version = run::read(run::command("rustc").arg("--version")).ok()?.trim().to_owned();
     has_core.then_some(Route::Active { version })
 }
 
@@ -151,14 +135,11 @@ fn added() -> Outcome<Route> {
         return Err(Failure::new("rustup is not installed"));
     }
     if env::var("RUSTUP_AUTO_INSTALL").is_ok_and(|value| value == "0") {
-        return Err(Failure::new(
-            "RUSTUP_AUTO_INSTALL=0 says that rustup is to fetch nothing",
-        ));
+        return Err(Failure::new("RUSTUP_AUTO_INSTALL=0 says that rustup is to fetch nothing"));
     }
     println!("Adding {TARGET} with rustup");
     run::show(run::command("rustup").args(["target", "add", TARGET]))?;
-    active()
-        .ok_or_else(|| Failure::new(format!("rustup added {TARGET}, yet rustc does not find it")))
+    active().ok_or_else(|| Failure::new(format!("rustup added {TARGET}, yet rustc does not find it")))
 }
 
 /// Debian's compiler, installed first where that is possible.
@@ -167,12 +148,8 @@ fn debians_own() -> Outcome<Route> {
         return Ok(route);
     }
     debian::install(&PACKAGES)?;
-    debian_installed().ok_or_else(|| {
-        Failure::new(format!(
-            "Debian's {} are installed but do not fit",
-            PACKAGES.join(" ")
-        ))
-    })
+    debian_installed()
+        .ok_or_else(|| Failure::new(format!("Debian's {} are installed but do not fit", PACKAGES.join(" "))))
 }
 
 fn debian_installed() -> Option<Route> {
@@ -191,14 +168,11 @@ fn debian_installed() -> Option<Route> {
 
 /// `/usr/bin/wasm-ld-N` with the highest N.
 fn newest_linker() -> Option<PathBuf> {
-    let numbered = fs::read_dir("/usr/bin")
-        .ok()?
-        .flatten()
-        .filter_map(|entry| {
-            let name = entry.file_name().to_string_lossy().into_owned();
-            let number: u32 = name.strip_prefix("wasm-ld-")?.parse().ok()?;
-            Some((number, entry.path()))
-        });
+    let numbered = fs::read_dir("/usr/bin").ok()?.flatten().filter_map(|entry| {
+        let name = entry.file_name().to_string_lossy().into_owned();
+        let number: u32 = name.strip_prefix("wasm-ld-")?.parse().ok()?;
+        Some((number, entry.path()))
+    });
     numbered.max().map(|(_, path)| path)
 }
 

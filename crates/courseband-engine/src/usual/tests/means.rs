@@ -75,11 +75,9 @@ fn days_that_cannot_be_tested_name_the_group_and_leave_the_family() {
 fn summaries_agree_with_numpy_and_statsmodels() {
     let panel = invented();
     let pairs = [(0, 1), (0, 2), (1, 2)];
-    for (name, measure) in [
-        ("area", SummaryMeasure::Area),
-        ("level", SummaryMeasure::MeanLevel),
-        ("slope", SummaryMeasure::Slope),
-    ] {
+    for (name, measure) in
+        [("area", SummaryMeasure::Area), ("level", SummaryMeasure::MeanLevel), ("slope", SummaryMeasure::Slope)]
+    {
         let result = compare_summaries(&panel, measure, &pairs, 0.95);
         assert_eq!(result.left_out, 0);
         for (subject, value) in result.by_subject.iter().enumerate() {

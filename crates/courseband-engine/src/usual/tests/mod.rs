@@ -28,8 +28,7 @@ fn check(case: &str, quantity: &str, value: f64) {
 
 /// The invented panel: 3 groups of 9, 6 and 12 subjects, six uneven days, some values missing.
 fn invented() -> Panel {
-    let mut panel =
-        Panel { group_of_subject: vec![], groups: 3, times: vec![], values: vec![] };
+    let mut panel = Panel { group_of_subject: vec![], groups: 3, times: vec![], values: vec![] };
     for line in include_str!("../../../tests/data/invented_panel.csv").lines().skip(1) {
         let cells: Vec<&str> = line.split(',').collect();
         let (subject, time): (usize, f64) = (cells[0].parse().unwrap(), cells[2].parse().unwrap());

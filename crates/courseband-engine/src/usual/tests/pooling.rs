@@ -55,10 +55,8 @@ fn interval_and_p_value_belong_together() {
 #[test]
 fn pooled_curve_is_each_point_pooled_with_the_joint_covariance() {
     let curves: Vec<Vec<f64>> = ESTIMATES.iter().map(|q| vec![*q, 2.0 * q + 1.0, 0.0]).collect();
-    let covariances: Vec<Vec<f64>> = VARIANCES
-        .iter()
-        .map(|u| vec![*u, u / 2.0, 0.0, u / 2.0, 3.0 * u, 0.0, 0.0, 0.0, 0.0])
-        .collect();
+    let covariances: Vec<Vec<f64>> =
+        VARIANCES.iter().map(|u| vec![*u, u / 2.0, 0.0, u / 2.0, 3.0 * u, 0.0, 0.0, 0.0, 0.0]).collect();
     let curve = pool_curves(&curves, &covariances, 30.0).unwrap();
     let point = pool(&ESTIMATES, &VARIANCES, 30.0).unwrap();
     assert!((curve.estimate[1] - 3.4).abs() < 1e-12);
