@@ -161,7 +161,7 @@ fn search(data: &Data, design: &Design, model: &Model, layout: &Layout) -> Resul
     if (0..design.bases.len()).any(|g| point.theta[layout.error[g]] < -34.0) {
         return Err(FitError::NoVariation);
     }
-    if found.polished.decrement > 1e-4 {
+    if found.polished.decrement > STOPPED_SHORT {
         return Err(FitError::NotConverged { decrement: found.polished.decrement });
     }
     Ok(found)
@@ -186,6 +186,32 @@ fn sample(data: &Data) -> Option<Data> {
     kept.iter().all(|&count| count >= 20).then_some(Data { groups: data.groups, subjects })
 }
 
+/// A predicted further fall of the criterion above this is no optimum.
+const STOPPED_SHORT: f64 = 1e-4;
+
+/// From a start to the optimum that it leads to.
+fn climb(
+    criterion: &mut Criterion,
+    bounds: &Bounds,
+    layout: &Layout,
+    begin: Point,
+    plain: &DMatrix<f64>,
+) -> Result<Polished, FitError> {
+    let rows: usize = criterion.design.rows.iter().sum();
+    let tolerance = 1e-5 * libm::sqrt(1.0 + rows as f64);
+    let mut point = quasi_newton(criterion, bounds, begin, plain, tolerance, 300);
+    for _ in 0..3 {
+        let before = point.theta.clone();
+        point = snap(criterion, bounds, layout, point);
+        point = revive(criterion, bounds, layout, point);
+        if point.theta == before {
+            break;
+        }
+        point = quasi_newton(criterion, bounds, point, plain, tolerance, 100);
+    }
+    newton(criterion, bounds, point, 12).ok_or(FitError::NoStart)
+}
+
 fn search_fully(design: &Design, model: &Model, layout: &Layout) -> Result<Found, FitError> {
     let mut criterion = Criterion::new(design, layout);
     let bounds = Bounds { lower: &layout.lower, upper: &layout.upper };
@@ -199,18 +225,29 @@ fn search_fully(design: &Design, model: &Model, layout: &Layout) -> Result<Found
         spent += used;
         serial_start(&mut criterion, &bounds, layout, theta, &plain)?
     };
-    let tolerance = 1e-5 * libm::sqrt(1.0 + 2.0 * scale);
-    let mut point = quasi_newton(&mut criterion, &bounds, begin, &plain, tolerance, 300);
-    for _ in 0..3 {
-        let before = point.theta.clone();
-        point = snap(&mut criterion, &bounds, layout, point);
-        point = revive(&mut criterion, &bounds, layout, point);
-        if point.theta == before {
+    let mut polished = climb(&mut criterion, &bounds, layout, begin.clone(), &plain)?;
+    // A ridge can stop the climb short of its top: begin again from other places, and keep the best.
+    for (level, trend, smooth) in [(-0.3, -3.0, -1.0), (-1.5, -1.5, 4.0), (-3.0, -4.0, 0.0)] {
+        if polished.decrement <= STOPPED_SHORT {
             break;
         }
-        point = quasi_newton(&mut criterion, &bounds, point, &plain, tolerance, 100);
+        let mut theta = begin.theta.clone();
+        for (entry, value) in layout.entries.iter().zip(theta.iter_mut()) {
+            match entry {
+                Parameter::Smoothing(_) => *value = smooth,
+                Parameter::Subject { part: 0, .. } => *value = level,
+                Parameter::Subject { part: 1, .. } => *value = 0.0,
+                Parameter::Subject { .. } => *value = trend,
+                _ => {}
+            }
+        }
+        if let Some(again) = start(&mut criterion, &bounds, theta) {
+            let other = climb(&mut criterion, &bounds, layout, again, &plain)?;
+            if other.point.value < polished.point.value + 1e-6 && other.decrement < polished.decrement {
+                polished = other;
+            }
+        }
     }
-    let polished = newton(&mut criterion, &bounds, point, 12).ok_or(FitError::NoStart)?;
     Ok(Found { polished, evaluations: spent + criterion.evaluations })
 }
 

@@ -1,3 +1,5 @@
+//! Checks of the quantile of the largest joint z or t against values from outside.
+
 use super::*;
 
 /// Quadrature values and their generator: tests/reference/max_quantile.py (it reproduces the two-sided table of Dunnett

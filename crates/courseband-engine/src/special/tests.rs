@@ -1,3 +1,5 @@
+//! Checks of the special functions against values from outside.
+
 use super::*;
 
 /// Reference values and their generator: tests/reference/special.py.

@@ -1,3 +1,5 @@
+//! Checks of the usual analyses: means against values from outside.
+
 use super::super::*;
 use super::{check, invented};
 
