@@ -8,18 +8,17 @@ import assert from 'node:assert/strict';
 import { execFileSync } from 'node:child_process';
 import { readFileSync } from 'node:fs';
 import { test } from 'node:test';
-import vm from 'node:vm';
 
 const root = new URL('../../', import.meta.url);
 const file = (path) => new URL(path, root);
 const native = process.env.COURSEBAND_NATIVE ?? '';
 
+/** The glue is a plain script that leaves one name; a function body keeps that name to itself. */
 function wasmSession() {
   const glue = readFileSync(file('www/wasm/courseband.js'), 'utf8');
-  const context = vm.createContext({ TextDecoder, TextEncoder, WebAssembly, console, performance, Error, self: {} });
-  vm.runInContext(`${glue}\n;globalThis.made = wasm_bindgen;`, context);
-  context.made.initSync({ module: new WebAssembly.Module(readFileSync(file('www/wasm/courseband_bg.wasm'))) });
-  return new context.made.Session();
+  const made = new Function(`${glue}\nreturn wasm_bindgen;`)();
+  made.initSync({ module: new WebAssembly.Module(readFileSync(file('www/wasm/courseband_bg.wasm'))) });
+  return new made.Session();
 }
 
 /** The first difference over the tolerance, as a path, or null. */
