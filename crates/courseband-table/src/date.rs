@@ -129,3 +129,6 @@ fn days_from_civil(year: i64, month: u32, day: u32) -> Option<i64> {
     let day_of_era = year_of_era * 365 + year_of_era / 4 - year_of_era / 100 + day_of_year;
     Some(era * 146_097 + day_of_era - 719_468)
 }
+
+#[cfg(test)]
+mod tests;

@@ -104,13 +104,23 @@ pub(crate) fn number(cell: &str, decimal: Decimal) -> Result<f64, NotNumber> {
     }
 }
 
-/// Digits, a point and a sign: most cells, read without further ado.
+/// Digits, the decimal mark and a sign: most cells, read without further ado.
 fn quick(cell: &str, decimal: Decimal) -> Option<f64> {
-    let simple = |byte: u8| byte.is_ascii_digit() || byte == b'-' || (byte == b'.' && decimal == Decimal::Point);
-    match cell.len() <= 32 && cell.bytes().all(simple) {
-        true => cell.parse().ok(),
-        false => None,
+    let mark = match decimal {
+        Decimal::Point => b'.',
+        Decimal::Comma => b',',
+    };
+    let simple = |byte: u8| byte.is_ascii_digit() || byte == b'-' || byte == mark;
+    if cell.len() > 32 || !cell.bytes().all(simple) {
+        return None;
     }
+    if decimal == Decimal::Point {
+        return cell.parse().ok();
+    }
+    let mut digits = [0; 32];
+    digits[..cell.len()].copy_from_slice(cell.as_bytes());
+    digits.iter_mut().filter(|byte| **byte == b',').for_each(|byte| *byte = b'.');
+    std::str::from_utf8(&digits[..cell.len()]).ok()?.parse().ok()
 }
 
 /// The general case: white space, other minus signs, decimal commas, thousands.
@@ -229,6 +239,12 @@ impl MarkEvidence {
             self.point += 1;
             return;
         }
+        // Three digits behind a comma may be thousands.
+        let behind = bytes.iter().rev().take_while(|&&byte| byte != b',').count();
+        if behind != 3 && quick(cell, Decimal::Comma).is_some() {
+            self.comma += 1;
+            return;
+        }
         let cell = cell.trim();
         let as_point = strict(cell, Decimal::Point).is_some();
         let as_comma = strict(cell, Decimal::Comma).is_some();
@@ -258,3 +274,6 @@ impl MarkEvidence {
         if unclear && file_comma { Decimal::Comma } else { Decimal::Point }
     }
 }
+
+#[cfg(test)]
+mod tests;

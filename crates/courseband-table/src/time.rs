@@ -324,3 +324,6 @@ fn one_unit<'a>(
     });
     Ok(Times { values: values.collect(), unit: Some(smallest), are_dates: false, note })
 }
+
+#[cfg(test)]
+mod tests;

@@ -87,3 +87,6 @@ fn before_stem(name: &str) -> Option<TimeHead> {
     }
     None
 }
+
+#[cfg(test)]
+mod tests;
