@@ -1,3 +1,5 @@
+//! Reading of date: cases in memory.
+
 use super::*;
 
 #[test]

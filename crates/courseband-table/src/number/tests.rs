@@ -1,3 +1,5 @@
+//! Reading of number: cases in memory.
+
 use super::*;
 
 fn told(cell: &str, decimal: Decimal) -> String {

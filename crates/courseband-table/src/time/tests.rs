@@ -1,3 +1,5 @@
+//! Reading of time: cases in memory.
+
 use super::*;
 
 fn told(cell: &str) -> String {

@@ -1,3 +1,5 @@
+//! Reading of heads: cases in memory.
+
 use super::*;
 
 fn told(name: &str) -> String {
