@@ -54,6 +54,15 @@ test('a pasted wide table gives findings', async () => {
   await page.context().close();
 });
 
+test('one animal a group: the page draws, and claims no gap', async () => {
+  const page = await openPage(browser);
+  const rows = [0, 1].flatMap((s) => [0, 2, 4, 6, 8, 10, 12].map((t) => `m${s},${s ? 'b' : 'a'},${t},${value(s, t)}`));
+  await paste(page, ['mouse,arm,day,score', ...rows].join('\n'));
+  assert.match(await findingsOf(page), /cannot be compared/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
 test('what is no table is said, and nothing is lost', async () => {
   const page = await openPage(browser);
   await enter(page, 'data');

@@ -64,14 +64,14 @@ impl Evaluation<'_> {
 
     fn pair_effect(&self, from: usize, to: usize, difference: &Difference) -> PairEffects {
         let gap = |t: f64| self.fit.gap(from, to, t);
-        let support = self.overlap(from, to);
+        let support = self.overlap(from, to).filter(|_| !self.is_lone(from, to));
         let asked = self.plan.comparisons.landmark;
         let inside = |t: &f64| support.is_some_and(|[low, high]| *t >= low && *t <= high);
         let landmark_time = asked.or(difference.at_visits.time.last().copied()).filter(inside);
         let average = support.and_then(|support| self.average(gap, support));
         let ratio = self.is_ratio();
         let span = support.map_or(0.0, |[low, high]| high - low);
-        let (onset, onset_direction) = match self.onset(difference, &gap) {
+        let (onset, onset_direction) = match support.and_then(|_| self.onset(difference, &gap)) {
             Some((onset, direction)) => (Some(onset), Some(direction)),
             None => (None, None),
         };

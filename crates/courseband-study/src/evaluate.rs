@@ -120,7 +120,7 @@ impl<'a> Evaluation<'a> {
 
     /// Estimates at `times`; none outside support where each time has a mean of its own.
     fn estimates(&self, contrast: impl Fn(f64) -> Contrast, times: &[f64], support: [f64; 2]) -> Vec<Option<Estimate>> {
-        let everywhere = self.plan.curves.shape != Shape::ByTime;
+        let everywhere = self.plan.curves.shape != Shape::ByTime && support[0] <= support[1];
         let within = |t: f64| t >= support[0] && t <= support[1];
         times.iter().map(|&t| (everywhere || within(t)).then(|| self.posterior.estimate(&contrast(t)))).collect()
     }
@@ -225,7 +225,8 @@ impl<'a> Evaluation<'a> {
             (e.mean - reach, e.mean + reach)
         };
         let (mut stretches, mut beyond, mut inside) = (Vec::new(), Vec::new(), Vec::new());
-        if let Some(support) = support {
+        let told = !self.is_lone(from, to);
+        if let Some(support) = support.filter(|_| told) {
             let points = self.inside(support);
             let limits: Vec<(f64, f64)> = points.iter().map(|&t| limits_at(t)).collect();
             let runs = |value: &dyn Fn((f64, f64)) -> f64| {
@@ -252,14 +253,27 @@ impl<'a> Evaluation<'a> {
             from: self.cohort.groups[from].name.clone(),
             to: self.cohort.groups[to].name.clone(),
             critical: family.critical(&estimates),
-            grid: self.difference_points(self.grid.clone(), &estimates, family),
+            grid: self.difference_points(self.grid.clone(), &estimates, family).bounded(told),
             support,
             margin,
-            p_adjusted: support.and_then(|support| self.p_adjusted(&self.inside(support), &gap, family)),
+            p_adjusted: support
+                .filter(|_| told)
+                .and_then(|support| self.p_adjusted(&self.inside(support), &gap, family)),
             stretches,
             beyond,
             inside,
-            at_visits: self.difference_points(visits, &at_visits, family),
+            at_visits: self.difference_points(visits, &at_visits, family).bounded(told),
+        }
+    }
+
+    /// True where a gap between the groups cannot be told from a difference between two subjects: nowhere is
+    /// there a second subject of a group to show how subjects differ.
+    pub(crate) fn is_lone(&self, from: usize, to: usize) -> bool {
+        let groups = &self.cohort.groups;
+        if self.plan.subjects_spread == crate::plan::Sharing::ByGroup {
+            groups[from].subjects < 2 || groups[to].subjects < 2
+        } else {
+            groups.iter().all(|group| group.subjects < 2)
         }
     }
 
@@ -319,5 +333,17 @@ impl Limits {
             lower: column(&|e| e.mean - reach(e)),
             upper: column(&|e| e.mean + reach(e)),
         }
+    }
+}
+
+impl DifferencePoints {
+    /// Without limits and standard errors where these cannot be told.
+    fn bounded(mut self, told: bool) -> Self {
+        if !told {
+            let limits =
+                [&mut self.se, &mut self.lower, &mut self.upper, &mut self.response_lower, &mut self.response_upper];
+            limits.into_iter().chain([&mut self.df]).for_each(|values| values.fill(None));
+        }
+        self
     }
 }

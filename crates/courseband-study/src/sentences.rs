@@ -47,12 +47,12 @@ impl Speaker<'_> {
         let runs = match (one_way, directions.first()) {
             (true, Some(Direction::Above)) => "runs above",
             (true, Some(Direction::Below)) => "runs below",
-            _ => "runs above and below",
+            _ => "crosses",
         };
-        let mut text = Vec::new();
-        if let Some(t) = self.landmark() {
-            text.extend(self.reading_at(t));
-        }
+        let mut landmarks: Vec<f64> =
+            [Direction::Above, Direction::Below].into_iter().filter_map(|side| self.landmark(side)).collect();
+        landmarks.sort_by(f64::total_cmp);
+        let mut text: Vec<String> = landmarks.into_iter().filter_map(|t| self.reading_at(t)).collect();
         text.push(self.days());
         text.extend(self.onset());
         if let Some(rest) = self.rest() {
@@ -64,13 +64,22 @@ impl Speaker<'_> {
     fn undecided(&self) -> Sentence {
         let d = self.difference;
         let Some(support) = d.support else {
-            let text = "They were never followed at the same time, so they cannot be compared.".to_string();
-            return self.sentence("none-apart", format!("{} and {}.", d.to, d.from), text);
+            let text = "They were never followed at the same time.".to_string();
+            return self.sentence("none-apart", format!("{} and {} cannot be compared.", d.to, d.from), text);
         };
+        if d.at_visits.se.iter().all(Option::is_none) {
+            let word = &self.findings.plan.words.subject;
+            let text = format!(
+                "There are too few {} to show how they differ, so a gap between the groups cannot be told from a gap \
+                 between one {word} and another.",
+                self.findings.plan.words.subjects
+            );
+            return self.sentence("none-apart", format!("{} and {} cannot be compared.", d.to, d.from), text);
+        }
         let mut text = Vec::new();
         let whole = |s: &Stretch| s.open_start && s.open_end;
         let headline = if d.inside.iter().any(whole) {
-            text.push(format!("Over the whole course the band lies inside {}.", self.margin()));
+            text.push(format!("Over {} the band lies inside \u{b1}{}.", self.whole(), self.margin()));
             format!("{} stays with {}.", d.to, d.from)
         } else {
             format!("{} and {} are not shown apart.", d.to, d.from)
@@ -93,10 +102,11 @@ impl Speaker<'_> {
         Sentence { kind: kind.into(), pair: Some(self.index), headline, text, depends }
     }
 
-    /// The last visit inside the longest stretch.
-    fn landmark(&self) -> Option<f64> {
+    /// The last visit inside the longest stretch on this side.
+    fn landmark(&self, side: Direction) -> Option<f64> {
         let d = self.difference;
-        let longest = d.stretches.iter().max_by(|a, b| (a.end - a.start).total_cmp(&(b.end - b.start)))?;
+        let own = d.stretches.iter().filter(|s| s.direction == Some(side));
+        let longest = own.max_by(|a, b| (a.end - a.start).total_cmp(&(b.end - b.start)))?;
         let visits = d.at_visits.time.iter().copied().filter(|&t| t >= longest.start && t <= longest.end);
         Some(visits.last().unwrap_or(0.5 * (longest.start + longest.end)))
     }
@@ -112,12 +122,16 @@ impl Speaker<'_> {
         let when = self.when(t);
         Some(if self.findings.scale.ratio {
             let [e, l, u] = shares(estimate, lower, upper);
-            format!("At {when} it is {e} of {} ({l} to {u}).", d.from)
+            format!("At {when} {} is {e} of {} ({l} to {u}).", d.to, d.from)
         } else {
-            let digits = decimals(upper - lower);
+            let least = decimals(upper - lower);
+            // A limit that excludes zero is not printed as zero.
+            let zero = |digits: &usize| [lower, upper].iter().any(|x| number(*x, *digits) == number(0.0, *digits));
+            let digits = (least..least + 4).find(|digits| !zero(digits)).unwrap_or(least);
             let word = if estimate >= 0.0 { "above" } else { "below" };
             format!(
-                "At {when} it is {} {word} {} (difference {} to {}).",
+                "At {when} {} is {} {word} {} (difference {} to {}).",
+                d.to,
                 number(estimate.abs(), digits),
                 d.from,
                 number(lower, digits),
@@ -145,7 +159,7 @@ impl Speaker<'_> {
             parts.push(format!("shown beyond {} {}", self.margin(), list(&d.beyond)));
         }
         let many = &self.findings.plan.words.subjects;
-        let text = parts.join(", ");
+        let text = parts.join(", and ");
         let mut letters = text.chars();
         let capital = letters.next().map(|c| c.to_uppercase().collect::<String>()).unwrap_or_default();
         let times = |s: &Stretch| usize::from(!s.open_start) + usize::from(!s.open_end);
@@ -207,10 +221,29 @@ impl Speaker<'_> {
 
     fn span(&self, s: &Stretch) -> String {
         match (s.open_start, s.open_end) {
-            (true, true) => "over the whole course".into(),
+            (true, true) => format!("over {}", self.whole()),
             (true, false) => format!("up to {}", self.edge(s.end)),
+            (false, true) if self.ends_early() => {
+                format!("from {} to {}, the last visit of both", self.edge(s.start), self.edge(s.end))
+            }
             (false, true) => format!("from {} to the last visit", self.edge(s.start)),
             (false, false) => format!("from {} to {}", self.edge(s.start), self.edge(s.end)),
+        }
+    }
+
+    /// True where one of the pair is not followed to the end of the table.
+    fn ends_early(&self) -> bool {
+        let last = self.findings.visits.last().copied();
+        self.difference.support.is_some_and(|[_, high]| Some(high) != last)
+    }
+
+    /// The whole time that both were followed.
+    fn whole(&self) -> String {
+        match self.difference.support {
+            Some([low, high]) if self.ends_early() || Some(&low) != self.findings.visits.first() => {
+                format!("the time that both were followed, {} to {}", self.edge(low), self.bare(high))
+            }
+            _ => "the whole course".into(),
         }
     }
 
@@ -249,29 +282,41 @@ impl Speaker<'_> {
     }
 }
 
-/// A sentence where few are still followed at the end.
+/// A sentence where few are measured at the end, or a group ended earlier.
 fn few_left(findings: &Findings) -> Option<Sentence> {
     let (first, last) = (*findings.visits.first()?, *findings.visits.last()?);
     // Where everybody's days differ, the end is the last twentieth of the follow-up.
     let end = last - 0.05 * (last - first);
-    let words = &findings.plan.words;
-    let thin: Vec<String> = (findings.groups.iter())
-        .filter_map(|g| {
-            let left = g.last_times.iter().filter(|&&t| t >= end).count();
-            let few = g.subjects > 0 && (2 * left < g.subjects || left < 5);
-            (few && left < g.subjects).then(|| format!("{left} of {} in {}", g.subjects, g.name))
-        })
-        .collect();
-    (!thin.is_empty()).then(|| Sentence {
+    let (words, time) = (&findings.plan.words, &findings.scale.time_word);
+    let (mut thin, mut over) = (Vec::new(), Vec::new());
+    for group in &findings.groups {
+        let left = group.last_times.iter().filter(|&&t| t >= end).count();
+        let few = 2 * left < group.subjects || left < 5;
+        match (left, group.last_times.last()) {
+            (0, Some(&t)) => over.push(format!("{} is not measured after {time} {}", group.name, plain(t))),
+            _ if few && left < group.subjects => thin.push(format!("{left} of {} in {}", group.subjects, group.name)),
+            _ => {}
+        }
+    }
+    let mut parts = Vec::new();
+    if !thin.is_empty() {
+        let from = plain(findings.visits.iter().copied().find(|&t| t >= end).unwrap_or(last));
+        let many = joined(&thin);
+        parts.push(format!("From {time} {from} on only {many} are measured: the end of the courses rests on them."));
+    }
+    if !over.is_empty() {
+        parts.push(format!("{}.", joined(&over)));
+    }
+    let headline = if thin.is_empty() {
+        "Follow-up differs between the groups.".to_string()
+    } else {
+        format!("Few {} are measured at the end.", words.subjects)
+    };
+    (!parts.is_empty()).then(|| Sentence {
         kind: "followed".into(),
         pair: None,
-        headline: format!("Few {} are left at the end.", words.subjects),
-        text: format!(
-            "From {} {} on only {} are still followed: the end of the courses rests on them.",
-            findings.scale.time_word,
-            plain(findings.visits.iter().copied().find(|&t| t >= end).unwrap_or(last)),
-            joined(&thin)
-        ),
+        headline,
+        text: parts.join(" "),
         depends: format!("{} {}, {} measurements", findings.subjects, words.subjects, findings.rows),
     })
 }
