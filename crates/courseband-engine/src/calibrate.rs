@@ -10,7 +10,7 @@
 //!    measurement error, by a seeded random-walk Metropolis chain
 //!    (Metropolis et al. 1953; Gelman, Roberts & Gilks 1996 for the step);
 //! 2. a truth is drawn from the posterior of the curves given these;
-//! 3. new subject effects and errors are drawn, the model is refitted;
+//! 3. new cluster effects, subject effects and errors are drawn, the model is refitted;
 //! 4. the largest |estimate - truth| / SE over the family is kept.
 //!
 //! The critical value is the quantile of the kept values. A refit that fails counts
@@ -71,7 +71,7 @@ impl Calibration {
                 .iter()
                 .filter_map(|contrast| {
                     let (mean, se) = posterior.inner_estimate(contrast);
-                    (se > 0.0).then(|| (mean - contrast_value(contrast, &truth)).abs() / se)
+                    (se > 0.0).then(|| (mean - contrast_value(&self.fit.design.placement, contrast, &truth)).abs() / se)
                 })
                 .fold(0.0, f64::max)
         };
@@ -182,7 +182,8 @@ fn log_density(criterion: &mut Criterion, fit: &Fit, theta: &[f64]) -> Option<f6
         .map(|(entry, &value)| match entry {
             Parameter::Smoothing(_) => 0.5 * value,
             Parameter::Error(_) => 0.0,
-            Parameter::Subject { part: 1, .. } => 0.0,
+            Parameter::Subject { part: 1, .. } | Parameter::Cluster { part: 1 } => 0.0,
+            Parameter::Shared(_) => 0.5 * value,
             Parameter::Rate => value - libm::exp(value) * gap,
             Parameter::Nugget => -value - 2.0 * libm::log1p(libm::exp(-value)),
             // The logarithm of a standard deviation.

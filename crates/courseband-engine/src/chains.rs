@@ -9,7 +9,7 @@
 //! whatever the number of subjects, and per pattern only `Z'T` is formed:
 //! O(n K q) per pattern and O(n q) per subject.
 
-use crate::reduce::{Design, Pattern, PatternProducts, Products, Step, empty_products};
+use crate::reduce::{Design, GroupProducts, Pattern, PatternProducts, Products, Step, empty_products};
 use nalgebra::DMatrix;
 
 /// What one step adds to the precision, or the derivative of that for `ln rate`.
@@ -64,12 +64,16 @@ fn products(design: &Design, links: &[Vec<Link>], plain: &[Vec<Link>], unit: f64
     let mut target = empty_products(design);
     for g in 0..design.bases.len() {
         let group = &mut target.groups[g];
-        group.ff = group_gram(design, g, &links[g], unit);
+        let own = group_gram(design, g, &links[g], unit);
+        group.ff.view_mut((0, 0), own.shape()).copy_from(&own);
         group.log_det = design.steps[g].iter().zip(&links[g]).map(|(step, link)| step.count * link.log).sum();
     }
     let mut sums: Vec<Vec<f64>> = design.seen.iter().map(|seen| vec![0.0; seen.len()]).collect();
     for pattern in &design.patterns {
         let g = pattern.group;
+        if design.shared.columns() > 0 {
+            add_shared(design, pattern, &links[g], unit, &mut target.groups[g]);
+        }
         let (part, yy) = pattern_products(design, pattern, (&links[g], unit), &plain[g], &mut sums[g]);
         target.groups[g].yy += yy;
         target.patterns.push(part);
@@ -132,6 +136,28 @@ fn precision_times(pattern: &Pattern, links: &[Link], unit: f64, x: impl Fn(usiz
     }
 }
 
+/// Adds the products of the shared columns X of one pattern: `F'T X`, `X'T X`, `X'T y`.
+fn add_shared(design: &Design, pattern: &Pattern, links: &[Link], unit: f64, group: &mut GroupProducts) {
+    let (k, shared) = (design.bases[pattern.group].columns(), design.shared.columns());
+    let (n, m) = (pattern.times.len(), pattern.subjects.len());
+    let table = &design.tables[pattern.group];
+    let mut tx = vec![0.0; n];
+    for c in 0..shared {
+        precision_times(pattern, links, unit, |j| pattern.shared[j * shared + c], &mut tx);
+        for (j, &row) in pattern.table_row.iter().enumerate() {
+            let weight = m as f64 * tx[j];
+            for (i, f) in table[row * k..(row + 1) * k].iter().enumerate() {
+                group.ff[(i, k + c)] += weight * f;
+                group.ff[(k + c, i)] += weight * f;
+            }
+            for d in 0..shared {
+                group.ff[(k + d, k + c)] += weight * pattern.shared[j * shared + d];
+            }
+            group.fy[k + c] += tx[j] * pattern.responses[j * m..(j + 1) * m].iter().sum::<f64>();
+        }
+    }
+}
+
 /// Products of one pattern; adds `T y` of its subjects to the group's sums per distinct time, returns `y'T y` too.
 fn pattern_products(
     design: &Design,
@@ -140,10 +166,11 @@ fn pattern_products(
     plain: &[Link],
     sums: &mut [f64],
 ) -> (PatternProducts, f64) {
-    let (k, q) = (design.bases[pattern.group].columns(), design.effects);
+    let (k, q) = (design.bases[pattern.group].columns(), design.effects.width());
+    let shared = design.shared.columns();
     let (n, m) = (pattern.times.len(), pattern.subjects.len());
     let derivative = unit == 0.0;
-    let z = |a: usize, j: usize| if a == 0 { 1.0 } else { pattern.times[j] - design.units.subject_centre };
+    let z = |a: usize, j: usize| pattern.effects[j * q + a];
     // T Z, and for derivatives also the undifferentiated one, column by column.
     let mut tz = vec![0.0; n * q];
     let mut tz_plain = vec![0.0; n * q];
@@ -153,13 +180,13 @@ fn pattern_products(
             precision_times(pattern, plain, 1.0, |j| z(a, j), &mut tz_plain[a * n..(a + 1) * n]);
         }
     }
-    let mut fz = DMatrix::zeros(k, q);
+    let mut fz = DMatrix::zeros(k + shared, q);
     let table = &design.tables[pattern.group];
     for (j, &row) in pattern.table_row.iter().enumerate() {
-        let f = &table[row * k..(row + 1) * k];
+        let f = table[row * k..(row + 1) * k].iter().chain(&pattern.shared[j * shared..(j + 1) * shared]);
         for a in 0..q {
             let weight = tz[a * n + j];
-            fz.column_mut(a).iter_mut().zip(f).for_each(|(o, f)| *o += weight * f);
+            fz.column_mut(a).iter_mut().zip(f.clone()).for_each(|(o, f)| *o += weight * f);
         }
     }
     let zz = DMatrix::from_fn(q, q, |a, b| (0..n).map(|j| tz[a * n + j] * z(b, j)).sum());

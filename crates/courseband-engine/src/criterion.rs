@@ -13,22 +13,24 @@
 //! `F'V^-1 F = (F'F - F'Z M Z'F) / s`, `ln|V| = (n-q) ln s + ln|C| + ln|H|`.
 //! Nothing is divided by D, so variances may be zero.
 //!
+//! Clusters are taken out after their subjects: see [`crate::clusters`].
 //! The gradient runs backwards through the same steps: the derivative for each
 //! small matrix is formed once and contracted with what that matrix depends on.
 
+use crate::clusters::{ClusterSlopes, ClusterState, Share, Through};
 use crate::params::Layout;
-use crate::reduce::{Design, PatternProducts, Products, reduce};
+use crate::reduce::{Design, Pattern, PatternProducts, Products, reduce};
 use crate::whiten::ErrorShape;
 use nalgebra::{Cholesky, DMatrix, Dyn};
 
 const LN_TWO_PI: f64 = 1.837_877_066_409_345_3;
 
-/// A group's solved equations.
+/// A block's solved equations.
 #[derive(Debug, Clone)]
 pub(crate) struct Solved {
-    /// Factor of `A`, K x K.
+    /// Factor of `A`, B x B.
     pub(crate) factor: Cholesky<f64, Dyn>,
-    /// Coefficients, K x 1.
+    /// Coefficients, B x 1.
     pub(crate) coefficients: DMatrix<f64>,
 }
 
@@ -52,9 +54,10 @@ pub(crate) struct Criterion<'a> {
 }
 
 /// What the backward pass needs of a pattern.
-struct PatternState {
+pub(crate) struct PatternState {
     inverse: DMatrix<f64>,
-    middle: DMatrix<f64>,
+    /// M, q x q.
+    pub(crate) middle: DMatrix<f64>,
     log_det: f64,
 }
 
@@ -98,26 +101,55 @@ struct Pass<'a> {
     products: &'a Products,
 }
 
-/// Sums of one group on the way to its equations.
-struct GroupSums {
+/// Sums of one group, or of one block, on the way to its equations.
+struct Sums {
     a: DMatrix<f64>,
     b: DMatrix<f64>,
     c: f64,
     log_v: f64,
 }
 
+/// The way forward, kept for the way back.
+struct Forward {
+    factors: Vec<DMatrix<f64>>,
+    cluster_factor: DMatrix<f64>,
+    states: Vec<PatternState>,
+    clusters: Vec<ClusterState>,
+    /// Per group, clusters not yet taken out.
+    sums: Vec<Sums>,
+}
+
 impl Pass<'_> {
     fn run(&self, derivatives: Option<&Vec<Products>>) -> Option<Evaluation> {
+        let forward = self.forward()?;
+        let mut value = 0.0;
+        let mut solved = Vec::with_capacity(self.design.placement.blocks());
+        for (block, sums) in self.blocks(&forward).into_iter().enumerate() {
+            let (part, solution) = self.solve(block, sums)?;
+            value += part;
+            solved.push(solution);
+        }
+        let mut gradient = Vec::new();
+        if let Some(derivatives) = derivatives {
+            gradient = vec![0.0; self.layout.len()];
+            self.backward(&forward, &solved, derivatives, &mut gradient);
+            gradient.iter_mut().for_each(|g| *g *= 0.5);
+        }
+        let finite = value.is_finite() && gradient.iter().all(|g| g.is_finite());
+        finite.then_some(Evaluation { value: 0.5 * value, gradient, solved })
+    }
+
+    fn forward(&self) -> Option<Forward> {
         let groups = self.design.bases.len();
         let factors: Vec<DMatrix<f64>> = (0..groups).map(|g| self.layout.subject_factor(self.theta, g)).collect();
         let mut states = Vec::with_capacity(self.design.patterns.len());
-        let mut sums: Vec<GroupSums> = (0..groups).map(|g| self.start(g)).collect();
+        let mut sums: Vec<Sums> = (0..groups).map(|g| self.start(g)).collect();
         for (pattern, products) in self.design.patterns.iter().zip(&self.products.patterns) {
             let g = pattern.group;
             let state = self.eliminate(g, products, &factors[g])?;
             let m = pattern.subjects.len() as f64;
             sums[g].log_v += m * state.log_det;
-            if self.design.effects > 0 {
+            if self.design.effects.width() > 0 {
                 let s = self.layout.variance(self.theta, g);
                 let half = &products.fz * &state.middle;
                 sums[g].a.gemm(-m / s, &half, &products.fz.transpose(), 1.0);
@@ -126,36 +158,62 @@ impl Pass<'_> {
             }
             states.push(state);
         }
-        let mut value = 0.0;
-        let mut solved = Vec::with_capacity(groups);
-        let mut fits = Vec::with_capacity(groups);
-        for (g, sum) in sums.into_iter().enumerate() {
-            let (part, solution) = self.solve(g, &sum)?;
-            value += part;
-            solved.push(solution);
-            fits.push(sum);
-        }
-        let mut gradient = Vec::new();
-        if let Some(derivatives) = derivatives {
-            gradient = vec![0.0; self.layout.len()];
-            self.backward(&factors, &states, &fits, &solved, derivatives, &mut gradient);
-            gradient.iter_mut().for_each(|g| *g *= 0.5);
-        }
-        let finite = value.is_finite() && gradient.iter().all(|g| g.is_finite());
-        finite.then_some(Evaluation { value: 0.5 * value, gradient, solved })
+        let cluster_factor = self.layout.cluster_factor(self.theta);
+        let clusters = (self.design.clusters.iter())
+            .map(|members| {
+                let shares: Vec<Share> = members.iter().map(|&p| self.share(p, &states)).collect();
+                ClusterState::new(self.design, &shares, &cluster_factor)
+            })
+            .collect::<Option<Vec<_>>>()?;
+        Some(Forward { factors, cluster_factor, states, clusters, sums })
     }
 
-    fn start(&self, g: usize) -> GroupSums {
+    fn share<'b>(&'b self, pattern: usize, states: &'b [PatternState]) -> Share<'b> {
+        let Pattern { group, subjects, .. } = &self.design.patterns[pattern];
+        Share {
+            group: *group,
+            m: subjects.len() as f64,
+            s: self.layout.variance(self.theta, *group),
+            products: &self.products.patterns[pattern],
+            state: &states[pattern],
+        }
+    }
+
+    /// Sums per block: those of its groups, clusters taken out.
+    fn blocks(&self, forward: &Forward) -> Vec<Sums> {
+        let placement = &self.design.placement;
+        let mut blocks: Vec<Sums> = (0..placement.blocks())
+            .map(|block| {
+                let size = placement.size(block);
+                Sums { a: DMatrix::zeros(size, size), b: DMatrix::zeros(size, 1), c: 0.0, log_v: 0.0 }
+            })
+            .collect();
+        for (g, own) in forward.sums.iter().enumerate() {
+            let block = &mut blocks[placement.block(g)];
+            placement.scatter(g, &own.a, &mut block.a);
+            placement.scatter_rows(g, &own.b, &mut block.b);
+            block.c += own.c;
+            block.log_v += own.log_v;
+        }
+        for cluster in &forward.clusters {
+            let block = &mut blocks[cluster.block];
+            cluster.take(&mut block.a, &mut block.b, &mut block.c);
+            block.log_v += cluster.log_det;
+        }
+        blocks
+    }
+
+    fn start(&self, g: usize) -> Sums {
         let s = self.layout.variance(self.theta, g);
         let group = &self.products.groups[g];
         let rows = self.design.rows[g] as f64;
         let log_v = rows * libm::log(s) + group.log_det;
-        GroupSums { a: &group.ff / s, b: &group.fy / s, c: group.yy / s, log_v }
+        Sums { a: &group.ff / s, b: &group.fy / s, c: group.yy / s, log_v }
     }
 
     /// Takes a subject's effects out: `H`, its inverse, `M = L H^-1 L'` and `ln|H| - q ln s`.
     fn eliminate(&self, g: usize, products: &PatternProducts, factor: &DMatrix<f64>) -> Option<PatternState> {
-        let q = self.design.effects;
+        let q = self.design.effects.width();
         if q == 0 {
             return Some(PatternState { inverse: DMatrix::zeros(0, 0), middle: DMatrix::zeros(0, 0), log_det: 0.0 });
         }
@@ -169,58 +227,114 @@ impl Pass<'_> {
         Some(PatternState { inverse, middle, log_det: log_det - q as f64 * libm::log(s) })
     }
 
-    /// A group's share of minus twice the log restricted likelihood.
-    fn solve(&self, g: usize, sum: &GroupSums) -> Option<(f64, Solved)> {
-        let basis = &self.design.bases[g];
-        let (free, penalised) = (basis.unpenalised(), basis.penalised());
-        let mut a = sum.a.clone();
+    /// A block's share of minus twice the log restricted likelihood.
+    fn solve(&self, block: usize, sums: Sums) -> Option<(f64, Solved)> {
+        let Sums { mut a, b, c, log_v } = sums;
         let mut log_prior = 0.0;
-        if let Some(v) = self.layout.smoothing_variance(self.theta, g) {
-            (free..free + penalised).for_each(|j| a[(j, j)] += 1.0 / v);
-            log_prior = penalised as f64 * libm::log(v);
+        let mut free = self.design.shared.free;
+        let mut rows = 0;
+        for g in (0..self.design.bases.len()).filter(|&g| self.design.placement.block(g) == block) {
+            free += self.design.bases[g].unpenalised();
+            rows += self.design.rows[g];
+        }
+        for (entry, columns) in self.layout.priors(self.design, block) {
+            let theta = self.theta[entry];
+            let precision = libm::exp(-theta);
+            log_prior += columns.len() as f64 * theta;
+            columns.for_each(|j| a[(j, j)] += precision);
         }
         let factor = Cholesky::new(a)?;
         let log_a: f64 = factor.l_dirty().diagonal().iter().map(|&d| 2.0 * libm::log(d)).sum();
-        let coefficients = factor.solve(&sum.b);
-        let quadratic = sum.c - coefficients.dot(&sum.b);
-        let constant = (self.design.rows[g] as f64 - free as f64) * LN_TWO_PI;
-        Some((constant + sum.log_v + log_prior + log_a + quadratic, Solved { factor, coefficients }))
+        let coefficients = factor.solve(&b);
+        let quadratic = c - coefficients.dot(&b);
+        let constant = (rows as f64 - free as f64) * LN_TWO_PI;
+        Some((constant + log_v + log_prior + log_a + quadratic, Solved { factor, coefficients }))
     }
 
-    fn backward(
+    fn backward(&self, forward: &Forward, solved: &[Solved], derivatives: &[Products], gradient: &mut [f64]) {
+        let placement = &self.design.placement;
+        // Derivative for F'V^-1 F of each block.
+        let whole: Vec<DMatrix<f64>> =
+            solved.iter().map(|s| s.factor.inverse() + &s.coefficients * s.coefficients.transpose()).collect();
+        for (block, adjoint) in whole.iter().enumerate() {
+            for (entry, columns) in self.layout.priors(self.design, block) {
+                let count = columns.len() as f64;
+                let trace: f64 = columns.map(|j| adjoint[(j, j)]).sum();
+                gradient[entry] += count - trace * libm::exp(-self.theta[entry]);
+            }
+        }
+        let parts: Vec<GroupPart> = (0..self.design.bases.len())
+            .map(|g| {
+                let block = placement.block(g);
+                GroupPart {
+                    adjoint: placement.gather(g, &whole[block]),
+                    coefficients: placement.gather_rows(g, &solved[block].coefficients),
+                }
+            })
+            .collect();
+        for (g, part) in parts.iter().enumerate() {
+            self.group_backward(g, part, &forward.sums[g], derivatives, gradient);
+        }
+        if self.design.effects.width() == 0 {
+            return;
+        }
+        let through = self.cluster_backward(forward, solved, &whole, gradient);
+        self.patterns_backward(forward, &parts, &through, derivatives, gradient);
+    }
+
+    /// Derivatives through the clusters, for each pattern; empty without clusters.
+    fn cluster_backward(
         &self,
-        factors: &[DMatrix<f64>],
-        states: &[PatternState],
-        fits: &[GroupSums],
+        forward: &Forward,
         solved: &[Solved],
+        whole: &[DMatrix<f64>],
+        gradient: &mut [f64],
+    ) -> Vec<Option<Through>> {
+        let mut through: Vec<Option<Through>> = Vec::new();
+        if forward.clusters.is_empty() {
+            return through;
+        }
+        through.resize_with(self.design.patterns.len(), || None);
+        let mut slope = DMatrix::zeros(forward.cluster_factor.nrows(), forward.cluster_factor.ncols());
+        for (members, cluster) in self.design.clusters.iter().zip(&forward.clusters) {
+            let slopes: ClusterSlopes =
+                cluster.slopes(&solved[cluster.block], &whole[cluster.block], &forward.cluster_factor);
+            slope += &slopes.factor;
+            for &p in members {
+                let share = self.share(p, &forward.states);
+                let back = share.through(self.design, &slopes);
+                gradient[self.layout.error[share.group]] += back.scale;
+                through[p] = Some(back);
+            }
+        }
+        self.layout.add_cluster_slope(self.theta, &slope, gradient);
+        through
+    }
+
+    fn patterns_backward(
+        &self,
+        forward: &Forward,
+        parts: &[GroupPart],
+        through: &[Option<Through>],
         derivatives: &[Products],
         gradient: &mut [f64],
     ) {
-        let groups = factors.len();
-        // Derivative for F'V^-1 F of each group.
-        let adjoints: Vec<DMatrix<f64>> =
-            solved.iter().map(|s| s.factor.inverse() + &s.coefficients * s.coefficients.transpose()).collect();
-        for g in 0..groups {
-            self.group_backward(g, &adjoints[g], &fits[g], &solved[g], derivatives, gradient);
-        }
-        if self.design.effects == 0 {
-            return;
-        }
-        let mut slopes = vec![DMatrix::zeros(self.design.effects, self.design.effects); groups];
+        let (q, groups) = (self.design.effects.width(), self.design.bases.len());
+        let mut slopes = vec![DMatrix::zeros(q, q); groups];
         for (index, pattern) in self.design.patterns.iter().enumerate() {
             let g = pattern.group;
             let back = PatternBackward {
                 s: self.layout.variance(self.theta, g),
                 m: pattern.subjects.len() as f64,
-                factor: &factors[g],
-                state: &states[index],
+                factor: &forward.factors[g],
+                state: &forward.states[index],
                 products: &self.products.patterns[index],
-                adjoint: &adjoints[g],
-                coefficients: &solved[g].coefficients,
+                part: &parts[g],
+                through: through.get(index).and_then(Option::as_ref),
             };
             let (h, slope) = back.factor_slope();
             slopes[g] += slope;
-            gradient[self.layout.error[g]] += back.s * (h.trace() - back.m * self.design.effects as f64 / back.s);
+            gradient[self.layout.error[g]] += back.s * (h.trace() - back.m * q as f64 / back.s);
             for (which, derivative) in derivatives.iter().enumerate() {
                 let entry = if which == 0 { self.layout.rate } else { self.layout.nugget };
                 if let Some(entry) = entry {
@@ -234,25 +348,11 @@ impl Pass<'_> {
     }
 
     /// What reaches the parameters through a group's sums.
-    fn group_backward(
-        &self,
-        g: usize,
-        adjoint: &DMatrix<f64>,
-        fit: &GroupSums,
-        solved: &Solved,
-        derivatives: &[Products],
-        gradient: &mut [f64],
-    ) {
+    fn group_backward(&self, g: usize, part: &GroupPart, sums: &Sums, derivatives: &[Products], gradient: &mut [f64]) {
         let s = self.layout.variance(self.theta, g);
-        let b = &solved.coefficients;
-        let quadratic = adjoint.dot(&fit.a) - 2.0 * b.dot(&fit.b) + fit.c;
+        let (adjoint, b) = (&part.adjoint, &part.coefficients);
+        let quadratic = adjoint.dot(&sums.a) - 2.0 * b.dot(&sums.b) + sums.c;
         gradient[self.layout.error[g]] += self.design.rows[g] as f64 - quadratic;
-        if let Some(entry) = self.layout.smoothing[g] {
-            let v = libm::exp(self.theta[entry]);
-            let free = self.design.bases[g].unpenalised();
-            let trace: f64 = (free..adjoint.nrows()).map(|j| adjoint[(j, j)]).sum();
-            gradient[entry] += self.design.bases[g].penalised() as f64 - trace / v;
-        }
         for (which, derivative) in derivatives.iter().enumerate() {
             let entry = if which == 0 { self.layout.rate } else { self.layout.nugget };
             if let Some(entry) = entry {
@@ -263,6 +363,12 @@ impl Pass<'_> {
     }
 }
 
+/// A group's part of its block: the derivative for `F'V^-1 F`, and the coefficients.
+struct GroupPart {
+    adjoint: DMatrix<f64>,
+    coefficients: DMatrix<f64>,
+}
+
 /// The backward pass through one pattern's elimination.
 struct PatternBackward<'a> {
     s: f64,
@@ -270,18 +376,19 @@ struct PatternBackward<'a> {
     factor: &'a DMatrix<f64>,
     state: &'a PatternState,
     products: &'a PatternProducts,
-    adjoint: &'a DMatrix<f64>,
-    coefficients: &'a DMatrix<f64>,
+    part: &'a GroupPart,
+    through: Option<&'a Through>,
 }
 
 impl PatternBackward<'_> {
-    /// Derivative for M: `-(m Z'F G F'Z - 2 sym(Z'F b y'Z) + Z'y y'Z) / s`.
+    /// Derivative for M: `-(m Z'F G F'Z - 2 sym(Z'F b y'Z) + Z'y y'Z) / s`, and through the cluster.
     fn middle_slope(&self) -> DMatrix<f64> {
         let p = self.products;
-        let zf_b = p.fz.tr_mul(self.coefficients);
+        let zf_b = p.fz.tr_mul(&self.part.coefficients);
         let cross = zf_b * p.zy.transpose();
-        let spread = p.fz.tr_mul(&(self.adjoint * &p.fz)) * self.m;
-        (spread - &cross - cross.transpose() + &p.zyyz) / -self.s
+        let spread = p.fz.tr_mul(&(&self.part.adjoint * &p.fz)) * self.m;
+        let own = (spread - &cross - cross.transpose() + &p.zyyz) / -self.s;
+        self.through.map_or_else(|| own.clone(), |through| &own + &through.middle)
     }
 
     /// Derivatives for `H` and for the factor `L`.
@@ -296,11 +403,12 @@ impl PatternBackward<'_> {
     /// Derivative for a parameter of the error shape through this pattern's own products.
     fn shape_slope(&self, h: &DMatrix<f64>, d: &PatternProducts) -> f64 {
         let p = self.products;
-        let middle = &self.state.middle;
+        let (middle, coefficients) = (&self.state.middle, &self.part.coefficients);
         let zz = self.factor * h * self.factor.transpose();
         let fz = (&p.fz * middle) * -self.m;
-        let through_fz = (self.adjoint * fz + self.coefficients * (middle * &p.zy).transpose()) * (2.0 / self.s);
-        let through_zy = middle * p.fz.tr_mul(self.coefficients) * (2.0 / self.s);
-        zz.dot(&d.zz) + through_fz.dot(&d.fz) + through_zy.dot(&d.zy) - middle.dot(&d.zyyz) / self.s
+        let through_fz = (&self.part.adjoint * fz + coefficients * (middle * &p.zy).transpose()) * (2.0 / self.s);
+        let through_zy = middle * p.fz.tr_mul(coefficients) * (2.0 / self.s);
+        let own = zz.dot(&d.zz) + through_fz.dot(&d.fz) + through_zy.dot(&d.zy) - middle.dot(&d.zyyz) / self.s;
+        own + self.through.map_or(0.0, |t| t.zz.dot(&d.zz) + t.fz.dot(&d.fz) + t.zy.dot(&d.zy))
     }
 }

@@ -6,7 +6,7 @@
 //! nested fit. A variance that does not help is set to its bound exactly, and
 //! said; a fit without an optimum is `Failed`.
 
-use crate::basis::{GroupBasis, Units, group_bases};
+use crate::basis::{Units, group_bases};
 use crate::criterion::{Criterion, Solved};
 use crate::model::{Data, Model, Serial};
 use crate::optimise::{Bounds, Objective, Point, Polished, newton, plain_inverse, quasi_newton, start};
@@ -41,6 +41,11 @@ pub enum FitError {
     },
     /// Several rows at one time of one subject, under serial correlation without measurement error.
     TiedTimes,
+    /// A shared column is a combination of the groups' own columns and the shared ones before it.
+    Inseparable {
+        /// Index of the shared column.
+        column: usize,
+    },
     /// The criterion cannot be computed at any start.
     NoStart,
     /// No optimum was reached.
@@ -64,6 +69,17 @@ pub enum Remark {
     },
     /// Level and trend of the subjects are perfectly correlated.
     PerfectCorrelation(Option<usize>),
+    /// Subjects do not curve: the variance of their splines is zero.
+    NoSubjectCurve(Option<usize>),
+    /// A variance of the cluster effects is zero.
+    NoClusterVariance {
+        /// False: level; true: trend.
+        trend: bool,
+    },
+    /// Level and trend of the clusters are perfectly correlated.
+    PerfectClusterCorrelation,
+    /// The variance of a run of shared columns is zero.
+    NoSharedVariance(usize),
     /// The serial correlation is zero.
     NoSerialCorrelation,
     /// The serial correlation is at its upper limit.
@@ -110,15 +126,18 @@ pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
     check(data)?;
     let units = Units::of(data);
     let bases = group_bases(data, model, &units);
-    let free: usize = bases.iter().map(GroupBasis::unpenalised).sum();
+    let design = Design::new(data, units, bases, model);
+    let free = design.unpenalised();
     if data.rows() < free + 1 {
         return Err(FitError::TooFewRows { rows: data.rows(), needed: free + 1 });
     }
-    let design = Design::new(data, units, bases, model.subjects.count());
+    if let Some(column) = design.inseparable() {
+        return Err(FitError::Inseparable { column });
+    }
     if model.serial == Serial::Ar1 && design.has_ties() {
         return Err(FitError::TiedTimes);
     }
-    let layout = Layout::new(model, &design.bases, design.median_gap());
+    let layout = Layout::new(model, &design);
     let found = search(data, &design, model, &layout)?;
     finish(design, model, layout, found)
 }
@@ -151,7 +170,7 @@ const SAMPLE_ROWS: usize = 8_000;
 fn search(data: &Data, design: &Design, model: &Model, layout: &Layout) -> Result<Found, FitError> {
     let found = match sample(data) {
         Some(sample) => {
-            let smaller = Design::new(&sample, design.units, design.bases.clone(), design.effects);
+            let smaller = design.again(&sample, model.clusters);
             let first = search_fully(&smaller, model, layout)?;
             refine(design, layout, first, data.rows() as f64 / sample.rows() as f64)?
         }
@@ -183,7 +202,7 @@ fn sample(data: &Data) -> Option<Data> {
         .collect();
     let mut kept = vec![0; data.groups];
     subjects.iter().for_each(|s| kept[s.group] += 1);
-    kept.iter().all(|&count| count >= 20).then_some(Data { groups: data.groups, subjects })
+    kept.iter().all(|&count| count >= 20).then(|| Data { subjects, ..data.without_subjects() })
 }
 
 /// A predicted further fall of the criterion above this is no optimum.
@@ -235,9 +254,9 @@ fn search_fully(design: &Design, model: &Model, layout: &Layout) -> Result<Found
         for (entry, value) in layout.entries.iter().zip(theta.iter_mut()) {
             match entry {
                 Parameter::Smoothing(_) => *value = smooth,
-                Parameter::Subject { part: 0, .. } => *value = level,
-                Parameter::Subject { part: 1, .. } => *value = 0.0,
-                Parameter::Subject { .. } => *value = trend,
+                Parameter::Subject { part: 0, .. } | Parameter::Cluster { part: 0 } => *value = level,
+                Parameter::Subject { part: 1, .. } | Parameter::Cluster { part: 1 } => *value = 0.0,
+                Parameter::Subject { .. } | Parameter::Cluster { .. } => *value = trend,
                 _ => {}
             }
         }
@@ -294,8 +313,11 @@ fn plain_start(layout: &Layout) -> Vec<f64> {
         .map(|entry| match entry {
             Parameter::Smoothing(_) => 2.0,
             Parameter::Error(_) => -1.2,
-            Parameter::Subject { part: 1, .. } => 0.0,
+            Parameter::Subject { part: 1, .. } | Parameter::Cluster { part: 1 } => 0.0,
+            Parameter::Subject { part: 3, .. } => 0.5,
             Parameter::Subject { .. } => -0.7,
+            Parameter::Cluster { .. } => -1.2,
+            Parameter::Shared(_) => -2.0,
             Parameter::Rate | Parameter::Nugget => 0.0,
         })
         .collect()
@@ -304,7 +326,7 @@ fn plain_start(layout: &Layout) -> Vec<f64> {
 /// Optimum of the model without serial correlation, in the layout of the full one.
 fn nested_start(design: &Design, model: &Model, layout: &Layout) -> Result<(Vec<f64>, usize), FitError> {
     let nested = Model { serial: Serial::None, ..*model };
-    let smaller = Layout::new(&nested, &design.bases, 1.0);
+    let smaller = Layout::new(&nested, design);
     let mut criterion = Criterion::new(design, &smaller);
     let bounds = Bounds { lower: &smaller.lower, upper: &smaller.upper };
     let scale = design.rows.iter().sum::<usize>() as f64 / 2.0;
@@ -356,7 +378,10 @@ fn serial_start(
 fn snap(criterion: &mut Criterion, bounds: &Bounds, layout: &Layout, mut point: Point) -> Point {
     for k in 0..layout.len() {
         let targets = match layout.entries[k] {
-            Parameter::Smoothing(_) | Parameter::Subject { part: 0 | 2, .. } => vec![bounds.lower[k]],
+            Parameter::Smoothing(_)
+            | Parameter::Shared(_)
+            | Parameter::Subject { part: 0 | 2 | 3, .. }
+            | Parameter::Cluster { part: 0 | 2 } => vec![bounds.lower[k]],
             Parameter::Rate => vec![bounds.upper[k], bounds.lower[k]],
             Parameter::Nugget => vec![bounds.lower[k], bounds.upper[k]],
             _ => vec![],
@@ -384,7 +409,9 @@ fn revive(criterion: &mut Criterion, bounds: &Bounds, layout: &Layout, mut point
     for k in 0..layout.len() {
         let tries: &[f64] = match layout.entries[k] {
             Parameter::Smoothing(_) => &[-6.0, -3.0, 0.0, 3.0, 6.0],
-            Parameter::Subject { part: 0 | 2, .. } => &[-4.0, -2.5, -1.0],
+            Parameter::Subject { part: 0 | 2, .. } | Parameter::Cluster { part: 0 | 2 } => &[-4.0, -2.5, -1.0],
+            Parameter::Subject { part: 3, .. } => &[-2.0, 0.0, 2.0],
+            Parameter::Shared(_) => &[-6.0, -3.0, -1.0],
             _ => &[],
         };
         if point.theta[k] > bounds.lower[k] {
@@ -438,6 +465,11 @@ fn remarks(design: &Design, layout: &Layout, theta: &[f64]) -> Vec<Remark> {
                 let g = (0..groups).find(|&g| layout.subject[g] == k).unwrap_or(0);
                 subject_remarks(layout, theta, g, group, &mut remarks);
             }
+            Parameter::Subject { group, part: 3 } if theta[k] <= layout.lower[k] => {
+                remarks.push(Remark::NoSubjectCurve(group));
+            }
+            Parameter::Cluster { part: 0 } => cluster_remarks(layout, theta, &mut remarks),
+            Parameter::Shared(run) if theta[k] <= layout.lower[k] => remarks.push(Remark::NoSharedVariance(run)),
             _ => {}
         }
     }
@@ -447,7 +479,7 @@ fn remarks(design: &Design, layout: &Layout, theta: &[f64]) -> Vec<Remark> {
             remarks.push(Remark::NoSerialCorrelation);
         } else if theta[rate] <= layout.lower[rate] {
             remarks.push(Remark::FullSerialCorrelation);
-        } else if shape.rate < 1.0 && layout.effects > 0 {
+        } else if shape.rate < 1.0 && layout.subjects.count() > 0 {
             remarks.push(Remark::LevelOrSerial);
         }
         if layout.nugget.is_some() && shape.nugget < 1e-6 {
@@ -461,21 +493,30 @@ fn remarks(design: &Design, layout: &Layout, theta: &[f64]) -> Vec<Remark> {
 
 fn subject_remarks(layout: &Layout, theta: &[f64], g: usize, group: Option<usize>, remarks: &mut Vec<Remark>) {
     let factor = layout.subject_factor(theta, g);
-    let covariance = &factor * factor.transpose();
-    let small = 1e-6 * layout.variance(theta, g);
-    let zero = |a: usize| covariance[(a, a)] < small;
-    if zero(0) {
-        remarks.push(Remark::NoSubjectVariance { group, trend: false });
+    let (level, trend, perfect) = zeros(&factor, layout.subjects.count(), layout.variance(theta, g));
+    remarks.extend(level.then_some(Remark::NoSubjectVariance { group, trend: false }));
+    remarks.extend(trend.then_some(Remark::NoSubjectVariance { group, trend: true }));
+    remarks.extend(perfect.then_some(Remark::PerfectCorrelation(group)));
+}
+
+fn cluster_remarks(layout: &Layout, theta: &[f64], remarks: &mut Vec<Remark>) {
+    let least = (0..layout.error.len()).map(|g| layout.variance(theta, g)).fold(f64::INFINITY, f64::min);
+    let (level, trend, perfect) = zeros(&layout.cluster_factor(theta), layout.clusters.count(), least);
+    remarks.extend(level.then_some(Remark::NoClusterVariance { trend: false }));
+    remarks.extend(trend.then_some(Remark::NoClusterVariance { trend: true }));
+    remarks.extend(perfect.then_some(Remark::PerfectClusterCorrelation));
+}
+
+/// Level without variance, trend without variance, and both perfectly correlated.
+fn zeros(factor: &DMatrix<f64>, lines: usize, error: f64) -> (bool, bool, bool) {
+    let covariance = factor * factor.transpose();
+    let zero = |a: usize| covariance[(a, a)] < 1e-6 * error;
+    if lines < 2 {
+        return (lines == 1 && zero(0), false, false);
     }
-    if layout.effects == 2 {
-        if zero(1) {
-            remarks.push(Remark::NoSubjectVariance { group, trend: true });
-        }
-        let product = covariance[(0, 0)] * covariance[(1, 1)];
-        if !zero(0) && !zero(1) && covariance[(0, 1)].abs() > 0.999 * product.sqrt() {
-            remarks.push(Remark::PerfectCorrelation(group));
-        }
-    }
+    let product = covariance[(0, 0)] * covariance[(1, 1)];
+    let perfect = !zero(0) && !zero(1) && covariance[(0, 1)].abs() > 0.999 * product.sqrt();
+    (zero(0), zero(1), perfect)
 }
 
 impl Fit {
@@ -509,7 +550,7 @@ impl Fit {
     pub fn log_reml(&self) -> f64 {
         let units = &self.design.units;
         let rows: usize = self.design.rows.iter().sum();
-        let free: usize = self.design.bases.iter().map(GroupBasis::unpenalised).sum();
+        let free = self.design.unpenalised();
         let trends = self.design.bases.iter().filter(|b| b.has_trend()).count();
         -self.value
             - (rows - free) as f64 * libm::log(units.response_scale)
@@ -526,17 +567,33 @@ impl Fit {
     /// time, trend per time unit of the table.
     #[must_use]
     pub fn subject_covariance(&self, group: usize) -> Vec<Vec<f64>> {
+        self.outer_covariance(&self.layout.subject_factor(&self.theta, group), self.layout.subjects.count())
+    }
+
+    /// Covariance of the cluster effects, as [`Fit::subject_covariance`]; empty without clusters.
+    #[must_use]
+    pub fn cluster_covariance(&self) -> Vec<Vec<f64>> {
+        self.outer_covariance(&self.layout.cluster_factor(&self.theta), self.layout.clusters.count())
+    }
+
+    /// Standard deviation, on the modelled scale, of a shared run's effects.
+    #[must_use]
+    pub fn shared_sd(&self, run: usize) -> Option<f64> {
+        let at = self.layout.entries.iter().position(|entry| *entry == Parameter::Shared(run))?;
+        Some(libm::exp(0.5 * self.theta[at]) * self.design.units.response_scale)
+    }
+
+    fn outer_covariance(&self, factor: &DMatrix<f64>, lines: usize) -> Vec<Vec<f64>> {
         let units = &self.design.units;
-        let factor = self.layout.subject_factor(&self.theta, group);
-        let q = self.layout.effects;
-        let mut change = DMatrix::identity(q, q);
-        if q == 2 {
+        let factor = factor.view((0, 0), (lines, lines));
+        let mut change = DMatrix::identity(lines, lines);
+        if lines == 2 {
             change[(0, 1)] = -units.subject_centre;
             change[(1, 1)] = 1.0 / units.time_span;
         }
         let moved = change * factor * units.response_scale;
         let covariance = &moved * moved.transpose();
-        (0..q).map(|a| (0..q).map(|b| covariance[(a, b)]).collect()).collect()
+        (0..lines).map(|a| (0..lines).map(|b| covariance[(a, b)]).collect()).collect()
     }
 
     /// Correlation of errors one time unit of the table apart, measurement error left out.
@@ -554,6 +611,20 @@ impl Fit {
         self.layout.error_shape(&self.theta).map(|shape| shape.nugget)
     }
 
+    /// Most degrees of freedom of any contrast: rows less free coefficients; where no cluster holds
+    /// several groups, clusters less groups, since groups then differ between clusters only.
+    pub(crate) fn most_df(&self) -> f64 {
+        let design = &self.design;
+        let rows: usize = design.rows.iter().sum();
+        let most = rows - design.unpenalised();
+        let group_of = |p: &usize| design.patterns[*p].group;
+        let nested = design.clusters.iter().all(|of| of.iter().all(|p| group_of(p) == group_of(&of[0])));
+        if design.clusters.is_empty() || !nested {
+            return most as f64;
+        }
+        design.clusters.len().saturating_sub(design.bases.len()).clamp(1, most.max(1)) as f64
+    }
+
     /// Effective degrees of freedom of a group's curve: trace of `(C + P)^-1 C`, level and line included.
     #[must_use]
     pub fn effective_df(&self, group: usize) -> f64 {
@@ -562,8 +633,10 @@ impl Fit {
         let Some(v) = self.layout.smoothing_variance(&self.theta, group) else {
             return free as f64;
         };
-        let inverse = self.solved[group].factor.inverse();
-        let lost: f64 = (free..free + penalised).map(|j| inverse[(j, j)]).sum::<f64>() / v;
+        let placement = &self.design.placement;
+        let inverse = self.solved[placement.block(group)].factor.inverse();
+        let first = placement.position(group, free);
+        let lost: f64 = (first..first + penalised).map(|j| inverse[(j, j)]).sum::<f64>() / v;
         (free + penalised) as f64 - lost
     }
 }

@@ -27,14 +27,21 @@ impl Fit {
     /// Leaves out each of `subjects` in turn (indices into the data). Contrasts whose standard error is zero do not count.
     #[must_use]
     pub fn influence(&self, contrasts: &[Contrast], subjects: &[usize]) -> Vec<Influence> {
+        let each: Vec<Vec<usize>> = subjects.iter().map(|&s| vec![s]).collect();
+        self.influence_of(contrasts, &each)
+    }
+
+    /// The same with several subjects at a time: a cluster. [`Influence::subject`] is the first of them.
+    #[must_use]
+    pub fn influence_of(&self, contrasts: &[Contrast], sets: &[Vec<usize>]) -> Vec<Influence> {
         let full: Vec<_> = {
             let posterior = self.corrected();
             contrasts.iter().map(|c| posterior.estimate(c)).collect()
         };
         let refitter = Refitter::new(self);
-        (subjects.iter())
-            .map(|&subject| {
-                let values: Vec<f64> = (self.design.without(subject))
+        (sets.iter())
+            .map(|subjects| {
+                let values: Vec<f64> = (self.design.without_all(subjects))
                     .and_then(|design| refitter.refit_closely(design, &self.theta))
                     .map(|fit| {
                         let posterior = fit.plug_in();
@@ -45,13 +52,19 @@ impl Fit {
                     values.iter().zip(&full).map(|(v, e)| if e.se > 0.0 { (v - e.mean).abs() / e.se } else { 0.0 });
                 let (at, largest) =
                     moves.enumerate().fold((0, 0.0), |best, (k, m)| if m > best.1 { (k, m) } else { best });
-                Influence { subject, values, largest, at }
+                Influence { subject: subjects[0], values, largest, at }
             })
             .collect()
     }
 }
 
 impl Design {
+    /// The design without some subjects, units and bases kept. `None` where a group would be empty.
+    fn without_all(&self, subjects: &[usize]) -> Option<Design> {
+        let (first, rest) = subjects.split_first()?;
+        rest.iter().try_fold(self.without(*first)?, |design, &subject| design.without(subject))
+    }
+
     /// The design without one subject, units and bases kept. `None` where its group would be empty.
     fn without(&self, subject: usize) -> Option<Design> {
         let mut design = self.clone();
@@ -67,6 +80,11 @@ impl Design {
         design.rows[g] -= n;
         if m == 1 {
             design.patterns.remove(at);
+            for members in &mut design.clusters {
+                members.retain(|&p| p != at);
+                members.iter_mut().filter(|p| **p > at).for_each(|p| *p -= 1);
+            }
+            design.clusters.retain(|members| !members.is_empty());
         }
         (design.rows[g] > 0).then_some(design)
     }
@@ -89,7 +107,7 @@ mod tests {
                 times.iter().map(|t| libm::sin(t / 2.0) + level + off * t / 6.0 + 0.4 * rng.normal()).collect();
             subjects.push(SubjectRows { group: k % 2, times, responses, ..SubjectRows::default() });
         }
-        Data { groups: 2, subjects }
+        Data { groups: 2, subjects, ..Data::default() }
     }
 
     #[test]

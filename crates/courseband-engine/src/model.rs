@@ -9,18 +9,50 @@ pub struct SubjectRows {
     pub times: Vec<f64>,
     /// Responses on the modelled scale.
     pub responses: Vec<f64>,
+    /// What the subject is housed or treated in (cage, litter, site), for a model with [`ClusterEffects`].
+    /// A subject without one is a cluster of its own.
+    pub cluster: Option<usize>,
+    /// Values of the [`Shared`] columns, row by row; empty where there are none.
+    pub shared: Vec<f64>,
+}
+
+/// Columns of the mean that all groups share: covariates, effects of a crossed block.
+/// First the free ones, then runs of penalised ones, each run with a variance of its own.
+#[derive(Debug, Clone, PartialEq, Default)]
+pub struct Shared {
+    /// Number of columns without a penalty.
+    pub free: usize,
+    /// Lengths of the runs of penalised columns.
+    pub penalised: Vec<usize>,
+    /// Value of each column at which courses are stated.
+    pub reference: Vec<f64>,
+}
+
+impl Shared {
+    /// Number of columns.
+    #[must_use]
+    pub fn columns(&self) -> usize {
+        self.free + self.penalised.iter().sum::<usize>()
+    }
 }
 
 /// Everything that is fitted.
-#[derive(Debug, Clone, PartialEq)]
+#[derive(Debug, Clone, PartialEq, Default)]
 pub struct Data {
     /// Number of groups, at least one.
     pub groups: usize,
     /// Subjects; each has at least one row.
     pub subjects: Vec<SubjectRows>,
+    /// Columns that all groups share.
+    pub shared: Shared,
 }
 
 impl Data {
+    /// Groups and shared columns alone.
+    pub(crate) fn without_subjects(&self) -> Data {
+        Data { groups: self.groups, subjects: Vec::new(), shared: self.shared.clone() }
+    }
+
     /// Number of rows.
     #[must_use]
     pub fn rows(&self) -> usize {
@@ -59,16 +91,42 @@ pub enum SubjectEffects {
     Intercept,
     /// Level and trend, correlated.
     Slope,
+    /// Level and trend, correlated, and a penalised spline whose variance is one for all subjects.
+    Curve,
 }
 
 impl SubjectEffects {
-    /// Number of effects per subject.
+    /// Number of effects per subject, a curve's spline left out.
     #[must_use]
     pub fn count(self) -> usize {
         match self {
             SubjectEffects::None => 0,
             SubjectEffects::Intercept => 1,
-            SubjectEffects::Slope => 2,
+            SubjectEffects::Slope | SubjectEffects::Curve => 2,
+        }
+    }
+}
+
+/// What differs from cluster to cluster, beside what differs from subject to subject.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum ClusterEffects {
+    /// Nothing.
+    #[default]
+    None,
+    /// The level.
+    Intercept,
+    /// Level and trend, correlated.
+    Slope,
+}
+
+impl ClusterEffects {
+    /// Number of effects per cluster.
+    #[must_use]
+    pub fn count(self) -> usize {
+        match self {
+            ClusterEffects::None => 0,
+            ClusterEffects::Intercept => 1,
+            ClusterEffects::Slope => 2,
         }
     }
 }
@@ -104,6 +162,8 @@ pub struct Model {
     pub subjects: SubjectEffects,
     /// Covariance of the subject effects: one for all groups or one per group.
     pub subjects_spread: Sharing,
+    /// What differs from cluster to cluster.
+    pub clusters: ClusterEffects,
     /// Correlation of the errors.
     pub serial: Serial,
     /// Error variance: one for all groups or one per group.
@@ -118,6 +178,7 @@ impl Default for Model {
             smoothness: Sharing::ByGroup,
             subjects: SubjectEffects::Intercept,
             subjects_spread: Sharing::Common,
+            clusters: ClusterEffects::None,
             serial: Serial::None,
             spread: Sharing::Common,
         }

@@ -6,13 +6,17 @@
 //! | error | `ln sigma^2` of a group |
 //! | subject, one effect | `ln sd` |
 //! | subject, two effects | `(a, c, b)` with `D = L L'`, `L = [[e^a, 0], [c, e^b]]` |
+//! | subject, a curve's spline | `ln sd` of its coefficients |
+//! | cluster | as subject, one for all groups |
+//! | shared | `ln s^2` of a run of shared columns |
 //! | rate | `ln` decay of the serial correlation per internal time unit |
 //! | nugget | `logit` of the share of measurement error |
 //!
 //! Responses are internal (unit variance), times are internal (unit span).
 
 use crate::basis::GroupBasis;
-use crate::model::{Model, Serial, Sharing};
+use crate::model::{ClusterEffects, Model, Serial, Sharing, SubjectEffects};
+use crate::reduce::Design;
 use crate::whiten::ErrorShape;
 use nalgebra::DMatrix;
 
@@ -24,13 +28,20 @@ pub enum Parameter {
     /// Error variance of a group, or of all (`None`).
     Error(Option<usize>),
     /// Subject effects of a group, or of all (`None`); `part` 0: first diagonal entry of the factor,
-    /// 1: its off-diagonal entry, 2: its second diagonal entry.
+    /// 1: its off-diagonal entry, 2: its second diagonal entry, 3: the spline of subject curves.
     Subject {
         /// Group, or all.
         group: Option<usize>,
         /// Part of the factor.
         part: usize,
     },
+    /// Cluster effects; `part` as for subjects.
+    Cluster {
+        /// Part of the factor.
+        part: usize,
+    },
+    /// Variance of a run of shared columns.
+    Shared(usize),
     /// Decay of the serial correlation.
     Rate,
     /// Share of measurement error.
@@ -49,15 +60,23 @@ pub(crate) struct Layout {
     pub(crate) error: Vec<usize>,
     /// Per group: index of the first entry.
     pub(crate) subject: Vec<usize>,
+    /// Index of the first entry.
+    cluster: usize,
+    /// Per run of shared columns.
+    shared: Vec<usize>,
     pub(crate) rate: Option<usize>,
     pub(crate) nugget: Option<usize>,
-    /// Number of effects per subject.
-    pub(crate) effects: usize,
+    /// What differs from subject to subject, and from cluster to cluster.
+    pub(crate) subjects: SubjectEffects,
+    pub(crate) clusters: ClusterEffects,
+    /// Columns of subject and cluster effects, those of a spline among them.
+    width: usize,
+    curved: usize,
 }
 
 impl Layout {
-    /// `median_gap`: median internal time between a subject's neighbouring visits.
-    pub(crate) fn new(model: &Model, bases: &[GroupBasis], median_gap: f64) -> Self {
+    pub(crate) fn new(model: &Model, design: &Design) -> Self {
+        let bases = &design.bases;
         let groups = bases.len();
         let mut layout = Layout {
             entries: Vec::new(),
@@ -66,20 +85,36 @@ impl Layout {
             smoothing: vec![None; groups],
             error: vec![0; groups],
             subject: vec![0; groups],
+            cluster: 0,
+            shared: Vec::new(),
             rate: None,
             nugget: None,
-            effects: model.subjects.count(),
+            subjects: model.subjects,
+            clusters: model.clusters,
+            width: design.effects.width(),
+            curved: design.effects.curved(),
         };
         layout.add_smoothing(model, bases);
         for (group, slot) in layout.owners(model.spread, groups) {
             let index = layout.add(Parameter::Error(slot), -36.0, 12.0);
             group.into_iter().for_each(|g| layout.error[g] = index);
         }
-        if layout.effects > 0 {
+        if model.subjects.count() > 0 {
             layout.add_subjects(model, groups);
         }
+        if model.clusters.count() > 0 {
+            layout.cluster = layout.add(Parameter::Cluster { part: 0 }, -18.0, 6.0);
+            if model.clusters == ClusterEffects::Slope {
+                layout.add(Parameter::Cluster { part: 1 }, -400.0, 400.0);
+                layout.add(Parameter::Cluster { part: 2 }, -18.0, 6.0);
+            }
+        }
+        for run in 0..design.shared.penalised.len() {
+            let index = layout.add(Parameter::Shared(run), -24.0, 24.0);
+            layout.shared.push(index);
+        }
         if model.serial != Serial::None {
-            let unit = libm::log(median_gap);
+            let unit = libm::log(design.median_gap());
             layout.rate = Some(layout.add(Parameter::Rate, -9.3 - unit, 3.0 - unit));
         }
         if model.serial == Serial::Ar1Nugget {
@@ -116,9 +151,12 @@ impl Layout {
     fn add_subjects(&mut self, model: &Model, groups: usize) {
         for (group, slot) in self.owners(model.subjects_spread, groups) {
             let first = self.add(Parameter::Subject { group: slot, part: 0 }, -18.0, 6.0);
-            if self.effects == 2 {
+            if model.subjects.count() == 2 {
                 self.add(Parameter::Subject { group: slot, part: 1 }, -400.0, 400.0);
                 self.add(Parameter::Subject { group: slot, part: 2 }, -18.0, 6.0);
+            }
+            if self.curved > 0 {
+                self.add(Parameter::Subject { group: slot, part: 3 }, -18.0, 9.0);
             }
             group.into_iter().for_each(|g| self.subject[g] = first);
         }
@@ -138,27 +176,74 @@ impl Layout {
         self.smoothing[group].map(|index| libm::exp(theta[index]))
     }
 
-    /// Factor `L` of the subject covariance of a group, q x q lower triangular.
+    /// Priors of the penalised unknowns of a block: the entry of their variance, and where they stand.
+    pub(crate) fn priors<'a>(
+        &'a self,
+        design: &'a Design,
+        block: usize,
+    ) -> impl Iterator<Item = (usize, std::ops::Range<usize>)> + 'a {
+        let placement = &design.placement;
+        let own = (0..design.bases.len()).filter(move |&g| placement.block(g) == block).filter_map(|g| {
+            let first = placement.position(g, design.bases[g].unpenalised());
+            self.smoothing[g].map(|entry| (entry, first..first + design.bases[g].penalised()))
+        });
+        let mut at = placement.size(block) - design.shared.columns() + design.shared.free;
+        let shared = self.shared.iter().zip(&design.shared.penalised).map(move |(&entry, &length)| {
+            at += length;
+            (entry, at - length..at)
+        });
+        own.chain(shared)
+    }
+
+    /// Factor `L` of the subject covariance of a group, lower triangular.
     pub(crate) fn subject_factor(&self, theta: &[f64], group: usize) -> DMatrix<f64> {
         let first = self.subject[group];
-        match self.effects {
-            0 => DMatrix::zeros(0, 0),
-            1 => DMatrix::from_element(1, 1, libm::exp(theta[first])),
-            _ => DMatrix::from_row_slice(
-                2,
-                2,
-                &[libm::exp(theta[first]), 0.0, theta[first + 1], libm::exp(theta[first + 2])],
-            ),
+        let lines = self.subjects.count();
+        let mut factor = self.factor(theta, first, lines);
+        if self.curved > 0 {
+            let sd = libm::exp(theta[first + 3]);
+            (self.width - self.curved..self.width).for_each(|a| factor[(a, a)] = sd);
         }
+        factor
+    }
+
+    /// Factor `L` of the cluster covariance, lower triangular.
+    pub(crate) fn cluster_factor(&self, theta: &[f64]) -> DMatrix<f64> {
+        self.factor(theta, self.cluster, self.clusters.count())
+    }
+
+    fn factor(&self, theta: &[f64], first: usize, lines: usize) -> DMatrix<f64> {
+        let mut factor = DMatrix::zeros(self.width, self.width);
+        if lines > 0 {
+            factor[(0, 0)] = libm::exp(theta[first]);
+        }
+        if lines > 1 {
+            factor[(1, 0)] = theta[first + 1];
+            factor[(1, 1)] = libm::exp(theta[first + 2]);
+        }
+        factor
     }
 
     /// Adds the derivative through `L` to `gradient`: `slope` is the derivative for each entry of `L`.
     pub(crate) fn add_factor_slope(&self, theta: &[f64], group: usize, slope: &DMatrix<f64>, gradient: &mut [f64]) {
         let first = self.subject[group];
-        if self.effects > 0 {
+        Self::add_slope(theta, first, self.subjects.count(), slope, gradient);
+        if self.curved > 0 {
+            let trace: f64 = (self.width - self.curved..self.width).map(|a| slope[(a, a)]).sum();
+            gradient[first + 3] += trace * libm::exp(theta[first + 3]);
+        }
+    }
+
+    /// The same for the factor of the clusters.
+    pub(crate) fn add_cluster_slope(&self, theta: &[f64], slope: &DMatrix<f64>, gradient: &mut [f64]) {
+        Self::add_slope(theta, self.cluster, self.clusters.count(), slope, gradient);
+    }
+
+    fn add_slope(theta: &[f64], first: usize, lines: usize, slope: &DMatrix<f64>, gradient: &mut [f64]) {
+        if lines > 0 {
             gradient[first] += slope[(0, 0)] * libm::exp(theta[first]);
         }
-        if self.effects == 2 {
+        if lines > 1 {
             gradient[first + 1] += slope[(1, 0)];
             gradient[first + 2] += slope[(1, 1)] * libm::exp(theta[first + 2]);
         }

@@ -2,7 +2,7 @@
 //!
 //! Every quantity here is a linear function of the groups' coefficients, a
 //! [`Contrast`] `f`. Given the variance parameters the coefficients are normal
-//! with covariance `A^-1` per group, smoothing bias included (Wahba 1983;
+//! with covariance `A^-1` per block, smoothing bias included (Wahba 1983;
 //! Nychka 1988). Two corrections are made for having estimated the parameters
 //! `theta`, whose covariance is `W`, the inverse Hessian:
 //!
@@ -16,6 +16,7 @@
 
 use crate::criterion::{Criterion, Solved};
 use crate::fit::Fit;
+use crate::placement::Placement;
 use crate::special::DirectionMaxima;
 use crate::spectral::symmetric_eigen;
 use nalgebra::{DMatrix, DVector};
@@ -23,7 +24,7 @@ use nalgebra::{DMatrix, DVector};
 /// A linear function of the groups' curves.
 #[derive(Debug, Clone, PartialEq)]
 pub struct Contrast {
-    /// Weights on the coefficients of some groups.
+    /// Weights on the extended coefficients of some groups; those of shared columns may be left out.
     parts: Vec<(usize, Vec<f64>)>,
     /// Weight of the response's centre: 1 for a level, 0 for a difference or a slope.
     level: f64,
@@ -44,7 +45,10 @@ impl Contrast {
         self.level += factor * other.level;
         for (group, weights) in &other.parts {
             match self.parts.iter_mut().find(|(g, _)| g == group) {
-                Some((_, own)) => own.iter_mut().zip(weights).for_each(|(a, b)| *a += factor * b),
+                Some((_, own)) => {
+                    own.resize(own.len().max(weights.len()), 0.0);
+                    own.iter_mut().zip(weights).for_each(|(a, b)| *a += factor * b);
+                }
                 None => self.parts.push((*group, weights.iter().map(|w| factor * w).collect())),
             }
         }
@@ -68,7 +72,6 @@ pub struct Estimate {
 pub struct Posterior<'a> {
     fit: &'a Fit,
     correction: Option<Correction>,
-    offsets: Vec<usize>,
 }
 
 #[derive(Debug, Clone)]
@@ -107,14 +110,25 @@ impl Fit {
         basis.fill(self.design.units.inner_time(time), derivative, &mut weights);
         if derivative {
             weights.iter_mut().for_each(|w| *w /= self.design.units.time_span);
+        } else {
+            weights.extend(&self.design.shared.reference);
         }
         Contrast { parts: vec![(group, weights)], level: if derivative { 0.0 } else { 1.0 } }
+    }
+
+    /// What one unit of a shared column adds to every course.
+    #[must_use]
+    pub fn shared_effect(&self, column: usize) -> Contrast {
+        let own = self.design.placement.own(0);
+        let mut weights = vec![0.0; self.design.placement.extended(0)];
+        weights[own + column] = 1.0;
+        Contrast { parts: vec![(0, weights)], level: 0.0 }
     }
 
     /// The posterior with the variance parameters taken as known.
     #[must_use]
     pub fn plug_in(&self) -> Posterior<'_> {
-        Posterior { fit: self, correction: None, offsets: offsets(self) }
+        Posterior { fit: self, correction: None }
     }
 
     /// The posterior with both small-sample corrections. Falls back to
@@ -125,16 +139,6 @@ impl Fit {
     }
 }
 
-fn offsets(fit: &Fit) -> Vec<usize> {
-    let mut total = 0;
-    let mut result = vec![0];
-    for basis in &fit.design.bases {
-        total += basis.columns();
-        result.push(total);
-    }
-    result
-}
-
 impl Correction {
     fn of(fit: &Fit) -> Option<Self> {
         let free = &fit.free;
@@ -143,7 +147,7 @@ impl Correction {
         let root = &eigen.eigenvectors * DMatrix::from_diagonal(&floored.map(|value| 1.0 / value.sqrt()));
         let parameters = &root * root.transpose();
         let mut criterion = Criterion::new(&fit.design, &fit.layout);
-        let total = *offsets(fit).last()?;
+        let total = fit.design.placement.offset(fit.design.placement.blocks());
         let mut jacobian = DMatrix::zeros(total, free.len());
         let mut moved = Vec::with_capacity(free.len());
         for (column, &k) in free.iter().enumerate() {
@@ -162,9 +166,7 @@ impl Correction {
             }
             moved.push((up, down, h));
         }
-        let rows: usize = fit.design.rows.iter().sum();
-        let unpenalised: usize = fit.design.bases.iter().map(crate::basis::GroupBasis::unpenalised).sum();
-        Some(Correction { root: jacobian * root, parameters, moved, most_df: (rows - unpenalised) as f64 })
+        Some(Correction { root: jacobian * root, parameters, moved, most_df: fit.most_df() })
     }
 }
 
@@ -178,16 +180,11 @@ impl Posterior<'_> {
     /// Estimate, standard error and degrees of freedom of a contrast.
     #[must_use]
     pub fn estimate(&self, contrast: &Contrast) -> Estimate {
-        let units = &self.fit.design.units;
-        let solved = &self.fit.solved;
-        let value: f64 = contrast
-            .parts
-            .iter()
-            .map(|(g, w)| w.iter().zip(solved[*g].coefficients.iter()).map(|(w, b)| w * b).sum::<f64>())
-            .sum();
-        let plain = variance(solved, contrast);
+        let (units, placement) = (&self.fit.design.units, &self.fit.design.placement);
+        let value = solved_value(placement, &self.fit.solved, contrast);
+        let plain = variance(placement, &self.fit.solved, contrast);
         let extra: f64 = self.extra(contrast).iter().map(|x| x * x).sum();
-        let df = self.correction.as_ref().map_or(f64::INFINITY, |c| c.df(contrast, plain));
+        let df = self.correction.as_ref().map_or(f64::INFINITY, |c| c.df(placement, contrast, plain));
         Estimate {
             mean: contrast.level * units.response_centre + units.response_scale * value,
             se: units.response_scale * (plain + extra).sqrt(),
@@ -197,12 +194,9 @@ impl Posterior<'_> {
 
     /// Mean and standard error in internal units, centre left out.
     pub(crate) fn inner_estimate(&self, contrast: &Contrast) -> (f64, f64) {
-        let solved = &self.fit.solved;
-        let value = (contrast.parts.iter())
-            .map(|(g, w)| w.iter().zip(solved[*g].coefficients.iter()).map(|(w, b)| w * b).sum::<f64>())
-            .sum();
+        let (placement, solved) = (&self.fit.design.placement, &self.fit.solved);
         let extra: f64 = self.extra(contrast).iter().map(|x| x * x).sum();
-        (value, (variance(solved, contrast) + extra).sqrt())
+        (solved_value(placement, solved, contrast), (variance(placement, solved, contrast) + extra).sqrt())
     }
 
     /// `W^(1/2)' J' f`.
@@ -211,10 +205,13 @@ impl Posterior<'_> {
             return Vec::new();
         };
         let mut result = vec![0.0; correction.root.ncols()];
+        let placement = &self.fit.design.placement;
         for (g, weights) in &contrast.parts {
+            let offset = placement.offset(placement.block(*g));
             for (j, w) in weights.iter().enumerate() {
+                let row = offset + placement.position(*g, j);
                 for (k, value) in result.iter_mut().enumerate() {
-                    *value += w * correction.root[(self.offsets[*g] + j, k)];
+                    *value += w * correction.root[(row, k)];
                 }
             }
         }
@@ -224,13 +221,13 @@ impl Posterior<'_> {
     /// A vector whose products with those of other contrasts are their covariances (internal unit).
     fn factor_row(&self, contrast: &Contrast) -> Vec<f64> {
         let extra = self.extra(contrast);
-        let total = *self.offsets.last().unwrap_or(&0);
+        let placement = &self.fit.design.placement;
+        let total = placement.offset(placement.blocks());
         let mut row = vec![0.0; total + extra.len()];
-        for (g, weights) in &contrast.parts {
-            let solution = half_solve(&self.fit.solved[*g], weights);
-            for (j, value) in solution.iter().enumerate() {
-                row[self.offsets[*g] + j] += value;
-            }
+        for (block, weights) in block_weights(placement, contrast) {
+            let offset = placement.offset(block);
+            let solution = half_solve(&self.fit.solved[block], &weights);
+            row[offset..offset + solution.len()].copy_from_slice(solution.as_slice());
         }
         row[total..].copy_from_slice(&extra);
         row
@@ -286,10 +283,12 @@ impl Joint {
 }
 
 impl Correction {
-    fn df(&self, contrast: &Contrast, plain: f64) -> f64 {
+    fn df(&self, placement: &Placement, contrast: &Contrast, plain: f64) -> f64 {
         let slopes = DVector::from_iterator(
             self.moved.len(),
-            self.moved.iter().map(|(up, down, h)| (variance(up, contrast) - variance(down, contrast)) / (2.0 * h)),
+            (self.moved.iter()).map(|(up, down, h)| {
+                (variance(placement, up, contrast) - variance(placement, down, contrast)) / (2.0 * h)
+            }),
         );
         let spread = slopes.dot(&(&self.parameters * &slopes));
         let df = 2.0 * plain * plain / spread;
@@ -297,12 +296,38 @@ impl Correction {
     }
 }
 
-/// Value of a contrast for given coefficients per group, internal unit, centre left out.
-pub(crate) fn contrast_value(contrast: &Contrast, coefficients: &[DMatrix<f64>]) -> f64 {
-    (contrast.parts.iter()).map(|(g, w)| w.iter().zip(coefficients[*g].iter()).map(|(w, b)| w * b).sum::<f64>()).sum()
+/// The contrast as weights on the unknowns of each block that it touches.
+fn block_weights(placement: &Placement, contrast: &Contrast) -> Vec<(usize, Vec<f64>)> {
+    let mut blocks: Vec<(usize, Vec<f64>)> = Vec::new();
+    for (g, weights) in &contrast.parts {
+        let block = placement.block(*g);
+        let at = blocks.iter().position(|(b, _)| *b == block).unwrap_or_else(|| {
+            blocks.push((block, vec![0.0; placement.size(block)]));
+            blocks.len() - 1
+        });
+        placement.spread(*g, weights, &mut blocks[at].1);
+    }
+    blocks
 }
 
-/// Coefficients drawn from their posterior given the variance parameters, K x 1 per group.
+/// Value of a contrast for given coefficients per block, internal unit, centre left out.
+pub(crate) fn contrast_value(placement: &Placement, contrast: &Contrast, coefficients: &[DMatrix<f64>]) -> f64 {
+    let of = |(g, w): &(usize, Vec<f64>)| -> f64 {
+        let own = &coefficients[placement.block(*g)];
+        w.iter().enumerate().map(|(j, w)| w * own[placement.position(*g, j)]).sum()
+    };
+    contrast.parts.iter().map(of).sum()
+}
+
+fn solved_value(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
+    let of = |(g, w): &(usize, Vec<f64>)| -> f64 {
+        let own = &solved[placement.block(*g)].coefficients;
+        w.iter().enumerate().map(|(j, w)| w * own[placement.position(*g, j)]).sum()
+    };
+    contrast.parts.iter().map(of).sum()
+}
+
+/// Coefficients drawn from their posterior given the variance parameters, one column per block.
 pub(crate) fn draw_coefficients(solved: &[Solved], rng: &mut crate::special::Rng) -> Vec<DMatrix<f64>> {
     (solved.iter())
         .map(|s| {
@@ -319,8 +344,8 @@ pub(crate) fn draw_coefficients(solved: &[Solved], rng: &mut crate::special::Rng
         .collect()
 }
 
-fn variance(solved: &[Solved], contrast: &Contrast) -> f64 {
-    contrast.parts.iter().map(|(g, w)| half_solve(&solved[*g], w).norm_squared()).sum()
+fn variance(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
+    block_weights(placement, contrast).iter().map(|(block, w)| half_solve(&solved[*block], w).norm_squared()).sum()
 }
 
 /// `L^-1 w` with `A = L L'`.

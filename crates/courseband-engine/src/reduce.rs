@@ -6,8 +6,8 @@
 //!
 //! | symbol | shape | what |
 //! |---|---|---|
-//! | F | n x K | columns of the group's mean |
-//! | Z | n x q | columns of a subject's effects: 1, time |
+//! | F | n x K | columns of the group's mean, then those that all groups share |
+//! | Z | n x q | columns of a subject's effects: 1, time, spline |
 //! | Y | n x m | responses of the pattern's m subjects |
 //!
 //! `F'F` is summed over a group, `F'Z` and `Z'Z` are kept per pattern, and of
@@ -17,8 +17,10 @@
 
 use crate::basis::{GroupBasis, Units};
 use crate::chains::reduce_chains;
-use crate::model::Data;
-use crate::spline::distinct_sorted;
+use crate::model::{ClusterEffects, Data, Dimension, Model, Shared, SubjectEffects, SubjectRows};
+use crate::placement::Placement;
+use crate::spline::{NaturalSpline, distinct_sorted, place_knots};
+use crate::subject_basis::SubjectBasis;
 use crate::whiten::{ErrorShape, Whitener};
 use nalgebra::DMatrix;
 use std::collections::BTreeMap;
@@ -37,6 +39,10 @@ pub(crate) struct Pattern {
     pub(crate) subjects: Vec<usize>,
     /// Internal responses, n rows of m.
     pub(crate) responses: Vec<f64>,
+    /// Values of the shared columns, n rows.
+    pub(crate) shared: Vec<f64>,
+    /// Columns of a subject's effects, n rows.
+    pub(crate) effects: Vec<f64>,
 }
 
 /// The data in internal units, sorted into patterns.
@@ -45,8 +51,14 @@ pub(crate) struct Design {
     pub(crate) units: Units,
     pub(crate) bases: Vec<GroupBasis>,
     pub(crate) patterns: Vec<Pattern>,
-    /// Number of effects per subject.
-    pub(crate) effects: usize,
+    /// What differs from subject to subject, or from cluster to cluster.
+    pub(crate) effects: SubjectBasis,
+    /// Columns that all groups share.
+    pub(crate) shared: Shared,
+    /// Where each group's coefficients stand.
+    pub(crate) placement: Placement,
+    /// Patterns of each cluster; none in a model without clusters.
+    pub(crate) clusters: Vec<Vec<usize>>,
     /// Rows per group.
     pub(crate) rows: Vec<usize>,
     /// Columns of each group's mean at each of its distinct times, row by row.
@@ -70,7 +82,23 @@ pub(crate) struct Step {
 }
 
 impl Design {
-    pub(crate) fn new(data: &Data, units: Units, bases: Vec<GroupBasis>, effects: usize) -> Self {
+    pub(crate) fn new(data: &Data, units: Units, bases: Vec<GroupBasis>, model: &Model) -> Self {
+        let effects = subject_basis(model, &units, data);
+        Design::assemble(data, units, bases, effects, model.clusters)
+    }
+
+    /// Other data with the same units, bases and subject effects.
+    pub(crate) fn again(&self, data: &Data, clusters: ClusterEffects) -> Self {
+        Design::assemble(data, self.units, self.bases.clone(), self.effects.clone(), clusters)
+    }
+
+    fn assemble(
+        data: &Data,
+        units: Units,
+        bases: Vec<GroupBasis>,
+        effects: SubjectBasis,
+        clusters: ClusterEffects,
+    ) -> Self {
         let mut distinct = vec![Vec::new(); data.groups];
         for subject in &data.subjects {
             distinct[subject.group].extend(subject.times.iter().map(|&t| units.inner_time(t)));
@@ -79,9 +107,39 @@ impl Design {
         let tables = distinct.iter().zip(&bases).map(|(times, basis)| column_table(basis, times)).collect();
         let mut rows = vec![0; data.groups];
         data.subjects.iter().for_each(|s| rows[s.group] += s.times.len());
-        let mut patterns = sort_into_patterns(data, &units, &distinct);
+        let (mut patterns, clusters) = sort_into_patterns(data, &units, &distinct, &effects, clusters);
         let (seen, steps) = count_steps(&mut patterns, &distinct);
-        Design { units, bases, patterns, effects, rows, tables, seen, steps }
+        let joint = clusters.iter().any(|of| of.iter().any(|&p| patterns[p].group != patterns[of[0]].group));
+        let own = bases.iter().map(GroupBasis::columns).collect();
+        let placement = Placement::new(own, data.shared.columns(), joint);
+        let shared = data.shared.clone();
+        Design { units, bases, patterns, effects, shared, placement, clusters, rows, tables, seen, steps }
+    }
+
+    /// Number of columns without a penalty, of all groups together.
+    pub(crate) fn unpenalised(&self) -> usize {
+        self.bases.iter().map(GroupBasis::unpenalised).sum::<usize>() + self.shared.free
+    }
+
+    /// The first free shared column that the groups' own columns and those before it determine.
+    pub(crate) fn inseparable(&self) -> Option<usize> {
+        if self.shared.free == 0 {
+            return None;
+        }
+        let (products, _) = reduce(self, None, &[])?;
+        let placement = &self.placement;
+        let size = placement.size(0);
+        let mut gram = DMatrix::zeros(size, size);
+        for g in 0..self.bases.len() {
+            placement.scatter(g, &products.groups[g].ff, &mut gram);
+        }
+        let own = (0..self.bases.len()).flat_map(|g| {
+            let first = placement.position(g, 0);
+            first..first + self.bases[g].unpenalised()
+        });
+        let first_shared = size - self.shared.columns();
+        let columns: Vec<usize> = own.chain(first_shared..first_shared + self.shared.free).collect();
+        dependent_column(&gram, &columns).and_then(|at| at.checked_sub(columns.len() - self.shared.free))
     }
 
     /// True where some subject has several rows at one time.
@@ -106,23 +164,51 @@ impl Design {
 
     /// Rows `F | Z | Y` of a pattern, row by row; returns them with their width.
     fn rows_of(&self, pattern: &Pattern) -> (Vec<f64>, usize) {
-        let columns = self.bases[pattern.group].columns();
-        let (q, m) = (self.effects, pattern.subjects.len());
+        let own = self.bases[pattern.group].columns();
+        let (shared, q, m) = (self.shared.columns(), self.effects.width(), pattern.subjects.len());
+        let columns = own + shared;
         let width = columns + q + m;
         let mut rows = vec![0.0; pattern.times.len() * width];
         for (j, row) in rows.chunks_exact_mut(width).enumerate() {
-            let from = pattern.table_row[j] * columns;
-            row[..columns].copy_from_slice(&self.tables[pattern.group][from..from + columns]);
-            if q > 0 {
-                row[columns] = 1.0;
-            }
-            if q > 1 {
-                row[columns + 1] = pattern.times[j] - self.units.subject_centre;
-            }
+            let from = pattern.table_row[j] * own;
+            row[..own].copy_from_slice(&self.tables[pattern.group][from..from + own]);
+            row[own..columns].copy_from_slice(&pattern.shared[j * shared..(j + 1) * shared]);
+            row[columns..columns + q].copy_from_slice(&pattern.effects[j * q..(j + 1) * q]);
             row[columns + q..].copy_from_slice(&pattern.responses[j * m..(j + 1) * m]);
         }
         (rows, width)
     }
+}
+
+/// The first of `columns` whose squared length falls under a 1e-9 share once those before it are
+/// taken out of the Gram matrix; own columns never do.
+fn dependent_column(gram: &DMatrix<f64>, columns: &[usize]) -> Option<usize> {
+    let n = columns.len();
+    let mut left = DMatrix::from_fn(n, n, |i, j| gram[(columns[i], columns[j])]);
+    for k in 0..n {
+        let (pivot, whole) = (left[(k, k)], gram[(columns[k], columns[k])]);
+        if !(pivot > 1e-9 * whole) {
+            return Some(k);
+        }
+        for i in k + 1..n {
+            let share = left[(i, k)] / pivot;
+            (k + 1..n).for_each(|j| left[(i, j)] -= share * left[(k, j)]);
+        }
+    }
+    None
+}
+
+/// Most knots of a subject's own curve.
+const SUBJECT_KNOTS: usize = 8;
+
+fn subject_basis(model: &Model, units: &Units, data: &Data) -> SubjectBasis {
+    let spline = (model.subjects == SubjectEffects::Curve).then(|| {
+        let times = data.subjects.iter().flat_map(|s| s.times.iter().map(|&t| units.inner_time(t)));
+        let pooled = distinct_sorted(times);
+        NaturalSpline::new(place_knots(&pooled, Dimension::Knots(SUBJECT_KNOTS.min(pooled.len()))))
+    });
+    let lines = model.subjects.count().max(model.clusters.count());
+    SubjectBasis::new(lines, units.subject_centre, spline)
 }
 
 fn column_table(basis: &GroupBasis, times: &[f64]) -> Vec<f64> {
@@ -156,17 +242,40 @@ fn count_steps(patterns: &mut [Pattern], distinct: &[Vec<f64>]) -> (Vec<Vec<f64>
     (seen, steps)
 }
 
-fn sort_into_patterns(data: &Data, units: &Units, distinct: &[Vec<f64>]) -> Vec<Pattern> {
-    let mut found: BTreeMap<(usize, Vec<u64>), usize> = BTreeMap::new();
+/// What subjects of one pattern have in common: group, cluster, times and shared columns.
+type Key = (usize, usize, Vec<u64>, Vec<u64>);
+
+/// The patterns, and the patterns of each cluster.
+fn sort_into_patterns(
+    data: &Data,
+    units: &Units,
+    distinct: &[Vec<f64>],
+    effects: &SubjectBasis,
+    clusters: ClusterEffects,
+) -> (Vec<Pattern>, Vec<Vec<usize>>) {
+    let bits = |values: &[f64]| values.iter().map(|x| x.to_bits()).collect::<Vec<u64>>();
+    let mut found: BTreeMap<Key, usize> = BTreeMap::new();
     let mut patterns: Vec<Pattern> = Vec::new();
+    let mut known: BTreeMap<usize, usize> = BTreeMap::new();
+    let mut members: Vec<Vec<usize>> = Vec::new();
     for (index, subject) in data.subjects.iter().enumerate() {
-        let key = (subject.group, subject.times.iter().map(|t| t.to_bits()).collect::<Vec<u64>>());
+        let cluster = match (clusters, subject.cluster) {
+            (ClusterEffects::None, _) => 0,
+            (_, Some(name)) => *known.entry(name).or_insert_with(|| {
+                members.push(Vec::new());
+                members.len() - 1
+            }),
+            (_, None) => {
+                members.push(Vec::new());
+                members.len() - 1
+            }
+        };
+        let key = (subject.group, cluster, bits(&subject.times), bits(&subject.shared));
         let at = *found.entry(key).or_insert_with(|| {
-            let times: Vec<f64> = subject.times.iter().map(|&t| units.inner_time(t)).collect();
-            let own = &distinct[subject.group];
-            let table_row = times.iter().map(|t| own.partition_point(|d| d < t)).collect();
-            let (subjects, responses, step) = (vec![], vec![], vec![]);
-            patterns.push(Pattern { group: subject.group, times, table_row, step, subjects, responses });
+            patterns.push(empty_pattern(subject, units, &distinct[subject.group], effects));
+            if let Some(own) = members.get_mut(cluster) {
+                own.push(patterns.len() - 1);
+            }
             patterns.len() - 1
         });
         patterns[at].subjects.push(index);
@@ -177,7 +286,21 @@ fn sort_into_patterns(data: &Data, units: &Units, distinct: &[Vec<f64>]) -> Vec<
             .map(|(j, s)| (data.subjects[s].responses[j] - units.response_centre) / units.response_scale)
             .collect();
     }
-    patterns
+    (patterns, members)
+}
+
+fn empty_pattern(subject: &SubjectRows, units: &Units, distinct: &[f64], effects: &SubjectBasis) -> Pattern {
+    let times: Vec<f64> = subject.times.iter().map(|&t| units.inner_time(t)).collect();
+    Pattern {
+        group: subject.group,
+        table_row: times.iter().map(|t| distinct.partition_point(|d| d < t)).collect(),
+        step: Vec::new(),
+        subjects: Vec::new(),
+        responses: Vec::new(),
+        shared: subject.shared.clone(),
+        effects: effects.table(&times),
+        times,
+    }
 }
 
 /// Products of one pattern's whitened columns, or their derivatives.
@@ -251,8 +374,8 @@ pub(crate) fn reduce(
 }
 
 pub(crate) fn empty_products(design: &Design) -> Products {
-    let groups = design.bases.iter().map(|basis| {
-        let k = basis.columns();
+    let groups = (0..design.bases.len()).map(|g| {
+        let k = design.placement.extended(g);
         GroupProducts { ff: DMatrix::zeros(k, k), fy: DMatrix::zeros(k, 1), yy: 0.0, log_det: 0.0 }
     });
     Products { patterns: Vec::with_capacity(design.patterns.len()), groups: groups.collect() }
@@ -269,7 +392,7 @@ fn add_pattern(
     log_det: f64,
     factor: f64,
 ) {
-    let (k, q, m) = (design.bases[pattern.group].columns(), design.effects, pattern.subjects.len());
+    let (k, q, m) = (design.placement.extended(pattern.group), design.effects.width(), pattern.subjects.len());
     let group = &mut target.groups[pattern.group];
     group.log_det += m as f64 * log_det;
     add_gram(&mut group.ff, left, right, width, k, factor * m as f64);

@@ -6,6 +6,8 @@
 //! subject's earlier visits, over that prediction's standard deviation.
 
 use crate::fit::Fit;
+use crate::reduce::Pattern;
+use crate::simulate::curve_at;
 use nalgebra::{Cholesky, DMatrix, DVector};
 
 /// One row's residuals, in the order of the data's subjects and their times.
@@ -34,11 +36,12 @@ impl Fit {
     pub fn residuals(&self) -> Vec<Residual> {
         let mut all: Vec<Residual> = Vec::new();
         let units = &self.design.units;
+        let coefficients: Vec<DMatrix<f64>> = self.solved.iter().map(|s| s.coefficients.clone()).collect();
         for pattern in self.design.patterns.iter().filter(|p| p.times.len() <= 2000) {
             let g = pattern.group;
-            let Some(factor) = Cholesky::new(self.subject_total(g, &pattern.times)) else { continue };
+            let Some(factor) = Cholesky::new(self.subject_total(pattern)) else { continue };
             let inverse = factor.inverse();
-            let mean: Vec<f64> = pattern.times.iter().map(|&t| self.inner_course(g, t)).collect();
+            let mean = curve_at(&self.design, pattern, &coefficients);
             let m = pattern.subjects.len();
             for (s, &subject) in pattern.subjects.iter().enumerate() {
                 let r = DVector::from_fn(mean.len(), |j, _| pattern.responses[j * m + s] - mean[j]);
@@ -60,33 +63,23 @@ impl Fit {
         all
     }
 
-    /// Covariance of one subject's rows at internal times, internal unit.
-    fn subject_total(&self, g: usize, times: &[f64]) -> DMatrix<f64> {
-        let factor = self.layout.subject_factor(&self.theta, g);
-        let d = &factor * factor.transpose();
-        let variance = self.layout.variance(&self.theta, g);
+    /// Covariance of one subject's rows, internal unit; its cluster's effects count as its own.
+    fn subject_total(&self, pattern: &Pattern) -> DMatrix<f64> {
+        let times = &pattern.times;
+        let factor = self.layout.subject_factor(&self.theta, pattern.group);
+        let cluster = self.layout.cluster_factor(&self.theta);
+        let d = &factor * factor.transpose() + &cluster * cluster.transpose();
+        let variance = self.layout.variance(&self.theta, pattern.group);
         let shape = self.layout.error_shape(&self.theta);
-        let z = |t: f64| [1.0, t - self.design.units.subject_centre];
+        let z = DMatrix::from_row_slice(times.len(), d.nrows(), &pattern.effects);
+        let between = &z * d * z.transpose();
         DMatrix::from_fn(times.len(), times.len(), |i, j| {
             let own = if i == j { 1.0 } else { 0.0 };
             let error = shape.map_or(own, |shape| {
                 (1.0 - shape.nugget) * libm::exp(-shape.rate * (times[i] - times[j]).abs()) + shape.nugget * own
             });
-            let mut total = variance * error;
-            for a in 0..self.layout.effects {
-                for b in 0..self.layout.effects {
-                    total += z(times[i])[a] * d[(a, b)] * z(times[j])[b];
-                }
-            }
-            total
+            variance * error + between[(i, j)]
         })
-    }
-
-    fn inner_course(&self, g: usize, t: f64) -> f64 {
-        let basis = &self.design.bases[g];
-        let mut row = vec![0.0; basis.columns()];
-        basis.fill(t, false, &mut row);
-        row.iter().zip(self.solved[g].coefficients.iter()).map(|(f, b)| f * b).sum()
     }
 }
 
@@ -111,7 +104,7 @@ mod tests {
                 .collect();
             subjects.push(SubjectRows { group: k % 2, times, responses, ..SubjectRows::default() });
         }
-        let data = Data { groups: 2, subjects };
+        let data = Data { groups: 2, subjects, ..Data::default() };
         let fitted =
             fit(&data, &Model { serial: Serial::Ar1, subjects: SubjectEffects::Intercept, ..Model::default() })
                 .unwrap();

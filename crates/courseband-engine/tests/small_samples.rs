@@ -17,7 +17,7 @@ fn balanced(subjects: usize, visits: usize, seed: u64) -> Data {
             rows.push(SubjectRows { group, times, responses, ..SubjectRows::default() });
         }
     }
-    Data { groups: 2, subjects: rows }
+    Data { groups: 2, subjects: rows, ..Data::default() }
 }
 
 fn means(subjects: SubjectEffects) -> Model {

@@ -31,7 +31,12 @@ impl Cohort {
         for (k, &subject) in observations.subject.iter().enumerate() {
             if last != Some(subject) {
                 let group = observations.subjects[subject as usize].group as usize;
-                subjects.push(SubjectRows { group, times: Vec::new(), responses: Vec::new() });
+                subjects.push(SubjectRows {
+                    group,
+                    times: Vec::new(),
+                    responses: Vec::new(),
+                    ..SubjectRows::default()
+                });
                 last = Some(subject);
             }
             if let Some(rows) = subjects.last_mut() {
@@ -42,7 +47,7 @@ impl Cohort {
         }
         refuse_ties(observations, plan)?;
         let (names, kept) = keep_filled_groups(observations, &mut subjects);
-        let data = Data { groups: names.len(), subjects };
+        let data = Data { groups: names.len(), subjects, ..Data::default() };
         let visits = distinct(data.subjects.iter().flat_map(|s| s.times.iter().copied()));
         let groups = describe_groups(&data, names, &visits);
         let supports = supports(&data);

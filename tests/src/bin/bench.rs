@@ -112,7 +112,7 @@ fn fitting(text: &str, rounds: usize) -> (Cost, usize) {
             rows.responses.push(cells[3].parse().expect("a response"));
         }
     }
-    let data = Data { groups: 3, subjects };
+    let data = Data { groups: 3, subjects, ..Data::default() };
     let model = Model { subjects: SubjectEffects::Slope, serial: Serial::Ar1, ..Model::default() };
     let mut evaluations = 0;
     let cost = cost(rounds, || {

@@ -142,6 +142,6 @@ impl Cell {
                 subjects.push(SubjectRows { group, times, responses, ..SubjectRows::default() });
             }
         }
-        Data { groups: 2, subjects }
+        Data { groups: 2, subjects, ..Data::default() }
     }
 }

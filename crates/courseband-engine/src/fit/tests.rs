@@ -1,7 +1,8 @@
 //! The criterion against a dense computation, its gradient against differences.
 
 use super::*;
-use crate::model::{Dimension, Shape, Sharing, SubjectEffects, SubjectRows};
+use crate::basis::GroupBasis;
+use crate::model::{ClusterEffects, Dimension, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
 use crate::special::Rng;
 
 fn made_up(groups: usize, per_group: usize, visits: usize, seed: u64) -> Data {
@@ -21,10 +22,10 @@ fn made_up(groups: usize, per_group: usize, visits: usize, seed: u64) -> Data {
                 let mean = (t / 2.0).sin() * (1.0 + group as f64);
                 responses.push(mean + level + trend * t + 0.5 * rng.normal());
             }
-            subjects.push(SubjectRows { group, times, responses });
+            subjects.push(SubjectRows { group, times, responses, ..SubjectRows::default() });
         }
     }
-    Data { groups, subjects }
+    Data { groups, subjects, ..Data::default() }
 }
 
 fn model(subjects: SubjectEffects, serial: Serial) -> Model {
@@ -33,9 +34,55 @@ fn model(subjects: SubjectEffects, serial: Serial) -> Model {
         smoothness: Sharing::ByGroup,
         subjects,
         subjects_spread: Sharing::Common,
+        clusters: ClusterEffects::None,
         serial,
         spread: Sharing::Common,
     }
+}
+
+/// The same table with subjects in clusters of one group or of several.
+fn housed(mut data: Data, crossed: bool) -> Data {
+    for (k, subject) in data.subjects.iter_mut().enumerate() {
+        subject.cluster = Some(if crossed { k % 3 } else { subject.group * 10 + k % 2 });
+    }
+    data.subjects[1].cluster = None;
+    data
+}
+
+/// The same table with two free shared columns and a run of three penalised ones.
+fn adjusted(mut data: Data) -> Data {
+    for (k, subject) in data.subjects.iter_mut().enumerate() {
+        let own = [f64::from(u8::from(k % 3 == 1)), 0.0, 0.0, 0.0, 0.0];
+        for (j, &t) in subject.times.iter().enumerate() {
+            let mut row = own;
+            row[1] = (t * 1.7 + k as f64).sin();
+            row[2 + (k / 2) % 3] = 1.0;
+            subject.responses[j] += 0.4 * row[0] - 0.3 * row[1] + 0.5 * row[3];
+            subject.shared.extend(row);
+        }
+    }
+    data.shared = Shared { free: 2, penalised: vec![3], reference: vec![0.0; 5] };
+    data
+}
+
+/// Tables and models beyond groups and subjects.
+fn wider() -> Vec<(Data, Model)> {
+    let plain = || made_up(2, 5, 6, 11);
+    let mut all = Vec::new();
+    for serial in [Serial::None, Serial::Ar1, Serial::Ar1Nugget] {
+        for subjects in [SubjectEffects::None, SubjectEffects::Intercept, SubjectEffects::Slope] {
+            for clusters in [ClusterEffects::Intercept, ClusterEffects::Slope] {
+                let model = Model { clusters, spread: Sharing::ByGroup, ..model(subjects, serial) };
+                all.push((housed(plain(), false), model));
+                all.push((housed(adjusted(plain()), true), model));
+            }
+            all.push((adjusted(plain()), model(subjects, serial)));
+        }
+        let curve = Model { subjects_spread: Sharing::ByGroup, ..model(SubjectEffects::Curve, serial) };
+        all.push((plain(), curve));
+        all.push((housed(plain(), true), Model { clusters: ClusterEffects::Slope, ..curve }));
+    }
+    all
 }
 
 fn all_models() -> Vec<Model> {
@@ -62,6 +109,9 @@ fn somewhere(layout: &Layout) -> Vec<f64> {
             Parameter::Error(_) => -1.0 + 0.1 * k as f64,
             Parameter::Subject { part: 1, .. } => 0.25,
             Parameter::Subject { .. } => -0.6 + 0.05 * k as f64,
+            Parameter::Cluster { part: 1 } => -0.15,
+            Parameter::Cluster { .. } => -0.8 + 0.1 * k as f64,
+            Parameter::Shared(_) => -0.4,
             Parameter::Rate => 1.1,
             Parameter::Nugget => -0.7,
         })
@@ -71,8 +121,8 @@ fn somewhere(layout: &Layout) -> Vec<f64> {
 fn prepared(data: &Data, model: &Model) -> (Design, Layout) {
     let units = Units::of(data);
     let bases = group_bases(data, model, &units);
-    let design = Design::new(data, units, bases, model.subjects.count());
-    let layout = Layout::new(model, &design.bases, design.median_gap());
+    let design = Design::new(data, units, bases, model);
+    let layout = Layout::new(model, &design);
     (design, layout)
 }
 
@@ -80,13 +130,15 @@ fn prepared(data: &Data, model: &Model) -> (Design, Layout) {
 fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> f64 {
     let rows = data.rows();
     let units = &design.units;
-    let free: usize = design.bases.iter().map(GroupBasis::unpenalised).sum();
+    let free = design.unpenalised();
+    let columns_shared = data.shared.columns();
     let mut v = DMatrix::zeros(rows, rows);
     let mut x = DMatrix::zeros(rows, free);
     let mut y = DMatrix::zeros(rows, 1);
-    let mut owner = Vec::new();
+    let (mut owner, mut shared) = (Vec::new(), Vec::new());
     for (s, subject) in data.subjects.iter().enumerate() {
-        for (t, r) in subject.times.iter().zip(&subject.responses) {
+        for (j, (t, r)) in subject.times.iter().zip(&subject.responses).enumerate() {
+            shared.push(&subject.shared[j * columns_shared..(j + 1) * columns_shared]);
             owner.push((s, subject.group, units.inner_time(*t), (r - units.response_centre) / units.response_scale));
         }
     }
@@ -102,6 +154,7 @@ fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> 
         let ci = columns(gi, ti);
         let p = design.bases[gi].unpenalised();
         (0..p).for_each(|j| x[(i, offset[gi] + j)] = ci[j]);
+        (0..data.shared.free).for_each(|j| x[(i, free - data.shared.free + j)] = shared[i][j]);
         for (j, &(sj, gj, tj, _)) in owner.iter().enumerate() {
             if gi == gj
                 && let Some(s2) = layout.smoothing_variance(theta, gi)
@@ -109,15 +162,27 @@ fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> 
                 let cj = columns(gj, tj);
                 v[(i, j)] += s2 * ci[p..].iter().zip(&cj[p..]).map(|(a, b)| a * b).sum::<f64>();
             }
-            if si == sj {
-                let factor = layout.subject_factor(theta, gi);
+            let mut from = data.shared.free;
+            for (run, &length) in data.shared.penalised.iter().enumerate() {
+                let at = layout.entries.iter().position(|e| *e == Parameter::Shared(run)).unwrap();
+                let product: f64 = (from..from + length).map(|c| shared[i][c] * shared[j][c]).sum();
+                v[(i, j)] += theta[at].exp() * product;
+                from += length;
+            }
+            let mut z = [vec![0.0; design.effects.width()], vec![0.0; design.effects.width()]];
+            design.effects.fill(ti, &mut z[0]);
+            design.effects.fill(tj, &mut z[1]);
+            let effect = |factor: DMatrix<f64>| {
                 let d = &factor * factor.transpose();
-                let z = |t: f64| [1.0, t - units.subject_centre];
-                for a in 0..layout.effects {
-                    for b in 0..layout.effects {
-                        v[(i, j)] += z(ti)[a] * d[(a, b)] * z(tj)[b];
-                    }
-                }
+                let pairs = (0..z[0].len()).flat_map(|a| (0..z[0].len()).map(move |b| (a, b)));
+                pairs.map(|(a, b)| z[0][a] * d[(a, b)] * z[1][b]).sum::<f64>()
+            };
+            let (ki, kj) = (data.subjects[si].cluster, data.subjects[sj].cluster);
+            if layout.clusters != ClusterEffects::None && (si == sj || (ki.is_some() && ki == kj)) {
+                v[(i, j)] += effect(layout.cluster_factor(theta));
+            }
+            if si == sj {
+                v[(i, j)] += effect(layout.subject_factor(theta, gi));
                 let variance = layout.variance(theta, gi);
                 v[(i, j)] += variance
                     * match layout.error_shape(theta) {
@@ -155,9 +220,20 @@ fn criterion_equals_the_dense_one() {
 }
 
 #[test]
+fn wider_criteria_equal_the_dense_ones() {
+    for (data, model) in wider() {
+        let (design, layout) = prepared(&data, &model);
+        let theta = somewhere(&layout);
+        let value = Criterion::new(&design, &layout).evaluate(&theta, true).unwrap().value;
+        let expected = dense_value(&data, &design, &layout, &theta);
+        assert!((value - expected).abs() < 1e-9 * expected.abs().max(1.0), "{model:?}: {value} {expected}");
+    }
+}
+
+#[test]
 fn gradient_equals_differences() {
     let data = made_up(2, 4, 6, 12);
-    for model in all_models() {
+    for (data, model) in all_models().into_iter().map(|model| (data.clone(), model)).chain(wider()) {
         let (design, layout) = prepared(&data, &model);
         let theta = somewhere(&layout);
         let mut criterion = Criterion::new(&design, &layout);
@@ -189,6 +265,26 @@ fn every_model_reaches_an_optimum() {
             assert!(up > fit.value, "{model:?} {:?}", fit.layout.entries[*k]);
         }
     }
+}
+
+#[test]
+fn wider_models_reach_an_optimum() {
+    for (data, model) in wider() {
+        let fit = fit(&data, &model).unwrap();
+        assert!(fit.log_reml().is_finite(), "{model:?}");
+        let influence = fit.influence(&[fit.gap(0, 1, 2.0)], &[3]);
+        assert_eq!(influence[0].values.len(), 1, "{model:?}");
+    }
+}
+
+#[test]
+fn a_shared_column_that_tells_groups_apart_is_refused() {
+    let mut data = adjusted(made_up(2, 4, 6, 15));
+    for subject in &mut data.subjects {
+        subject.shared.chunks_exact_mut(5).for_each(|row| row[1] = 3.0 - subject.group as f64);
+    }
+    let refused = fit(&data, &model(SubjectEffects::Intercept, Serial::None)).unwrap_err();
+    assert_eq!(refused, FitError::Inseparable { column: 1 });
 }
 
 #[test]

@@ -99,7 +99,7 @@ impl SizeRequest {
                 subjects.push(SubjectRows { group, times, responses, ..SubjectRows::default() });
             }
         }
-        Data { groups: 2, subjects }
+        Data { groups: 2, subjects, ..Data::default() }
     }
 
     fn met(&self, fitted: &Fit, seed: u64) -> bool {

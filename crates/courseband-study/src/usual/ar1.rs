@@ -52,10 +52,10 @@ fn fit(panel: &Panel) -> Option<Fit> {
     }
     let rows = |(values, &group): (&Vec<Option<f64>>, &usize)| {
         let (times, responses) = panel.times.iter().zip(values).filter_map(|(t, y)| y.map(|y| (*t, y))).unzip();
-        engine::SubjectRows { group, times, responses }
+        engine::SubjectRows { group, times, responses, ..engine::SubjectRows::default() }
     };
     let subjects = panel.values.iter().zip(&panel.group_of_subject).map(rows).filter(|s| !s.times.is_empty());
-    let data = engine::Data { groups: panel.groups, subjects: subjects.collect() };
+    let data = engine::Data { groups: panel.groups, subjects: subjects.collect(), ..engine::Data::default() };
     let model = engine::Model {
         shape: engine::Shape::ByTime,
         subjects: engine::SubjectEffects::None,
