@@ -192,9 +192,11 @@ impl Plan {
             subjects: match self.subjects {
                 SubjectEffects::None => engine::SubjectEffects::None,
                 SubjectEffects::Intercept => engine::SubjectEffects::Intercept,
-                SubjectEffects::Slope | SubjectEffects::Curve => engine::SubjectEffects::Slope,
+                SubjectEffects::Slope => engine::SubjectEffects::Slope,
+                SubjectEffects::Curve => engine::SubjectEffects::Curve,
             },
             subjects_spread: sharing(self.subjects_spread == Sharing::ByGroup),
+            clusters: engine::ClusterEffects::None,
             serial: match (self.errors.serial, self.errors.nugget) {
                 (Serial::Ar1, true) => engine::Serial::Ar1Nugget,
                 (Serial::Ar1, false) => engine::Serial::Ar1,

@@ -28,6 +28,18 @@ pub(crate) fn in_words(remark: Remark, groups: &[GroupInfo], plan: &Plan) -> Str
             "Level and trend of the {subjects}{} are estimated as perfectly correlated: the data do not hold both apart.",
             of_group(group, groups)
         ),
+        Remark::NoSubjectCurve(group) => format!(
+            "The {subjects}{} are estimated to differ in level and trend only: their curves show no bend of their own.",
+            of_group(group, groups)
+        ),
+        Remark::NoClusterVariance { trend } => format!(
+            "The clusters are estimated not to differ in {}: that variance is zero. Degrees of freedom still count clusters.",
+            if trend { "trend" } else { "level" }
+        ),
+        Remark::PerfectClusterCorrelation => {
+            "Level and trend of the clusters are estimated as perfectly correlated: the data do not hold both apart.".into()
+        }
+        Remark::NoSharedVariance(_) => "The blocks are estimated not to differ: that variance is zero.".into(),
         Remark::NoSerialCorrelation => "The serial correlation is estimated as zero: errors are taken as independent.".into(),
         Remark::FullSerialCorrelation => {
             "The serial correlation is at its upper limit: it acts like a level of each subject.".into()
@@ -61,6 +73,11 @@ pub(crate) fn failure(error: &FitError, groups: &[GroupInfo]) -> String {
         FitError::TooFewRows { rows, needed } => format!(
             "There are {rows} rows, but this model needs at least {needed}. Choose straight courses or add data."
         ),
+        FitError::Inseparable { .. } => {
+            "An adjustment cannot be told from the groups or from another adjustment: it takes one value in each group. \
+             Leave it out."
+                .into()
+        }
         FitError::TiedTimes => {
             "One subject has several rows at one time. Add measurement error, or exclude rows.".into()
         }
