@@ -16,6 +16,8 @@ pub(crate) enum GroupBasis {
     Spline(NaturalSpline),
     /// One column per distinct time.
     ByTime(Vec<f64>),
+    /// One of the others without its value at internal time 0, which all groups share.
+    FromStart(Box<GroupBasis>),
 }
 
 impl GroupBasis {
@@ -30,6 +32,7 @@ impl GroupBasis {
             GroupBasis::Constant => 1,
             GroupBasis::Line | GroupBasis::Spline(_) => 2,
             GroupBasis::ByTime(times) => times.len(),
+            GroupBasis::FromStart(whole) => whole.unpenalised() - 1,
         }
     }
 
@@ -37,13 +40,29 @@ impl GroupBasis {
     pub(crate) fn penalised(&self) -> usize {
         match self {
             GroupBasis::Spline(spline) => spline.len(),
+            GroupBasis::FromStart(whole) => whole.penalised(),
             _ => 0,
         }
     }
 
     /// True where one column is time itself, so that the criterion depends on the unit of time.
     pub(crate) fn has_trend(&self) -> bool {
-        matches!(self, GroupBasis::Line | GroupBasis::Spline(_))
+        match self {
+            GroupBasis::Line | GroupBasis::Spline(_) => true,
+            GroupBasis::FromStart(whole) => whole.has_trend(),
+            _ => false,
+        }
+    }
+
+    /// How much of the mean at internal time 0 that all groups share is in the mean at `t`, or its derivative;
+    /// `None` where the group has a level of its own.
+    pub(crate) fn start_share(&self, t: f64, derivative: bool) -> Option<f64> {
+        let GroupBasis::FromStart(whole) = self else {
+            return None;
+        };
+        let mut all = vec![0.0; whole.columns()];
+        whole.fill(t, derivative, &mut all);
+        Some(all[0])
     }
 
     /// Writes the columns at internal time `t` into `out`, or their first derivatives.
@@ -59,6 +78,12 @@ impl GroupBasis {
                 }
             }
             GroupBasis::ByTime(times) => fill_joined(times, t, derivative, out),
+            GroupBasis::FromStart(whole) => {
+                // Level, or the mean of the first time: 1 at internal time 0, where the other columns are 0.
+                let mut all = vec![0.0; whole.columns()];
+                whole.fill(t, derivative, &mut all);
+                out.copy_from_slice(&all[1..]);
+            }
         }
     }
 }
@@ -122,6 +147,23 @@ impl Units {
     }
 }
 
+/// The data with the column of a common start put before the other shared ones.
+pub(crate) fn with_start(data: &Data, bases: &[GroupBasis], units: &Units) -> Data {
+    let mut data = data.clone();
+    let width = data.shared.columns();
+    for subject in &mut data.subjects {
+        let mut rows = Vec::with_capacity(subject.times.len() * (width + 1));
+        for (j, &t) in subject.times.iter().enumerate() {
+            rows.extend(bases[subject.group].start_share(units.inner_time(t), false));
+            rows.extend(&subject.shared[j * width..(j + 1) * width]);
+        }
+        subject.shared = rows;
+    }
+    data.shared.free += 1;
+    data.shared.reference.insert(0, 1.0);
+    data
+}
+
 /// One basis per group.
 pub(crate) fn group_bases(data: &Data, model: &Model, units: &Units) -> Vec<GroupBasis> {
     let inner = |t: f64| units.inner_time(t);
@@ -136,12 +178,13 @@ pub(crate) fn group_bases(data: &Data, model: &Model, units: &Units) -> Vec<Grou
         .map(|group| {
             let own = data.subjects.iter().filter(|s| s.group == group);
             let times = distinct_sorted(own.flat_map(|s| s.times.iter().map(|&t| inner(t))));
-            match (model.shape, times.len()) {
+            let whole = match (model.shape, times.len()) {
                 (Shape::ByTime, _) => GroupBasis::ByTime(times),
                 (_, 1) => GroupBasis::Constant,
                 (Shape::Smooth(_), _) => spline.clone().map_or(GroupBasis::Line, GroupBasis::Spline),
                 (Shape::Straight, _) => GroupBasis::Line,
-            }
+            };
+            if model.common_start { GroupBasis::FromStart(Box::new(whole)) } else { whole }
         })
         .collect()
 }

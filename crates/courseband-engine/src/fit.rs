@@ -6,7 +6,7 @@
 //! nested fit. A variance that does not help is set to its bound exactly, and
 //! said; a fit without an optimum is `Failed`.
 
-use crate::basis::{Units, group_bases};
+use crate::basis::{Units, group_bases, with_start};
 use crate::criterion::{Criterion, Solved};
 use crate::model::{Data, Model, Serial};
 use crate::optimise::{Bounds, Objective, Point, Polished, newton, plain_inverse, quasi_newton, start};
@@ -44,6 +44,8 @@ pub enum FitError {
     },
     /// Several rows at one time of one subject, under serial correlation without measurement error.
     TiedTimes,
+    /// A common start is asked for, but this group is not seen at the first time, or only then.
+    NoCommonStart(usize),
     /// A shared column is a combination of the groups' own columns and the shared ones before it.
     Inseparable {
         /// Index of the shared column.
@@ -90,6 +92,11 @@ pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
     check(data)?;
     let units = Units::of(data);
     let bases = group_bases(data, model, &units);
+    if let Some(group) = model.common_start.then(|| group_without_start(data)).flatten() {
+        return Err(FitError::NoCommonStart(group));
+    }
+    let started = model.common_start.then(|| with_start(data, &bases, &units));
+    let data = started.as_ref().unwrap_or(data);
     let design = Design::new(data, units, bases, model);
     let free = design.unpenalised();
     if data.rows() < free + 1 {
@@ -104,6 +111,16 @@ pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
     let layout = Layout::new(model, &design);
     let found = search(data, &design, model, &layout)?;
     finish(design, model, layout, found)
+}
+
+/// A group that is not seen at the first time, or only then.
+fn group_without_start(data: &Data) -> Option<usize> {
+    let times = |g: Option<usize>| {
+        let own = data.subjects.iter().filter(move |s| g.is_none_or(|g| s.group == g));
+        own.flat_map(|s| s.times.iter().copied())
+    };
+    let first = times(None).fold(f64::INFINITY, f64::min);
+    (0..data.groups).find(|&g| times(Some(g)).all(|t| t > first) || times(Some(g)).all(|t| t <= first))
 }
 
 fn check(data: &Data) -> Result<(), FitError> {

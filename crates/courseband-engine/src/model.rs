@@ -156,6 +156,9 @@ pub enum Serial {
 pub struct Model {
     /// Shape of the groups' means.
     pub shape: Shape,
+    /// True where all groups have one mean at the table's first time, which every group must have seen
+    /// (Liang & Zeger 2000, Sankhya B 62:134).
+    pub common_start: bool,
     /// Smoothing variance: one for all groups or one per group.
     pub smoothness: Sharing,
     /// What differs from subject to subject.
@@ -175,6 +178,7 @@ impl Default for Model {
     fn default() -> Self {
         Model {
             shape: Shape::Smooth(Dimension::Auto),
+            common_start: false,
             smoothness: Sharing::ByGroup,
             subjects: SubjectEffects::Intercept,
             subjects_spread: Sharing::Common,

@@ -108,18 +108,20 @@ impl Fit {
         let basis = &self.design.bases[group];
         let mut weights = vec![0.0; basis.columns()];
         basis.fill(self.design.units.inner_time(time), derivative, &mut weights);
+        let start = basis.start_share(self.design.units.inner_time(time), derivative);
+        weights.extend(start);
         if derivative {
             weights.iter_mut().for_each(|w| *w /= self.design.units.time_span);
         } else {
-            weights.extend(&self.design.shared.reference);
+            weights.extend(&self.design.shared.reference[start.iter().len()..]);
         }
         Contrast { parts: vec![(group, weights)], level: if derivative { 0.0 } else { 1.0 } }
     }
 
-    /// What one unit of a shared column adds to every course.
+    /// What one unit of a shared column of the data adds to every course.
     #[must_use]
     pub fn shared_effect(&self, column: usize) -> Contrast {
-        let own = self.design.placement.own(0);
+        let own = self.design.placement.own(0) + usize::from(self.model.common_start);
         let mut weights = vec![0.0; self.design.placement.extended(0)];
         weights[own + column] = 1.0;
         Contrast { parts: vec![(0, weights)], level: 0.0 }

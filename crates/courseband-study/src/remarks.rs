@@ -73,6 +73,10 @@ pub(crate) fn failure(error: &FitError, groups: &[GroupInfo]) -> String {
         FitError::TooFewRows { rows, needed } => format!(
             "There are {rows} rows, but this model needs at least {needed}. Choose straight courses or add data."
         ),
+        FitError::NoCommonStart(group) => format!(
+            "A common start needs every group at the first time and later, but {} is not. Let groups start apart.",
+            groups[*group].name
+        ),
         FitError::Inseparable { .. } => {
             "An adjustment cannot be told from the groups or from another adjustment: it takes one value in each group. \
              Leave it out."

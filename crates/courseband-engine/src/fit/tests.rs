@@ -31,6 +31,7 @@ fn made_up(groups: usize, per_group: usize, visits: usize, seed: u64) -> Data {
 fn model(subjects: SubjectEffects, serial: Serial) -> Model {
     Model {
         shape: Shape::Smooth(Dimension::Auto),
+        common_start: false,
         smoothness: Sharing::ByGroup,
         subjects,
         subjects_spread: Sharing::Common,
@@ -285,6 +286,24 @@ fn a_shared_column_that_tells_groups_apart_is_refused() {
     }
     let refused = fit(&data, &model(SubjectEffects::Intercept, Serial::None)).unwrap_err();
     assert_eq!(refused, FitError::Inseparable { column: 1 });
+}
+
+#[test]
+fn a_common_start_is_one_mean_at_the_first_time() {
+    let data = made_up(3, 6, 7, 16);
+    for shape in [Shape::Smooth(Dimension::Auto), Shape::Straight, Shape::ByTime] {
+        let asked = Model { shape, common_start: true, ..model(SubjectEffects::Intercept, Serial::None) };
+        let fit = fit(&data, &asked).unwrap();
+        let posterior = fit.corrected();
+        let at = |g: usize, t: f64| posterior.estimate(&fit.course(g, t));
+        assert!((at(0, 0.0).mean - at(2, 0.0).mean).abs() < 1e-9 && at(0, 0.0).se > 0.0);
+        assert!(posterior.estimate(&fit.gap(0, 1, 0.0)).se < 1e-9);
+        assert!(posterior.estimate(&fit.gap(0, 1, 5.0)).se > 0.1);
+        // The rate is the slope of the course, its shared part included.
+        let rate = posterior.estimate(&fit.rate(1, 0.7)).mean;
+        let slope = (at(1, 0.7005).mean - at(1, 0.6995).mean) / 1e-3;
+        assert!((rate - slope).abs() < 1e-5 * (1.0 + slope.abs()), "{shape:?}: {rate} {slope}");
+    }
 }
 
 #[test]
