@@ -115,7 +115,6 @@ impl Plan {
                      Set subjects to \"slope\", or errors.serial to \"none\".",
                 ));
             }
-            return missing("subjects: curve", "\"slope\"");
         }
         match self.errors.serial {
             Serial::Unstructured if self.subjects != SubjectEffects::None => {
@@ -130,8 +129,11 @@ impl Plan {
         if matches!(self.errors.spread, Spread::WithMean | Spread::ByVisit) {
             return missing("errors.spread: with-mean and by-visit", "\"common\", \"by-group\", or the log scale");
         }
-        if !self.columns.covariates.is_empty() {
-            return missing("columns.covariates", "an empty list");
+        if self.response.start == Start::Percent && self.response.transform == Transform::Log {
+            return Err(Refusal::plan(
+                "response.start is percent on the log scale, which has no percent of its own. Use \"change\": on the log scale \
+                 it is the ratio to the start.",
+            ));
         }
         Ok(())
     }
@@ -188,6 +190,7 @@ impl Plan {
                 Shape::Straight => engine::Shape::Straight,
                 Shape::ByTime => engine::Shape::ByTime,
             },
+            common_start: self.response.start == Start::Common,
             smoothness: sharing(self.curves.smoothness == Smoothness::PerGroup),
             subjects: match self.subjects {
                 SubjectEffects::None => engine::SubjectEffects::None,

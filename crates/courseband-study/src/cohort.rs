@@ -1,6 +1,8 @@
 //! The rows that are fitted: on the modelled scale, subject by subject.
 
+use crate::adjust::{Adjustment, Started, adjust, started};
 use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
+use crate::housing::Housing;
 use crate::plan::{Pairs, Plan, Serial, Shape, Transform};
 use crate::refusal::Refusal;
 use courseband_engine::{Data, SubjectRows};
@@ -13,6 +15,8 @@ const MOST_MEANS: usize = 300;
 #[derive(Debug)]
 pub(crate) struct Cohort {
     pub(crate) data: Data,
+    /// In the order of the data.
+    pub(crate) subject_names: Vec<String>,
     pub(crate) groups: Vec<GroupInfo>,
     /// First and last time of each group.
     pub(crate) supports: Vec<[f64; 2]>,
@@ -20,34 +24,23 @@ pub(crate) struct Cohort {
     pub(crate) visits: Vec<f64>,
     /// Index of the control group, where the plan names one.
     pub(crate) control: Option<usize>,
+    pub(crate) housing: Housing,
+    /// One per shared column, without its effect.
+    pub(crate) adjustments: Vec<Adjustment>,
     pub(crate) notes: Vec<Note>,
 }
 
 impl Cohort {
-    pub(crate) fn new(observations: &Observations, plan: &Plan) -> Result<Cohort, Refusal> {
+    pub(crate) fn new(reading: &Reading, plan: &Plan) -> Result<Cohort, Refusal> {
+        let (observations, cluster) = (&reading.observations, reading.columns.cluster.as_deref());
         refuse_non_positive(observations, plan)?;
-        let mut subjects: Vec<SubjectRows> = Vec::with_capacity(observations.subjects.len());
-        let mut last: Option<u32> = None;
-        for (k, &subject) in observations.subject.iter().enumerate() {
-            if last != Some(subject) {
-                let group = observations.subjects[subject as usize].group as usize;
-                subjects.push(SubjectRows {
-                    group,
-                    times: Vec::new(),
-                    responses: Vec::new(),
-                    ..SubjectRows::default()
-                });
-                last = Some(subject);
-            }
-            if let Some(rows) = subjects.last_mut() {
-                let y = observations.response[k];
-                rows.times.push(observations.time[k]);
-                rows.responses.push(if plan.response.transform == Transform::Log { libm::log(y) } else { y });
-            }
-        }
+        let started = started(observations, plan)?;
         refuse_ties(observations, plan)?;
+        let (mut subjects, subject_names) = rows_by_subject(observations, &started);
         let (names, kept) = keep_filled_groups(observations, &mut subjects);
-        let data = Data { groups: names.len(), subjects, ..Data::default() };
+        let mut data = Data { groups: names.len(), subjects, ..Data::default() };
+        let adjustments = adjust(&mut data, observations, &started, plan)?;
+        let housing = Housing::new(&data, observations, cluster.unwrap_or("cluster"), plan);
         let visits = distinct(data.subjects.iter().flat_map(|s| s.times.iter().copied()));
         let groups = describe_groups(&data, names, &visits);
         let supports = supports(&data);
@@ -57,8 +50,17 @@ impl Cohort {
             let note = "A group without a single usable row is left out.";
             notes.push(Note { about: "table".into(), message: note.into() });
         }
+        notes.extend(started.notes);
+        notes.extend(adjustments.notes);
+        notes.extend(housing.notes.iter().cloned());
         refuse_many_means(plan, &data, &groups)?;
-        Ok(Cohort { data, groups, supports, visits, control, notes })
+        let adjustments = adjustments.columns;
+        Ok(Cohort { data, subject_names, groups, supports, visits, control, housing, adjustments, notes })
+    }
+
+    /// The model to fit: the plan's, with the clusters that the table has.
+    pub(crate) fn model(&self, plan: &Plan) -> courseband_engine::Model {
+        courseband_engine::Model { clusters: self.housing.effects, ..plan.model() }
     }
 
     /// Pairs that are compared, as group indices `(from, to)`.
@@ -75,6 +77,27 @@ impl Cohort {
         }
         pairs
     }
+}
+
+/// The kept rows, subject by subject, and the subjects' names.
+fn rows_by_subject(observations: &Observations, started: &Started) -> (Vec<SubjectRows>, Vec<String>) {
+    let (mut subjects, mut names): (Vec<SubjectRows>, Vec<String>) = (Vec::new(), Vec::new());
+    let mut last: Option<u32> = None;
+    for &k in &started.kept {
+        let subject = observations.subject[k];
+        if last != Some(subject) {
+            let info = &observations.subjects[subject as usize];
+            let (group, cluster) = (info.group as usize, info.cluster.map(|c| c as usize));
+            subjects.push(SubjectRows { group, cluster, ..SubjectRows::default() });
+            names.push(info.name.clone());
+            last = Some(subject);
+        }
+        if let Some(rows) = subjects.last_mut() {
+            rows.times.push(observations.time[k]);
+            rows.responses.push(started.response[k]);
+        }
+    }
+    (subjects, names)
 }
 
 /// Groups with at least one row, renumbered; their names and how many they are.

@@ -1,9 +1,10 @@
 //! Curves, gaps, bands and stretches of a fit, on the grid and at the visits.
 
+use crate::adjust::Adjustment;
 use crate::cohort::Cohort;
 use crate::findings::*;
 use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample, Transform};
-use courseband_engine::special::DirectionMaxima;
+use courseband_engine::special::{DirectionMaxima, t_quantile};
 use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
 
 /// Random directions behind a critical value. The radius is integrated, so that its error is
@@ -266,10 +267,23 @@ impl<'a> Evaluation<'a> {
         }
     }
 
+    /// Effects of the shared columns, each with limits by itself.
+    pub(crate) fn fill_adjustments(&self, adjustments: &mut [Adjustment]) {
+        for (column, adjustment) in adjustments.iter_mut().enumerate() {
+            let e = self.posterior.estimate(&self.fit.shared_effect(column));
+            let reach = t_quantile(0.5 + 0.5 * self.plan.comparisons.level, e.df) * e.se;
+            (adjustment.estimate, adjustment.se) = (Some(e.mean), Some(e.se));
+            (adjustment.lower, adjustment.upper) = (Some(e.mean - reach), Some(e.mean + reach));
+        }
+    }
+
     /// True where a gap between the groups cannot be told from a difference between two subjects: nowhere is
     /// there a second subject of a group to show how subjects differ.
     pub(crate) fn is_lone(&self, from: usize, to: usize) -> bool {
         let groups = &self.cohort.groups;
+        if self.cohort.housing.lone[from] || self.cohort.housing.lone[to] {
+            return true;
+        }
         if self.plan.subjects_spread == crate::plan::Sharing::ByGroup {
             groups[from].subjects < 2 || groups[to].subjects < 2
         } else {

@@ -3,6 +3,8 @@
 //! Arrays over time in one object have one length. Times are in the table's
 //! own unit. A value that does not exist is `null` in JSON, never a stand-in.
 
+use crate::adjust::Adjustment;
+use crate::housing::ClusterSummary;
 use crate::plan::Plan;
 use serde::Serialize;
 
@@ -41,6 +43,10 @@ pub struct Findings {
     pub pair_effects: Vec<PairEffects>,
     /// One per group: effect sizes.
     pub group_effects: Vec<GroupEffects>,
+    /// Cages, litters, sites; `null` without a cluster column.
+    pub clusters: Option<ClusterSummary>,
+    /// Effects of explanatory columns, one per shared column of the mean.
+    pub adjustments: Vec<Adjustment>,
 }
 
 /// Columns as used. A role without a column is `null`.
@@ -131,6 +137,8 @@ pub struct FitSummary {
     pub subject_covariance: Vec<Vec<f64>>,
     /// One matrix per group where the plan asks for it, else empty.
     pub subject_covariance_by_group: Vec<Vec<Vec<f64>>>,
+    /// Covariance of the cluster effects, level at the first time, trend per time unit; empty without them.
+    pub cluster_covariance: Vec<Vec<f64>>,
     /// Correlation of errors one time unit apart; `null` without serial correlation.
     pub serial_correlation: Option<f64>,
     /// Share of the error variance that is measurement error; `null` without that part.

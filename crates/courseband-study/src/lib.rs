@@ -6,24 +6,30 @@
 //! This crate does no I/O and knows no clock. Reading bytes is
 //! `courseband-table`'s work, mathematics is `courseband-engine`'s.
 
+mod adjust;
 mod check_plan;
 mod checks;
 mod cohort;
 mod effects;
 mod evaluate;
 mod findings;
+mod housing;
 mod plan;
 mod refusal;
 mod remarks;
 mod sentences;
 mod size;
 mod study;
+mod traces;
 mod usual;
 
+pub use adjust::Adjustment;
 pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
+pub use housing::ClusterSummary;
 pub use plan::*;
 pub use refusal::Refusal;
 pub use size::{Counts, CourseMeans, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
 pub use study::{Calibrator, Refits, Study, run};
+pub use traces::Traces;
 pub use usual::*;

@@ -24,6 +24,8 @@ pub struct Plan {
     pub subjects: SubjectEffects,
     /// One covariance of the subject effects for all groups, or one per group.
     pub subjects_spread: Sharing,
+    /// What differs from cluster to cluster.
+    pub clusters: ClusterChoice,
     /// Errors around a subject's course.
     pub errors: Errors,
     /// Which pairs, how sure, which margin.
@@ -45,6 +47,7 @@ impl Default for Plan {
             curves: Curves::default(),
             subjects: SubjectEffects::Intercept,
             subjects_spread: Sharing::Common,
+            clusters: ClusterChoice::Auto,
             errors: Errors::default(),
             comparisons: Comparisons::default(),
             grid: GridChoice::default(),
@@ -214,6 +217,39 @@ pub struct Response {
     pub transform: Transform,
     /// What a value such as `<0.5` is taken for.
     pub detection: Detection,
+    /// What is made of the values at the first time.
+    pub start: Start,
+}
+
+/// What is made of the values at the first time.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum Start {
+    /// They are part of the course; groups may start apart.
+    #[default]
+    AsMeasured,
+    /// They are part of the course; all groups have one mean then, as after randomisation.
+    Common,
+    /// Each subject's value is an explanatory value for its later ones.
+    Covariate,
+    /// Later values are differences from it.
+    Change,
+    /// Later values are percent changes from it.
+    Percent,
+}
+
+impl Start {
+    /// As written in a plan.
+    #[must_use]
+    pub fn word(self) -> &'static str {
+        match self {
+            Start::AsMeasured => "as-measured",
+            Start::Common => "common",
+            Start::Covariate => "covariate",
+            Start::Change => "change",
+            Start::Percent => "percent",
+        }
+    }
 }
 
 /// Probability distribution of the response.
@@ -376,6 +412,21 @@ pub enum Sharing {
     Common,
     /// One per group.
     ByGroup,
+}
+
+/// What differs from cluster to cluster (cage, litter, site).
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum ClusterChoice {
+    /// Level and trend where each cluster is in one group and there are enough clusters, else the level.
+    #[default]
+    Auto,
+    /// Nothing: subjects of one cluster are independent.
+    None,
+    /// The level.
+    Intercept,
+    /// Level and trend, correlated.
+    Slope,
 }
 
 /// Errors around a subject's course.

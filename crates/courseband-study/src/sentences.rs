@@ -69,6 +69,14 @@ impl Speaker<'_> {
         };
         if d.at_visits.se.iter().all(Option::is_none) {
             let word = &self.findings.plan.words.subject;
+            if let (Some(_), Some(column)) = (&self.findings.clusters, &self.findings.columns.cluster)
+                && self.findings.subjects > self.findings.groups.len()
+            {
+                let text = format!(
+                    "A group with one {column} only cannot be told from its {column}: what sets it apart may be the {column}."
+                );
+                return self.sentence("none-apart", format!("{} and {} cannot be compared.", d.to, d.from), text);
+            }
             let text = format!(
                 "There are too few {} to show how they differ, so a gap between the groups cannot be told from a gap \
                  between one {word} and another.",

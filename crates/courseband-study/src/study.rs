@@ -110,8 +110,8 @@ impl Study {
     pub fn calibration(&mut self, plan: &Plan) -> Result<Option<Calibrator>, Refusal> {
         plan.check()?;
         let reading = self.answered(plan)?;
-        let cohort = Cohort::new(&reading.observations, plan)?;
-        let Ok(fitted) = fit(&cohort.data, &plan.model()) else {
+        let cohort = Cohort::new(reading, plan)?;
+        let Ok(fitted) = fit(&cohort.data, &cohort.model(plan)) else {
             return Ok(None);
         };
         let families = Evaluation::new(plan, &cohort, &fitted, None).families();
@@ -146,7 +146,7 @@ pub fn run(bytes: &[u8], plan: &Plan) -> Result<Findings, Refusal> {
 }
 
 fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findings, Refusal> {
-    let cohort = Cohort::new(&reading.observations, plan)?;
+    let cohort = Cohort::new(reading, plan)?;
     let columns = columns_used(reading);
     let ratio = plan.response.transform == Transform::Log;
     let scale = ScaleInfo {
@@ -157,7 +157,7 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
     let mut notes: Vec<Note> =
         reading.notes.iter().map(|message| Note { about: "table".into(), message: message.clone() }).collect();
     notes.extend(cohort.notes.iter().cloned());
-    notes.extend(plan_notes(plan, reading, &cohort));
+    notes.extend(plan_notes(plan, &cohort));
     let mut findings = Findings {
         version: env!("CARGO_PKG_VERSION").into(),
         rows: cohort.data.rows(),
@@ -175,8 +175,10 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         sentences: Vec::new(),
         pair_effects: Vec::new(),
         group_effects: Vec::new(),
+        clusters: cohort.housing.summary.clone(),
+        adjustments: cohort.adjustments.clone(),
     };
-    match fit(&cohort.data, &plan.model()) {
+    match fit(&cohort.data, &cohort.model(plan)) {
         Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted, refits),
         Err(error) => refuse_or_fail(&mut findings, &cohort, &error)?,
     }
@@ -191,6 +193,7 @@ fn failed_summary() -> FitSummary {
         residual_sd: PerGroup::default(),
         subject_covariance: Vec::new(),
         subject_covariance_by_group: Vec::new(),
+        cluster_covariance: Vec::new(),
         serial_correlation: None,
         measurement_error_share: None,
         effective_df: PerGroup::default(),
@@ -207,6 +210,7 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
     findings.differences = evaluation.differences();
     findings.pair_effects = evaluation.pair_effects(&findings.differences);
     findings.group_effects = evaluation.group_effects();
+    evaluation.fill_adjustments(&mut findings.adjustments);
     for remark in &findings.fit.remarks {
         findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
     }
@@ -259,6 +263,7 @@ fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
         } else {
             Vec::new()
         },
+        cluster_covariance: fitted.cluster_covariance(),
         serial_correlation: fitted.serial_correlation(),
         measurement_error_share: fitted.measurement_error_share(),
         effective_df: per_group(&|g| fitted.effective_df(g)),
@@ -274,7 +279,7 @@ fn refuse_or_fail(findings: &mut Findings, cohort: &Cohort, error: &FitError) ->
     Ok(())
 }
 
-fn plan_notes(plan: &Plan, reading: &Reading, cohort: &Cohort) -> Vec<Note> {
+fn plan_notes(plan: &Plan, cohort: &Cohort) -> Vec<Note> {
     let mut notes = Vec::new();
     let mut say = |about: &str, message: String| notes.push(Note { about: about.into(), message });
     if plan.errors.nugget && plan.errors.serial == Serial::None {
@@ -282,15 +287,6 @@ fn plan_notes(plan: &Plan, reading: &Reading, cohort: &Cohort) -> Vec<Note> {
             "fit",
             "Measurement error is set without serial correlation, where it has no part of its own: it is ignored."
                 .into(),
-        );
-    }
-    if let Some(cluster) = &reading.columns.cluster {
-        say(
-            "fit",
-            format!(
-                "Column \"{cluster}\" is read but has no part in the model: subjects of one {cluster} are taken as \
-                 independent. Where treatment was given per {cluster}, the bands are too narrow."
-            ),
         );
     }
     let c = &plan.comparisons;

@@ -79,7 +79,7 @@ impl Session {
     /// Without a run before it.
     pub fn traces(&mut self) -> Result<String, Refused> {
         match (&mut self.open, &self.last) {
-            (Some(study), Some(plan)) => wire::text(&wire::Traces::new(&study.reading(plan)?.observations)),
+            (Some(study), Some(plan)) => wire::text(&study.traces(plan)?),
             _ => Err(Refused::page("There are no courses before a run.")),
         }
     }

@@ -97,20 +97,12 @@ impl Study {
     pub fn checks(&mut self, plan: &Plan) -> Result<ChecksFindings, Refusal> {
         plan.check()?;
         let reading = self.answered(plan)?;
-        let observations = &reading.observations;
-        let cohort = Cohort::new(observations, plan)?;
-        let Ok(fitted) = fit(&cohort.data, &plan.model()) else {
+        let cohort = Cohort::new(reading, plan)?;
+        let Ok(fitted) = fit(&cohort.data, &cohort.model(plan)) else {
             let verdict = "The fit failed, so there is nothing to check.".into();
             return Ok(ChecksFindings { checks: Vec::new(), verdict });
         };
-        let mut names: Vec<String> = Vec::new();
-        let mut last = None;
-        for &subject in &observations.subject {
-            if last != Some(subject) {
-                names.push(observations.subjects[subject as usize].name.clone());
-                last = Some(subject);
-            }
-        }
+        let names = cohort.subject_names.clone();
         let subject = Subject { plan, cohort: &cohort, fit: &fitted, names };
         Ok(subject.all())
     }

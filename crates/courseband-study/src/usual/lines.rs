@@ -35,7 +35,8 @@ impl Bend {
             (by_plan.log_reml?, by_plan.effective_df.0.clone())
         } else {
             let shape = engine::Shape::Smooth(engine::Dimension::Auto);
-            let fitted = fit(&context.cohort.data, &engine::Model { shape, ..context.plan.model() }).ok()?;
+            let fitted =
+                fit(&context.cohort.data, &engine::Model { shape, ..context.cohort.model(context.plan) }).ok()?;
             let groups = context.cohort.groups.iter().enumerate();
             (fitted.log_reml(), groups.map(|(g, info)| (info.name.clone(), fitted.effective_df(g))).collect())
         };
@@ -84,7 +85,7 @@ impl Trends {
             return None;
         }
         let subjects = engine::SubjectEffects::Slope;
-        let model = engine::Model { shape: engine::Shape::Straight, subjects, ..context.plan.model() };
+        let model = engine::Model { shape: engine::Shape::Straight, subjects, ..context.cohort.model(context.plan) };
         let gain = (fit(&context.cohort.data, &model).ok()?.log_reml() - straight).max(0.0);
         // A variance at its bound and a covariance: Stram & Lee 1994, Biometrics 50:1171.
         let p = if gain > 0.0 { 0.5 * (chi2_sf(2.0 * gain, 1.0) + chi2_sf(2.0 * gain, 2.0)) } else { 1.0 };
@@ -105,7 +106,7 @@ pub(super) fn analyse(context: &Context) -> (UsualAnalysis, Option<Bend>) {
     plan.curves.shape = Shape::Straight;
     plan.comparisons.small_sample = SmallSample::Df;
     plan.grid.count = 2;
-    let fitted = match fit(&context.cohort.data, &plan.model()) {
+    let fitted = match fit(&context.cohort.data, &context.cohort.model(&plan)) {
         Ok(fitted) => fitted,
         Err(error) => {
             let why = crate::remarks::failure(&error, &context.cohort.groups);

@@ -60,7 +60,7 @@ impl Study {
     }
 
     fn usual_beside(&mut self, plan: &Plan, findings: &Findings) -> Result<UsualFindings, Refusal> {
-        let cohort = Cohort::new(&self.reading(plan)?.observations, plan)?;
+        let cohort = Cohort::new(self.reading(plan)?, plan)?;
         Ok(analyse(&Context::new(plan, &cohort, findings)))
     }
 }

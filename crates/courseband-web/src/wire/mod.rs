@@ -4,13 +4,11 @@ mod calibration;
 mod description;
 mod layout;
 mod preview;
-mod traces;
 
 pub(crate) use calibration::Refits;
 pub(crate) use description::Description;
 pub(crate) use layout::Layout;
 pub(crate) use preview::Preview;
-pub(crate) use traces::Traces;
 
 use crate::refused::Refused;
 use serde::Serialize;
