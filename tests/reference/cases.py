@@ -9,7 +9,9 @@ import numpy as np
 HERE = pathlib.Path(__file__).resolve().parent
 DEFAULTS = {
     "curves": {"shape": "smooth", "smoothness": "per-group"},
+    "subjects": "intercept",
     "subjects_spread": "common",
+    "clusters": "auto",
     "errors": {"serial": "none", "spread": "common", "nugget": False},
 }
 

@@ -1,4 +1,4 @@
-"""Writes data/uneven.csv and data/spread.csv: invented tables for the dense reference, seeded."""
+"""Writes data/uneven.csv, data/spread.csv and data/housed.csv: invented tables for the dense reference, seeded."""
 
 import math
 import pathlib
@@ -37,6 +37,25 @@ def spread():
     (HERE / "spread.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
 
 
+def housed():
+    """Twelve cages of three, two treatments given by the cage; a second factor and a weight at the start."""
+    draw = random.Random(43)
+    lines = ["subject,group,cage,sex,weight,time,y"]
+    for cage in range(12):
+        level, trend = draw.gauss(0, 0.8), draw.gauss(0, 0.15)
+        for s in range(3):
+            own, weight, sex = draw.gauss(0, 0.6), draw.gauss(20, 2), "fm"[draw.random() < 0.4]
+            slope, bend = draw.gauss(0, 0.1), draw.gauss(0, 0.5)
+            for t in [0, 1, 2, 3, 5, 7, 10]:
+                if t and draw.random() < 0.1:
+                    continue
+                mean = 8 + math.sqrt(t + 1) * (1 + 0.4 * (cage % 2)) + 0.2 * (weight - 20) + 0.5 * (sex == "m")
+                y = mean + level + trend * t + own + slope * t + bend * math.sin(t / 2) + draw.gauss(0, 0.3)
+                lines.append(f"h{cage}-{s},{'ab'[cage % 2]},cage {cage + 1},{sex},{weight:.1f},{t},{y:.4f}")
+    (HERE / "housed.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
+
+
 if __name__ == "__main__":
     uneven()
     spread()
+    housed()

@@ -81,3 +81,8 @@ fn mixed_models_against_second_computations() {
 fn curves_against_dense_matrices() {
     check("dense.csv", "numpy 2.4.6 and scipy 1.17.1, reference/dense.py", &ALLOWED, 1000);
 }
+
+#[test]
+fn clusters_and_explanatory_columns_against_dense_matrices() {
+    check("housed.csv", "numpy 2.4.6, scipy 1.17.1, statsmodels 0.15.0, reference/housed.py", &ALLOWED, 150);
+}

@@ -1,7 +1,7 @@
 //! One quantity of the findings by its name in the expected files.
 
 use crate::expected::Expected;
-use courseband_study::{Critical, Effect, Findings};
+use courseband_study::{Adjustment, Critical, Effect, Findings};
 
 /// A value, and the standard error that scales its tolerance where it is a mean or a difference.
 pub(crate) struct Got {
@@ -30,6 +30,10 @@ pub(crate) fn got(findings: &Findings, e: &Expected) -> Got {
         "var_level" => plain(covariance(findings, e)[0][0]),
         "sd_trend" => plain(covariance(findings, e)[1][1].sqrt()),
         "var_trend" => plain(covariance(findings, e)[1][1]),
+        "sd_cluster_level" => plain(fit.cluster_covariance[0][0].sqrt()),
+        "sd_cluster_trend" => plain(fit.cluster_covariance[1][1].sqrt()),
+        "adjustment" => plain(adjustment(findings, e).estimate.unwrap()),
+        "adjustment_se" => plain(adjustment(findings, e).se.unwrap()),
         "sd_at_time_zero" => plain(at_time_zero(findings, e).0),
         "correlation_at_time_zero" => plain(at_time_zero(findings, e).1),
         "mean" => mean(findings, e),
@@ -49,6 +53,14 @@ fn group(findings: &Findings, e: &Expected) -> usize {
     }
     let named = findings.groups.iter().position(|g| g.name == e.group);
     named.unwrap_or_else(|| panic!("{} {}: no group {:?}", e.case, e.quantity, e.group))
+}
+
+fn adjustment<'a>(findings: &'a Findings, e: &Expected) -> &'a Adjustment {
+    let named = |a: &&Adjustment| match &a.level {
+        Some(level) => format!("{}={level}", a.column) == e.group,
+        None => a.column == e.group,
+    };
+    findings.adjustments.iter().find(named).unwrap_or_else(|| panic!("{}: no adjustment {}", e.case, e.group))
 }
 
 fn covariance<'a>(findings: &'a Findings, e: &Expected) -> &'a Vec<Vec<f64>> {
