@@ -10,7 +10,7 @@ import { percentLevel } from './numbers.js';
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -109,6 +109,51 @@ function bandAlternatives(plan, context) {
 }
 
 /**
+ * Explanatory columns: each is added or taken away by itself.
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function covariateAlternatives(plan, context) {
+  const taken = Object.values(context.columns);
+  const now = plan.columns.covariates;
+  const set = (/** @type {string[]} */ covariates) => withSection(plan, 'columns', { covariates });
+  const none = { id: 'none', name: words.covariates.none, fits: words.covariates.noneFits, chosen: now.length === 0, plan: set([]) };
+  const free = context.candidates.filter(({ name }) => !taken.includes(name) || now.includes(name));
+  const each = free.map(({ name }) => {
+    const chosen = now.includes(name);
+    return {
+      id: `column:${name}`, name, fits: chosen ? words.covariates.away : words.covariates.add, chosen,
+      plan: set(chosen ? now.filter((other) => other !== name) : [...now, name]),
+    };
+  });
+  return [none, ...each];
+}
+
+/**
+ * What differs from one subject to another. A curve of its own cannot be told from serial likeness.
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function subjectAlternatives(plan) {
+  const rows = list(plan, plan.subjects, words.subjects,
+    (id) => ({ ...plan, subjects: id }), ['curve', 'slope', 'intercept', 'none']);
+  const alike = plan.errors.serial === 'ar1' && !plan.errors.nugget;
+  return rows.map((row) => (row.id === 'curve' && alike ? { ...row, greyed: words.subjects.curveGreyed } : row));
+}
+
+/**
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function startAlternatives(plan) {
+  const rows = list(plan, plan.response.start, words.start,
+    (id) => withSection(plan, 'response', { start: id }), ['as-measured', 'common', 'covariate', 'change', 'percent']);
+  const log = plan.response.transform === 'log';
+  return rows.map((row) => (row.id === 'percent' && log ? { ...row, greyed: words.start.percentGreyed } : row));
+}
+
+/**
  * @param {Plan} plan
  * @returns {Alternative[]}
  */
@@ -125,6 +170,18 @@ function levelAlternatives(plan) {
 /** @param {Plan} plan */
 export function serialId(plan) {
   return plan.errors.serial === 'ar1' && plan.errors.nugget ? 'ar1-nugget' : plan.errors.serial;
+}
+
+/**
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function serialAlternatives(plan) {
+  const rows = list(plan, serialId(plan), words.serial,
+    (id) => withSection(plan, 'errors', { serial: id === 'none' ? 'none' : 'ar1', nugget: id === 'ar1-nugget' }),
+    ['none', 'ar1', 'ar1-nugget']);
+  const curved = plan.subjects === 'curve';
+  return rows.map((row) => (row.id === 'ar1' && curved ? { ...row, greyed: words.serial.ar1Greyed } : row));
 }
 
 /**
@@ -148,6 +205,8 @@ export function alternativesOf(choice, plan, context) {
       return bandAlternatives(plan, context);
     case 'level':
       return levelAlternatives(plan);
+    case 'covariates':
+      return covariateAlternatives(plan, context);
     default:
       return plainAlternatives(choice, plan);
   }
@@ -170,12 +229,14 @@ function plainAlternatives(choice, plan) {
       return list(plan, plan.curves.smoothness, words.smoothness,
         (id) => withSection(plan, 'curves', { smoothness: id }), ['per-group', 'shared']);
     case 'subjects':
-      return list(plan, plan.subjects, words.subjects,
-        (id) => ({ ...plan, subjects: id }), ['slope', 'intercept', 'none']);
+      return subjectAlternatives(plan);
+    case 'clusters':
+      return list(plan, plan.clusters, words.clusters,
+        (id) => ({ ...plan, clusters: id }), ['auto', 'slope', 'intercept', 'none']);
+    case 'start':
+      return startAlternatives(plan);
     case 'serial':
-      return list(plan, serialId(plan), words.serial,
-        (id) => withSection(plan, 'errors', { serial: id === 'none' ? 'none' : 'ar1', nugget: id === 'ar1-nugget' }),
-        ['none', 'ar1', 'ar1-nugget']);
+      return serialAlternatives(plan);
     case 'spread':
       return list(plan, plan.errors.spread, words.spread,
         (id) => withSection(plan, 'errors', { spread: id }), ['common', 'by-group']);

@@ -71,10 +71,19 @@ function followed(choices, context, open) {
     ? { text: words.choices.dimension.written(dimension), choice: /** @type {const} */ ('dimension') }
     : chosen('dimension', choices, context);
   const curved = plan.curves.shape === 'smooth';
-  const finer = withFiner(curved ? [
+  const bending = curved ? [
     { lead: words.bends, part: roomPart, isDefault: dimension === 'auto' },
     { lead: words.smoothness, part: chosen('smoothness', choices, context), isDefault: plan.curves.smoothness === 'per-group' },
-  ] : [], open);
+  ] : [];
+  const adjusted = plan.columns.covariates.map((name) => calledName(choices, name, name)).join(words.and);
+  const finer = withFiner([
+    ...bending,
+    { lead: words.start, part: chosen('start', choices, context), isDefault: plan.response.start === 'as-measured' },
+    {
+      lead: words.adjusted, isDefault: adjusted === '',
+      part: { text: adjusted || words.choices.covariates.none, choice: /** @type {const} */ ('covariates') },
+    },
+  ], open);
   /** @type {Part[]} */
   const parts = [
     { text: responseName(choices, context), choice: 'response' },
@@ -98,6 +107,11 @@ function vary(choices, context, open) {
   const finer = withFiner(plan.subjects === 'none' ? [] : [
     { lead: words.vary, part: chosen('subjects_spread', choices, context), isDefault: plan.subjects_spread === 'common' },
   ], open);
+  const { cluster } = context.columns;
+  /** @type {Part[]} */
+  const housed = cluster === null ? [] : [
+    { text: words.eachCluster(calledName(choices, cluster, cluster)) }, chosen('clusters', choices, context),
+  ];
   /** @type {Part[]} */
   const parts = [
     { text: words.each },
@@ -108,6 +122,7 @@ function vary(choices, context, open) {
     chosen('serial', choices, context),
     { text: words.spread },
     chosen('spread', choices, context),
+    ...housed,
     ...finer.parts,
   ];
   return { id: 'vary', label: words.lines.vary, parts, folded: finer.folded };

@@ -11,10 +11,11 @@ export function defaultPlan() {
   return {
     columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [] },
     exclusions: [],
-    response: { distribution: 'normal', transform: 'identity', detection: 'as-written' },
+    response: { distribution: 'normal', transform: 'identity', detection: 'as-written', start: 'as-measured' },
     curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group' },
     subjects: 'intercept',
     subjects_spread: 'common',
+    clusters: 'auto',
     errors: { serial: 'none', spread: 'common', nugget: false },
     comparisons: {
       pairs: 'all', control: null, level: 0.95, margin: 0, margin_unit: 'response',

@@ -14,9 +14,10 @@
  * @typedef {Object} Plan
  * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[]}} columns
  * @property {{row: number, column?: string, reason: string}[]} exclusions
- * @property {{distribution: string, transform: 'identity'|'log', detection: string}} response
+ * @property {{distribution: string, transform: 'identity'|'log', detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
  * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared'}} curves
  * @property {'none'|'intercept'|'slope'|'curve'} subjects
+ * @property {'auto'|'none'|'intercept'|'slope'} clusters
  * @property {'common'|'by-group'} subjects_spread
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
  * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null}} comparisons

@@ -3,6 +3,7 @@
 use crate::findings::Note;
 use crate::plan::{Plan, Start, Transform};
 use crate::refusal::Refusal;
+use crate::sentences;
 use courseband_engine::{Data, Shared, SubjectRows};
 use courseband_table::{CovariateValues, Observations};
 use serde::Serialize;
@@ -174,6 +175,36 @@ pub(crate) fn adjust(
     Ok(Adjustments { columns: columns.into_iter().map(|c| c.about).collect(), notes })
 }
 
+/// What courses are courses of.
+pub(crate) fn called(plan: &Plan, response: &str) -> String {
+    match plan.response.start {
+        Start::Change if plan.response.transform == Transform::Log => format!("ratio of {response} to its start"),
+        Start::Change => format!("change in {response}"),
+        Start::Percent => format!("percent change in {response}"),
+        _ => response.into(),
+    }
+}
+
+/// The effect of an explanatory column as a sentence.
+pub(crate) fn in_words(adjustment: &Adjustment, plan: &Plan) -> Option<Note> {
+    let (estimate, lower, upper) = (adjustment.estimate?, adjustment.lower?, adjustment.upper?);
+    let log = plan.response.transform == Transform::Log;
+    let back = |value: f64| if log { libm::exp(value) } else { value };
+    let digits = sentences::decimals(back(upper) - back(lower));
+    let say = |value: f64| sentences::number(back(value), digits);
+    let what = match &adjustment.level {
+        None => format!("One unit more of {}", adjustment.column),
+        Some(level) => format!("{} {level} against {}", adjustment.column, adjustment.reference),
+    };
+    let value = say(estimate);
+    let does =
+        if log { format!("multiplies every course by {value}") } else { format!("adds {value} to every course") };
+    let limits = format!("{} to {}", say(lower), say(upper));
+    let level = sentences::percent(plan.comparisons.level);
+    let message = format!("{what} {does} ({level} limits by itself {limits}).");
+    Some(Note { about: "curves".into(), message })
+}
+
 fn shared_rows(subject: &SubjectRows, columns: &[Column], first: usize) -> Vec<f64> {
     let rows = first..first + subject.times.len();
     rows.flat_map(|row| columns.iter().map(move |column| column.values[row])).collect()
@@ -187,7 +218,7 @@ fn empty(column: String, level: Option<String>, reference: String) -> Adjustment
 fn numeric(column: String, mut values: Vec<f64>) -> Column {
     let mean = values.iter().sum::<f64>() / values.len().max(1) as f64;
     values.iter_mut().for_each(|value| *value -= mean);
-    let digits = crate::sentences::number(mean, crate::sentences::decimals(mean.abs()));
+    let digits = sentences::number(mean, sentences::decimals(mean.abs()));
     Column { about: empty(column, None, digits), values }
 }
 

@@ -5,7 +5,7 @@ use crate::evaluate::{CalibratedValues, Evaluation};
 use crate::findings::*;
 use crate::plan::{BandKind, MarginUnit, Plan, Serial, SmallSample, Transform};
 use crate::refusal::Refusal;
-use crate::{remarks, sentences};
+use crate::{adjust, remarks, sentences};
 use courseband_engine::{Calibration, Fit, FitError, Verdict, calibrated_quantile, fit};
 use courseband_table::{Reading, Table};
 
@@ -151,7 +151,10 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
     let ratio = plan.response.transform == Transform::Log;
     let scale = ScaleInfo {
         time_word: plan.words.time.clone().unwrap_or_else(|| reading.observations.time_word.clone()),
-        response: plan.words.response.clone().or_else(|| columns.response.clone()).unwrap_or_default(),
+        response: adjust::called(
+            plan,
+            &plan.words.response.clone().or_else(|| columns.response.clone()).unwrap_or_default(),
+        ),
         ratio,
     };
     let mut notes: Vec<Note> =
@@ -211,6 +214,7 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
     findings.pair_effects = evaluation.pair_effects(&findings.differences);
     findings.group_effects = evaluation.group_effects();
     evaluation.fill_adjustments(&mut findings.adjustments);
+    findings.notes.extend(findings.adjustments.iter().filter_map(|a| adjust::in_words(a, plan)));
     for remark in &findings.fit.remarks {
         findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
     }
