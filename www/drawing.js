@@ -29,5 +29,5 @@ export function startDrawing(module) {
  * @returns {Layout}
  */
 export function drawStrips(canvas, drawing, view) {
-  return JSON.parse(wasm_bindgen.draw_strips(canvas, drawing.findings, drawing.traces, JSON.stringify(view)));
+  return wasm_bindgen.draw_strips(canvas, drawing.findings, drawing.traces, JSON.stringify(view));
 }

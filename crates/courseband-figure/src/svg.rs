@@ -4,8 +4,7 @@ use crate::draw::{Surface, draw};
 use crate::figure::Figure;
 use crate::layout::lay_out;
 use crate::text::Measure;
-use plotters_backend::DrawingBackend;
-use plotters_svg::SVGBackend;
+use plotters::prelude::{DrawingBackend, SVGBackend};
 
 /// Units of the file per CSS pixel: the backend writes whole numbers.
 const GRID: u32 = 10;

@@ -4,8 +4,9 @@ use crate::refused::Refused;
 use crate::wire;
 use courseband_figure::{Estimate, Figure, Measure, Source, Surface, Traces, View, describe, draw, lay_out, to_svg};
 use plotters_canvas::CanvasBackend;
-use wasm_bindgen::JsCast;
+use serde::Serialize;
 use wasm_bindgen::prelude::wasm_bindgen;
+use wasm_bindgen::{JsCast, JsValue};
 use web_sys::{CanvasRenderingContext2d, HtmlCanvasElement};
 
 /// The system's own font, as the page uses it.
@@ -15,7 +16,7 @@ const FLAG: f64 = 24.0;
 /// Units of the drawing per device pixel: curves do not step from pixel to pixel.
 const FINE: f64 = 8.0;
 
-/// Draws all strips on a canvas, which gets the size they need, and says where they are.
+/// Draws all strips on a canvas, which gets the size they need, and says where they are in an object.
 ///
 /// `findings` and `traces` are what a session's `run` and `traces` returned, `view` is JSON: see
 /// the figure crate's `View`. The canvas's own transformation is left as it was found at first.
@@ -23,7 +24,7 @@ const FINE: f64 = 8.0;
 /// # Errors
 /// Text that does not fit, and a canvas that cannot be drawn on.
 #[wasm_bindgen]
-pub fn draw_strips(canvas: &HtmlCanvasElement, findings: &str, traces: &str, view: &str) -> Result<String, Refused> {
+pub fn draw_strips(canvas: &HtmlCanvasElement, findings: &str, traces: &str, view: &str) -> Result<JsValue, Refused> {
     let figure = figure(findings, traces, view, FLAG)?;
     let ratio = if figure.view.ratio.is_finite() { figure.view.ratio.clamp(0.5, 8.0) } else { 1.0 };
     let context = context_of(canvas).ok_or_else(|| Refused::page("This browser gives no canvas to draw on."))?;
@@ -36,7 +37,8 @@ pub fn draw_strips(canvas: &HtmlCanvasElement, findings: &str, traces: &str, vie
         .ok_or_else(|| Refused::page("This browser gives no canvas to draw on."))?;
     let surface = Surface { grid: FINE * ratio, ratio, family: FAMILY, text: 1.0 };
     draw(&figure, &layout, &mut backend, surface).map_err(|error| Refused::page(error.to_string()))?;
-    wire::text(&wire::Layout::from(&layout))
+    let serializer = serde_wasm_bindgen::Serializer::json_compatible();
+    wire::Layout::from(&layout).serialize(&serializer).map_err(|error| Refused::page(error.to_string()))
 }
 
 /// The same figure as the text of an SVG file.

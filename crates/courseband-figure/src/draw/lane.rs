@@ -4,7 +4,7 @@
 use super::pen::{Outcome, Pen};
 use crate::figure::{Lane, LaneState};
 use crate::layout::{Arrow, Rect, TimeRange};
-use plotters_backend::DrawingBackend;
+use plotters::prelude::DrawingBackend;
 
 /// Draws a lane.
 pub(super) fn draw_lane<DB: DrawingBackend>(

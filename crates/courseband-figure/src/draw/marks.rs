@@ -5,7 +5,7 @@ use super::pen::{Outcome, Pen};
 use crate::figure::{Dash, Mark, Tone};
 use crate::layout::{Rect, StripBox, TimeRange};
 use crate::scale::Scale;
-use plotters_backend::DrawingBackend;
+use plotters::prelude::DrawingBackend;
 
 /// Width of a group's curve.
 const CURVE: f64 = 2.1;

@@ -10,7 +10,7 @@ use crate::figure::{Figure, Plot, RuleKind, Tone};
 use crate::layout::{Anchor, Layout, Rect, StripBox, Text};
 use crate::palette::Palette;
 use pen::{Outcome, Pen};
-use plotters_backend::DrawingBackend;
+use plotters::prelude::DrawingBackend;
 
 /// How backend coordinates relate to CSS pixels.
 #[derive(Debug, Clone, Copy, PartialEq)]
@@ -115,8 +115,8 @@ impl<DB: DrawingBackend> Pen<'_, DB> {
 }
 
 impl Anchor {
-    fn position(self) -> plotters_backend::text_anchor::HPos {
-        use plotters_backend::text_anchor::HPos;
+    fn position(self) -> plotters::style::text_anchor::HPos {
+        use plotters::style::text_anchor::HPos;
         match self {
             Anchor::Start => HPos::Left,
             Anchor::Middle => HPos::Center,

@@ -4,7 +4,7 @@ use super::Surface;
 use crate::figure::{Dash, GroupLook};
 use crate::layout::{Anchor, Rect};
 use crate::palette::{Palette, Rgb};
-use plotters_backend::text_anchor::{Pos, VPos};
+use plotters::style::text_anchor::{Pos, VPos};
 use plotters_backend::{
     BackendColor, BackendCoord, BackendStyle, BackendTextStyle, DrawingBackend, DrawingErrorKind, FontFamily, FontStyle,
 };
