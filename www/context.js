@@ -14,6 +14,7 @@ import { text } from './text.js';
  * @property {string[]} groups
  * @property {string} timeWord
  * @property {{name: string, reason: string}[]} candidates All columns.
+ * @property {'none'|'intercept'|'slope'|null} clusters What differs from cluster to cluster in the model.
  * @property {number[]} nonPositive Lines that forbid the log scale.
  */
 
@@ -52,6 +53,7 @@ export function contextOf(state) {
     groups,
     timeWord: findings?.scale.time_word ?? columns.time ?? text.plan.choices.time.none,
     candidates: (preview?.columns ?? []).map(({ name, reason }) => ({ name, reason })),
+    clusters: findings?.clusters?.effects ?? null,
     nonPositive: description?.nonPositive ?? [],
   };
 }

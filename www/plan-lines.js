@@ -110,7 +110,7 @@ function vary(choices, context, open) {
   const { cluster } = context.columns;
   /** @type {Part[]} */
   const housed = cluster === null ? [] : [
-    { text: words.eachCluster(calledName(choices, cluster, cluster)) }, chosen('clusters', choices, context),
+    { text: words.eachCluster(calledName(choices, cluster, cluster)) }, clusterPart(choices, context),
   ];
   /** @type {Part[]} */
   const parts = [
@@ -126,6 +126,18 @@ function vary(choices, context, open) {
     ...finer.parts,
   ];
   return { id: 'vary', label: words.lines.vary, parts, folded: finer.folded };
+}
+
+/**
+ * Clusters: where the table decides, what it decided.
+ * @param {Choices} choices
+ * @param {Context} context
+ * @returns {Part}
+ */
+function clusterPart(choices, context) {
+  const part = chosen('clusters', choices, context);
+  if (choices.plan.clusters !== 'auto' || context.clusters === null) return part;
+  return { ...part, text: words.choices.clusters[context.clusters][0] ?? part.text };
 }
 
 /**

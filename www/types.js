@@ -41,6 +41,7 @@
  * @typedef {Object} Findings
  * @property {string} version
  * @property {number} rows
+ * @property {{effects: 'none'|'intercept'|'slope'}|null} [clusters]
  * @property {number} subjects
  * @property {{subject: string|null, time: string|null, group: string|null, response: string|null, cluster: string|null, reasons: {role: string, column: string|null, reason: string}[]}} columns
  * @property {Problem[]} problems
