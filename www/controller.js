@@ -96,7 +96,7 @@ export class Controller {
   #afterChoice(before, typing) {
     const now = this.state.choices;
     window.clearTimeout(this.typing);
-    if (this.#planText(now) === this.#planText(before) && now.answered === before.answered) return;
+    if (this.#planText(now) === this.#planText(before)) return;
     if (typing) this.typing = window.setTimeout(() => void this.refit(), TYPING_PAUSE);
     else void this.refit();
   }

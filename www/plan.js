@@ -22,7 +22,7 @@ export function defaultPlan() {
       band: 'simultaneous', small_sample: 'auto', refits: 1000, landmark: null,
     },
     grid: { start: null, end: null, count: 101 },
-    reading: { day_zero: 'common', date_order: null, layout: null, merges: [] },
+    reading: { day_zero: 'common', date_order: null, layout: null, merges: [], shared_ids: null },
     words: { subject: 'subject', subjects: 'subjects', time: null, response: null },
     seed: 20260,
   };
@@ -113,7 +113,10 @@ export function withRole(plan, now, column, role) {
     if (name === column && key !== role) columns[key] = key === 'group' || key === 'cluster' ? false : null;
   }
   if (role !== 'unused') columns[role] = column;
-  return withSection(plan, 'columns', columns);
+  const changed = withSection(plan, 'columns', columns);
+  // What shared ids mean was said of the subjects and groups of before.
+  const others = columns.subject !== now.subject || columns.group !== (now.group ?? plan.columns.group);
+  return others ? withSection(changed, 'reading', { shared_ids: null }) : changed;
 }
 
 const LIKE_A_CONTROL =

@@ -15,7 +15,7 @@ import { text } from './text.js';
 /** @returns {Choices} */
 export function freshChoices() {
   return {
-    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], answered: [],
+    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [],
   };
 }
 
@@ -64,7 +64,7 @@ function demoChoices(choices, demo) {
  * @param {State} state
  */
 export function openQuestions(state) {
-  return (state.preview?.questions ?? []).filter((question) => question.blocking && !state.choices.answered.includes(question.id));
+  return (state.preview?.questions ?? []).filter((question) => question.blocking);
 }
 
 /**

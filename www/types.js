@@ -22,7 +22,7 @@
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
  * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null}} comparisons
  * @property {{start: number|null, end: number|null, count: number}} grid
- * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[]}} reading
+ * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[], shared_ids: null|'different'|'same'|'mistake'}} reading
  * @property {{subject: string, subjects: string, time: string|null, response: string|null}} words
  * @property {number} seed
  */
@@ -33,7 +33,7 @@
 /** @typedef {{time: number[], estimate: Series, se: Series, lower: Series, upper: Series, response_estimate: Series, response_lower: Series, response_upper: Series}} DifferencePoints */
 /** @typedef {{start: number, end: number, direction?: 'above'|'below', open_start: boolean, open_end: boolean}} Stretch */
 /** @typedef {DifferencePoints & {from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
-/** @typedef {{row: number, column: string, value: string, message: string, kept?: boolean}} Problem `kept`: the value is fitted all the same. */
+/** @typedef {{row: number, column: string, value: string, message: string, kept?: boolean, stops?: boolean}} Problem `kept`: the value is fitted all the same. `stops`: nothing is computed before it is mended or left out. */
 /** @typedef {{kind: string, pair: number|null, headline: string, text: string, depends: string}} Sentence */
 /** @typedef {{name: string, subjects: number, rows: number, last_times: number[], at_visit: number[]}} GroupInfo */
 
@@ -71,7 +71,7 @@
  * @property {string} id
  * @property {string} text
  * @property {boolean} blocking Nothing can be computed before it is answered.
- * @property {{label: string, detail: string, columns: Partial<Plan['columns']>}[]} answers
+ * @property {{label: string, detail: string, columns: Partial<Plan['columns']>, reading: Partial<Plan['reading']>}[]} answers
  */
 
 /**
@@ -108,7 +108,6 @@
  * @property {Record<string, string>} called Short names of columns.
  * @property {{one: string, many: string}} noun
  * @property {LeftOut[]} leftOut
- * @property {string[]} answered Questions answered.
  */
 
 /** @typedef {{label: string, choices: Choices}} Step */

@@ -109,3 +109,11 @@ test('log is greyed with the rows that forbid it', () => {
   const rows = alternativesOf('scale', defaultPlan(), { ...context, nonPositive: [14, 52] });
   assert.match(rows.find((row) => row.id === 'log').greyed, /lines 14, 52 hold zero or less/);
 });
+
+test('what shared ids mean is asked again when the group is another column', () => {
+  const now = { subject: 'id', time: 'day', group: 'arm', response: 'y', cluster: null };
+  const plan = withSection(defaultPlan(), 'reading', { shared_ids: 'different' });
+  assert.equal(withRole(plan, now, 'sex', 'group').reading.shared_ids, null);
+  assert.equal(withRole(plan, now, 'z', 'response').reading.shared_ids, 'different');
+  assert.equal(withRole(plan, { ...now, group: null }, 'z', 'response').reading.shared_ids, 'different');
+});

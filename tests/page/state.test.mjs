@@ -1,6 +1,6 @@
 import assert from 'node:assert/strict';
 import test from 'node:test';
-import { withTransform } from '../../www/plan.js';
+import { withSection, withTransform } from '../../www/plan.js';
 import * as change from '../../www/state.js';
 import { findings } from './fixture.mjs';
 
@@ -29,8 +29,15 @@ test('findings stay hidden while a question is open', () => {
   const asked = change.understood(fitted(), preview([{ id: 'q', text: '?', blocking: true, answers: [] }]), null);
   assert.equal(asked.status, 'question');
   assert.equal(asked.findings, null);
-  const answered = change.chosen(asked, 'answer', (choices) => ({ ...choices, answered: ['q'] }), false);
-  assert.equal(change.understood(answered, preview([{ id: 'q', text: '?', blocking: true, answers: [] }]), null).status, 'fitting');
+  const answered = change.chosen(asked, 'answer', (choices) => ({ ...choices, plan: withSection(choices.plan, 'reading', { shared_ids: 'different' }) }), false);
+  assert.equal(change.understood(answered, preview([]), null).status, 'fitting');
+});
+
+test('a cell that stops the reading leaves the table on the page', () => {
+  const stopped = change.understood(fitted(), { ...preview([]), refusal: 'Row 4: soon is no time.' }, null);
+  assert.equal(stopped.status, 'problem');
+  assert.equal(stopped.message, 'Row 4: soon is no time.');
+  assert.notEqual(stopped.preview, null);
 });
 
 test('a choice, its undoing and its redoing', () => {

@@ -26,14 +26,16 @@ export function mountProblems(root, acts) {
   return {
     update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.message], (state) => {
       const known = [...(state.preview?.problems ?? []), ...(state.findings?.problems ?? [])];
-      const problems = unique(known).filter((problem) => !isOut(problem, state.choices.leftOut));
+      const open = unique(known).filter((problem) => !isOut(problem, state.choices.leftOut));
+      const stopping = open.filter((problem) => problem.stops);
+      const problems = [...stopping, ...open.filter((problem) => !problem.stops)];
       const draw = (/** @type {HTMLElement} */ to, /** @type {Problem[]} */ rows) =>
         reconcile(to, rows, keyOf, (problem) => mountProblem(problem, (state.preview?.layout ?? 'long') !== 'long', acts));
       draw(list, problems.slice(0, SHOWN));
       draw(rest, problems.slice(SHOWN, 200));
       reconcile(offers, state.preview?.nearSpellings ?? [], (row) => `${row.from}:${row.into}`, (row) => mountOffer(row, acts));
       show(none, problems.length === 0 && offers.children.length === 0 && state.preview !== null);
-      other.suggest(state.status === 'problem' ? rowIn(state.message ?? '') : null);
+      other.suggest(state.status === 'problem' && stopping.length === 0 ? rowIn(state.message ?? '') : null);
       show(more, problems.length > SHOWN);
       setText(label, words.more(problems.length - SHOWN));
     }),

@@ -18,7 +18,7 @@ export function mountQuestion(root, acts) {
   root.append(el('h2', {}, text.data.question.title), sentence, answers);
   root.dataset.region = 'question';
   return {
-    update: whenChanged((state) => [state.preview, state.choices.answered, state.status], (state) => {
+    update: whenChanged((state) => [state.preview, state.status], (state) => {
       const [question] = state.status === 'question' ? openQuestions(state) : [];
       show(root, question !== undefined);
       if (!question) return;
@@ -27,8 +27,7 @@ export function mountQuestion(root, acts) {
         type: 'button', 'data-answer': row.label,
         onclick: () => acts.choose(`${text.data.labels.answered}: ${row.label}`, (choices) => ({
           ...choices,
-          plan: withSection(choices.plan, 'columns', row.columns),
-          answered: [...choices.answered, question.id],
+          plan: withSection(withSection(choices.plan, 'columns', row.columns), 'reading', row.reading),
         })),
       }, el('span', { class: 'alternative-name' }, row.label), el('span', { class: 'alternative-fits' }, row.detail))));
     }),

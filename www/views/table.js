@@ -52,13 +52,23 @@ export function mountTable(root, acts) {
     if (!preview) return;
     setText(format, preview.format);
     drawHeads(heads, state, preview, acts);
-    const rows = preview.rows.slice(0, limit);
+    const rows = shownRows(preview, limit);
     drawRows(body, rows, state, preview);
     setText(count, rows.length < preview.totalRows ? words.shown(rows.length, preview.totalRows) : words.all(preview.totalRows));
     show(more, rows.length < preview.rows.length);
     reconcile(notes, preview.notes, (note) => note, (note) => el('li', {}, note));
   }
   return { update: whenChanged((state) => [state.preview, state.choices, state.source], draw) };
+}
+
+/**
+ * The first rows, and those further down where a cell stops the reading.
+ * @param {Preview} preview
+ * @param {number} limit
+ */
+function shownRows({ rows, problems }, limit) {
+  const stopping = new Set(problems.filter((problem) => problem.stops).slice(0, STEP).map((problem) => problem.row));
+  return rows.filter((row, index) => index < limit || stopping.has(row.line));
 }
 
 /** @param {HTMLElement} heads @param {State} state @param {Preview} preview @param {Acts} acts */
@@ -114,6 +124,7 @@ function drawRows(body, rows, state, preview) {
   const out = new Set(state.choices.leftOut.map((one) => `${one.row}:${one.column ?? ''}`));
   /** @type {Map<string, string>} */
   const troubled = new Map(preview.problems.map((problem) => [`${problem.row}:${problem.column}`, problem.message]));
+  const stopping = new Set(preview.problems.filter((problem) => problem.stops).map((problem) => `${problem.row}:${problem.column}`));
   reconcile(body, rows, (row) => String(row.line), (row) => el('tr', {}, el('th', { scope: 'row', class: 'line' }, String(row.line)),
     ...preview.columns.map(() => el('td'))), (node, row) => {
     node.classList.toggle('is-out', out.has(`${row.line}:`));
@@ -122,6 +133,7 @@ function drawRows(body, rows, state, preview) {
       setText(cell, row.cells[index] ?? '');
       const message = troubled.get(`${row.line}:${column.name}`);
       cell.classList.toggle('is-troubled', message !== undefined);
+      cell.classList.toggle('is-stopping', stopping.has(`${row.line}:${column.name}`));
       cell.classList.toggle('is-out', out.has(`${row.line}:${column.name}`));
       if (message) cell.title = message;
       else cell.removeAttribute('title');

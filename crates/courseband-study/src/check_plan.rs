@@ -169,6 +169,11 @@ impl Plan {
                 DateOrder::DayFirst => table::DateOrder::DayFirst,
                 DateOrder::MonthFirst => table::DateOrder::MonthFirst,
             }),
+            shared_ids: self.reading.shared_ids.map(|meaning| match meaning {
+                SharedIds::Different => table::SharedIds::Different,
+                SharedIds::Same => table::SharedIds::Same,
+                SharedIds::Mistake => table::SharedIds::Mistake,
+            }),
             layout: self.reading.layout.map(|layout| match layout {
                 Layout::Long => table::Layout::Long,
                 Layout::WideByTime => table::Layout::WideByTime,

@@ -142,6 +142,21 @@ pub struct ReadingChoice {
     pub layout: Option<Layout>,
     /// Group spellings to unite.
     pub merges: Vec<Merge>,
+    /// What it means that ids occur under several groups at overlapping times; `null`: not said, and
+    /// taken for different subjects.
+    pub shared_ids: Option<SharedIds>,
+}
+
+/// What it means that an id occurs under several groups at overlapping times.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum SharedIds {
+    /// Different subjects: numbering restarts in each group.
+    Different,
+    /// The same subjects: a crossover, which is refused.
+    Same,
+    /// An id or a group is mistyped: refused with the rows.
+    Mistake,
 }
 
 /// Where time is zero.

@@ -50,6 +50,18 @@ impl Study {
         }
     }
 
+    /// The table, and its reading under a plan.
+    ///
+    /// # Errors
+    /// As [`Study::reading`].
+    pub fn table_read(&mut self, plan: &Plan) -> Result<(&Table, &Reading), Refusal> {
+        self.reading(plan)?;
+        match &self.kept {
+            Some((_, reading)) => Ok((&self.table, reading)),
+            None => Err(Refusal::table("The table could not be read.")),
+        }
+    }
+
     /// Findings under a plan.
     ///
     /// # Errors

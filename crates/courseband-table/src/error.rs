@@ -143,6 +143,41 @@ pub struct GroupChange {
     pub near: bool,
 }
 
+impl TableError {
+    /// The cells that it is about: row, column, value as written, and what to do there.
+    pub(crate) fn places(&self) -> Vec<(usize, String, String, String)> {
+        let place = |row: usize, column: &str, value: &str, message: &str| {
+            (row, column.to_string(), value.to_string(), message.to_string())
+        };
+        match self {
+            TableError::Cell { row, column, value, message } => {
+                vec![place(*row, column, value, &format!("It {message}"))]
+            }
+            TableError::DateOrder { column, row, value } => {
+                vec![place(*row, column, value, "It can be read day first or month first.")]
+            }
+            TableError::MixedUnits { column, first, second } => [first, second]
+                .into_iter()
+                .map(|(row, value)| place(*row, column, value, "Its unit cannot be converted into the others."))
+                .collect(),
+            TableError::ChangesGroup(change) => change
+                .second
+                .1
+                .iter()
+                .map(|&row| {
+                    let message = format!("Before, this subject is in group {}.", quoted(&change.first.0));
+                    place(row, &change.column, &change.subject, &message)
+                })
+                .collect(),
+            TableError::ChangesCluster { column, first, second, .. } => [first, second]
+                .into_iter()
+                .map(|(value, row)| place(*row, column, value, "This subject has two different entries here."))
+                .collect(),
+            _ => Vec::new(),
+        }
+    }
+}
+
 impl fmt::Display for GroupChange {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         write!(

@@ -4,7 +4,8 @@ use crate::names::{Summary, clarity, is_unit, split_unit, summarises, summary};
 use crate::number::{Decimal, number};
 use crate::request::Role;
 use crate::sheet::Sheet;
-use crate::time::read_time;
+use crate::text::folded;
+use crate::time::{Unit, read_time};
 
 /// Records looked at to find the header.
 const HEAD: usize = 50;
@@ -16,6 +17,8 @@ pub(crate) struct Frame {
     pub(crate) titles: Vec<usize>,
     /// A header row whose cells span several columns, above or below the header.
     pub(crate) spanner: Option<usize>,
+    /// A row of times above the header: each holds for its column and the blank ones to its right.
+    pub(crate) times: Option<usize>,
     /// The row with the column names; none where the first row holds data already.
     pub(crate) header: Option<usize>,
     /// A row of units below the header.
@@ -37,7 +40,14 @@ pub(crate) fn find_frame(sheet: &Sheet) -> Frame {
     if has_names(sheet, header) {
         next += 1;
         frame.header = Some(header);
-        if two_header_rows(sheet, header) {
+        if header > 0 && times_above(sheet, header - 1, header) {
+            frame.times = Some(header - 1);
+            frame.titles.retain(|&record| record != header - 1);
+        } else if times_above(sheet, header, header + 1) {
+            frame.times = Some(header);
+            frame.header = Some(header + 1);
+            next += 1;
+        } else if two_header_rows(sheet, header) {
             frame.spanner = Some(header);
             frame.header = Some(header + 1);
             next += 1;
@@ -176,6 +186,31 @@ fn two_header_rows(sheet: &Sheet, record: usize) -> bool {
     is_name && filled(sheet, record + 1) >= filled(sheet, record).min(2) && read_time(below, Decimal::Point).is_some()
 }
 
+/// Times over names that come back under each of them: `day 0, , day 7, ` over `mouse, weight, size, weight, size`.
+fn times_above(sheet: &Sheet, above: usize, names: usize) -> bool {
+    if names + 1 >= sheet.records() || sheet.width_of(names) < 3 {
+        return false;
+    }
+    let labels: Vec<(usize, &str)> =
+        sheet.cells(above).map(str::trim).enumerate().skip(1).filter(|(_, cell)| !cell.is_empty()).collect();
+    let Some(&(first, _)) = labels.first() else { return false };
+    let mut times: Vec<&str> = labels.iter().map(|(_, label)| *label).collect();
+    times.sort_unstable();
+    times.dedup();
+    let mut under: Vec<String> = sheet.cells(names).skip(first).map(|cell| folded(cell)).collect();
+    let count = under.len();
+    let worded = under.iter().all(|name| !name.is_empty() && read_time(name, Decimal::Point).is_none());
+    under.sort_unstable();
+    under.dedup();
+    let below = |column: usize| sheet.cell(names + 1, column).trim();
+    let numbers = labels.iter().filter(|(column, _)| is_number(below(*column))).count();
+    times.len() >= 2
+        && labels.iter().all(|(_, label)| read_time(label, Decimal::Point).is_some())
+        && worded
+        && under.len() < count
+        && numbers * 2 > labels.len()
+}
+
 /// A row below the header that says the group of each column: `group, Saline, Saline, Drug`.
 fn is_group_row(sheet: &Sheet, header: usize, record: usize) -> bool {
     record < sheet.records()
@@ -212,6 +247,10 @@ pub(crate) struct Names {
     pub(crate) units: Vec<Option<String>>,
     /// Labels spanning several columns, filled to the right; empty without such a row.
     pub(crate) spanner: Vec<String>,
+    /// Times above the names, filled to the right; empty without such a row.
+    pub(crate) times: Vec<String>,
+    /// The unit that the first cell of that row gives to its times.
+    pub(crate) times_unit: Option<Unit>,
 }
 
 /// Names of the columns.
@@ -230,7 +269,16 @@ pub(crate) fn column_names(sheet: &Sheet, frame: &Frame) -> Names {
     }
     trim_blank_end(sheet, frame, &mut written);
     let units = (0..written.len()).map(|column| unit_of(sheet, frame, column, &written[column])).collect();
-    Names { names: unique(&written), units, spanner: spanner_labels(sheet, frame, written.len()), written }
+    let times = filled_labels(sheet, frame.times, written.len());
+    let times_unit = frame.times.and_then(|record| crate::names::time_unit(sheet.cell(record, 0)));
+    let shown: Vec<String> = (written.iter().enumerate())
+        .map(|(column, name)| match times.get(column).filter(|time| !time.is_empty()) {
+            Some(time) => format!("{name} {time}"),
+            None => name.clone(),
+        })
+        .collect();
+    let spanner = filled_labels(sheet, frame.spanner, written.len());
+    Names { names: unique(&shown), units, spanner, times, times_unit, written }
 }
 
 /// Drops unnamed columns without data at the right.
@@ -252,8 +300,9 @@ fn unit_of(sheet: &Sheet, frame: &Frame, column: usize, name: &str) -> Option<St
     below.or(split_unit(name).1).map(str::to_string)
 }
 
-fn spanner_labels(sheet: &Sheet, frame: &Frame, width: usize) -> Vec<String> {
-    let Some(record) = frame.spanner else { return Vec::new() };
+/// The labels of a record, each filled to the right over blanks; the first column has none.
+fn filled_labels(sheet: &Sheet, record: Option<usize>, width: usize) -> Vec<String> {
+    let Some(record) = record else { return Vec::new() };
     let mut labels = vec![String::new(); width];
     let mut label = "";
     for (column, slot) in labels.iter_mut().enumerate().skip(1) {

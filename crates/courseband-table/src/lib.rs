@@ -42,6 +42,6 @@ pub use observations::{Covariate, CovariateValues, Observations, SubjectInfo};
 pub use preview::{Preview, PreviewColumn, PreviewRow};
 pub use problems::LISTED_PER_KIND;
 pub use reading::{ColumnsUsed, Problem, ProblemKind, Question, Reading, Reason, Topic};
-pub use request::{ColumnRequest, DateOrder, DayZero, Exclusion, Layout, Merge, Request, Role};
+pub use request::{ColumnRequest, DateOrder, DayZero, Exclusion, Layout, Merge, Request, Role, SharedIds};
 pub use sheet::{Sheet, read_bytes};
 pub use table::Table;

@@ -94,6 +94,26 @@ impl LongTable<'_> {
         }
     }
 
+    /// In a wide table: names of the sheet's columns that hold measurements.
+    pub(crate) fn measured(&self) -> Vec<String> {
+        if self.layout == Layout::Long {
+            return Vec::new();
+        }
+        // Every record has the same columns measured.
+        let first = self.places.first().map(|place| place.record);
+        let own = self.places.iter().take_while(|place| Some(place.record) == first).map(|place| place.column as usize);
+        let own: Vec<usize> = own.collect();
+        let mut columns = own.clone();
+        for column in &self.columns {
+            if let Source::Beside(beside) = &column.source {
+                columns.extend(own.iter().filter_map(|&at| beside[at]));
+            }
+        }
+        columns.sort_unstable();
+        columns.dedup();
+        columns.into_iter().map(|column| self.sheet_names[column].clone()).collect()
+    }
+
     /// The column of a name.
     pub(crate) fn find(&self, name: &str) -> Option<usize> {
         let name = name.trim();

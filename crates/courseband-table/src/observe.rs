@@ -36,24 +36,30 @@ struct Observer<'a> {
 /// Reads observations from the long form.
 pub(crate) fn observe(table: &LongTable<'_>, profiles: &[Profile], request: &Request) -> Result<Reading, TableError> {
     let roles = find_roles(table, profiles, request)?;
-    let mut observer = Observer {
-        table,
-        profiles,
-        request,
-        kept: Vec::new(),
-        excluded: 0,
-        problems: Problems::default(),
-        notes: table.notes.clone(),
-        questions: roles.questions.clone(),
-        near_spellings: Vec::new(),
-        roles,
-    };
+    let mut observer = Observer::new(table, profiles, request, roles);
     observer.exclude()?;
     let observations = match observer.questions.is_empty() {
         true => observer.read()?,
         false => Observations::default(),
     };
     Ok(observer.finish(observations))
+}
+
+impl<'a> Observer<'a> {
+    fn new(table: &'a LongTable<'a>, profiles: &'a [Profile], request: &'a Request, roles: Roles) -> Self {
+        Observer {
+            table,
+            profiles,
+            request,
+            kept: Vec::new(),
+            excluded: 0,
+            problems: Problems::default(),
+            notes: table.notes.clone(),
+            questions: roles.questions.clone(),
+            near_spellings: Vec::new(),
+            roles,
+        }
+    }
 }
 
 impl Observer<'_> {
@@ -84,6 +90,7 @@ impl Observer<'_> {
             layout: self.table.layout,
             response_unit,
             excluded: self.excluded,
+            measured: self.table.measured(),
         }
     }
 
@@ -190,6 +197,9 @@ impl Observer<'_> {
         let mut groups = self.groups()?;
         let subjects = tell_apart(&ids, &groups, &times.values);
         self.check_ids(&ids, &groups, &subjects)?;
+        if self.questions.iter().any(|question| question.needs_answer) {
+            return Ok(Observations::default());
+        }
         self.near_groups(&groups);
         let responses = self.responses()?;
         let covariates = self.covariates();
@@ -260,9 +270,8 @@ impl Observer<'_> {
         let Some(group) = self.roles.column(Role::Group) else { return Ok(()) };
         let column = self.name(self.needed(Role::Subject)?);
         let found = subjects.check_shared_ids(ids, groups, column, self.name(group), |kept| self.line(kept))?;
-        if let Some((note, question)) = found {
-            self.notes.push(note);
-            self.questions.push(question);
+        if let Some(text) = found {
+            self.shared_ids(&text, group, subjects);
         }
         if !subjects.filled.is_empty() {
             let lines: Vec<usize> = subjects.filled.iter().take(6).map(|&kept| self.line(kept)).collect();
@@ -369,3 +378,7 @@ fn odd_response(odd: &NotNumber, decimal: crate::number::Decimal) -> (ProblemKin
 }
 
 mod build;
+mod outline;
+mod shared;
+
+pub(crate) use outline::outline;

@@ -77,6 +77,13 @@ impl Table {
         records.map(|record| PreviewRow { line: sheet.line(record), cells: cells(record) }).collect()
     }
 
+    /// The rows of data on these lines, as written.
+    pub fn rows_at(&self, lines: &[usize]) -> Vec<PreviewRow> {
+        let (sheet, body) = (self.sheet(), self.body());
+        let at = lines.iter().filter_map(|&line| body.binary_search(&(sheet.record_at(line)? as u32)).ok());
+        at.flat_map(|at| self.rows(at, 1)).collect()
+    }
+
     fn samples(&self, column: usize) -> Vec<String> {
         let mut samples: Vec<String> = Vec::new();
         for &record in self.body().iter().take(1000) {

@@ -36,6 +36,11 @@ impl Problems {
         }
     }
 
+    /// Those listed so far.
+    pub(crate) fn listed(&self) -> &[Problem] {
+        &self.list
+    }
+
     pub(crate) fn count(&self, kind: ProblemKind) -> usize {
         self.counts[kind as usize]
     }
@@ -77,4 +82,6 @@ const KINDS: [ProblemKind; ProblemKind::COUNT] = [
     ProblemKind::OneObservation,
     ProblemKind::FarFromCourse,
     ProblemKind::SurplusCells,
+    ProblemKind::StopsReading,
+    ProblemKind::SharedId,
 ];

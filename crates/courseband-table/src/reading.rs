@@ -28,6 +28,8 @@ pub struct Reading {
     pub response_unit: Option<String>,
     /// Rows left out on request.
     pub excluded: usize,
+    /// In a wide table: the columns that hold the measurements, by name.
+    pub measured: Vec<String>,
 }
 
 impl Reading {
@@ -109,10 +111,28 @@ pub enum ProblemKind {
     FarFromCourse,
     /// More cells in the row than in the header; the surplus is not read.
     SurplusCells,
+    /// A cell without which the table cannot be used, such as an unreadable time.
+    StopsReading,
+    /// A row of an id that is said to be under several groups by mistake.
+    SharedId,
 }
 
 impl ProblemKind {
-    pub(crate) const COUNT: usize = 13;
+    pub(crate) const COUNT: usize = 15;
+
+    /// True where the row, or the cell of a wide table, is left out already.
+    pub fn leaves_out(self) -> bool {
+        matches!(
+            self,
+            ProblemKind::MissingResponse
+                | ProblemKind::NotANumber
+                | ProblemKind::BeyondLimit
+                | ProblemKind::UnitInCell
+                | ProblemKind::NotFinite
+                | ProblemKind::MissingGroup
+                | ProblemKind::MissingCovariate
+        )
+    }
 
     /// The kind in a few words, for a count.
     pub fn words(self) -> &'static str {
@@ -130,6 +150,8 @@ impl ProblemKind {
             ProblemKind::OneObservation => "subjects with one observation",
             ProblemKind::FarFromCourse => "values far from their subject's course",
             ProblemKind::SurplusCells => "rows with more cells than the header",
+            ProblemKind::StopsReading => "cells that stop the reading",
+            ProblemKind::SharedId => "rows of ids under several groups",
         }
     }
 }
@@ -139,7 +161,8 @@ impl ProblemKind {
 pub enum Topic {
     /// Which column plays a role. Choices are column names.
     Column(Role),
-    /// Whether ids restart in each group. The first choice is assumed.
+    /// What ids under several groups mean. Choices are those of [`crate::SharedIds`], in its order;
+    /// without an answer the first is assumed.
     Ids,
 }
 
@@ -161,7 +184,7 @@ impl Question {
     pub fn refusal(&self) -> String {
         match self.topic {
             Topic::Column(role) => format!("{} Name the {role} column in the plan (columns, {role}).", self.text),
-            Topic::Ids => self.text.clone(),
+            Topic::Ids => format!("{} What it means stands in the plan (reading, shared_ids).", self.text),
         }
     }
 }

@@ -95,6 +95,17 @@ pub enum DateOrder {
     MonthFirst,
 }
 
+/// What it means that an id occurs under several groups at overlapping times.
+#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+pub enum SharedIds {
+    /// Different subjects: numbering restarts in each group.
+    Different,
+    /// The same subject under each: a crossover, which is not handled.
+    Same,
+    /// An id or a group is mistyped somewhere.
+    Mistake,
+}
+
 /// How a table lays out its measurements.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub enum Layout {
@@ -129,6 +140,8 @@ pub struct Request {
     pub day_zero: DayZero,
     /// How ambiguous dates are read; `None` decides by the column and refuses if it cannot.
     pub date_order: Option<DateOrder>,
+    /// What ids under several groups mean; `None` takes different subjects, and asks.
+    pub shared_ids: Option<SharedIds>,
     /// How the table is laid out; `None` decides by its header and cells.
     pub layout: Option<Layout>,
 }

@@ -61,8 +61,8 @@ pub(crate) fn find_roles(table: &LongTable<'_>, profiles: &[Profile], request: &
     finder.subject_by_contents();
     finder.time_by_contents();
     finder.ask_for_missing(&[Role::Subject, Role::Time]);
-    finder.cluster();
     finder.group();
+    finder.cluster();
     finder.response();
     finder.ask_for_missing(&[Role::Response]);
     Ok(finder.roles)

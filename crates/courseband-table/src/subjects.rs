@@ -3,7 +3,6 @@
 use crate::error::{GroupChange, TableError};
 use crate::groups::is_near;
 use crate::labels::Labels;
-use crate::reading::{Question, Topic};
 use crate::text::{folded, quoted};
 use std::collections::HashMap;
 
@@ -110,7 +109,7 @@ impl Subjects {
         shared
     }
 
-    /// Refuses ids whose groups do not overlap in time; notes those that do, with the question.
+    /// Refuses ids whose groups do not overlap in time; says which ids do, in words.
     ///
     /// # Errors
     /// [`TableError::ChangesGroup`].
@@ -121,7 +120,7 @@ impl Subjects {
         column: &str,
         group_column: &str,
         line: impl Fn(usize) -> usize,
-    ) -> Result<Option<(String, Question)>, TableError> {
+    ) -> Result<Option<String>, TableError> {
         let shared = self.shared_ids();
         for (id, subjects) in &shared {
             if let Some((first, second)) = self.apart_in_time(subjects) {
@@ -140,19 +139,19 @@ impl Subjects {
         };
         let every = shared.iter().all(|(_, subjects)| subjects.len() == groups.names.len());
         let under = if every { "every" } else { "more than one" };
-        let text = format!("{who} under {under} {group_column} at overlapping times");
-        let note = format!("{text}: taken for different subjects, numbered anew in each group.");
-        let question = Question {
-            topic: Topic::Ids,
-            text: format!("{text}. What does that mean?"),
-            choices: vec![
-                "Different subjects: numbering restarts in each group".to_string(),
-                "The same subjects under each: this design is not handled".to_string(),
-                "A typing error: correct the group or exclude the rows".to_string(),
-            ],
-            needs_answer: false,
-        };
-        Ok(Some((note, question)))
+        Ok(Some(format!("{who} under {under} {group_column} at overlapping times")))
+    }
+
+    /// Rows of ids under several groups, but for those of the group that an id clearly stands in most.
+    pub(crate) fn doubtful_rows(&self) -> Vec<usize> {
+        let mut doubtful = vec![false; self.list.len()];
+        for (_, subjects) in self.shared_ids() {
+            let most = subjects.iter().map(|&subject| self.list[subject].rows).max().unwrap_or(0);
+            let at_most: Vec<usize> = subjects.iter().copied().filter(|&s| self.list[s].rows == most).collect();
+            subjects.iter().for_each(|&subject| doubtful[subject] = at_most != [subject]);
+        }
+        let is_doubtful = |slot: u32| slot != Labels::NONE && doubtful[slot as usize];
+        (0..self.of_row.len()).filter(|&row| is_doubtful(self.of_row[row])).collect()
     }
 
     /// Two subjects of one id with time between them: they are not all linked by overlapping times.

@@ -5,7 +5,7 @@ use crate::frame::{Frame, Names, column_names, find_frame};
 use crate::layout::{Framed, long_form, plain};
 use crate::long::LongTable;
 use crate::notes::frame_notes;
-use crate::observe::observe;
+use crate::observe::{observe, outline};
 use crate::profile::{Profile, profile_all};
 use crate::reading::Reading;
 use crate::request::Request;
@@ -45,6 +45,16 @@ impl Table {
         let mut long = self.long(request);
         long.notes.splice(0..0, self.notes());
         observe(&long, &profile_all(&long), request)
+    }
+
+    /// What can be shown where the table cannot be used as asked: roles, every cell that stops the
+    /// reading, and what else stands out. There are no observations.
+    pub fn outline(&self, request: &Request) -> Reading {
+        let mut long = self.long(request);
+        long.notes.splice(0..0, self.notes());
+        let profiles = profile_all(&long);
+        let error = observe(&long, &profiles, request).err();
+        outline(&long, &profiles, request, error.as_ref())
     }
 
     /// The cells as written.

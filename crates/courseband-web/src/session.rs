@@ -3,6 +3,7 @@
 use crate::refused::Refused;
 use crate::wire;
 use courseband_study::{Calibrator, Plan, Refits, Study};
+use courseband_table::Observations;
 use wasm_bindgen::prelude::wasm_bindgen;
 
 /// Rows of the table that a preview shows.
@@ -40,32 +41,38 @@ impl Session {
     }
 
     /// The table as it was read under a plan: columns with roles and reasons, first rows, problems,
-    /// questions and notes.
+    /// questions and notes; and why it cannot be used as asked, where that is so.
     ///
     /// # Errors
-    /// A plan that cannot be read, or a table that cannot be used as asked.
+    /// A plan that cannot be read.
     pub fn preview(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
-        let shown = study.table().preview(PREVIEW_ROWS);
-        let delimiter = study.table().sheet().delimiter();
-        let reading = study.reading(&plan)?;
-        wire::text(&wire::Preview::new(&shown, delimiter, reading))
+        match study.table_read(&plan) {
+            Ok((table, reading)) => wire::text(&wire::Preview::new(table, PREVIEW_ROWS, reading, None)),
+            Err(refusal) => {
+                let outline = study.table().outline(&plan.request());
+                wire::text(&wire::Preview::new(study.table(), PREVIEW_ROWS, &outline, Some(refusal.message)))
+            }
+        }
     }
 
     /// Count, mean, standard deviation and median of each group at each time, and the lines with
-    /// values that a log scale cannot take.
+    /// values that a log scale cannot take. Empty where the table cannot be used as asked.
     ///
     /// # Errors
-    /// As [`Session::preview`].
+    /// A plan that cannot be read.
     pub fn describe(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
-        wire::text(&wire::Description::new(&study.reading(&plan)?.observations))
+        match study.reading(&plan) {
+            Ok(reading) => wire::text(&wire::Description::new(&reading.observations)),
+            Err(_) => wire::text(&wire::Description::new(&Observations::default())),
+        }
     }
 
     /// Findings under a plan.
     ///
     /// # Errors
-    /// As [`Session::preview`], and questions that need an answer first.
+    /// A plan that cannot be read, a table that cannot be used as asked, and questions that need an answer first.
     pub fn run(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
         let findings = wire::text(&study.run(&plan)?)?;

@@ -36,7 +36,7 @@ fn families(framed: Framed<'_>) -> Vec<Family> {
     let mut families: Vec<Family> = Vec::new();
     let mut places: HashMap<(String, bool), usize> = HashMap::new();
     for column in 0..framed.width() {
-        let Some(head) = read_head(framed.written(column)).filter(|_| framed.is_numeric(column)) else {
+        let Some(head) = head_of(framed, column).filter(|_| framed.is_numeric(column)) else {
             continue;
         };
         let stem = match framed.names.spanner.get(column) {
@@ -50,6 +50,17 @@ fn families(framed: Framed<'_>) -> Vec<Family> {
         }
     }
     families
+}
+
+/// The time of a column: above its name, or in it.
+fn head_of(framed: Framed<'_>, column: usize) -> Option<TimeHead> {
+    let above = framed.names.times.get(column).filter(|time| !time.is_empty());
+    let Some(above) = above else { return read_head(framed.written(column)) };
+    let stem = framed.written(column).to_string();
+    let unit = framed.names.times_unit;
+    // A bare number is read as a time too, though `read_head` wants a digit behind letters.
+    let head = read_head(above)?;
+    Some(TimeHead { stem, clear: true, unit: head.unit.or(unit), ..head })
 }
 
 /// Clear heads: two different times. Others: three or more, ascending, beside a column that tells subjects apart.

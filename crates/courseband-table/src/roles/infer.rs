@@ -129,21 +129,74 @@ impl Finder<'_> {
                 }
             }
         }
-        if !candidates.is_empty() {
-            self.take_by_name(Role::Cluster, &candidates, 3);
-        } else if self.roles.reasons[Role::Cluster as usize].is_empty() {
-            self.roles.forget(Role::Cluster, "No column is named like a cage, litter or site.".to_string());
+        match candidates.as_slice() {
+            [] if self.roles.reasons[Role::Cluster as usize].is_empty() => {
+                self.roles.forget(Role::Cluster, "No column is named like a cage, litter or site.".to_string());
+            }
+            [] => {}
+            [one] => {
+                let name = quoted(self.name(*one));
+                self.roles.set(
+                    Role::Cluster,
+                    *one,
+                    format!(
+                        "The name {name} says so, each subject has one of its values, and several subjects share one."
+                    ),
+                );
+            }
+            _ => {
+                self.take_by_name(Role::Cluster, &candidates, 3);
+            }
         }
     }
 
+    /// Why a column named like a cage, litter or site is none by its values.
     fn why_no_cluster(&mut self, column: usize) -> Option<&'static str> {
+        if self.is_only_response(column) {
+            return Some("holds the only further numbers, so it is the response and no cluster");
+        }
         let subject = self.roles.column(Role::Subject)?;
-        let (changing, subjects) = self.varying(subject, column);
+        let key: Vec<usize> = [Some(subject), self.roles.column(Role::Group)].into_iter().flatten().collect();
+        let (changing, subjects, values) = self.within(&key, column);
         if changing > 0 {
             return Some("changes within subjects");
         }
-        let (shared, _) = self.varying(column, subject);
-        (shared == 0 && subjects > 1).then_some("has one subject in each")
+        (values >= subjects && subjects > 1).then_some("has one subject in each")
+    }
+
+    /// Numbers, where no other column is left that could be the response.
+    fn is_only_response(&self, column: usize) -> bool {
+        let numeric = |column: usize| self.profiles[column].is_numeric(0.5);
+        self.is_open(Role::Response)
+            && numeric(column)
+            && !self.free().into_iter().any(|other| other != column && numeric(other))
+    }
+
+    /// Over the subjects told apart by `key`: how many have several values of a column, how many there
+    /// are, and how many values the column has.
+    fn within(&mut self, key: &[usize], column: usize) -> (usize, usize, usize) {
+        let mut keys = vec![[0u32; 3]; self.table.rows()];
+        for (slot, &part) in key.iter().take(2).chain([&column]).enumerate() {
+            let codes = self.codes_of(part);
+            keys.iter_mut().zip(codes).for_each(|(key, &code)| key[slot.min(2)] = code);
+        }
+        if key.len() == 1 {
+            // Subject, no second part, value.
+            keys.iter_mut().for_each(|key| *key = [key[0], 0, key[1]]);
+        }
+        keys.retain(|key| key[0] != 0 && key[2] != 0);
+        keys.sort_unstable();
+        keys.dedup();
+        let per_subject = keys.chunk_by(|a, b| a[..2] == b[..2]);
+        let (mut changing, mut subjects) = (0, 0);
+        for values in per_subject {
+            subjects += 1;
+            changing += usize::from(values.len() > 1);
+        }
+        let mut values: Vec<u32> = keys.iter().map(|key| key[2]).collect();
+        values.sort_unstable();
+        values.dedup();
+        (changing, subjects, values.len())
     }
 
     pub(super) fn group(&mut self) {
@@ -171,6 +224,12 @@ impl Finder<'_> {
         let plain: Vec<usize> = candidates.iter().copied().filter(|column| !beside.contains(column)).collect();
         let best = self.without_copies(if plain.is_empty() { beside } else { plain });
         let best = if best.is_empty() { self.restarting() } else { best };
+        if let ([], Some(place)) = (best.as_slice(), self.few_places()) {
+            let reason = "It is named like a site or cage, but no other column divides the subjects, and it does so into few parts.";
+            self.roles.set(Role::Group, place, reason);
+            self.close(Role::Group);
+            return;
+        }
         self.take_only(
             Role::Group,
             &best,
@@ -204,6 +263,19 @@ impl Finder<'_> {
             }
         }
         found
+    }
+
+    /// The only column named like a site or cage, where it divides the subjects into two to four parts of three or more.
+    fn few_places(&mut self) -> Option<usize> {
+        let subject = self.roles.column(Role::Subject)?;
+        let named: Vec<usize> =
+            self.free().into_iter().filter(|&column| clarity(self.name(column), Role::Cluster) >= 3).collect();
+        let [column] = named.as_slice() else { return None };
+        if !self.is_open(Role::Cluster) || self.is_only_response(*column) {
+            return None;
+        }
+        let (changing, subjects, values) = self.within(&[subject], *column);
+        (changing == 0 && (2..=4).contains(&values) && values * 3 <= subjects).then_some(*column)
     }
 
     /// True where ids restart under each value: alone they come back at one time, with the column they do not.

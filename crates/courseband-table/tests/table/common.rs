@@ -2,7 +2,7 @@
 
 use courseband_table::{
     ColumnRequest, CovariateValues, DateOrder, DayZero, Exclusion, Layout, Merge, Observations, Reading, Request,
-    Table, TableError,
+    SharedIds, Table, TableError,
 };
 use std::fmt::Write;
 
@@ -109,6 +109,13 @@ pub(crate) fn request(text: &str) -> Request {
                     "by time" => Layout::WideByTime,
                     "by subject" => Layout::WideBySubject,
                     other => panic!("no layout {other}"),
+                });
+            }
+            "shared ids" => {
+                request.shared_ids = Some(match value {
+                    "different" => SharedIds::Different,
+                    "same" => SharedIds::Same,
+                    _ => SharedIds::Mistake,
                 });
             }
             "zero" => request.day_zero = if value == "subject" { DayZero::PerSubject } else { DayZero::Common },

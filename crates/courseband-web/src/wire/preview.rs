@@ -1,7 +1,7 @@
 //! What the reader understood of a table.
 
 use courseband_table as table;
-use courseband_table::{ColumnsUsed, Question, Reading, Role, Topic};
+use courseband_table::{ColumnsUsed, ProblemKind, Question, Reading, Role, Table, Topic};
 use serde::Serialize;
 use std::collections::BTreeMap;
 
@@ -18,6 +18,9 @@ pub(crate) struct Preview {
     notes: Vec<String>,
     near_spellings: Vec<NearSpelling>,
     response_unit: Option<String>,
+    layout: &'static str,
+    /// Why the table cannot be used as asked; the rest then only shows it.
+    refusal: Option<String>,
 }
 
 /// A column of the table as it stands.
@@ -28,6 +31,8 @@ struct Column {
     reason: String,
     unit: Option<String>,
     missing: usize,
+    /// In a wide table: it holds measurements.
+    measured: bool,
 }
 
 #[derive(Debug, Serialize)]
@@ -42,9 +47,13 @@ struct Problem {
     column: String,
     value: String,
     message: String,
+    /// The value is fitted, or would be.
+    kept: bool,
+    /// Nothing can be computed before it is mended or left out.
+    stops: bool,
 }
 
-/// A question with its answers; an answer is a part of the plan's `columns`.
+/// A question with its answers; an answer is a part of the plan's `columns` or `reading`.
 #[derive(Debug, Serialize)]
 struct Asked {
     id: String,
@@ -59,6 +68,7 @@ struct Answer {
     label: String,
     detail: String,
     columns: BTreeMap<&'static str, String>,
+    reading: BTreeMap<&'static str, &'static str>,
 }
 
 #[derive(Debug, Serialize)]
@@ -68,13 +78,23 @@ struct NearSpelling {
 }
 
 impl Preview {
-    pub(crate) fn new(shown: &table::Preview, delimiter: char, reading: &Reading) -> Self {
+    /// The first `rows` rows, and those further down where a cell stops the reading.
+    pub(crate) fn new(table: &Table, rows: usize, reading: &Reading, refusal: Option<String>) -> Self {
+        let shown = table.preview(rows);
         let roles = RolesByColumn::new(reading);
+        let last = shown.rows.last().map_or(0, |row| row.line);
+        let mut stopping: Vec<usize> =
+            reading.problems.iter().filter(|one| stops(one) && one.row > last).map(|one| one.row).collect();
+        stopping.dedup();
+        stopping.truncate(rows);
+        let further = table.rows_at(&stopping);
         Preview {
             columns: shown.columns.iter().map(|column| roles.column(column)).collect(),
-            rows: shown.rows.iter().map(|row| Row { line: row.line, cells: row.cells.clone() }).collect(),
+            rows: (shown.rows.into_iter().chain(further)).map(|row| Row { line: row.line, cells: row.cells }).collect(),
             total_rows: shown.total_rows,
-            format: format(delimiter, reading.layout),
+            format: format(table.sheet().delimiter(), reading.layout),
+            layout: layout_word(reading.layout),
+            refusal,
             problems: reading.problems.iter().map(problem).collect(),
             questions: reading.questions.iter().map(asked).collect(),
             notes: reading.notes.clone(),
@@ -107,6 +127,7 @@ impl<'a> RolesByColumn<'a> {
             reason: reason.unwrap_or_default(),
             unit: column.unit.clone(),
             missing: column.missing,
+            measured: self.reading.measured.contains(&column.name),
         }
     }
 }
@@ -136,12 +157,26 @@ fn format(delimiter: char, layout: table::Layout) -> String {
     format!("Columns separated by {delimiter}; {layout}.")
 }
 
+fn layout_word(layout: table::Layout) -> &'static str {
+    match layout {
+        table::Layout::Long => "long",
+        table::Layout::WideByTime => "wide-by-time",
+        table::Layout::WideBySubject => "wide-by-subject",
+    }
+}
+
+fn stops(problem: &table::Problem) -> bool {
+    matches!(problem.kind, ProblemKind::StopsReading | ProblemKind::SharedId)
+}
+
 fn problem(problem: &table::Problem) -> Problem {
     Problem {
         row: problem.row,
         column: problem.column.clone(),
         value: problem.value.clone(),
         message: problem.message.clone(),
+        kept: !problem.kind.leaves_out(),
+        stops: stops(problem),
     }
 }
 
@@ -150,15 +185,34 @@ fn asked(question: &Question) -> Asked {
         Topic::Column(role) => role.word().to_string(),
         Topic::Ids => "ids".to_string(),
     };
-    let answers = question.choices.iter().map(|choice| match question.topic {
+    let answers = question.choices.iter().enumerate().map(|(at, choice)| match question.topic {
         Topic::Column(role) => Answer {
             label: choice.clone(),
             detail: format!("Take this column as {role}."),
             columns: BTreeMap::from([(role.word(), choice.clone())]),
+            reading: BTreeMap::new(),
         },
-        Topic::Ids => Answer { label: choice.clone(), detail: String::new(), columns: BTreeMap::new() },
+        Topic::Ids => shared_ids(choice, at),
     });
-    Asked { id, text: question.text.clone(), answers: answers.collect(), needs_answer: question.needs_answer }
+    // Somebody is there to answer: nothing is assumed.
+    let needs_answer = question.needs_answer || question.topic == Topic::Ids;
+    Asked { id, text: question.text.clone(), answers: answers.collect(), needs_answer }
+}
+
+/// The answer number `at` to what ids under several groups mean.
+fn shared_ids(choice: &str, at: usize) -> Answer {
+    let (word, detail) = match at {
+        0 => ("different", "Each is followed in its own group. The analysis goes on."),
+        1 => ("same", "A crossover: it cannot be analysed here, and nothing is computed."),
+        _ => ("mistake", "The rows in question are listed, to be corrected or left out."),
+    };
+    let label = choice.split_once(':').map_or(choice, |(label, _)| label).to_string();
+    Answer {
+        label,
+        detail: detail.to_string(),
+        columns: BTreeMap::new(),
+        reading: BTreeMap::from([("shared_ids", word)]),
+    }
 }
 
 #[cfg(test)]
@@ -170,7 +224,7 @@ mod tests {
         let text = "mouse,group,day,area\n1,a,0,5\n1,a,3,4\n1,b,0,6\n1,b,3,5\n2,a,0,5\n2,a,3,4\n2,b,0,5\n2,b,3,5\n";
         let table = Table::read(text.as_bytes()).expect("a table");
         let reading = table.observe(&Request::default()).expect("usable");
-        let preview = super::Preview::new(&table.preview(3), table.sheet().delimiter(), &reading);
+        let preview = super::Preview::new(&table, 3, &reading, None);
         let roles: Vec<_> = preview.columns.iter().map(|c| c.role).collect();
         assert_eq!(roles, [Some("subject"), Some("group"), Some("time"), Some("response")]);
         assert_eq!(preview.rows.len(), 3);
@@ -178,6 +232,25 @@ mod tests {
         assert!(preview.format.contains("commas"), "{}", preview.format);
         let question = preview.questions.first().expect("ids restart");
         assert_eq!(question.id, "ids");
-        assert!(!question.needs_answer && question.answers.len() >= 2);
+        assert!(question.needs_answer, "somebody is there to answer");
+        let words: Vec<_> = question.answers.iter().filter_map(|answer| answer.reading.get("shared_ids")).collect();
+        assert_eq!(words, [&"different", &"same", &"mistake"]);
+    }
+
+    #[test]
+    fn a_cell_that_stops_the_reading_is_shown_wherever_it_stands() {
+        let mut text = "mouse,group,day,area\n".to_string();
+        for mouse in 0..9 {
+            (0..3).for_each(|day| text.push_str(&format!("m{mouse},{},{day},5\n", mouse % 2)));
+        }
+        let text = text.replace("m8,0,1,5", "m8,0,soon,5").replace("m7,1,2,5", ",1,2,5");
+        let table = Table::read(text.as_bytes()).expect("a table");
+        let refusal = table.observe(&Request::default()).expect_err("unusable").to_string();
+        let preview = super::Preview::new(&table, 5, &table.outline(&Request::default()), Some(refusal));
+        let stops: Vec<_> =
+            preview.problems.iter().filter(|one| one.stops).map(|one| (one.row, &*one.column)).collect();
+        assert_eq!(stops, [(25, "mouse"), (27, "day")]);
+        assert_eq!(preview.rows.iter().map(|row| row.line).collect::<Vec<_>>(), [2, 3, 4, 5, 6, 25, 27]);
+        assert_eq!(preview.columns[2].role, Some("time"));
     }
 }
