@@ -239,7 +239,8 @@ impl fmt::Display for TableError {
             TableError::Needed { role } => write!(f, "A {role} column is needed and cannot be absent. Name the {role} column."),
             TableError::Exclusion { row, why } => write!(f, "Row {row} cannot be excluded: {why}. Check the row number."),
             TableError::Cell { row, column, value, message } => {
-                write!(f, "Column {}, row {row}: {} {message}", quoted(column), quoted(value))
+                let value = if value.trim().is_empty() { "the empty cell".to_string() } else { quoted(value) };
+                write!(f, "Column {}, row {row}: {value} {message}", quoted(column))
             }
             TableError::DateOrder { column, row, value } => write!(
                 f,

@@ -1,0 +1,53 @@
+/** The Data room: what it asks, and what it shows where a table cannot be used yet. */
+
+import assert from 'node:assert/strict';
+import { after, before, test } from 'node:test';
+import { enter, findingsOf, launch, openPage, paste, rested, stateOf } from './harness.mjs';
+
+let browser;
+before(async () => { browser = await launch(); });
+after(async () => { await browser?.close(); });
+
+const value = (s, t) => (50 - t * (s % 2 ? 3 : 1) + Math.sin(s * 5 + t) * 0.8).toFixed(2);
+const DAYS = [0, 2, 4, 7, 10];
+const rows = (count, id) => Array.from({ length: count }, (_, s) => DAYS.map((t) => [id(s), s % 2 ? 'Foam' : 'Gauze', t, value(s, t)])).flat();
+const table = (lines) => [['mouse', 'dressing', 'day', 'area'], ...lines].map((line) => line.join(',')).join('\n');
+
+test('a time that cannot be read: the table stays in view, the cell is marked, and leaving it out goes on', async () => {
+  const page = await openPage(browser);
+  const lines = rows(10, (s) => `m${s}`);
+  lines[43][2] = 'soon';
+  await paste(page, table(lines));
+  await enter(page, 'data');
+  assert.equal(await stateOf(page), 'problem');
+  assert.equal(await page.locator('.preview td.is-stopping').innerText(), 'soon');
+  await page.getByRole('button', { name: 'Leave line 45 out' }).first().click();
+  await page.locator('.ask:not([hidden]) input').fill('no day written');
+  await page.keyboard.press('Enter');
+  await rested(page);
+  assert.match(await stateOf(page), /ready|boundary/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('ids under every group: one question, and each answer has its consequence', async () => {
+  const page = await openPage(browser);
+  await paste(page, table(rows(12, (s) => Math.floor(s / 2) + 1)));
+  assert.equal(await stateOf(page), 'question');
+  assert.doesNotMatch(await findingsOf(page), /below|above/);
+  await enter(page, 'data');
+  await page.getByRole('button', { name: /The same subjects/ }).click();
+  await rested(page);
+  assert.equal(await stateOf(page), 'question');
+  assert.match(await page.locator('[data-region="question"]:visible').innerText(), /crossover cannot be analysed/);
+  await page.getByRole('button', { name: /A typing error/ }).click();
+  await rested(page);
+  assert.match(await page.locator('[data-region="problems"]').innerText(), /under another group too/);
+  await page.getByRole('button', { name: /Different subjects/ }).click();
+  await rested(page);
+  assert.match(await stateOf(page), /ready|boundary/);
+  await enter(page, 'courses');
+  assert.match(await findingsOf(page), /below|above/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
