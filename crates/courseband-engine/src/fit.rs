@@ -177,7 +177,7 @@ fn sample(data: &Data) -> Option<Data> {
     let subjects: Vec<_> = (data.subjects.iter())
         .filter(|s| {
             met[s.group] += 1;
-            (met[s.group] - 1) % every == 0
+            (met[s.group] - 1usize).is_multiple_of(every)
         })
         .cloned()
         .collect();
@@ -374,10 +374,10 @@ fn snap(criterion: &mut Criterion, bounds: &Bounds, layout: &Layout, mut point: 
             }
             let mut theta = point.theta.clone();
             theta[k] = target;
-            if let Some((value, gradient)) = criterion.at(&theta) {
-                if value <= point.value + 1e-7 {
-                    point = Point { theta, value, gradient };
-                }
+            if let Some((value, gradient)) = criterion.at(&theta)
+                && value <= point.value + 1e-7
+            {
+                point = Point { theta, value, gradient };
             }
         }
     }

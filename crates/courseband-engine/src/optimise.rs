@@ -176,7 +176,7 @@ pub(crate) fn hessian(objective: &mut dyn Objective, theta: &[f64], free: &[usiz
     let n = free.len();
     let mut result = DMatrix::zeros(n, n);
     for (column, &k) in free.iter().enumerate() {
-        let h = 1e-4 * theta[k].abs().max(1.0).min(4.0);
+        let h = 1e-4 * theta[k].abs().clamp(1.0, 4.0);
         let mut moved = theta.to_vec();
         moved[k] = theta[k] + h;
         let (_, up) = objective.at(&moved)?;

@@ -108,13 +108,11 @@ impl Plan {
         if self.curves.basis != Basis::Cubic {
             return missing("A curves.basis other than cubic", "\"cubic\"");
         }
-        if self.subjects == SubjectEffects::Curve {
-            if self.errors.serial == Serial::Ar1 && !self.errors.nugget {
-                return Err(Refusal::plan(
-                    "subjects is curve and errors.serial is ar1 without measurement error: the two cannot be told apart. \
-                     Set subjects to \"slope\", or errors.serial to \"none\".",
-                ));
-            }
+        if self.subjects == SubjectEffects::Curve && self.errors.serial == Serial::Ar1 && !self.errors.nugget {
+            return Err(Refusal::plan(
+                "subjects is curve and errors.serial is ar1 without measurement error: the two cannot be told apart. \
+                 Set subjects to \"slope\", or errors.serial to \"none\".",
+            ));
         }
         match self.errors.serial {
             Serial::Unstructured if self.subjects != SubjectEffects::None => {

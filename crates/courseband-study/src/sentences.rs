@@ -115,8 +115,8 @@ impl Speaker<'_> {
         let d = self.difference;
         let own = d.stretches.iter().filter(|s| s.direction == Some(side));
         let longest = own.max_by(|a, b| (a.end - a.start).total_cmp(&(b.end - b.start)))?;
-        let visits = d.at_visits.time.iter().copied().filter(|&t| t >= longest.start && t <= longest.end);
-        Some(visits.last().unwrap_or(0.5 * (longest.start + longest.end)))
+        let mut visits = d.at_visits.time.iter().copied().filter(|&t| t >= longest.start && t <= longest.end);
+        Some(visits.next_back().unwrap_or(0.5 * (longest.start + longest.end)))
     }
 
     /// Value and interval at a time.

@@ -12,9 +12,10 @@ use crate::{run, tidy, wasm};
 /// A named step; it gives the number of tests that it ran.
 type Step = (&'static str, fn(&Places) -> Outcome<usize>);
 
-const STEPS: [Step; 7] = [
+const STEPS: [Step; 8] = [
     ("tidy", |places| tidy::check(places).map(|()| 1)),
     ("format", format),
+    ("lint", lint),
     ("rust", rust),
     ("page", page),
     ("types", browser::types),
@@ -56,6 +57,18 @@ pub(crate) fn test(places: &Places, only: &[String], quick: bool) -> Outcome<()>
 
 fn format(places: &Places) -> Outcome<usize> {
     run::show(run::command("cargo").args(["fmt", "--all", "--check"]).current_dir(places.root())).map(|()| 1)
+}
+
+/// Lints of what is shipped; tests may use the platform's own functions. A toolchain without the linter is told so.
+fn lint(places: &Places) -> Outcome<usize> {
+    let present = run::command("cargo").args(["clippy", "--version"]).output().is_ok_and(|out| out.status.success());
+    if !present {
+        println!("the toolchain has no clippy: nothing is linted");
+        return Ok(0);
+    }
+    let mut command = run::command("cargo");
+    command.args(["clippy", "--workspace", "--lib", "--bins", "--locked", "--quiet", "--", "-D", "warnings"]);
+    run::show(command.current_dir(places.root())).map(|()| 1)
 }
 
 fn rust(places: &Places) -> Outcome<usize> {

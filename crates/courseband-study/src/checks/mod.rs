@@ -186,9 +186,8 @@ impl Subject<'_> {
                 format!("No single {word} moves a gap by more than one standard error.")
             },
             advice: if lit {
-                format!(
-                    "Look at its rows in Data. Leave it out only for a reason that does not come from its values, and report both."
-                )
+                "Look at its rows in Data. Leave it out only for a reason that does not come from its values, and report both."
+                    .to_string()
             } else {
                 String::new()
             },

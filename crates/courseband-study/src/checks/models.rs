@@ -9,7 +9,7 @@ use courseband_engine::{Fit, Residual, fit};
 impl Subject<'_> {
     /// A richer model's fit and the rise of the log restricted likelihood.
     fn richer(&self, trial: &Plan) -> Option<(Fit, f64)> {
-        let other = fit(&self.cohort.data, &self.cohort.model(&trial)).ok()?;
+        let other = fit(&self.cohort.data, &self.cohort.model(trial)).ok()?;
         let rise = other.log_reml() - self.fit.log_reml();
         Some((other, rise.max(0.0)))
     }

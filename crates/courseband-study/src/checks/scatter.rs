@@ -72,8 +72,8 @@ impl Subject<'_> {
             return (1.0, 1.0);
         }
         let mean = residuals.iter().map(|r| r.independent).sum::<f64>() / n;
-        let moment = |k: i32| residuals.iter().map(|r| (r.independent - mean).powi(k)).sum::<f64>() / n;
-        let skew = moment(3) / moment(2).powf_by_three_halves();
+        let moment = |k: f64| residuals.iter().map(|r| libm::pow(r.independent - mean, k)).sum::<f64>() / n;
+        let skew = moment(3.0) / moment(2.0).powf_by_three_halves();
         // Standard error of the skewness of normal samples (Fisher 1930).
         let se = libm::sqrt(6.0 * (n - 2.0) / ((n + 1.0) * (n + 3.0)));
         let lean = 2.0 * normal_sf((skew / se).abs());

@@ -155,8 +155,8 @@ impl SizeRequest {
         if !(s.on_a_day > 0.0 && s.on_a_day.is_finite()) {
             return refuse("The standard deviation on one day must be above zero.".into());
         }
-        if !(0.0..1.0).contains(&s.alike) || !(0.0..1.0).contains(&s.serial) || !(s.trend >= 0.0 && s.trend.is_finite())
-        {
+        let shares = (0.0..1.0).contains(&s.alike) && (0.0..1.0).contains(&s.serial);
+        if !(shares && s.trend >= 0.0 && s.trend.is_finite()) {
             return refuse(
                 "Correlations are from 0 to below 1, and the trend's standard deviation is 0 or more.".into(),
             );
@@ -164,7 +164,8 @@ impl SizeRequest {
         if self.designs.is_empty() || self.designs.iter().flatten().any(|&n| !(2..=2000).contains(&n)) {
             return refuse("Give designs with 2 to 2000 per group.".into());
         }
-        if !(0.0..0.9).contains(&self.losses) || !(self.target > 0.0 && self.target < 1.0) || !self.effect.is_finite() {
+        let shares = (0.0..0.9).contains(&self.losses) && self.target > 0.0 && self.target < 1.0;
+        if !(shares && self.effect.is_finite()) {
             return refuse("Losses are from 0 to below 0.9, the wanted power is between 0 and 1.".into());
         }
         if !(self.goal.level >= 0.5 && self.goal.level < 1.0) {
