@@ -2,8 +2,8 @@
 //!
 //! All times here are internal: 0 at the table's first time, 1 at its last.
 
-use crate::model::{Data, Model, Shape};
-use crate::spline::{NaturalSpline, distinct_sorted, place_knots};
+use crate::model::{Basis, Data, Dimension, Model, Shape};
+use crate::spline::{NaturalSpline, Smooth, distinct_sorted, place_knots};
 
 /// Columns of one group's mean. The unpenalised ones come first.
 #[derive(Debug, Clone)]
@@ -12,8 +12,8 @@ pub(crate) enum GroupBasis {
     Constant,
     /// Level and trend.
     Line,
-    /// Level, trend and a penalised spline.
-    Spline(NaturalSpline),
+    /// Level, trend (not where it is cyclic) and penalised columns.
+    Spline(Smooth),
     /// One column per distinct time.
     ByTime(Vec<f64>),
     /// One of the others without its value at internal time 0, which all groups share.
@@ -30,6 +30,7 @@ impl GroupBasis {
     pub(crate) fn unpenalised(&self) -> usize {
         match self {
             GroupBasis::Constant => 1,
+            GroupBasis::Spline(smooth) if smooth.is_cyclic() => 1,
             GroupBasis::Line | GroupBasis::Spline(_) => 2,
             GroupBasis::ByTime(times) => times.len(),
             GroupBasis::FromStart(whole) => whole.unpenalised() - 1,
@@ -48,7 +49,8 @@ impl GroupBasis {
     /// True where one column is time itself, so that the criterion depends on the unit of time.
     pub(crate) fn has_trend(&self) -> bool {
         match self {
-            GroupBasis::Line | GroupBasis::Spline(_) => true,
+            GroupBasis::Spline(smooth) => !smooth.is_cyclic(),
+            GroupBasis::Line => true,
             GroupBasis::FromStart(whole) => whole.has_trend(),
             _ => false,
         }
@@ -72,9 +74,11 @@ impl GroupBasis {
             GroupBasis::Constant => out[0] = level,
             GroupBasis::Line | GroupBasis::Spline(_) => {
                 out[0] = level;
-                out[1] = if derivative { 1.0 } else { t };
-                if let GroupBasis::Spline(spline) = self {
-                    spline.fill(t, derivative, &mut out[2..]);
+                if self.has_trend() {
+                    out[1] = if derivative { 1.0 } else { t };
+                }
+                if let GroupBasis::Spline(smooth) = self {
+                    smooth.fill(t, derivative, &mut out[self.unpenalised()..]);
                 }
             }
             GroupBasis::ByTime(times) => fill_joined(times, t, derivative, out),
@@ -164,14 +168,35 @@ pub(crate) fn with_start(data: &Data, bases: &[GroupBasis], units: &Units) -> Da
     data
 }
 
+/// The penalised columns over the pooled distinct times; `None` where a line is all there can be.
+fn smooth(basis: Basis, dimension: Dimension, pooled: &[f64], units: &Units) -> Option<Smooth> {
+    let knots = place_knots(pooled, dimension);
+    let count = knots.len();
+    let made = match basis {
+        Basis::Cubic => Some(Smooth::Natural(NaturalSpline::new(knots))),
+        Basis::ThinPlate if pooled.len() > MOST_PLATES => {
+            Smooth::thin_plate(&place_knots(pooled, Dimension::Knots(MOST_PLATES)), count)
+        }
+        Basis::ThinPlate => Smooth::thin_plate(pooled, count),
+        // Two more than knots: as many columns as an interpolating spline through the knots.
+        Basis::Pieces => Smooth::pieces(pooled, count + 2),
+        Basis::Process { range, roughness } => Smooth::process(knots, range / units.time_span, roughness),
+        Basis::Cyclic { period } => Smooth::cyclic(period / units.time_span, count.min(MOST_AROUND)),
+    };
+    made.filter(|smooth| smooth.len() > 0)
+}
+
+/// Most distinct times that a thin plate spline is made over.
+const MOST_PLATES: usize = 200;
+/// Most values around a circle.
+const MOST_AROUND: usize = 24;
+
 /// One basis per group.
 pub(crate) fn group_bases(data: &Data, model: &Model, units: &Units) -> Vec<GroupBasis> {
     let inner = |t: f64| units.inner_time(t);
     let pooled = distinct_sorted(data.subjects.iter().flat_map(|s| s.times.iter().map(|&t| inner(t))));
     let spline = match model.shape {
-        Shape::Smooth(dimension) if pooled.len() > 2 => {
-            Some(NaturalSpline::new(place_knots(&pooled, dimension))).filter(|s| s.len() > 0)
-        }
+        Shape::Smooth(basis, dimension) if pooled.len() > 2 => smooth(basis, dimension, &pooled, units),
         _ => None,
     };
     (0..data.groups)
@@ -181,7 +206,7 @@ pub(crate) fn group_bases(data: &Data, model: &Model, units: &Units) -> Vec<Grou
             let whole = match (model.shape, times.len()) {
                 (Shape::ByTime, _) => GroupBasis::ByTime(times),
                 (_, 1) => GroupBasis::Constant,
-                (Shape::Smooth(_), _) => spline.clone().map_or(GroupBasis::Line, GroupBasis::Spline),
+                (Shape::Smooth(..), _) => spline.clone().map_or(GroupBasis::Line, GroupBasis::Spline),
                 (Shape::Straight, _) => GroupBasis::Line,
             };
             if model.common_start { GroupBasis::FromStart(Box::new(whole)) } else { whole }

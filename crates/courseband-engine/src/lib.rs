@@ -29,7 +29,10 @@ pub use band::{CriticalValues, Run, runs_above_zero};
 pub use calibrate::{Calibration, calibrated_quantile};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use influence::Influence;
-pub use model::{ClusterEffects, Data, Dimension, Model, Serial, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
+pub use model::{
+    Basis, ClusterEffects, Data, Dimension, Model, Serial, Shape, Shared, Sharing, SubjectEffects, SubjectRows,
+};
 pub use params::Parameter;
 pub use posterior::{Contrast, Estimate, Joint, Posterior};
 pub use residuals::Residual;
+pub use spline::Roughness;

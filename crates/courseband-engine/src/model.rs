@@ -1,5 +1,7 @@
 //! What can be asked of the engine: the data it takes and the model it fits.
 
+use crate::spline::Roughness;
+
 /// Rows of one subject, in ascending time. `times` and `responses` have one length.
 #[derive(Debug, Clone, PartialEq, Default)]
 pub struct SubjectRows {
@@ -61,14 +63,37 @@ impl Data {
 }
 
 /// Shape of a group's mean over time.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub enum Shape {
-    /// Natural cubic spline, penalised by its integrated squared second derivative.
-    Smooth(Dimension),
+    /// A penalised smooth course.
+    Smooth(Basis, Dimension),
     /// Straight line.
     Straight,
     /// One mean for each distinct time of the group; between them straight joins.
     ByTime,
+}
+
+/// What a smooth course is made of; `spline/smooth.rs` says how each is penalised.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub enum Basis {
+    /// Natural cubic regression spline.
+    Cubic,
+    /// Thin plate spline of order two, cut to its leading eigenvectors.
+    ThinPlate,
+    /// Cubic B-splines on equal steps with penalised second differences.
+    Pieces,
+    /// Gaussian process around a line, with Matern covariance; `range` in time units of the table.
+    Process {
+        /// Distance over which values stay alike.
+        range: f64,
+        /// Smoothness.
+        roughness: Roughness,
+    },
+    /// Cyclic cubic spline without a trend; `period` in time units of the table.
+    Cyclic {
+        /// Length of one round.
+        period: f64,
+    },
 }
 
 /// Number of knots of a spline.
@@ -152,7 +177,7 @@ pub enum Serial {
 }
 
 /// The model to fit.
-#[derive(Debug, Clone, Copy, PartialEq, Eq)]
+#[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Model {
     /// Shape of the groups' means.
     pub shape: Shape,
@@ -177,7 +202,7 @@ impl Default for Model {
     /// A smooth course per group, subjects that differ in level, independent errors of one spread.
     fn default() -> Self {
         Model {
-            shape: Shape::Smooth(Dimension::Auto),
+            shape: Shape::Smooth(Basis::Cubic, Dimension::Auto),
             common_start: false,
             smoothness: Sharing::ByGroup,
             subjects: SubjectEffects::Intercept,

@@ -70,6 +70,7 @@ impl Plan {
             ));
         }
         self.check_grid()?;
+        self.check_curves()?;
         self.check_reach()
     }
 
@@ -94,6 +95,24 @@ impl Plan {
         }
     }
 
+    fn check_curves(&self) -> Result<(), Refusal> {
+        let positive = |name: &str, value: Option<f64>| match value {
+            Some(x) if !(x > 0.0 && x.is_finite()) => Err(Refusal::plan(format!(
+                "curves.{name} is {x}. Give a time above zero, in the time unit of the table."
+            ))),
+            _ => Ok(()),
+        };
+        positive("period", self.curves.period)?;
+        positive("range", self.curves.range)?;
+        if self.curves.basis == Basis::Cyclic && self.curves.period.is_none() {
+            return Err(Refusal::plan(
+                "curves.basis is cyclic, which needs curves.period: the length of one round in the time unit of the table, \
+                 such as 24 for hours of a day.",
+            ));
+        }
+        Ok(())
+    }
+
     /// Refuses what this version does not compute, rather than computing something else.
     fn check_reach(&self) -> Result<(), Refusal> {
         let missing = |what: &str, instead: &str| {
@@ -104,9 +123,6 @@ impl Plan {
                 "A response.distribution other than normal",
                 "\"normal\", on the log scale where values are skewed",
             );
-        }
-        if self.curves.basis != Basis::Cubic {
-            return missing("A curves.basis other than cubic", "\"cubic\"");
         }
         if self.subjects == SubjectEffects::Curve && self.errors.serial == Serial::Ar1 && !self.errors.nugget {
             return Err(Refusal::plan(
@@ -180,16 +196,37 @@ impl Plan {
         }
     }
 
+    fn basis(&self, range: Option<f64>) -> engine::Basis {
+        let curves = &self.curves;
+        match curves.basis {
+            Basis::Cubic => engine::Basis::Cubic,
+            Basis::ThinPlate => engine::Basis::ThinPlate,
+            Basis::PSpline => engine::Basis::Pieces,
+            Basis::GaussianProcess => engine::Basis::Process {
+                range: curves.range.or(range).unwrap_or(1.0),
+                roughness: match curves.roughness {
+                    Roughness::ThreeHalves => engine::Roughness::ThreeHalves,
+                    Roughness::FiveHalves => engine::Roughness::FiveHalves,
+                },
+            },
+            Basis::Cyclic => engine::Basis::Cyclic { period: curves.period.unwrap_or(1.0) },
+        }
+    }
+
     /// The engine's model. Measurement error counts only beside serial correlation.
-    pub(crate) fn model(&self) -> engine::Model {
+    /// `range`: that of a Gaussian process, where it was estimated.
+    pub(crate) fn model(&self, range: Option<f64>) -> engine::Model {
         let sharing = |by_group: bool| if by_group { engine::Sharing::ByGroup } else { engine::Sharing::Common };
         engine::Model {
             shape: match self.curves.shape {
-                Shape::Smooth => engine::Shape::Smooth(match self.curves.dimension {
-                    Dimension::Auto => engine::Dimension::Auto,
-                    Dimension::Full => engine::Dimension::Full,
-                    Dimension::Knots(count) => engine::Dimension::Knots(count),
-                }),
+                Shape::Smooth => engine::Shape::Smooth(
+                    self.basis(range),
+                    match self.curves.dimension {
+                        Dimension::Auto => engine::Dimension::Auto,
+                        Dimension::Full => engine::Dimension::Full,
+                        Dimension::Knots(count) => engine::Dimension::Knots(count),
+                    },
+                ),
                 Shape::Straight => engine::Shape::Straight,
                 Shape::ByTime => engine::Shape::ByTime,
             },

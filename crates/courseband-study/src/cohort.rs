@@ -3,8 +3,9 @@
 use crate::adjust::{Adjustment, Started, adjust, started};
 use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
 use crate::housing::Housing;
-use crate::plan::{Pairs, Plan, Serial, Shape, Transform};
+use crate::plan::{Basis, Pairs, Plan, Serial, Shape, Transform};
 use crate::refusal::Refusal;
+use crate::sentences;
 use courseband_engine::{Data, SubjectRows};
 use courseband_table::{Observations, Reading};
 
@@ -27,6 +28,8 @@ pub(crate) struct Cohort {
     pub(crate) housing: Housing,
     /// One per shared column, without its effect.
     pub(crate) adjustments: Vec<Adjustment>,
+    /// Of a Gaussian process, where it was estimated.
+    range: Option<f64>,
     pub(crate) notes: Vec<Note>,
 }
 
@@ -55,12 +58,47 @@ impl Cohort {
         notes.extend(housing.notes.iter().cloned());
         refuse_many_means(plan, &data, &groups)?;
         let adjustments = adjustments.columns;
-        Ok(Cohort { data, subject_names, groups, supports, visits, control, housing, adjustments, notes })
+        let mut cohort =
+            Cohort { data, subject_names, groups, supports, visits, control, housing, adjustments, range: None, notes };
+        cohort.estimate_range(plan);
+        Ok(cohort)
     }
 
     /// The model to fit: the plan's, with the clusters that the table has.
     pub(crate) fn model(&self, plan: &Plan) -> courseband_engine::Model {
-        courseband_engine::Model { clusters: self.housing.effects, ..plan.model() }
+        courseband_engine::Model { clusters: self.housing.effects, ..plan.model(self.range) }
+    }
+
+    /// The range of a Gaussian process with the largest restricted likelihood, by fits over a grid of shares of the
+    /// follow-up and between the best and its neighbours.
+    fn estimate_range(&mut self, plan: &Plan) {
+        let wanted = plan.curves.basis == Basis::GaussianProcess && plan.curves.shape == Shape::Smooth;
+        let (Some(first), Some(last)) = (self.visits.first(), self.visits.last()) else { return };
+        if !wanted || plan.curves.range.is_some() {
+            return;
+        }
+        let span = last - first;
+        let mut at = |range: f64| {
+            self.range = Some(range);
+            courseband_engine::fit(&self.data, &self.model(plan)).map_or(f64::NEG_INFINITY, |fit| fit.log_reml())
+        };
+        let mut best = (f64::NEG_INFINITY, span / 3.0);
+        for share in [0.06, 0.1, 0.18, 0.32, 0.56, 1.0, 1.8] {
+            let value = at(share * span);
+            best = if value > best.0 { (value, share * span) } else { best };
+        }
+        for step in [1.33, 1.15, 1.07] {
+            for range in [best.1 / step, best.1 * step] {
+                let value = at(range);
+                best = if value > best.0 { (value, range) } else { best };
+            }
+        }
+        self.range = Some(best.1);
+        let unit = sentences::number(best.1, sentences::decimals(best.1 / 10.0));
+        let message = format!(
+            "Values of one course stay alike over about {unit} time units: that range is estimated, and taken as known."
+        );
+        self.notes.push(Note { about: "curves".into(), message });
     }
 
     /// Pairs that are compared, as group indices `(from, to)`.

@@ -308,8 +308,20 @@ pub enum Detection {
     AsWritten,
 }
 
+/// Order of a Matern covariance.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default, Serialize, Deserialize)]
+pub enum Roughness {
+    /// 3/2: once differentiable.
+    #[serde(rename = "3/2")]
+    ThreeHalves,
+    /// 5/2: twice differentiable.
+    #[default]
+    #[serde(rename = "5/2")]
+    FiveHalves,
+}
+
 /// Shape of the groups' curves.
-#[derive(Debug, Clone, PartialEq, Eq, Default, Serialize, Deserialize)]
+#[derive(Debug, Clone, PartialEq, Default, Serialize, Deserialize)]
 #[serde(default, deny_unknown_fields)]
 pub struct Curves {
     /// Curved, straight, or one mean per time.
@@ -318,6 +330,12 @@ pub struct Curves {
     pub basis: Basis,
     /// Number of knots.
     pub dimension: Dimension,
+    /// Length of one round of a cyclic course, in time units.
+    pub period: Option<f64>,
+    /// Distance over which a Gaussian process stays alike, in time units; `null` estimates it.
+    pub range: Option<f64>,
+    /// Smoothness of a Gaussian process: order of its Matern covariance.
+    pub roughness: Roughness,
     /// One smoothing parameter per group, or one for all.
     pub smoothness: Smoothness,
 }

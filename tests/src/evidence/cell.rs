@@ -87,7 +87,7 @@ impl Cell {
     #[must_use]
     pub fn model(&self) -> Model {
         Model {
-            shape: Shape::Smooth(Dimension::Auto),
+            shape: Shape::Smooth(Basis::Cubic, Dimension::Auto),
             smoothness: Sharing::ByGroup,
             subjects: if self.slope { SubjectEffects::Slope } else { SubjectEffects::Intercept },
             serial: if self.serial { Serial::Ar1 } else { Serial::None },

@@ -2,8 +2,9 @@
 
 use super::*;
 use crate::basis::GroupBasis;
-use crate::model::{ClusterEffects, Dimension, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
+use crate::model::{Basis, ClusterEffects, Dimension, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
 use crate::special::Rng;
+use crate::spline::Roughness;
 
 fn made_up(groups: usize, per_group: usize, visits: usize, seed: u64) -> Data {
     let mut rng = Rng::new(seed);
@@ -30,7 +31,7 @@ fn made_up(groups: usize, per_group: usize, visits: usize, seed: u64) -> Data {
 
 fn model(subjects: SubjectEffects, serial: Serial) -> Model {
     Model {
-        shape: Shape::Smooth(Dimension::Auto),
+        shape: Shape::Smooth(Basis::Cubic, Dimension::Auto),
         common_start: false,
         smoothness: Sharing::ByGroup,
         subjects,
@@ -289,9 +290,37 @@ fn a_shared_column_that_tells_groups_apart_is_refused() {
 }
 
 #[test]
+fn every_basis_is_fitted_and_the_full_thin_plate_is_the_cubic_one() {
+    let data = made_up(2, 8, 9, 17);
+    let with = |basis, dimension| {
+        let asked = Model { shape: Shape::Smooth(basis, dimension), ..model(SubjectEffects::Intercept, Serial::None) };
+        fit(&data, &asked).unwrap()
+    };
+    let cubic = with(Basis::Cubic, Dimension::Full);
+    let plate = with(Basis::ThinPlate, Dimension::Full);
+    assert!((cubic.log_reml() - plate.log_reml()).abs() < 1e-6);
+    let process = |range, roughness| Basis::Process { range, roughness };
+    for basis in [
+        Basis::ThinPlate,
+        Basis::Pieces,
+        process(4.0, Roughness::ThreeHalves),
+        process(4.0, Roughness::FiveHalves),
+        Basis::Cyclic { period: 12.0 },
+    ] {
+        let fit = with(basis, Dimension::Auto);
+        let (posterior, reference) = (fit.corrected(), cubic.corrected());
+        for t in [0.5, 2.5, 5.0, 7.5] {
+            let (got, want) = (posterior.estimate(&fit.gap(0, 1, t)), reference.estimate(&cubic.gap(0, 1, t)));
+            assert!((got.mean - want.mean).abs() < 1.5 * want.se, "{basis:?} at {t}: {got:?} {want:?}");
+        }
+        assert!(fit.effective_df(0) > 2.0, "{basis:?}");
+    }
+}
+
+#[test]
 fn a_common_start_is_one_mean_at_the_first_time() {
     let data = made_up(3, 6, 7, 16);
-    for shape in [Shape::Smooth(Dimension::Auto), Shape::Straight, Shape::ByTime] {
+    for shape in [Shape::Smooth(Basis::Cubic, Dimension::Auto), Shape::Straight, Shape::ByTime] {
         let asked = Model { shape, common_start: true, ..model(SubjectEffects::Intercept, Serial::None) };
         let fit = fit(&data, &asked).unwrap();
         let posterior = fit.corrected();

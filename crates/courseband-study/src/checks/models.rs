@@ -62,7 +62,7 @@ impl Subject<'_> {
         let mut trial = self.plan.clone();
         trial.errors.spread = plan::Spread::ByGroup;
         let mut parameters = (groups - 1) as f64;
-        let effects = self.plan.model().subjects.count() as f64;
+        let effects = self.cohort.model(self.plan).subjects.count() as f64;
         if self.plan.subjects_spread == plan::Sharing::Common && effects > 0.0 {
             trial.subjects_spread = plan::Sharing::ByGroup;
             parameters += (groups - 1) as f64 * effects * (effects + 1.0) / 2.0;

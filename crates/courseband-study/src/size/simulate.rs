@@ -3,7 +3,8 @@
 use super::request::{GoalKind, SizeRequest};
 use courseband_engine::special::Rng;
 use courseband_engine::{
-    Contrast, CriticalValues, Data, Dimension, Estimate, Fit, Model, Serial, Shape, SubjectEffects, SubjectRows, fit,
+    Basis, Contrast, CriticalValues, Data, Dimension, Estimate, Fit, Model, Serial, Shape, SubjectEffects, SubjectRows,
+    fit,
 };
 use serde::{Deserialize, Serialize};
 
@@ -58,7 +59,7 @@ impl SizeRequest {
     /// The model that is fitted: that of the simulation, with smooth courses.
     pub(crate) fn model(&self) -> Model {
         Model {
-            shape: if self.days.len() < 4 { Shape::ByTime } else { Shape::Smooth(Dimension::Auto) },
+            shape: if self.days.len() < 4 { Shape::ByTime } else { Shape::Smooth(Basis::Cubic, Dimension::Auto) },
             subjects: match (self.spread.alike > 0.0, self.spread.trend > 0.0) {
                 (_, true) => SubjectEffects::Slope,
                 (true, false) => SubjectEffects::Intercept,

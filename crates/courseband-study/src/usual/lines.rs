@@ -34,7 +34,7 @@ impl Bend {
         let (curved, effective_df) = if smooth_plan && by_plan.status != FitStatus::Failed {
             (by_plan.log_reml?, by_plan.effective_df.0.clone())
         } else {
-            let shape = engine::Shape::Smooth(engine::Dimension::Auto);
+            let shape = engine::Shape::Smooth(engine::Basis::Cubic, engine::Dimension::Auto);
             let fitted =
                 fit(&context.cohort.data, &engine::Model { shape, ..context.cohort.model(context.plan) }).ok()?;
             let groups = context.cohort.groups.iter().enumerate();
