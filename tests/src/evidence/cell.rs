@@ -1,7 +1,7 @@
 //! The grid of cells.
 
 use courseband_engine::special::Rng;
-use courseband_engine::{Data, Dimension, Model, Serial, Shape, Sharing, SubjectEffects, SubjectRows};
+use courseband_engine::{Basis, Data, Dimension, Model, Serial, Shape, Sharing, SubjectEffects, SubjectRows};
 
 /// Length of the follow-up, in days.
 const FOLLOW_UP: f64 = 20.0;
