@@ -85,6 +85,7 @@ function valueAt(row, key, time) {
  * @property {number|null} lower
  * @property {number|null} upper
  * @property {GapState} state
+ * @property {string[]} followed Which of the two groups had visits until this time or later.
  */
 
 /**
@@ -103,26 +104,39 @@ function valueAt(row, key, time) {
  * @returns {Reading}
  */
 export function readingAt(findings, time) {
-  const groups = findings.curves.map((curve, index) => ({
-    group: curve.group,
-    index,
-    value: valueAt(curve, 'response_mean', time),
-    lower: valueAt(curve, 'response_lower', time),
-    upper: valueAt(curve, 'response_upper', time),
-    followed: followedAt(findings, index, time),
-  }));
+  const groups = findings.curves.map((curve, index) => {
+    const seen = isWithin(curve.support, time);
+    return {
+      group: curve.group,
+      index,
+      value: seen ? valueAt(curve, 'response_mean', time) : null,
+      lower: seen ? valueAt(curve, 'response_lower', time) : null,
+      upper: seen ? valueAt(curve, 'response_upper', time) : null,
+      followed: followedAt(findings, index, time),
+    };
+  });
   groups.sort((a, b) => (b.value ?? -Infinity) - (a.value ?? -Infinity) || a.index - b.index);
-  const gaps = findings.differences.map((difference, pair) => ({
-    pair,
-    from: difference.from,
-    to: difference.to,
-    value: valueAt(difference, 'response_estimate', time),
-    lower: valueAt(difference, 'response_lower', time),
-    upper: valueAt(difference, 'response_upper', time),
-    state: gapState(difference, time),
-  }));
+  const gaps = findings.differences.map((difference, pair) => {
+    const seen = isWithin(difference.support, time);
+    return {
+      pair,
+      from: difference.from,
+      to: difference.to,
+      value: seen ? valueAt(difference, 'response_estimate', time) : null,
+      lower: seen ? valueAt(difference, 'response_lower', time) : null,
+      upper: seen ? valueAt(difference, 'response_upper', time) : null,
+      state: gapState(difference, time),
+      followed: findings.curves.filter(({ group, support }) =>
+        (group === difference.from || group === difference.to) && isWithin(support, time)).map(({ group }) => group),
+    };
+  });
   gaps.sort((a, b) => (b.value ?? -Infinity) - (a.value ?? -Infinity) || a.pair - b.pair);
   return { time, visit: findings.visits.includes(time), groups, gaps };
+}
+
+/** @param {[number, number]|null} support @param {number} time */
+function isWithin(support, time) {
+  return support !== null && support[0] <= time && time <= support[1];
 }
 
 /**
@@ -142,8 +156,7 @@ export function followedAt(findings, group, time) {
  * @returns {GapState}
  */
 export function gapState(difference, time) {
-  const { support } = difference;
-  if (!support || time < support[0] || time > support[1]) return 'outside';
+  if (!isWithin(difference.support, time)) return 'outside';
   /** @param {import('./types.js').Stretch[]} stretches */
   const within = (stretches) => stretches.some(({ start, end }) => start <= time && time <= end);
   const hasMargin = difference.margin[0] !== difference.margin[1];

@@ -24,6 +24,16 @@ export function writtenGap(gap, ratio) {
 }
 
 /**
+ * Why there is no gap to read, in words.
+ * @param {GapReading} gap
+ */
+export function whyNone({ followed }) {
+  const [one, other] = followed;
+  if (one === undefined) return text.reading.neither;
+  return other === undefined ? text.reading.onlyOne(one) : text.reading.states.outside;
+}
+
+/**
  * The reading in one sentence.
  * @param {Reading} reading
  * @param {Findings} findings
@@ -36,7 +46,7 @@ export function spoken(reading, findings) {
   });
   const gaps = reading.gaps.slice(0, 3).map((gap) => {
     const { name, unit, numbers } = writtenGap(gap, ratio);
-    return numbers ? `${name} ${numbers.value}${unit}, ${text.reading.states[gap.state]}` : `${name} ${text.reading.none}`;
+    return numbers ? `${name} ${numbers.value}${unit}, ${text.reading.states[gap.state]}` : `${name} ${whyNone(gap)}`;
   });
   return `${text.strips.at(plainTime(reading.time, span(findings)), word)}. ${[...groups, ...gaps].join('; ')}.`;
 }

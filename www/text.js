@@ -91,7 +91,9 @@ export const text = {
     followed: 'Followed',
     pairs: 'Gap',
     state: 'Lane',
-    none: 'not observed by both',
+    none: 'not followed here',
+    onlyOne: (/** @type {string} */ group) => `only ${group} followed`,
+    neither: 'neither followed',
     /** @param {string} lower @param {string} upper */
     range: (lower, upper) => `${lower} to ${upper}`,
     /** @param {string} to @param {string} from */

@@ -1,7 +1,7 @@
 import assert from 'node:assert/strict';
 import test from 'node:test';
 import { firstStop, followedAt, gapState, nearest, readingAt, step, stops } from '../../www/reading.js';
-import { placeAmongVisits, spoken } from '../../www/spoken.js';
+import { placeAmongVisits, spoken, whyNone } from '../../www/spoken.js';
 import { findings } from './fixture.mjs';
 
 test('the cursor stands on grid points and visits', () => {
@@ -67,4 +67,15 @@ test('the reading is spoken whole', () => {
   assert.match(words, /^day 10\. B 21\.0, 19\.0 to 23\.0; A 12\.0/);
   assert.match(words, /B \u2212 A 9\.0, beyond/);
   assert.equal(placeAmongVisits(readingAt(findings(), 5), findings()), 'between the visits at 3 and 10');
+});
+
+test('where a group is no longer followed there is nothing to read, and the other is named', () => {
+  const ended = findings();
+  ended.curves[0].support = [0, 5];
+  ended.differences[0].support = [0, 5];
+  const reading = readingAt(ended, 7.5);
+  assert.equal(reading.groups.find((row) => row.group === 'A').value, null);
+  assert.equal(reading.gaps[0].value, null);
+  assert.equal(whyNone(reading.gaps[0]), 'only B followed');
+  assert.equal(whyNone({ ...reading.gaps[0], followed: [] }), 'neither followed');
 });

@@ -7,7 +7,7 @@ import { span } from '../changes.js';
 import { el, reconcile, setText, show, svg, whenChanged } from '../dom.js';
 import { parseNumber, plainTime, withInterval } from '../numbers.js';
 import { readingAt, step } from '../reading.js';
-import { placeAmongVisits, writtenGap } from '../spoken.js';
+import { placeAmongVisits, whyNone, writtenGap } from '../spoken.js';
 import { text } from '../text.js';
 
 /** @typedef {import('../types.js').State} State */
@@ -38,7 +38,7 @@ export function mountReading(root, acts) {
     stepper.update(findings, cursor);
     reconcile(groups, reading.groups, (row) => `${row.index}:${row.group}`, (row) => mountRow(row.index, row.group), (node, row) => {
       const numbers = withInterval(row.value, row.lower, row.upper);
-      fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed));
+      fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed), words.none);
     });
     const many = reading.gaps.length > MANY_PAIRS;
     table.classList.toggle('many', many);
@@ -47,7 +47,7 @@ export function mountReading(root, acts) {
       (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
         const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
-        fillRow(node, many ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state]);
+        fillRow(node, many ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
         node.cells[0]?.setAttribute('aria-label', name);
         node.cells[0]?.setAttribute('title', name);
         node.dataset.lane = row.state;
@@ -105,13 +105,13 @@ function mountRow(index, name, extra = null) {
     el('th', { scope: 'row' }, extra, lineSample(index), letter, label), el('td', { class: 'number' }), el('td', { class: 'interval' }), el('td', { class: 'last' }));
 }
 
-/** @param {HTMLTableRowElement} row @param {string} name @param {string} value @param {{lower: string, upper: string}|null} numbers @param {string} last */
-function fillRow(row, name, value, numbers, last) {
+/** @param {HTMLTableRowElement} row @param {string} name @param {string} value @param {{lower: string, upper: string}|null} numbers @param {string} last @param {string} none */
+function fillRow(row, name, value, numbers, last, none) {
   const label = /** @type {HTMLElement} */ (row.querySelector('.row-name'));
   setText(label, name);
   const [, number, interval, end] = Array.from(row.cells);
   if (number) setText(number, value);
-  if (interval) setText(interval, numbers ? words.range(numbers.lower, numbers.upper) : words.none);
+  if (interval) setText(interval, numbers ? words.range(numbers.lower, numbers.upper) : none);
   if (end) setText(end, last);
 }
 

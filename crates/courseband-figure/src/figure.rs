@@ -273,6 +273,8 @@ pub struct EndLabel {
     pub lines: Vec<String>,
     /// Whose.
     pub tone: Tone,
+    /// Stands where the curve ends, also inside the plot; otherwise beside the plot, with a leader.
+    pub inside: bool,
 }
 
 /// What the data say about a gap, over all time.
@@ -310,6 +312,8 @@ pub enum LaneState {
     Inside,
     /// Neither shown nor ruled out: dotted.
     Undecided,
-    /// Not both groups were observed.
+    /// Only one of the groups was observed: nothing to compare.
+    OnlyOne,
+    /// Nothing to compare for another reason, such as that neither group was observed.
     NotCompared,
 }

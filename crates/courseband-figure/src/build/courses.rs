@@ -149,7 +149,7 @@ impl Builder<'_> {
             let last = points.last()?;
             let look = &self.looks[g];
             let lines = if narrow { vec![look.letter.clone()] } else { two_lines(&look.name) };
-            Some(EndLabel { time: last.0, value: last.1, lines, tone: Tone::Group(g) })
+            Some(EndLabel { time: last.0, value: last.1, lines, tone: Tone::Group(g), inside: false })
         };
         curves.iter().enumerate().filter_map(label).collect()
     }

@@ -16,7 +16,7 @@ impl Builder<'_> {
             let points = steps(&group.last_times, self.time.start);
             let last = points.last().copied().unwrap_or((self.time.start, 0.0));
             let label = vec![format!("{}", last.1)];
-            ends.push(EndLabel { time: last.0, value: last.1, lines: label, tone: Tone::Group(g) });
+            ends.push(EndLabel { time: last.0, value: last.1, lines: label, tone: Tone::Group(g), inside: true });
             marks.push(Mark::Steps { tone: Tone::Group(g), dash: self.looks[g].dash, points });
         }
         let ticks = [0, most].map(|v| Tick { value: v as f64, label: v.to_string() });

@@ -103,6 +103,28 @@ fn the_lane_covers_all_time_without_holes() {
 }
 
 #[test]
+fn where_one_group_has_ended_the_lane_names_the_other_and_its_count_stands_there() {
+    let figure = described(|source, _| {
+        source.differences[0].support = Some([0.0, 11.0]);
+        source.differences[0].stretches.clear();
+        source.differences[0].beyond.clear();
+        source.differences[0].inside.clear();
+        source.curves[1].support = [0.0, 11.0];
+        source.groups[1].last_times = vec![9.0, 9.0, 11.0, 11.0, 11.0, 11.0, 11.0, 11.0];
+    });
+    let lane = states(&figure, 0);
+    let last = lane.last().expect("a segment");
+    assert_eq!((last.0, last.1, last.2), (11.0, 21.0, LaneState::OnlyOne));
+    assert_eq!(last.3, "only Saline followed");
+    let followed = figure.strips.iter().find(|s| s.kind == StripKind::Followed).expect("followed");
+    let layout = crate::layout::lay_out(&figure, &crate::text::Estimate);
+    let placed = &layout.strips[layout.strips.len() - 1];
+    assert_eq!(followed.plot.as_ref().map(|plot| plot.ends[1].lines[0].clone()), Some("6".to_string()));
+    let count = placed.ends.iter().flat_map(|end| &end.lines).find(|text| text.text == "6").expect("a count");
+    assert!((count.x - layout.x.at(11.0)).abs() < 12.0, "{} {}", count.x, layout.x.at(11.0));
+}
+
+#[test]
 fn groups_that_never_meet_have_a_lane_that_says_so() {
     let figure = described(|source, _| source.differences[0].support = None);
     assert_eq!(states(&figure, 0).iter().map(|s| s.2).collect::<Vec<_>>(), [LaneState::NotCompared]);

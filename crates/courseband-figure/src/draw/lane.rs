@@ -1,5 +1,5 @@
-//! The lane: four states told apart by height, pattern and tint. Nothing
-//! upright at their ends, nothing on the axis.
+//! The lane: four states told apart by height, pattern and tint, and a thin line or
+//! slashes where there is nothing to compare. Nothing upright at their ends, nothing on the axis.
 
 use super::pen::{Outcome, Pen};
 use crate::figure::{Lane, LaneState};
@@ -29,6 +29,7 @@ pub(super) fn draw_lane<DB: DrawingBackend>(
                 pen.path(&[(left, bottom), (right, bottom)], colour, 1.0, 1.2)?;
             }
             LaneState::Undecided => pen.dotted(left + 2.0, right - 2.0, middle, 1.6, 5.0, colour)?,
+            LaneState::OnlyOne => pen.hair(left, right, middle, pen.palette.soft)?,
             LaneState::NotCompared => slashes(pen, bar(0.5 * tall))?,
         }
     }

@@ -76,6 +76,9 @@ fn draw_plot<DB: DrawingBackend>(
     let place = marks::Place { x: layout.x, rect, scale: plot.scale };
     plot.marks.iter().try_for_each(|mark| marks::draw_mark(pen, &place, mark))?;
     for end in &placed.ends {
+        if let Some(clear) = end.clear {
+            pen.fill(clear, pen.palette.paper, 0.85)?;
+        }
         let moved = (end.to.1 - end.from.1).abs() > 2.5 || end.to.0 - end.from.0 > 24.0;
         if moved {
             let turn = (rect.right + 2.0, end.from.1);

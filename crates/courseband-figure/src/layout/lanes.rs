@@ -20,8 +20,13 @@ const MOST_LINES: usize = 4;
 pub(super) fn place_lane(setter: &Setter<'_>, lane: &Lane, top: f64, name_end: Option<f64>) -> PlacedLane {
     let em = setter.em;
     let line = 1.3 * em;
+    // A sliver without a comparison needs no words.
+    let is_sliver = |s: &Segment| {
+        matches!(s.state, LaneState::OnlyOne | LaneState::NotCompared)
+            && setter.x.at(s.end) - setter.x.at(s.start) < 2.0 * em
+    };
     let chosen: Vec<&Segment> = match name_end {
-        None => lane.segments.iter().collect(),
+        None => lane.segments.iter().filter(|s| !is_sliver(s)).collect(),
         Some(_) => loudest(&lane.segments),
     };
     let widths: Vec<f64> = chosen.iter().map(|s| label_width(setter, s)).collect();
@@ -61,7 +66,7 @@ impl PlacedLane {
 }
 
 fn is_quiet(segment: &Segment) -> bool {
-    matches!(segment.state, LaneState::Undecided | LaneState::NotCompared)
+    matches!(segment.state, LaneState::Undecided | LaneState::OnlyOne | LaneState::NotCompared)
 }
 
 /// The stretches worth a label in a row: all that say something, else the longest undecided one.

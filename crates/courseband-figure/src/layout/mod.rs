@@ -5,7 +5,7 @@ mod flow;
 mod lanes;
 mod spread;
 
-use crate::figure::{Figure, Plot, Strip, StripKind, Tone};
+use crate::figure::{EndLabel, Figure, Plot, Strip, StripKind, Tone};
 use crate::scale::Scale;
 use crate::text::Measure;
 use flow::Flow;
@@ -134,6 +134,8 @@ pub struct End {
     pub tone: Tone,
     /// Its lines.
     pub lines: Vec<Text>,
+    /// Kept clear of curves behind a label inside the plot.
+    pub clear: Option<Rect>,
 }
 
 /// A triangle that points up or down.
@@ -309,13 +311,35 @@ impl<'a> Setter<'a> {
         }
     }
 
+    /// Labels beside the plot, spread apart, with leaders; and those inside it, where their curves end.
     fn ends(&self, plot: &Plot, rect: Rect) -> Vec<End> {
+        let is_inside = |end: &EndLabel| end.inside && self.x.at(end.time) + 1.5 * self.em < rect.right;
+        let (inside, beside): (Vec<&EndLabel>, Vec<&EndLabel>) = plot.ends.iter().partition(|end| is_inside(end));
+        let mut placed = self.placed_ends(&beside, plot, rect, rect.right + 0.95 * self.em);
+        let mut left = inside;
+        left.sort_by(|a, b| a.time.total_cmp(&b.time));
+        // Those that end close together are spread as one.
+        for near in left.chunk_by(|a, b| self.x.at(b.time) - self.x.at(a.time) < 2.0 * self.em) {
+            let x = self.x.at(near[near.len() - 1].time) + 0.6 * self.em;
+            for mut end in self.placed_ends(near, plot, rect, x) {
+                end.to = end.from;
+                let wide = end.lines.iter().map(|t| self.measure.width(&t.text, t.size, t.bold)).fold(0.0, f64::max);
+                let (top, bottom) = (end.lines[0].y, end.lines[end.lines.len() - 1].y);
+                let (left, half) = (x - 0.2 * self.em, 0.6 * self.em);
+                let right = x + wide + 0.2 * self.em;
+                end.clear = Some(Rect { left, right, top: top - half, bottom: bottom + half });
+                placed.push(end);
+            }
+        }
+        placed
+    }
+
+    fn placed_ends(&self, ends: &[&EndLabel], plot: &Plot, rect: Rect, x: f64) -> Vec<End> {
         let line = 1.2 * self.em;
         let at = |value: f64| StripBox::y(rect, plot.scale, value).clamp(rect.top, rect.bottom);
-        let wishes: Vec<(f64, f64)> = plot.ends.iter().map(|e| (at(e.value), e.lines.len() as f64 * line)).collect();
+        let wishes: Vec<(f64, f64)> = ends.iter().map(|e| (at(e.value), e.lines.len() as f64 * line)).collect();
         let places = spread(&wishes, rect.top - 0.5 * line, rect.bottom + 0.5 * line);
-        let x = rect.right + 0.95 * self.em;
-        let place = |(end, middle): (&crate::figure::EndLabel, f64)| {
+        let place = |(end, middle): (&&EndLabel, f64)| {
             let first = middle - 0.5 * line * (end.lines.len() as f64 - 1.0);
             let text = |(k, text): (usize, &String)| Text {
                 x,
@@ -331,9 +355,10 @@ impl<'a> Setter<'a> {
                 to: (x - 0.25 * self.em, middle),
                 tone: end.tone,
                 lines: end.lines.iter().enumerate().map(text).collect(),
+                clear: None,
             }
         };
-        plot.ends.iter().zip(places).map(place).collect()
+        ends.iter().zip(places).map(place).collect()
     }
 
     /// Labels below the last strip; those that would collide are left out, the first and last kept.
