@@ -10,7 +10,7 @@ import { percentLevel } from './numbers.js';
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -222,6 +222,10 @@ function plainAlternatives(choice, plan) {
     case 'shape':
       return list(plan, plan.curves.shape, words.shape,
         (id) => withSection(plan, 'curves', { shape: id }), ['smooth', 'straight', 'by-time']);
+    case 'basis':
+      return list(plan, plan.curves.basis, words.basis,
+        (id) => withSection(plan, 'curves', { basis: id, period: id === 'cyclic' ? plan.curves.period ?? 24 : plan.curves.period }),
+        ['cubic', 'thin-plate', 'p-spline', 'gaussian-process', 'cyclic']);
     case 'dimension':
       return list(plan, String(plan.curves.dimension), words.dimension,
         (id) => withSection(plan, 'curves', { dimension: id }), ['auto', 'full']);

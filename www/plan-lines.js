@@ -71,7 +71,10 @@ function followed(choices, context, open) {
     ? { text: words.choices.dimension.written(dimension), choice: /** @type {const} */ ('dimension') }
     : chosen('dimension', choices, context);
   const curved = plan.curves.shape === 'smooth';
+  const basis = chosen('basis', choices, context);
+  if (plan.curves.basis === 'cyclic') basis.text = words.choices.basis.every(String(plan.curves.period), context.timeWord);
   const bending = curved ? [
+    { lead: words.made, part: basis, isDefault: plan.curves.basis === 'cubic' },
     { lead: words.bends, part: roomPart, isDefault: dimension === 'auto' },
     { lead: words.smoothness, part: chosen('smoothness', choices, context), isDefault: plan.curves.smoothness === 'per-group' },
   ] : [];

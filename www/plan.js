@@ -12,7 +12,7 @@ export function defaultPlan() {
     columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [] },
     exclusions: [],
     response: { distribution: 'normal', transform: 'identity', detection: 'as-written', start: 'as-measured' },
-    curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group' },
+    curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group', period: null, range: null, roughness: '5/2' },
     subjects: 'intercept',
     subjects_spread: 'common',
     clusters: 'auto',

@@ -15,7 +15,7 @@
  * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[]}} columns
  * @property {{row: number, column?: string, reason: string}[]} exclusions
  * @property {{distribution: string, transform: 'identity'|'log', detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
- * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared'}} curves
+ * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared', period: number|null, range: number|null, roughness: string}} curves
  * @property {'none'|'intercept'|'slope'|'curve'} subjects
  * @property {'auto'|'none'|'intercept'|'slope'} clusters
  * @property {'common'|'by-group'} subjects_spread

@@ -28,6 +28,8 @@ export function mountField(choice, root, acts) {
       return mountMargin(root, acts);
     case 'level':
       return mountLevel(root, acts);
+    case 'basis':
+      return mountBasis(root, acts);
     case 'dimension':
       return mountDimension(root, acts);
     case 'noun':
@@ -138,6 +140,33 @@ function mountDimension(root, acts) {
     update(state) {
       const { dimension } = state.choices.plan.curves;
       knots.show(typeof dimension === 'number' ? String(dimension) : '');
+    },
+  };
+}
+
+/**
+ * The length of a round, and the range of a process.
+ * @param {HTMLElement} root
+ * @param {Acts} acts
+ */
+function mountBasis(root, acts) {
+  const { period: periodLabel, range: rangeLabel, positive, label } = words.basis;
+  /** @param {'period'|'range'} key @param {string} name */
+  const make = (key, name) => numberField(name, positive, (value) => value > 0,
+    (value) => acts.choose(`${label}: ${value}`, (choices) => ({
+      ...choices, plan: withSection(choices.plan, 'curves', { [key]: value }),
+    }), true), key);
+  const period = make('period', periodLabel);
+  const range = make('range', rangeLabel);
+  root.append(period.node, period.problem, range.node, range.problem);
+  return {
+    /** @param {State} state */
+    update(state) {
+      const { curves } = state.choices.plan;
+      period.node.hidden = curves.basis !== 'cyclic';
+      range.node.hidden = curves.basis !== 'gaussian-process';
+      period.show(curves.period === null ? '' : String(curves.period));
+      range.show(curves.range === null ? '' : String(curves.range));
     },
   };
 }
