@@ -2,6 +2,7 @@
 
 mod band;
 mod basis;
+mod bend;
 mod calibrate;
 mod chains;
 mod clusters;
@@ -26,6 +27,7 @@ pub mod visits;
 mod whiten;
 
 pub use band::{CriticalValues, Run, runs_above_zero};
+pub use bend::Bend;
 pub use calibrate::{Calibration, calibrated_quantile};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use influence::Influence;

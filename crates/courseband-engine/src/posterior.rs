@@ -121,9 +121,17 @@ impl Fit {
     /// What one unit of a shared column of the data adds to every course.
     #[must_use]
     pub fn shared_effect(&self, column: usize) -> Contrast {
+        let columns = self.design.placement.shared() - usize::from(self.model.common_start);
+        let values: Vec<f64> = (0..columns).map(|c| f64::from(u8::from(c == column))).collect();
+        self.shared_sum(&values)
+    }
+
+    /// What shared columns of the data with these values add to a course, penalised ones among them.
+    #[must_use]
+    pub fn shared_sum(&self, values: &[f64]) -> Contrast {
         let own = self.design.placement.own(0) + usize::from(self.model.common_start);
-        let mut weights = vec![0.0; self.design.placement.extended(0)];
-        weights[own + column] = 1.0;
+        let mut weights = vec![0.0; own];
+        weights.extend(values);
         Contrast { parts: vec![(0, weights)], level: 0.0 }
     }
 

@@ -1,5 +1,6 @@
 //! Adjustments: explanatory columns, and what is made of the first visit.
 
+use crate::blocks::{Run, RunKind, block_runs};
 use crate::findings::Note;
 use crate::plan::{Plan, Start, Transform};
 use crate::refusal::Refusal;
@@ -40,6 +41,8 @@ struct Column {
 #[derive(Debug, Default)]
 pub(crate) struct Adjustments {
     pub(crate) columns: Vec<Adjustment>,
+    /// One per run of penalised columns.
+    pub(crate) runs: Vec<RunKind>,
     pub(crate) notes: Vec<Note>,
 }
 
@@ -130,7 +133,7 @@ fn first_values(observations: &Observations, response: &[f64]) -> Vec<Option<f64
     sums.into_iter().map(|(sum, count)| (count > 0.0).then(|| sum / count)).collect()
 }
 
-/// Gives the data their shared columns. `rows`: indices into the observations, in the order of the data.
+/// Gives the data their shared columns.
 ///
 /// # Errors
 /// A column that cannot be adjusted for.
@@ -140,19 +143,23 @@ pub(crate) fn adjust(
     started: &Started,
     plan: &Plan,
 ) -> Result<Adjustments, Refusal> {
-    let mut columns = Vec::new();
-    let mut notes = Vec::new();
+    let (mut columns, mut runs, mut notes) = (Vec::new(), Vec::new(), Vec::new());
     if plan.response.start == Start::Covariate {
         let value = |k: usize| started.first[observations.subject[k] as usize].unwrap_or(f64::NAN);
         let values = started.kept.iter().map(|&k| value(k)).collect();
         columns.push(numeric("value at the start".into(), values));
     }
-    for covariate in &observations.covariates {
+    let block = plan.columns.block.as_deref();
+    for covariate in observations.covariates.iter().filter(|c| Some(c.name.as_str()) != block) {
+        let bends = plan.columns.bending.contains(&covariate.name);
         let changes = match &covariate.values {
             CovariateValues::Numeric(values) => {
-                columns.push(numeric(covariate.name.clone(), started.kept.iter().map(|&k| values[k]).collect()));
+                let own: Vec<f64> = started.kept.iter().map(|&k| values[k]).collect();
+                runs.extend(bends.then(|| Run::bend(&covariate.name, &own)).flatten());
+                columns.push(numeric(covariate.name.clone(), own));
                 changes_within(observations, &started.kept, |k| values[k].to_bits())
             }
+            CovariateValues::Categorical { .. } if bends => return Err(no_number(&covariate.name)),
             CovariateValues::Categorical { levels, index } => {
                 let own: Vec<u32> = started.kept.iter().map(|&k| index[k]).collect();
                 columns.extend(categories(&covariate.name, levels, &own)?);
@@ -166,13 +173,23 @@ pub(crate) fn adjust(
     if !columns.is_empty() {
         notes.push(Note { about: "curves".into(), message: stated_at(&columns) });
     }
-    data.shared = Shared { free: columns.len(), penalised: Vec::new(), reference: vec![0.0; columns.len()] };
+    if let Some(covariate) = observations.covariates.iter().find(|c| Some(c.name.as_str()) == block) {
+        runs.extend(block_runs(data, &covariate.name, &covariate.values, &started.kept)?);
+    }
+    let penalised: Vec<usize> = runs.iter().map(|run| run.columns.len()).collect();
+    let all: Vec<&Vec<f64>> = columns.iter().map(|c| &c.values).chain(runs.iter().flat_map(|r| &r.columns)).collect();
+    data.shared = Shared { free: columns.len(), penalised, reference: vec![0.0; all.len()] };
     let mut row = 0;
     for subject in &mut data.subjects {
-        subject.shared = shared_rows(subject, &columns, row);
+        subject.shared = shared_rows(subject, &all, row);
         row += subject.times.len();
     }
-    Ok(Adjustments { columns: columns.into_iter().map(|c| c.about).collect(), notes })
+    let runs = runs.into_iter().map(|run| run.kind).collect();
+    Ok(Adjustments { columns: columns.into_iter().map(|c| c.about).collect(), runs, notes })
+}
+
+fn no_number(name: &str) -> Refusal {
+    Refusal::plan(format!("columns.bending names \"{name}\", which holds words. Only the effect of a number can bend."))
 }
 
 /// What courses are courses of.
@@ -205,9 +222,9 @@ pub(crate) fn in_words(adjustment: &Adjustment, plan: &Plan) -> Option<Note> {
     Some(Note { about: "curves".into(), message })
 }
 
-fn shared_rows(subject: &SubjectRows, columns: &[Column], first: usize) -> Vec<f64> {
+fn shared_rows(subject: &SubjectRows, columns: &[&Vec<f64>], first: usize) -> Vec<f64> {
     let rows = first..first + subject.times.len();
-    rows.flat_map(|row| columns.iter().map(move |column| column.values[row])).collect()
+    rows.flat_map(|row| columns.iter().map(move |column| column[row])).collect()
 }
 
 fn empty(column: String, level: Option<String>, reference: String) -> Adjustment {

@@ -143,6 +143,16 @@ impl Plan {
         if matches!(self.errors.spread, Spread::WithMean | Spread::ByVisit) {
             return missing("errors.spread: with-mean and by-visit", "\"common\", \"by-group\", or the log scale");
         }
+        if let Some(name) = self.columns.bending.iter().find(|name| !self.columns.covariates.contains(name)) {
+            return Err(Refusal::plan(format!(
+                "columns.bending names \"{name}\", which is not among columns.covariates. Add it there too."
+            )));
+        }
+        if let Some(name) = self.columns.block.iter().find(|name| self.columns.covariates.contains(name)) {
+            return Err(Refusal::plan(format!(
+                "columns.block is \"{name}\", which is among columns.covariates too. Use it once."
+            )));
+        }
         if self.response.start == Start::Percent && self.response.transform == Transform::Log {
             return Err(Refusal::plan(
                 "response.start is percent on the log scale, which has no percent of its own. Use \"change\": on the log scale \
@@ -166,7 +176,7 @@ impl Plan {
             group: column(&self.columns.group),
             response: column(&self.columns.response),
             cluster: column(&self.columns.cluster),
-            covariates: self.columns.covariates.clone(),
+            covariates: self.columns.covariates.iter().chain(&self.columns.block).cloned().collect(),
             exclusions: self
                 .exclusions
                 .iter()

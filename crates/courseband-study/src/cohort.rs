@@ -1,6 +1,7 @@
 //! The rows that are fitted: on the modelled scale, subject by subject.
 
 use crate::adjust::{Adjustment, Started, adjust, started};
+use crate::blocks::RunKind;
 use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
 use crate::housing::Housing;
 use crate::plan::{Basis, Pairs, Plan, Serial, Shape, Transform};
@@ -28,6 +29,8 @@ pub(crate) struct Cohort {
     pub(crate) housing: Housing,
     /// One per shared column, without its effect.
     pub(crate) adjustments: Vec<Adjustment>,
+    /// One per run of penalised shared columns.
+    pub(crate) runs: Vec<RunKind>,
     /// Of a Gaussian process, where it was estimated.
     range: Option<f64>,
     pub(crate) notes: Vec<Note>,
@@ -57,9 +60,20 @@ impl Cohort {
         notes.extend(adjustments.notes);
         notes.extend(housing.notes.iter().cloned());
         refuse_many_means(plan, &data, &groups)?;
-        let adjustments = adjustments.columns;
-        let mut cohort =
-            Cohort { data, subject_names, groups, supports, visits, control, housing, adjustments, range: None, notes };
+        let (adjustments, runs) = (adjustments.columns, adjustments.runs);
+        let mut cohort = Cohort {
+            data,
+            subject_names,
+            groups,
+            supports,
+            visits,
+            control,
+            housing,
+            adjustments,
+            runs,
+            range: None,
+            notes,
+        };
         cohort.estimate_range(plan);
         Ok(cohort)
     }

@@ -4,6 +4,7 @@
 //! own unit. A value that does not exist is `null` in JSON, never a stand-in.
 
 use crate::adjust::Adjustment;
+use crate::blocks::{BendEffect, BlockEffects};
 use crate::housing::ClusterSummary;
 use crate::plan::Plan;
 use serde::Serialize;
@@ -47,6 +48,10 @@ pub struct Findings {
     pub clusters: Option<ClusterSummary>,
     /// Effects of explanatory columns, one per shared column of the mean.
     pub adjustments: Vec<Adjustment>,
+    /// Effects of explanatory numbers that may bend.
+    pub bends: Vec<BendEffect>,
+    /// Repeats, batches or plates; `null` without a block column.
+    pub blocks: Option<BlockEffects>,
 }
 
 /// Columns as used. A role without a column is `null`.

@@ -7,6 +7,7 @@
 //! `courseband-table`'s work, mathematics is `courseband-engine`'s.
 
 mod adjust;
+mod blocks;
 mod check_plan;
 mod checks;
 mod cohort;
@@ -24,6 +25,7 @@ mod traces;
 mod usual;
 
 pub use adjust::Adjustment;
+pub use blocks::{BendEffect, BlockEffects, BlockGap};
 pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
 pub use housing::ClusterSummary;

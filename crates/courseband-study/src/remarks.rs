@@ -1,5 +1,7 @@
 //! What the engine remarks about a fit, in plain words.
 
+use crate::blocks;
+use crate::cohort::Cohort;
 use crate::findings::GroupInfo;
 use crate::plan::Plan;
 use courseband_engine::{FitError, Remark};
@@ -12,7 +14,8 @@ fn of_group(group: Option<usize>, groups: &[GroupInfo]) -> String {
 }
 
 /// A remark as a sentence that says what it means.
-pub(crate) fn in_words(remark: Remark, groups: &[GroupInfo], plan: &Plan) -> String {
+pub(crate) fn in_words(remark: Remark, cohort: &Cohort, plan: &Plan) -> String {
+    let groups = &cohort.groups[..];
     let subjects = &plan.words.subjects;
     match remark {
         Remark::StraightCourse(None) => "The courses are estimated as straight lines: the data show no bend.".into(),
@@ -39,7 +42,7 @@ pub(crate) fn in_words(remark: Remark, groups: &[GroupInfo], plan: &Plan) -> Str
         Remark::PerfectClusterCorrelation => {
             "Level and trend of the clusters are estimated as perfectly correlated: the data do not hold both apart.".into()
         }
-        Remark::NoSharedVariance(_) => "The blocks are estimated not to differ: that variance is zero.".into(),
+        Remark::NoSharedVariance(run) => cohort.runs.get(run).map_or_else(String::new, blocks::no_variance),
         Remark::NoSerialCorrelation => "The serial correlation is estimated as zero: errors are taken as independent.".into(),
         Remark::FullSerialCorrelation => {
             "The serial correlation is at its upper limit: it acts like a level of each subject.".into()

@@ -192,6 +192,8 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         group_effects: Vec::new(),
         clusters: cohort.housing.summary.clone(),
         adjustments: cohort.adjustments.clone(),
+        bends: Vec::new(),
+        blocks: None,
     };
     match fit(&cohort.data, &cohort.model(plan)) {
         Ok(fitted) => fill(&mut findings, plan, &cohort, &fitted, refits),
@@ -226,6 +228,7 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
     findings.pair_effects = evaluation.pair_effects(&findings.differences);
     findings.group_effects = evaluation.group_effects();
     evaluation.fill_adjustments(&mut findings.adjustments);
+    (findings.bends, findings.blocks) = evaluation.runs();
     findings.notes.extend(findings.adjustments.iter().filter_map(|a| adjust::in_words(a, plan)));
     for remark in &findings.fit.remarks {
         findings.notes.push(Note { about: "fit".into(), message: remark.clone() });
@@ -284,7 +287,7 @@ fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
         measurement_error_share: fitted.measurement_error_share(),
         effective_df: per_group(&|g| fitted.effective_df(g)),
         evaluations: fitted.evaluations(),
-        remarks: fitted.remarks().iter().map(|r| remarks::in_words(*r, &cohort.groups, plan)).collect(),
+        remarks: fitted.remarks().iter().map(|r| remarks::in_words(*r, cohort, plan)).collect(),
     }
 }
 

@@ -61,6 +61,10 @@ pub struct Columns {
     pub cluster: ColumnChoice,
     /// Further explanatory columns.
     pub covariates: Vec<String>,
+    /// Those of them, numbers, whose effect may bend.
+    pub bending: Vec<String>,
+    /// Repeat of the experiment, batch or plate that every group has a part in.
+    pub block: Option<String>,
 }
 
 /// One row left out.
