@@ -10,7 +10,7 @@ import { percentLevel } from './numbers.js';
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'block'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -115,19 +115,45 @@ function bandAlternatives(plan, context) {
  * @returns {Alternative[]}
  */
 function covariateAlternatives(plan, context) {
-  const taken = Object.values(context.columns);
-  const now = plan.columns.covariates;
-  const set = (/** @type {string[]} */ covariates) => withSection(plan, 'columns', { covariates });
-  const none = { id: 'none', name: words.covariates.none, fits: words.covariates.noneFits, chosen: now.length === 0, plan: set([]) };
+  const taken = [...Object.values(context.columns), plan.columns.block];
+  const { covariates: now, bending } = plan.columns;
+  /** @param {string[]} covariates @param {string[]} bent */
+  const set = (covariates, bent) => withSection(plan, 'columns', {
+    covariates, bending: bent.filter((name) => covariates.includes(name)),
+  });
+  const none = { id: 'none', name: words.covariates.none, fits: words.covariates.noneFits, chosen: now.length === 0, plan: set([], []) };
   const free = context.candidates.filter(({ name }) => !taken.includes(name) || now.includes(name));
-  const each = free.map(({ name }) => {
+  const each = free.flatMap(({ name }) => {
     const chosen = now.includes(name);
-    return {
+    const bent = bending.includes(name);
+    const row = {
       id: `column:${name}`, name, fits: chosen ? words.covariates.away : words.covariates.add, chosen,
-      plan: set(chosen ? now.filter((other) => other !== name) : [...now, name]),
+      plan: set(chosen ? now.filter((other) => other !== name) : [...now, name], bending),
     };
+    const bend = {
+      id: `bend:${name}`, name: words.covariates.bent(name), fits: words.covariates.bentFits, chosen: bent,
+      plan: set(now, bent ? bending.filter((other) => other !== name) : [...bending, name]),
+    };
+    return chosen ? [row, bend] : [row];
   });
   return [none, ...each];
+}
+
+/**
+ * Repeats of the experiment, batches, plates.
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function blockAlternatives(plan, context) {
+  const taken = [...Object.values(context.columns), ...plan.columns.covariates];
+  const { block } = plan.columns;
+  const set = (/** @type {string|null} */ name) => withSection(plan, 'columns', { block: name });
+  const none = { id: 'none', name: words.block.none, fits: words.block.noneFits, chosen: block === null, plan: set(null) };
+  const free = context.candidates.filter(({ name }) => !taken.includes(name));
+  return [none, ...free.map(({ name }) => ({
+    id: `column:${name}`, name, fits: words.block.fits, chosen: block === name, plan: set(name),
+  }))];
 }
 
 /**
@@ -207,6 +233,8 @@ export function alternativesOf(choice, plan, context) {
       return levelAlternatives(plan);
     case 'covariates':
       return covariateAlternatives(plan, context);
+    case 'block':
+      return blockAlternatives(plan, context);
     default:
       return plainAlternatives(choice, plan);
   }

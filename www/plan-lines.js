@@ -73,18 +73,25 @@ function followed(choices, context, open) {
   const curved = plan.curves.shape === 'smooth';
   const basis = chosen('basis', choices, context);
   if (plan.curves.basis === 'cyclic') basis.text = words.choices.basis.every(String(plan.curves.period), context.timeWord);
-  const bending = curved ? [
+  const finerOfCurve = curved ? [
     { lead: words.made, part: basis, isDefault: plan.curves.basis === 'cubic' },
     { lead: words.bends, part: roomPart, isDefault: dimension === 'auto' },
     { lead: words.smoothness, part: chosen('smoothness', choices, context), isDefault: plan.curves.smoothness === 'per-group' },
   ] : [];
-  const adjusted = plan.columns.covariates.map((name) => calledName(choices, name, name)).join(words.and);
+  const called = (/** @type {string} */ name) => calledName(choices, name, name);
+  const { covariates, bending, block } = plan.columns;
+  const adjusted = covariates
+    .map((name) => (bending.includes(name) ? words.choices.covariates.bent(called(name)) : called(name))).join(words.and);
   const finer = withFiner([
-    ...bending,
+    ...finerOfCurve,
     { lead: words.start, part: chosen('start', choices, context), isDefault: plan.response.start === 'as-measured' },
     {
       lead: words.adjusted, isDefault: adjusted === '',
       part: { text: adjusted || words.choices.covariates.none, choice: /** @type {const} */ ('covariates') },
+    },
+    {
+      lead: words.repeated, isDefault: block === null,
+      part: { text: block === null ? words.choices.block.none : called(block), choice: /** @type {const} */ ('block') },
     },
   ], open);
   /** @type {Part[]} */

@@ -9,7 +9,7 @@
 /** @returns {Plan} */
 export function defaultPlan() {
   return {
-    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [] },
+    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [], bending: [], block: null },
     exclusions: [],
     response: { distribution: 'normal', transform: 'identity', detection: 'as-written', start: 'as-measured' },
     curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group', period: null, range: null, roughness: '5/2' },

@@ -34,6 +34,7 @@ export const plan = {
   vary: '; courses vary ',
   start: '; first values ',
   adjusted: '; adjusted for ',
+  repeated: '; repeated over ',
   /** @param {string} column */
   eachCluster: (column) => `; each ${column} has `,
   and: ' and ',
@@ -110,6 +111,14 @@ export const plan = {
       noneFits: 'Courses of all subjects as they are.',
       add: 'Add: a number acts as a straight line, a word as a category, alike in every group and at every time.',
       away: 'In use: choose again to take it away.',
+      bent: (/** @type {string} */ name) => `${name}, bent`,
+      bentFits: 'Its effect may bend. Fits a number whose middle values do best or worst.',
+    },
+    block: {
+      label: 'Repeats',
+      none: 'nothing',
+      noneFits: 'One experiment.',
+      fits: 'A repeat, batch or plate that holds every group: its level is taken out, and the groups may differ by it.',
     },
     clusters: {
       label: 'Clusters',
