@@ -45,6 +45,7 @@ export class Controller {
   set(next) {
     if (next === this.state) return;
     this.state = next;
+    this.#attend();
     if (this.shown) return;
     // Several changes in one turn are shown once.
     this.shown = true;
@@ -52,6 +53,24 @@ export class Controller {
       this.shown = false;
       this.show(this.state);
     });
+  }
+
+  /** Asks for what the room in sight shows beyond the findings, once per plan. */
+  #attend() {
+    const { room, status } = this.state;
+    if ((room !== 'checks' && room !== 'usual') || (status !== 'ready' && status !== 'boundary')) return;
+    const plan = this.#planText(this.state.choices);
+    if (this.state.answers[room]?.plan === plan) return;
+    const mine = () => this.state.answers[room]?.plan === plan;
+    this.set(change.answered(this.state, room, { plan, status: 'working', message: null }));
+    this.engine.answer(room, plan).then(
+      (json) => { if (mine()) this.set(change.answered(this.state, room, { status: 'done', value: JSON.parse(json) })); },
+      (cause) => {
+        if (!mine()) return;
+        const message = cause instanceof Overtaken ? null : cause instanceof Error ? cause.message : String(cause);
+        this.set(change.answered(this.state, room, { plan: message === null ? '' : plan, status: 'done', value: null, message }));
+      },
+    );
   }
 
   /** @returns {Acts} */

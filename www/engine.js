@@ -118,6 +118,11 @@ export class Engine {
     return this.#ask('run', { plan });
   }
 
+  /** What a room asks beyond the findings. @param {'checks'|'usual'} room @param {string} plan @returns {Promise<string>} */
+  answer(room, plan) {
+    return this.#ask(room, { plan });
+  }
+
   /** @param {string} plan @param {number} first @param {number} count @returns {Promise<string>} */
   refits(plan, first, count) {
     return this.#ask('refits', { plan, first, count });

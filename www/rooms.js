@@ -3,11 +3,13 @@
  * `{id, title, mount}`; adding it here is all it takes.
  */
 
+import { checksRoom } from './rooms/checks.js';
 import { coursesRoom } from './rooms/courses.js';
 import { dataRoom } from './rooms/data.js';
+import { usualRoom } from './rooms/usual.js';
 
 /** @type {readonly import('./types.js').Room[]} */
-export const rooms = [dataRoom, coursesRoom];
+export const rooms = [dataRoom, coursesRoom, checksRoom, usualRoom];
 
 /** The room for an address that names none. */
 export const FIRST_ROOM = coursesRoom.id;

@@ -26,6 +26,7 @@ export function initialState() {
     choices: freshChoices(), history: { past: [], future: [] },
     findings: null, drawing: null, change: null, message: null, notice: null,
     cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], demos: [], announcement: '',
+    answers: { checks: null, usual: null },
   };
 }
 
@@ -192,6 +193,18 @@ function announcementOf(before, after) {
   const changed = changedSentences(before, after);
   const headlines = changed.slice(0, 2).map((row) => row.headline).join(' ');
   return text.change.announce(changed.length, after.sentences.length, headlines);
+}
+
+/**
+ * What a room asked for is under way, has come, or has failed. While a newer one is under way the last stays in sight.
+ * @param {State} state
+ * @param {'checks'|'usual'} room
+ * @param {Partial<import('./types.js').Answer>} answer
+ * @returns {State}
+ */
+export function answered(state, room, answer) {
+  const before = state.answers[room] ?? { plan: '', status: 'working', value: null, message: null };
+  return { ...state, answers: { ...state.answers, [room]: { ...before, ...answer } } };
 }
 
 /** @param {State} state @param {number} time @returns {State} */

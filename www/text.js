@@ -7,6 +7,8 @@ import { words } from './text/words.js';
 import { plan } from './text/plan.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
+import { checks } from './text/checks.js';
+import { usual } from './text/usual.js';
 
 /**
  * "1 visit", "3 visits".
@@ -23,9 +25,11 @@ export const text = {
   plan,
   data,
   privacy,
+  checks,
+  usual,
   words,
 
-  rooms: { data: 'Data', courses: 'Time courses' },
+  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses' },
   navigation: 'Rooms',
   skip: 'Skip to the room',
 

@@ -110,6 +110,7 @@
  * @property {LeftOut[]} leftOut
  */
 
+/** @typedef {{plan: string, status: 'working'|'done', value: any, message: string|null}} Answer */
 /** @typedef {{label: string, choices: Choices}} Step */
 /** @typedef {{label: string, back: boolean, before: string|null, after: string|null, pair: {from: string, to: string}|null}} Change `back`: it took a choice back. */
 
@@ -135,6 +136,7 @@
  * @property {number[]} openPairs Pairs whose gap strip is open.
  * @property {Demo[]} demos
  * @property {string} announcement
+ * @property {{checks: Answer|null, usual: Answer|null}} answers What rooms asked for beyond the findings.
  */
 
 /**

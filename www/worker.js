@@ -27,6 +27,8 @@
       const findings = session.run(plan);
       return { findings, traces: session.traces() };
     },
+    checks: ({ plan }) => session.checks(plan),
+    usual: ({ plan }) => session.usual(plan),
     refits: ({ plan, first, count }) => session.refits(plan, first, count),
     calibrated: ({ plan, refits }) => ({ findings: session.run_calibrated(plan, refits), traces: session.traces() }),
   };
