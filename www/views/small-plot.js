@@ -88,6 +88,7 @@ export function smallPlot(ask) {
     ...bands.map((band) => bandPath(band, px, py)),
     ...levels.map((level) => svg('line', { class: 'plot-level', x1: LEFT, x2: width - RIGHT, y1: py(level), y2: py(level) })),
     ...series.flatMap((one) => drawn(one, px, py)),
+    ...names(series, px, py),
   ];
   return svg('svg', { class: 'small-plot', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': ask.label }, ...parts);
 }
@@ -147,12 +148,33 @@ function drawn(one, px, py) {
   if (!one.joined) {
     return points.map(([x, y]) => svg('circle', { class: `plot-point ${classes}`, cx: x.toFixed(1), cy: y.toFixed(1), r: 2.4 }));
   }
-  const line = svg('polyline', { class: `plot-line ${classes}`, points: points.map(([x, y]) => `${x.toFixed(1)},${y.toFixed(1)}`).join(' ') });
-  const last = points[points.length - 1];
-  if (!one.name || !last) return [line];
-  const name = svg('text', { class: `plot-name ${classes}`, x: last[0] - 4, y: last[1] - 5, 'text-anchor': 'end' });
-  name.textContent = one.name;
-  return [line, name];
+  return [svg('polyline', { class: `plot-line ${classes}`, points: points.map(([x, y]) => `${x.toFixed(1)},${y.toFixed(1)}`).join(' ') })];
+}
+
+/** Lines of text do not come closer than this, in pixels. */
+const LINE = 12;
+
+/**
+ * Names at the ends of joined series, kept from lying on each other.
+ * @param {Series[]} series
+ * @param {(x: number) => number} px
+ * @param {(y: number) => number} py
+ */
+function names(series, px, py) {
+  const ends = series.filter((one) => one.joined && one.name).flatMap((one) => {
+    const last = one.y.reduce((/** @type {number} */ found, y, k) => (y === null || y === undefined ? found : k), -1);
+    const y = last < 0 ? null : one.y[last];
+    return y === null || y === undefined ? [] : [{ one, x: px(one.x[last] ?? 0), y: py(y) - 5 }];
+  }).sort((a, b) => a.y - b.y);
+  ends.forEach((end, k) => {
+    const above = ends[k - 1];
+    if (above && end.y - above.y < LINE) end.y = above.y + LINE;
+  });
+  return ends.map(({ one, x, y }) => {
+    const name = svg('text', { class: `plot-name ${one.group ?? ''}`, x: x - 4, y, 'text-anchor': 'end' });
+    name.textContent = one.name ?? '';
+    return name;
+  });
 }
 
 /**

@@ -25,6 +25,18 @@ impl Session {
         let (study, plan) = self.with(plan)?;
         wire::text(&study.usual(&plan)?)
     }
+
+    /// A sample-size request that starts from what the table showed of a compared pair; empty text where there is none.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn size_from(&mut self, plan: &str, pair: usize) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        match SizeRequest::from_findings(&study.run(&plan)?, pair) {
+            Some(request) => wire::text(&request),
+            None => Ok(String::new()),
+        }
+    }
 }
 
 /// Simulated studies number `first` to `first + count` of design number `design` of a request, as JSON counts

@@ -10,6 +10,7 @@
 //! that work can be split over workers, stopped, and continued with the same digits.
 
 mod answer;
+mod from_findings;
 mod request;
 mod simulate;
 
