@@ -133,10 +133,6 @@ export class Controller {
 
   /** @param {File} file */
   async openFile(file) {
-    if (/\.(xlsx?|xlsm|ods|numbers)$/i.test(file.name)) {
-      this.set(change.refused(change.opening(this.state, { kind: 'own', name: file.name }, null), text.data.paste.workbook(file.name)));
-      return;
-    }
     try {
       await this.open(new Uint8Array(await file.arrayBuffer()), { kind: 'own', name: file.name }, null);
     } catch {

@@ -22,7 +22,7 @@ export function defaultPlan() {
       band: 'simultaneous', small_sample: 'auto', refits: 1000, landmark: null,
     },
     grid: { start: null, end: null, count: 101 },
-    reading: { day_zero: 'common', date_order: null, layout: null, merges: [], shared_ids: null },
+    reading: { day_zero: 'common', date_order: null, layout: null, merges: [], shared_ids: null, sheet: null, cells: null },
     words: { subject: 'subject', subjects: 'subjects', time: null, response: null },
     seed: 20260,
   };

@@ -22,7 +22,7 @@
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
  * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null}} comparisons
  * @property {{start: number|null, end: number|null, count: number}} grid
- * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[], shared_ids: null|'different'|'same'|'mistake'}} reading
+ * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[], shared_ids: null|'different'|'same'|'mistake', sheet: string|null, cells: string|null}} reading
  * @property {{subject: string, subjects: string, time: string|null, response: string|null}} words
  * @property {number} seed
  */
@@ -86,6 +86,7 @@
  * @property {Question[]} questions
  * @property {string[]} notes
  * @property {string|null} refusal Why the table cannot be used as asked; the rest then only shows it.
+ * @property {{sheets: string[], sheet: string, cells: string}|null} workbook Where the table stands, if in a workbook.
  * @property {{from: string, into: string}[]} nearSpellings Group names that may be misspelt.
  */
 

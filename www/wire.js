@@ -29,6 +29,7 @@ export function previewFrom(json) {
     })),
     notes: read.notes ?? [],
     nearSpellings: read.near_spellings ?? [],
+    workbook: read.workbook ?? null,
     refusal: read.refusal ?? null,
   };
 }

@@ -51,3 +51,42 @@ test('ids under every group: one question, and each answer has its consequence',
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('a workbook: the sheet with the table is read, another can be chosen, and its cells', async () => {
+  const page = await openPage(browser, { room: 'data' });
+  const file = new URL('../../crates/courseband-table/tests/workbooks/plants.xlsx', import.meta.url).pathname;
+  await page.setInputFiles('#table-file', file);
+  await rested(page);
+  assert.match(await stateOf(page), /ready|boundary/);
+  assert.equal(await page.inputValue('[data-field="sheet"]'), 'Long & plain');
+  assert.equal(await page.locator('.preview tbody tr').first().innerText(), '2\tp0\tearly\t2024-03-04\t10');
+  await page.selectOption('[data-field="sheet"]', 'Wide');
+  await rested(page);
+  await page.fill('[data-field="cells"]', 'A1:G6');
+  await page.keyboard.press('Enter');
+  await rested(page);
+  assert.match(await stateOf(page), /ready|boundary/);
+  await page.fill('[data-field="cells"]', 'nonsense');
+  await page.keyboard.press('Enter');
+  await rested(page);
+  assert.equal(await stateOf(page), 'problem');
+  assert.match(await page.locator('[data-region="problem"]').innerText(), /no range of cells/);
+  assert.deepEqual(page.problems, []);
+  if (process.env.COURSEBAND_SHOTS) await page.screenshot({ path: `${process.env.COURSEBAND_SHOTS}/workbook.png`, fullPage: true });
+  await page.context().close();
+});
+
+test('files that cannot be read are refused by what they are', async () => {
+  const page = await openPage(browser, { room: 'data' });
+  for (const [name, bytes, words] of [
+    ['old.xls', [0xD0, 0xCF, 0x11, 0xE0, 0xA1, 0xB1, 0x1A, 0xE1], /older workbook/],
+    ['half.xlsx', [0x50, 0x4B, 3, 4, 1, 2], /damaged/],
+  ]) {
+    await page.setInputFiles('#table-file', { name, mimeType: 'application/octet-stream', buffer: Buffer.from(bytes) });
+    await rested(page);
+    assert.equal(await stateOf(page), 'problem');
+    assert.match(await page.locator('[data-region="problem"]').innerText(), words);
+  }
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

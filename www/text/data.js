@@ -7,11 +7,10 @@ export const data = {
   paste: {
     title: 'Your table',
     label: 'Paste the table here, header row included',
-    hint: 'Copy the cells in your spreadsheet and paste them. Long or wide, gaps and decimal commas are fine. Or drop a text file anywhere on this page.',
+    hint: 'Copy the cells in your spreadsheet and paste them. Long or wide, gaps and decimal commas are fine. Or drop a file anywhere on this page: text, .xlsx or .ods.',
     choose: 'Choose a file',
     drop: 'Drop the file to read it',
     example: 'mouse\tgroup\tday\tarea\nm1\tSaline\t0\t52.1\nm1\tSaline\t3\t47.8\n\u2026',
-    workbook: (/** @type {string} */ name) => `${name} is a workbook. Open it, select the cells with the table, copy, and paste here.`,
     unreadable: (/** @type {string} */ name) => `${name} could not be read from the disk. Choose it again.`,
   },
   demos: {
@@ -60,6 +59,14 @@ export const data = {
     takeBack: 'take back in',
     label: (/** @type {number} */ row) => `Line ${row} left out`,
     back: (/** @type {number} */ row) => `Line ${row} taken back in`,
+  },
+  sheet: {
+    sheet: 'Sheet',
+    cells: 'Cells',
+    all: 'all in use',
+    hint: 'Corners such as B3:F90. Empty takes all.',
+    chosen: (/** @type {string} */ name) => `Sheet ${name}`,
+    cut: (/** @type {string} */ cells) => (cells ? `Cells ${cells}` : 'All cells'),
   },
   question: { title: 'One question first' },
   description: {

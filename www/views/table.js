@@ -7,6 +7,7 @@ import { ROLES, columnsUsed } from '../context.js';
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
 import { withRole } from '../plan.js';
 import { text } from '../text.js';
+import { mountSheetChoice } from './sheet-choice.js';
 
 /** @typedef {import('../types.js').State} State */
 /** @typedef {import('../types.js').Preview} Preview */
@@ -28,13 +29,15 @@ export function mountTable(root, acts) {
   const count = el('span', { class: 'hint' });
   const more = el('button', { type: 'button', class: 'quiet' }, words.more);
   const notes = el('ul', { class: 'notes' });
-  root.append(el('h2', {}, words.title), format, scroller, el('p', { class: 'table-more' }, count, ' ', more), notes);
+  const place = el('div', { class: 'sheet-choice', hidden: true });
+  const choice = mountSheetChoice(place, acts);
+  root.append(el('h2', {}, words.title), place, format, scroller, el('p', { class: 'table-more' }, count, ' ', more), notes);
 
   let limit = FIRST_ROWS;
   /** @type {State|null} */
   let last = null;
-  /** @type {import('../types.js').Source|null} */
-  let table = null;
+  /** The table shown: its source and columns. */
+  let shown = /** @type {unknown[]} */ ([]);
   more.addEventListener('click', () => {
     limit += STEP;
     if (last) draw(last);
@@ -44,8 +47,9 @@ export function mountTable(root, acts) {
   function draw(state) {
     last = state;
     const { preview } = state;
-    if (state.source !== table) {
-      table = state.source;
+    const names = (preview?.columns ?? []).map((column) => column.name).join('\n');
+    if (state.source !== shown[0] || names !== shown[1]) {
+      shown = [state.source, names];
       limit = FIRST_ROWS;
       body.replaceChildren();
     }
@@ -58,7 +62,13 @@ export function mountTable(root, acts) {
     show(more, rows.length < preview.rows.length);
     reconcile(notes, preview.notes, (note) => note, (note) => el('li', {}, note));
   }
-  return { update: whenChanged((state) => [state.preview, state.choices, state.source], draw) };
+  const update = whenChanged((state) => [state.preview, state.choices, state.source], draw);
+  return {
+    update(state) {
+      choice.update(state);
+      update(state);
+    },
+  };
 }
 
 /**

@@ -6,6 +6,8 @@ use std::fmt::Write;
 /// The report of `courseband check`.
 pub(crate) fn report(bytes: &[u8], plan: &Plan) -> Result<String, Refusal> {
     let mut study = Study::open(bytes)?;
+    study.reading(plan)?;
+    let place = study.table().sheet().place().map(|(sheet, cells)| format!("Workbook: sheet {sheet}, cells {cells}"));
     let reading = study.reading(plan)?;
     let observations = &reading.observations;
     let mut text = String::new();
@@ -13,6 +15,9 @@ pub(crate) fn report(bytes: &[u8], plan: &Plan) -> Result<String, Refusal> {
     let mut line = |words: String| {
         let _ = writeln!(text, "{words}");
     };
+    if let Some(place) = place {
+        line(place);
+    }
     line(format!("Layout: {}", layout(reading.layout)));
     line("Columns:".into());
     for reason in &reading.reasons {

@@ -17,7 +17,7 @@ courseband: when groups followed over time come apart, by how much, how surely
   courseband TABLE --plan plan.json [--out findings.json]
   courseband check TABLE [--plan plan.json]
 
-TABLE or the plan may be '-' for standard input. Without --plan every choice takes its default.
+TABLE is text (commas, semicolons, tabs) or a workbook (.xlsx, .ods); it or the plan may be '-' for standard input. Without --plan every choice takes its default.
 Findings go to standard output, or to the file named by --out, as JSON.
 'check' prints what the reader understood and every problem that it found.
 

@@ -7,12 +7,15 @@ use crate::plan::{BandKind, MarginUnit, Plan, Serial, SmallSample, Transform};
 use crate::refusal::Refusal;
 use crate::{adjust, remarks, sentences};
 use courseband_engine::{Calibration, Fit, FitError, Verdict, calibrated_quantile, fit};
-use courseband_table::{Reading, Table};
+use courseband_table::{Reading, Table, TableError, Workbook};
 
 /// A table held open. The last reading is kept, so that a change of the model does not read the table again.
 #[derive(Debug)]
 pub struct Study {
     table: Table,
+    /// Where the table stands on a sheet: its workbook, with the sheet and cells asked for.
+    workbook: Option<Workbook>,
+    shown: (Option<String>, Option<String>),
     kept: Option<(Plan, Reading)>,
 }
 
@@ -22,7 +25,30 @@ impl Study {
     /// # Errors
     /// Bytes that are no table.
     pub fn open(bytes: &[u8]) -> Result<Study, Refusal> {
-        Ok(Study { table: Table::read(bytes)?, kept: None })
+        let workbook = Workbook::open(bytes)?;
+        let table = match &workbook {
+            Some(workbook) => workbook.table(None, None)?,
+            None => Table::read(bytes)?,
+        };
+        Ok(Study { table, workbook, shown: (None, None), kept: None })
+    }
+
+    /// Names of the workbook's sheets; none where the table is text.
+    #[must_use]
+    pub fn sheets(&self) -> &[String] {
+        self.workbook.as_ref().map_or(&[], Workbook::sheets)
+    }
+
+    /// Turns to the sheet and cells that a plan names.
+    fn turn_to(&mut self, plan: &Plan) -> Result<(), Refusal> {
+        let asked = (plan.reading.sheet.clone(), plan.reading.cells.clone());
+        if asked == self.shown {
+            return Ok(());
+        }
+        let Some(workbook) = &self.workbook else { return Err(TableError::NotWorkbook.into()) };
+        self.table = workbook.table(asked.0.as_deref(), asked.1.as_deref())?;
+        (self.shown, self.kept) = (asked, None);
+        Ok(())
     }
 
     /// The table as read.
@@ -36,6 +62,7 @@ impl Study {
     /// # Errors
     /// What makes the table unusable as asked.
     pub fn reading(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
+        self.turn_to(plan)?;
         let same = |kept: &Plan| {
             kept.columns == plan.columns && kept.exclusions == plan.exclusions && kept.reading == plan.reading
         };
@@ -50,16 +77,10 @@ impl Study {
         }
     }
 
-    /// The table, and its reading under a plan.
-    ///
-    /// # Errors
-    /// As [`Study::reading`].
-    pub fn table_read(&mut self, plan: &Plan) -> Result<(&Table, &Reading), Refusal> {
-        self.reading(plan)?;
-        match &self.kept {
-            Some((_, reading)) => Ok((&self.table, reading)),
-            None => Err(Refusal::table("The table could not be read.")),
-        }
+    /// The last reading, if it could be made.
+    #[must_use]
+    pub fn kept_reading(&self) -> Option<&Reading> {
+        self.kept.as_ref().map(|(_, reading)| reading)
     }
 
     /// Findings under a plan.

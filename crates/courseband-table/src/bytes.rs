@@ -12,7 +12,7 @@ pub(crate) struct Decoded {
 }
 
 /// Offsets into the text are kept in 32 bits.
-const MAX_BYTES: usize = u32::MAX as usize / 4;
+pub(crate) const MAX_BYTES: usize = u32::MAX as usize / 4;
 
 /// First bytes of files that are no text, and what they are.
 const SIGNATURES: [(&[u8], &str); 8] = [
@@ -29,7 +29,7 @@ const SIGNATURES: [(&[u8], &str); 8] = [
 /// Decodes a table's bytes.
 ///
 /// # Errors
-/// Workbooks, pictures and other binary files, and tables without any text.
+/// Pictures and other binary files, and tables without any text.
 pub(crate) fn decode(bytes: &[u8]) -> Result<Decoded, TableError> {
     refuse_signatures(bytes)?;
     if bytes.len() > MAX_BYTES {
@@ -49,10 +49,6 @@ pub(crate) fn decode(bytes: &[u8]) -> Result<Decoded, TableError> {
 }
 
 fn refuse_signatures(bytes: &[u8]) -> Result<(), TableError> {
-    let workbook: [&[u8]; 3] = [b"PK\x03\x04", b"PK\x05\x06", b"\xD0\xCF\x11\xE0\xA1\xB1\x1A\xE1"];
-    if workbook.iter().any(|signature| bytes.starts_with(signature)) {
-        return Err(TableError::Workbook);
-    }
     match SIGNATURES.iter().find(|(signature, _)| bytes.starts_with(signature)) {
         Some((_, seems)) => Err(TableError::NotText { seems }),
         None => Ok(()),

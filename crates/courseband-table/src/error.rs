@@ -9,8 +9,32 @@ use std::fmt;
 /// The text says what is wrong, where (column, row, value) and what to do.
 #[derive(Debug, Clone, PartialEq, Eq)]
 pub enum TableError {
-    /// A spreadsheet workbook instead of its text.
-    Workbook,
+    /// A workbook of a kind that cannot be read.
+    OtherWorkbook {
+        /// Which, such as `an older workbook (.xls)`.
+        kind: &'static str,
+    },
+    /// A workbook under a password.
+    LockedWorkbook,
+    /// A workbook that cannot be understood.
+    DamagedWorkbook {
+        /// What is wrong with it.
+        what: String,
+    },
+    /// A sheet that the workbook does not have.
+    NoSuchSheet {
+        /// The name asked for.
+        name: String,
+        /// The sheets there are.
+        sheets: Vec<String>,
+    },
+    /// A sheet or range asked of a table that is no workbook.
+    NotWorkbook,
+    /// A range of cells that cannot be read.
+    CellRange {
+        /// As asked for.
+        range: String,
+    },
     /// Not a table of text; the word says what it seems to be.
     NotText {
         /// What it seems to be, such as `a picture`.
@@ -203,8 +227,27 @@ impl std::error::Error for TableError {}
 impl fmt::Display for TableError {
     fn fmt(&self, f: &mut fmt::Formatter<'_>) -> fmt::Result {
         match self {
-            TableError::Workbook => f.write_str(
-                "This is a spreadsheet workbook. Open it in the spreadsheet, select the cells there, copy, and paste here.",
+            TableError::OtherWorkbook { kind } => write!(
+                f,
+                "This is {kind}, which cannot be read. Save it as .xlsx or .ods; or select the cells there, copy, and paste here."
+            ),
+            TableError::LockedWorkbook => f.write_str(
+                "This workbook is protected by a password. Save it without one; or select the cells there, copy, and paste here.",
+            ),
+            TableError::DamagedWorkbook { what } => write!(
+                f,
+                "This workbook is damaged: {what}. Open it in the spreadsheet and save it again; or select the cells there, copy, and paste here."
+            ),
+            TableError::NoSuchSheet { name, sheets } => {
+                write!(f, "The workbook has no sheet {}. Its sheets are {}. Name one of these.", quoted(name), listed(sheets))
+            }
+            TableError::NotWorkbook => f.write_str(
+                "The plan names a sheet or a range of cells, but the table is text and no workbook. Take both out of the plan (reading, sheet and cells).",
+            ),
+            TableError::CellRange { range } => write!(
+                f,
+                "{} is no range of cells. Write the corners, such as B3:F90, whole columns, such as B:F, or only the first corner.",
+                quoted(range)
             ),
             TableError::NotText { seems } => write!(
                 f,

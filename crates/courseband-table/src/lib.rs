@@ -35,6 +35,7 @@ mod subjects;
 mod table;
 mod text;
 mod time;
+mod workbook;
 
 pub use describe::{Description, describe};
 pub use error::{GroupChange, TableError};
@@ -45,3 +46,4 @@ pub use reading::{ColumnsUsed, Problem, ProblemKind, Question, Reading, Reason, 
 pub use request::{ColumnRequest, DateOrder, DayZero, Exclusion, Layout, Merge, Request, Role, SharedIds};
 pub use sheet::{Sheet, read_bytes};
 pub use table::Table;
+pub use workbook::{CellRange, Workbook};

@@ -7,7 +7,7 @@ use crate::text::{listed, quoted};
 
 /// Notes on encoding, titles, units, summary rows and repeated headers.
 pub(crate) fn frame_notes(sheet: &Sheet, frame: &Frame) -> Vec<String> {
-    let mut notes = Vec::new();
+    let mut notes = sheet.notes().to_vec();
     let lines = |records: &[usize]| rows(&records.iter().map(|&record| sheet.line(record)).collect::<Vec<_>>());
     if sheet.damaged() {
         notes.push(

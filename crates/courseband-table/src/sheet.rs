@@ -3,9 +3,10 @@
 use crate::bytes::{Decoded, decode};
 use crate::delimiter::sniff;
 use crate::error::TableError;
+use crate::workbook::Workbook;
 
 /// More columns than this are no table of measurements.
-const MAX_COLUMNS: usize = 5_000;
+pub(crate) const MAX_COLUMNS: usize = 5_000;
 
 /// Cells as written, row by row, with each record's line in the file.
 ///
@@ -23,6 +24,9 @@ pub struct Sheet {
     delimiter: char,
     encoding: &'static str,
     damaged: bool,
+    /// In a workbook: the sheet's name, its cells in use, and what must be known about it.
+    place: Option<(String, String)>,
+    notes: Vec<String>,
 }
 
 /// Splits a table's bytes into cells.
@@ -30,9 +34,14 @@ pub struct Sheet {
 /// Reads UTF-8, UTF-16 and Windows-1252; commas, semicolons and tabs; quotes;
 /// every kind of line end. Empty lines are skipped but counted.
 ///
+/// A workbook is read too: the first sheet that holds a table.
+///
 /// # Errors
-/// Workbooks and other binary files, an empty table, an open quotation mark.
+/// Binary files of other kinds, an empty table, an open quotation mark.
 pub fn read_bytes(bytes: &[u8]) -> Result<Sheet, TableError> {
+    if let Some(workbook) = Workbook::open(bytes)? {
+        return workbook.read(None, None);
+    }
     let Decoded { text, encoding, damaged } = decode(bytes)?;
     let delimiter = sniff(&text);
     let mut sheet = Sheet {
@@ -44,6 +53,8 @@ pub fn read_bytes(bytes: &[u8]) -> Result<Sheet, TableError> {
         delimiter: char::from(delimiter),
         encoding,
         damaged,
+        place: None,
+        notes: Vec::new(),
     };
     sheet.fill(&text, delimiter)?;
     match sheet.records() {
@@ -53,6 +64,53 @@ pub fn read_bytes(bytes: &[u8]) -> Result<Sheet, TableError> {
 }
 
 impl Sheet {
+    /// A sheet without cells, to be filled from a workbook.
+    pub(crate) fn of_workbook() -> Sheet {
+        Sheet {
+            text: String::new(),
+            ends: Vec::new(),
+            first: vec![0],
+            lines: Vec::new(),
+            width: 0,
+            delimiter: '\t',
+            encoding: "workbook",
+            damaged: false,
+            place: None,
+            notes: Vec::new(),
+        }
+    }
+
+    /// Adds a record. Lines ascend.
+    pub(crate) fn push(&mut self, line: usize, cells: &[String]) -> Result<(), TableError> {
+        for cell in cells {
+            self.text.push_str(cell);
+            self.ends.push(self.text.len() as u32);
+        }
+        if self.text.len() > crate::bytes::MAX_BYTES {
+            let what = format!("over {} megabytes of text", crate::bytes::MAX_BYTES >> 20);
+            return Err(TableError::TooLarge { what });
+        }
+        self.first.push(self.ends.len() as u32);
+        self.lines.push(line as u32);
+        self.width = self.width.max(cells.len());
+        Ok(())
+    }
+
+    /// Says which sheet of a workbook it is, and which cells are in use.
+    pub(crate) fn named(&mut self, name: String, cells: String, notes: Vec<String>) {
+        (self.place, self.notes) = (Some((name, cells)), notes);
+    }
+
+    /// In a workbook: the sheet's name and the cells in use, such as `A1 to F90`.
+    pub fn place(&self) -> Option<(&str, &str)> {
+        self.place.as_ref().map(|(name, cells)| (name.as_str(), cells.as_str()))
+    }
+
+    /// What must be known about how the cells were had, in words.
+    pub(crate) fn notes(&self) -> &[String] {
+        &self.notes
+    }
+
     fn fill(&mut self, text: &str, delimiter: u8) -> Result<(), TableError> {
         let bytes = text.as_bytes();
         let mut reader =

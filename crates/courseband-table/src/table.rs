@@ -10,6 +10,7 @@ use crate::profile::{Profile, profile_all};
 use crate::reading::Reading;
 use crate::request::Request;
 use crate::sheet::{Sheet, read_bytes};
+use crate::workbook::Workbook;
 
 /// A table that was read, before anything is asked of it.
 #[derive(Debug, Clone)]
@@ -20,12 +21,22 @@ pub struct Table {
 }
 
 impl Table {
-    /// Reads a table from the bytes of a file or of pasted text.
+    /// Reads a table from the bytes of a file or of pasted text. Of a workbook, the first sheet that is a table.
     ///
     /// # Errors
     /// Bytes that are no table of text, and tables without rows.
     pub fn read(bytes: &[u8]) -> Result<Table, TableError> {
-        let sheet = read_bytes(bytes)?;
+        match Workbook::open(bytes)? {
+            Some(workbook) => workbook.table(None, None),
+            None => Table::from_sheet(read_bytes(bytes)?),
+        }
+    }
+
+    /// Reads a table from cells, such as those of a workbook's sheet.
+    ///
+    /// # Errors
+    /// Tables without rows or with one column only.
+    pub fn from_sheet(sheet: Sheet) -> Result<Table, TableError> {
         let frame = find_frame(&sheet);
         if frame.body.is_empty() {
             return Err(TableError::NoRows);

@@ -47,13 +47,17 @@ impl Session {
     /// A plan that cannot be read.
     pub fn preview(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
-        match study.table_read(&plan) {
-            Ok((table, reading)) => wire::text(&wire::Preview::new(table, PREVIEW_ROWS, reading, None)),
-            Err(refusal) => {
-                let outline = study.table().outline(&plan.request());
-                wire::text(&wire::Preview::new(study.table(), PREVIEW_ROWS, &outline, Some(refusal.message)))
+        let outcome = study.reading(&plan).err();
+        let (table, sheets) = (study.table(), study.sheets());
+        let preview = match (outcome, study.kept_reading()) {
+            (None, Some(reading)) => wire::Preview::new(table, sheets, PREVIEW_ROWS, reading, None),
+            (refusal, _) => {
+                let outline = table.outline(&plan.request());
+                let message = refusal.map(|refusal| refusal.message);
+                wire::Preview::new(table, sheets, PREVIEW_ROWS, &outline, message)
             }
-        }
+        };
+        wire::text(&preview)
     }
 
     /// Count, mean, standard deviation and median of each group at each time, and the lines with

@@ -92,6 +92,10 @@ pub struct ReadingChoice {
     pub layout: Option<Layout>,
     /// Group spellings to unite.
     pub merges: Vec<Merge>,
+    /// Sheet of a workbook; `null`: the first that is a table.
+    pub sheet: Option<String>,
+    /// Cells of that sheet, such as `B3:F90`; `null`: all.
+    pub cells: Option<String>,
     /// What it means that ids occur under several groups at overlapping times; `null`: not said, and
     /// taken for different subjects.
     pub shared_ids: Option<SharedIds>,

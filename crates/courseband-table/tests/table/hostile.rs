@@ -52,7 +52,7 @@ fn lines_are_those_of_the_file_under_every_line_end() {
 #[test]
 fn files_that_are_no_tables_are_named() {
     for workbook in [&b"PK\x03\x04rest"[..], b"\xD0\xCF\x11\xE0\xA1\xB1\x1A\xE1rest"] {
-        let error = read_bytes(workbook).expect_err("a workbook");
+        let error = read_bytes(workbook).expect_err("no workbook that can be read");
         assert!(error.to_string().contains("select the cells there, copy, and paste here"), "{error}");
     }
     for (bytes, part) in [

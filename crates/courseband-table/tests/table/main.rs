@@ -4,3 +4,4 @@ mod cases;
 mod common;
 mod hostile;
 mod offers;
+mod workbooks;

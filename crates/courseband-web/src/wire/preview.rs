@@ -19,8 +19,19 @@ pub(crate) struct Preview {
     near_spellings: Vec<NearSpelling>,
     response_unit: Option<String>,
     layout: &'static str,
+    /// Where the table stands in a workbook.
+    workbook: Option<Workbook>,
     /// Why the table cannot be used as asked; the rest then only shows it.
     refusal: Option<String>,
+}
+
+/// Where the table stands in a workbook.
+#[derive(Debug, Serialize)]
+struct Workbook {
+    sheets: Vec<String>,
+    sheet: String,
+    /// Cells in use, such as `A1 to F90`.
+    cells: String,
 }
 
 /// A column of the table as it stands.
@@ -79,7 +90,14 @@ struct NearSpelling {
 
 impl Preview {
     /// The first `rows` rows, and those further down where a cell stops the reading.
-    pub(crate) fn new(table: &Table, rows: usize, reading: &Reading, refusal: Option<String>) -> Self {
+    /// `sheets`: of the workbook, none for text.
+    pub(crate) fn new(
+        table: &Table,
+        sheets: &[String],
+        rows: usize,
+        reading: &Reading,
+        refusal: Option<String>,
+    ) -> Self {
         let shown = table.preview(rows);
         let roles = RolesByColumn::new(reading);
         let last = shown.rows.last().map_or(0, |row| row.line);
@@ -92,7 +110,12 @@ impl Preview {
             columns: shown.columns.iter().map(|column| roles.column(column)).collect(),
             rows: (shown.rows.into_iter().chain(further)).map(|row| Row { line: row.line, cells: row.cells }).collect(),
             total_rows: shown.total_rows,
-            format: format(table.sheet().delimiter(), reading.layout),
+            format: format(table, reading.layout),
+            workbook: table.sheet().place().map(|(sheet, cells)| Workbook {
+                sheets: sheets.to_vec(),
+                sheet: sheet.to_string(),
+                cells: cells.to_string(),
+            }),
             layout: layout_word(reading.layout),
             refusal,
             problems: reading.problems.iter().map(problem).collect(),
@@ -142,17 +165,20 @@ fn column_of(columns: &ColumnsUsed, role: Role) -> Option<&str> {
     }
 }
 
-fn format(delimiter: char, layout: table::Layout) -> String {
-    let delimiter = match delimiter {
-        '\t' => "tabs",
-        ',' => "commas",
-        ';' => "semicolons",
-        _ => "other signs",
-    };
+fn format(table: &Table, layout: table::Layout) -> String {
     let layout = match layout {
         table::Layout::Long => "one row per measurement",
         table::Layout::WideByTime => "one row per subject, one column per time",
         table::Layout::WideBySubject => "one row per time, one column per subject",
+    };
+    if let Some((_, cells)) = table.sheet().place() {
+        return format!("Cells {cells} of a workbook; {layout}.");
+    }
+    let delimiter = match table.sheet().delimiter() {
+        '\t' => "tabs",
+        ',' => "commas",
+        ';' => "semicolons",
+        _ => "other signs",
     };
     format!("Columns separated by {delimiter}; {layout}.")
 }
@@ -224,7 +250,7 @@ mod tests {
         let text = "mouse,group,day,area\n1,a,0,5\n1,a,3,4\n1,b,0,6\n1,b,3,5\n2,a,0,5\n2,a,3,4\n2,b,0,5\n2,b,3,5\n";
         let table = Table::read(text.as_bytes()).expect("a table");
         let reading = table.observe(&Request::default()).expect("usable");
-        let preview = super::Preview::new(&table, 3, &reading, None);
+        let preview = super::Preview::new(&table, &[], 3, &reading, None);
         let roles: Vec<_> = preview.columns.iter().map(|c| c.role).collect();
         assert_eq!(roles, [Some("subject"), Some("group"), Some("time"), Some("response")]);
         assert_eq!(preview.rows.len(), 3);
@@ -246,7 +272,7 @@ mod tests {
         let text = text.replace("m8,0,1,5", "m8,0,soon,5").replace("m7,1,2,5", ",1,2,5");
         let table = Table::read(text.as_bytes()).expect("a table");
         let refusal = table.observe(&Request::default()).expect_err("unusable").to_string();
-        let preview = super::Preview::new(&table, 5, &table.outline(&Request::default()), Some(refusal));
+        let preview = super::Preview::new(&table, &[], 5, &table.outline(&Request::default()), Some(refusal));
         let stops: Vec<_> =
             preview.problems.iter().filter(|one| one.stops).map(|one| (one.row, &*one.column)).collect();
         assert_eq!(stops, [(25, "mouse"), (27, "day")]);
