@@ -37,13 +37,13 @@ fn sizes() -> Vec<Case> {
         case("one against many", design(&[("a", 1), ("b", 9)], &days), Groups(2)),
         case("two subjects in each group", design(&[("a", 2), ("b", 2)], &days), Groups(2)),
         case("one group", design(&[("a", 8)], &days), Groups(1)),
-        case("one time", design(&[("a", 6), ("b", 6)], &[3.0]), none("time")),
+        case("one time", design(&[("a", 6), ("b", 6)], &[3.0]), Groups(2)),
         case("two times", design(&[("a", 6), ("b", 6)], &[0.0, 1.0]), Groups(2)),
         case("three times", design(&[("a", 6), ("b", 6)], &[0.0, 1.0, 5.0]), Groups(2)),
         case("one row", "subject,group,day,y\na,b,0,1\n", none("")),
-        case("two rows", "subject,group,day,y\na,b,0,1\na,b,1,2\n", none("")),
-        case("two subjects, two times", design(&[("a", 1), ("b", 1)], &[0.0, 1.0]), none("")),
-        case("every subject once", format!("{HEAD}\n{once}"), none("")),
+        case("two rows", "subject,group,day,y\na,b,0,1\na,b,1,2\n", Groups(1)),
+        case("two subjects, two times", design(&[("a", 1), ("b", 1)], &[0.0, 1.0]), Groups(2)),
+        case("every subject once", format!("{HEAD}\n{once}"), Groups(2)),
         case("sixty groups", design(&many, &[0.0, 1.0, 2.0]), Groups(60)),
         case("a thousand groups", format!("{HEAD}\n{thousand}"), none("at most 60")),
         case("three thousand times", design(&[("a", 2), ("b", 2)], &long), Groups(2)),
@@ -54,7 +54,7 @@ fn sizes() -> Vec<Case> {
                     .filter(|row| row[1] == "Grün")
                     .for_each(|row| row[2] = format!("{}", 100 + row[2].len()));
             }),
-            none(""),
+            Groups(2),
         ),
         case(
             "a group that ends early",
@@ -119,8 +119,8 @@ fn responses() -> Vec<Case> {
             with_y(|s, v, y| if (s, v) == (1, 1) { "1e200".into() } else { y.to_string() }),
             Groups(2),
         ),
-        case("all missing", with_y(|_, _, _| String::new()), none("no number")),
-        case("all NA", with_y(|_, _, _| "NA".into()), none("no number")),
+        case("all missing", with_y(|_, _, _| String::new()), none("no cell holds a value in ‘y’")),
+        case("all NA", with_y(|_, _, _| "NA".into()), none("no cell holds a value in ‘y’")),
         case("all words", with_y(|_, _, _| "high".into()), none("")),
         case("all infinite", with_y(|_, _, _| "inf".into()), none("")),
         case("all too large", with_y(|_, _, _| "1e999".into()), none("")),
@@ -129,7 +129,7 @@ fn responses() -> Vec<Case> {
             with_y(|s, v, y| if (s + v) % 5 == 0 { "-Infinity".into() } else { y.to_string() }),
             Groups(2),
         ),
-        case("one value only", with_y(|s, v, _| if s + v == 0 { "3".into() } else { String::new() }), none("")),
+        case("one value only", with_y(|s, v, _| if s + v == 0 { "3".into() } else { String::new() }), Groups(1)),
         case("one group missing", with_y(|s, _, y| if s % 2 == 0 { y.to_string() } else { String::new() }), Groups(1)),
         case(
             "one time missing throughout",
@@ -186,7 +186,7 @@ fn times() -> Vec<Case> {
             Groups(2),
         ),
         case("one far time", with_times(|_, v| if v == 4 { "1e9".into() } else { v.to_string() }), Groups(2)),
-        case("all at one time but one", with_times(|s, v| if s + v == 0 { "1" } else { "0" }.into()), none("")),
+        case("all at one time but one", with_times(|s, v| if s + v == 0 { "1" } else { "0" }.into()), Groups(2)),
         case("infinite time", with_times(|s, v| if s + v == 3 { "inf".into() } else { v.to_string() }), none("finite")),
         case("time too large", with_times(|s, v| if s + v == 3 { "1e999".into() } else { v.to_string() }), none("")),
         case("time missing", with_times(|s, v| if s + v == 3 { String::new() } else { v.to_string() }), none("row")),
@@ -241,7 +241,7 @@ fn subjects() -> Vec<Case> {
             changed(|rows| rows[..5].iter_mut().for_each(|row| row[1].clear())),
             Groups(2),
         ),
-        case("all groups missing", changed(|rows| rows.iter_mut().for_each(|row| row[1].clear())), none("")),
+        case("all groups missing", changed(|rows| rows.iter_mut().for_each(|row| row[1].clear())), Groups(1)),
         case(
             "ids under both groups",
             changed(|rows| {
@@ -255,7 +255,7 @@ fn subjects() -> Vec<Case> {
             changed(|rows| rows[3..5].iter_mut().for_each(|row| row[1] = "Grün".into())),
             none("later in group"),
         ),
-        case("a subject in both groups at once", changed(|rows| rows[2][1] = "Grün".into()), none("")),
+        case("a subject in both groups at once", changed(|rows| rows[2][1] = "Grün".into()), Groups(2)),
         case(
             "a group of one letter's difference",
             changed(|rows| rows[..5].iter_mut().for_each(|row| row[1] = "Plein".into())),

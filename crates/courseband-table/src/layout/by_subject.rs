@@ -47,15 +47,21 @@ fn signs(framed: Framed<'_>, subjects: &[usize]) -> bool {
     let corner = framed.written(0);
     let says_subject = clarity(corner, Role::Subject) == 4;
     let says_time = clarity(corner, Role::Time) >= 3 && !says_subject;
+    let heads_are_times =
+        subjects.iter().all(|&column| read_head(framed.written(column)).is_some_and(|head| head.clear));
+    // `s1`, `d2` may be subjects as well as seconds and days: beside heads that are times they are subjects.
+    let is_short = |cell: &str| {
+        let mut letters = cell.trim().chars();
+        letters.next().is_some_and(char::is_alphabetic) && letters.next().is_some_and(|c| c.is_ascii_digit())
+    };
     let worded = |cell: &&str| {
         matches!(
             read_time(cell, Decimal::Point),
             Some(WrittenTime::WithUnit(..) | WrittenTime::Dashed(..) | WrittenTime::Date(_))
-        )
+        ) && !(heads_are_times && is_short(cell))
     };
-    let times = says_time || framed.cells(0).filter(worded).count() * 2 > framed.frame.body.len();
-    let heads_are_times =
-        subjects.iter().all(|&column| read_head(framed.written(column)).is_some_and(|head| head.clear));
+    let mostly_worded = framed.cells(0).filter(worded).count() * 2 > framed.frame.body.len();
+    let times = says_time || (mostly_worded && clarity(corner, Role::Subject) < 3);
     let grouped = group_labels(framed, subjects).is_some();
     if times {
         return grouped || are_ids(framed, subjects);

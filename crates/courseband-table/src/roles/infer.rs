@@ -237,10 +237,15 @@ impl Finder<'_> {
         );
         if self.is_open(Role::Group) {
             self.close(Role::Group);
-            self.roles.forget(
-                Role::Group,
-                "No column has few values that several subjects share: all are one group.".to_string(),
-            );
+            let columns = 0..self.table.columns.len();
+            let empty: Vec<usize> = columns
+                .filter(|&column| self.profiles[column].present() == 0 && clarity(self.name(column), Role::Group) >= 3)
+                .collect();
+            let reason = match empty.first() {
+                Some(&column) => format!("Column {} is empty: all are one group.", quoted(self.name(column))),
+                None => "No column has few values that several subjects share: all are one group.".to_string(),
+            };
+            self.roles.forget(Role::Group, reason);
         }
     }
 
@@ -376,7 +381,15 @@ impl Finder<'_> {
                 .filter(|&column| matches!(self.table.columns[column].source, Source::Cell(_)))
                 .map(|column| self.name(column).to_string())
                 .collect();
+            let empty: Vec<String> = (0..self.table.columns.len())
+                .filter(|&column| !self.roles.taken(column) && self.profiles[column].present() == 0)
+                .map(|column| self.name(column).to_string())
+                .collect();
             let text = match choices.is_empty() {
+                true if !empty.is_empty() => format!(
+                    "No column is left for the {role}: no cell holds a value in {}. The table needs a subject, a time and a response column.",
+                    listed(&empty)
+                ),
                 true => format!(
                     "No column is left for the {role}. The table needs a subject, a time and a response column."
                 ),

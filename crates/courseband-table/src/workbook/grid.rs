@@ -154,7 +154,7 @@ impl Grid {
         let cells = format!("{}{} to {}{}", column_letters(left), top + 1, column_letters(right), bottom + 1);
         let mut notes = Vec::new();
         if sheets > 1 {
-            notes.push(format!("Sheet {} of {sheets} was read.", quoted(&self.name)));
+            notes.push(format!("Sheet {} was read, one of {sheets}.", quoted(&self.name)));
         }
         if self.unstored > 0 {
             notes.push(format!(

@@ -83,7 +83,9 @@ fn the_sheet_with_the_table_is_found_and_its_cells_are_text() {
     assert_eq!(sheet.place(), Some(("A & B", "A2 to E6")));
     let notes = sheet.notes().join(" ");
     assert!(
-        notes.contains("Sheet ‘A & B’ of 2") && notes.contains("1 formula has") && notes.contains("1 row is hidden"),
+        notes.contains("Sheet ‘A & B’ was read, one of 2")
+            && notes.contains("1 formula has")
+            && notes.contains("1 row is hidden"),
         "{notes}"
     );
 }
