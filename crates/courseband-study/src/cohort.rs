@@ -60,6 +60,7 @@ impl Cohort {
         notes.extend(adjustments.notes);
         notes.extend(housing.notes.iter().cloned());
         refuse_many_means(plan, &data, &groups)?;
+        refuse_many_pairs(plan, groups.len())?;
         let (adjustments, runs) = (adjustments.columns, adjustments.runs);
         let mut cohort = Cohort {
             data,
@@ -264,6 +265,20 @@ fn refuse_ties(observations: &Observations, plan: &Plan) -> Result<(), Refusal> 
             observations.time[k]
         ))),
     }
+}
+
+/// Every pair has its own curve, band and effects: their number grows with the square of the groups.
+const MOST_PAIRS: usize = 200;
+
+fn refuse_many_pairs(plan: &Plan, groups: usize) -> Result<(), Refusal> {
+    let pairs = groups * groups.saturating_sub(1) / 2;
+    if plan.comparisons.pairs == Pairs::All && pairs > MOST_PAIRS {
+        return Err(Refusal::plan(format!(
+            "There are {groups} groups, which make {pairs} pairs; at most {MOST_PAIRS} are compared. Compare each group with \
+             one (comparisons.pairs against-control), unite spellings of one group, or take another column as the group.",
+        )));
+    }
+    Ok(())
 }
 
 fn refuse_many_means(plan: &Plan, data: &Data, groups: &[GroupInfo]) -> Result<(), Refusal> {

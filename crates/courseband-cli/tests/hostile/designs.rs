@@ -44,7 +44,14 @@ fn sizes() -> Vec<Case> {
         case("two rows", "subject,group,day,y\na,b,0,1\na,b,1,2\n", Groups(1)),
         case("two subjects, two times", design(&[("a", 1), ("b", 1)], &[0.0, 1.0]), Groups(2)),
         case("every subject once", format!("{HEAD}\n{once}"), Groups(2)),
-        case("sixty groups", design(&many, &[0.0, 1.0, 2.0]), Groups(60)),
+        case("sixty groups", design(&many, &[0.0, 1.0, 2.0]), none("1770 pairs")),
+        case("twelve groups", design(&many[..12], &[0.0, 1.0, 2.0]), Groups(12)),
+        planned(
+            "thirty groups against one",
+            design(&many[..30], &[0.0, 1.0, 2.0]),
+            json!({"comparisons": {"pairs": "against-control", "control": "group aa"}}),
+            Groups(30),
+        ),
         case("a thousand groups", format!("{HEAD}\n{thousand}"), none("at most 60")),
         case("three thousand times", design(&[("a", 2), ("b", 2)], &long), Groups(2)),
         case(
