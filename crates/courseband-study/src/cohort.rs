@@ -39,6 +39,7 @@ pub(crate) struct Cohort {
 impl Cohort {
     pub(crate) fn new(reading: &Reading, plan: &Plan) -> Result<Cohort, Refusal> {
         let (observations, cluster) = (&reading.observations, reading.columns.cluster.as_deref());
+        refuse_extremes(observations)?;
         refuse_non_positive(observations, plan)?;
         let started = started(observations, plan)?;
         refuse_ties(observations, plan)?;
@@ -225,6 +226,29 @@ fn find_control(plan: &Plan, groups: &[GroupInfo]) -> Result<Option<usize>, Refu
             )))
         }
     }
+}
+
+/// Squares of values beyond these do not fit into a number of the computer.
+const EXTREMES: [f64; 2] = [1e-150, 1e150];
+
+fn refuse_extremes(observations: &Observations) -> Result<(), Refusal> {
+    let size = |k: usize| observations.response[k].abs();
+    let Some(largest) = (0..observations.response.len()).max_by(|&a, &b| size(a).total_cmp(&size(b))) else {
+        return Ok(());
+    };
+    let (row, value) = (observations.line[largest], observations.response[largest]);
+    if value.abs() > EXTREMES[1] {
+        return Err(Refusal::table(format!(
+            "Row {row} has the response {value:e}, which is too large to compute with. Correct it, exclude the row, or give \
+             all responses in a larger unit."
+        )));
+    }
+    if value != 0.0 && value.abs() < EXTREMES[0] {
+        return Err(Refusal::table(format!(
+            "All responses are tiny: the largest is {value:e}, in row {row}. Give them in a smaller unit."
+        )));
+    }
+    Ok(())
 }
 
 fn refuse_non_positive(observations: &Observations, plan: &Plan) -> Result<(), Refusal> {
