@@ -5,6 +5,7 @@
 
 import { EngineError, Overtaken } from './engine.js';
 import { Calibration } from './calibration.js';
+import { Sizing } from './sizing.js';
 import { columnsUsed } from './context.js';
 import { planToSend } from './plan.js';
 import { text } from './text.js';
@@ -37,6 +38,8 @@ export class Controller {
     this.typing = 0;
     this.pause = 0;
     this.calibration = new Calibration(assets.module, assets.workerText);
+    /** @type {Sizing|null} */
+    this.sizing = null;
     this.busySince = 0;
     this.shown = false;
   }
@@ -89,6 +92,11 @@ export class Controller {
         window.setTimeout(() => document.getElementById('paste-box')?.focus(), 50);
       },
       stop: () => this.stop(),
+      sizing: () => (this.sizing ??= new Sizing(this.assets.module, this.assets.workerText)),
+      sizeFrom: async (pair) => {
+        const json = await this.engine.sizeFrom(this.#planText(this.state.choices), pair);
+        return json === '' ? null : JSON.parse(json);
+      },
       retry: () => void this.refit(),
       togglePair: (pair) => this.set(change.pairToggled(this.state, pair)),
       leaveOut: (row, column, reason) =>

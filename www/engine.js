@@ -123,6 +123,21 @@ export class Engine {
     return this.#ask(room, { plan });
   }
 
+  /** A sample-size request from the fitted table. @param {string} plan @param {number} pair @returns {Promise<string>} */
+  sizeFrom(plan, pair) {
+    return this.#ask('sizeFrom', { plan, pair });
+  }
+
+  /** @param {string} request @param {number} design @param {number} first @param {number} count @returns {Promise<string>} */
+  sizeRun(request, design, first, count) {
+    return this.#ask('sizeRun', { request, design, first, count });
+  }
+
+  /** @param {string} request @param {string} counts @returns {Promise<string>} */
+  sizeAnswer(request, counts) {
+    return this.#ask('sizeAnswer', { request, counts });
+  }
+
   /** @param {string} plan @param {number} first @param {number} count @returns {Promise<string>} */
   refits(plan, first, count) {
     return this.#ask('refits', { plan, first, count });

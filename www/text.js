@@ -8,6 +8,7 @@ import { plan } from './text/plan.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
 import { checks } from './text/checks.js';
+import { size } from './text/size.js';
 import { usual } from './text/usual.js';
 
 /**
@@ -26,10 +27,11 @@ export const text = {
   data,
   privacy,
   checks,
+  size,
   usual,
   words,
 
-  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses' },
+  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses', size: 'Sample size' },
   navigation: 'Rooms',
   skip: 'Skip to the room',
 

@@ -153,6 +153,8 @@
  * @property {(room: string) => void} go
  * @property {() => void} bringTable Goes to the paste box.
  * @property {() => void} stop
+ * @property {() => import('./sizing.js').Sizing} sizing The workers that simulate studies.
+ * @property {(pair: number) => Promise<any>} sizeFrom A sample-size request from the fitted table; `null` where there is none.
  * @property {() => void} retry
  * @property {(pair: number) => void} togglePair
  * @property {(row: number, column: string|null, reason: string) => void} leaveOut

@@ -29,6 +29,9 @@
     },
     checks: ({ plan }) => session.checks(plan),
     usual: ({ plan }) => session.usual(plan),
+    sizeFrom: ({ plan, pair }) => session.size_from(plan, pair),
+    sizeRun: ({ request, design, first, count }) => wasm_bindgen.size_run(request, design, first, count),
+    sizeAnswer: ({ request, counts }) => wasm_bindgen.size_answer(request, counts),
     refits: ({ plan, first, count }) => session.refits(plan, first, count),
     calibrated: ({ plan, refits }) => ({ findings: session.run_calibrated(plan, refits), traces: session.traces() }),
   };

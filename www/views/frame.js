@@ -88,7 +88,7 @@ function mountNavigation(acts) {
 function mountMark(acts) {
   const title = el('strong');
   const toOwn = el('button', { type: 'button', 'data-act': 'own-table', onclick: () => acts.bringTable() }, text.demo.own);
-  const node = el('section', { class: 'mark', 'data-region': 'invented', 'aria-label': text.demo.label, hidden: true }, title, el('span', {}, text.demo.strip), toOwn);
+  const node = el('section', { class: 'mark', 'data-region': 'invented', 'aria-label': text.demo.label, hidden: true }, title, el('span', {}, text.demo.strip), el('a', { href: '#/size', class: 'mark-size' }, text.size.start), toOwn);
   const update = whenChanged((state) => [state.source, state.room], ({ source, room }) => {
     show(node, source?.kind === 'demo');
     show(toOwn, room !== 'data');
