@@ -43,8 +43,30 @@ async function loadDemos() {
   }
 }
 
+/** @param {string} id */
+const held = (id) => document.getElementById(id)?.textContent ?? '';
+
+/**
+ * What a page that is one file holds in itself: no connection is ever needed.
+ * @param {string} packed The wasm, packed and written as text.
+ * @returns {Promise<Assets>}
+ */
+async function ownAssets(packed) {
+  const bytes = Uint8Array.from(atob(packed), (letter) => letter.charCodeAt(0));
+  const stream = new Blob([bytes]).stream().pipeThrough(new DecompressionStream('gzip'));
+  const module = await WebAssembly.compile(await new Response(stream).arrayBuffer());
+  const { demos, tables } = JSON.parse(held('courseband-demos'));
+  const encoder = new TextEncoder();
+  return {
+    module, demos, workerText: `${held('courseband-glue')}\n${held('courseband-worker')}`,
+    tables: new Map(Object.entries(tables).map(([file, table]) => [file, encoder.encode(/** @type {string} */ (table))])),
+  };
+}
+
 /** @returns {Promise<Assets>} */
 export async function loadAssets() {
+  const packed = held('courseband-wasm');
+  if (packed !== '') return ownAssets(packed);
   const [module, glue, worker, demos] = await Promise.all([
     fetched(WASM).then(compiled),
     fetched(GLUE).then((response) => response.text()),

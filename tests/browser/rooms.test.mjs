@@ -56,3 +56,43 @@ test('usual analyses: five, each with its sentence to copy and where it parts fr
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('sample size: somebody without data reaches the paragraph, by keyboard alone', async () => {
+  const page = await openPage(browser);
+  await page.locator('.mark-size').focus();
+  await page.keyboard.press('Enter');
+  await page.waitForSelector('.size-form');
+  await page.locator('[data-field="designs"]').fill('4, 20');
+  await page.locator('[data-field="studies"]').fill('60');
+  await page.locator('[data-act="simulate"]').focus();
+  await page.keyboard.press('Enter');
+  const paragraph = page.locator('[data-region="size-paragraph"]');
+  await page.waitForFunction(() => document.querySelector('[data-region="size-paragraph"]')?.textContent?.includes('(60 studies'), null, { timeout: 60000 });
+  const first = await paragraph.innerText();
+  assert.match(first, /20 per group, 40 in all, 6 more for expected losses: power \d+ % \(\d+ to \d+\)/);
+  // A day moves with the arrow keys, and what was simulated is then said to be of other numbers.
+  await page.locator('.day-knob').nth(1).focus();
+  await page.keyboard.press('ArrowRight');
+  assert.equal(await page.locator('[data-field="days"]').inputValue(), '0, 4, 7, 10, 14');
+  assert.match(await page.locator('[data-region="size-state"]').innerText(), /changed/);
+  await page.keyboard.press('ArrowLeft');
+  // More studies add to what is there; a mistake is said beside its field.
+  await page.locator('.size-run button').nth(1).click();
+  await page.waitForFunction(() => document.querySelector('[data-region="size-paragraph"]')?.textContent?.includes('(120 studies'), null, { timeout: 60000 });
+  await page.locator('[data-field="designs"]').fill('one');
+  await page.click('[data-act="simulate"]');
+  assert.match(await page.locator('.size-form .complaint:not(:empty)').first().innerText(), /2 to 2000/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('sample size: starts from the fitted table', async () => {
+  const page = await openPage(browser);
+  await enter(page, 'size');
+  await page.click('[data-act="size-from-table"]');
+  await page.waitForFunction(() => document.querySelector('[data-field="controlName"]')?.value === 'Plain gauze');
+  assert.equal(await page.locator('[data-field="transform"]').inputValue(), 'log');
+  assert.equal(await page.locator('[data-field="one"]').inputValue(), 'mouse');
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

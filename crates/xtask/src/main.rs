@@ -1,6 +1,7 @@
 //! What the README's commands do.
 
 mod debian;
+mod dist;
 mod failure;
 mod places;
 mod run;
@@ -36,6 +37,10 @@ fn done(task: &Task) -> Outcome<()> {
             serve::serve(&places, *port, *open)
         }
         Task::Test { only, quick } => test::test(&places, only, *quick),
+        Task::Dist => {
+            wasm::build(&places)?;
+            dist::write(&places).map(|_| ())
+        }
         Task::Tidy => tidy::check(&places),
         Task::Reference => run::show(run::command("bash").arg("tests/reference/run.sh").current_dir(places.root())),
         Task::Bench { args } => bin(&places, "bench", args),

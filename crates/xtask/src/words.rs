@@ -11,6 +11,7 @@ cargo xtask serve                 build, then give the page out on localhost
 cargo xtask test                  run everything that is checked
     --only STEP                   this step alone; may be given several times
     --quick                       without wasm and browser
+cargo xtask dist                  write the page for giving away into dist: a folder for a web server, and one .html file
 cargo xtask tidy                  check the texts and the layout of the repository
 cargo xtask reference             recompute the reference values of the tests
 cargo xtask bench                 print how long fits take
@@ -25,6 +26,7 @@ pub(crate) enum Task {
     Build,
     Serve { port: u16, open: bool },
     Test { only: Vec<String>, quick: bool },
+    Dist,
     Tidy,
     Reference,
     Bench { args: Vec<String> },
@@ -44,6 +46,7 @@ impl Task {
             "build" => Self::Build,
             "serve" => serving(&mut words)?,
             "test" => testing(&mut words)?,
+            "dist" => Self::Dist,
             "tidy" => Self::Tidy,
             "reference" => Self::Reference,
             "bench" => Self::Bench { args: words.by_ref().collect() },

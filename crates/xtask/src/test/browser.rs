@@ -7,7 +7,7 @@ use super::count;
 use crate::failure::{Failure, Outcome};
 use crate::places::Places;
 use crate::serve::Server;
-use crate::{debian, run};
+use crate::{debian, dist, run};
 
 /// Checks the JSDoc types of the page.
 pub(crate) fn types(places: &Places) -> Outcome<usize> {
@@ -30,6 +30,7 @@ pub(crate) fn tests(places: &Places) -> Outcome<usize> {
             .args(["build", "--release", "--locked", "--package", "courseband-cli"])
             .current_dir(places.root()),
     )?;
+    let given = dist::write(places)?;
     let server = Server::on(0, places)?;
     let address = server.address()?;
     std::thread::spawn(move || server.answer());
@@ -40,6 +41,8 @@ pub(crate) fn tests(places: &Places) -> Outcome<usize> {
         .current_dir(places.root())
         .env("COURSEBAND_PAGE", address)
         .env("COURSEBAND_NATIVE", places.target().join("release/courseband"))
+        .env("COURSEBAND_FILE", given.file)
+        .env("COURSEBAND_FOLDER", given.folder)
         .env("CHROMIUM", chromium);
     count::of(&mut command, count::node)
 }
