@@ -197,7 +197,7 @@ fn times_above(sheet: &Sheet, above: usize, names: usize) -> bool {
     let mut times: Vec<&str> = labels.iter().map(|(_, label)| *label).collect();
     times.sort_unstable();
     times.dedup();
-    let mut under: Vec<String> = sheet.cells(names).skip(first).map(|cell| folded(cell)).collect();
+    let mut under: Vec<String> = sheet.cells(names).skip(first).map(folded).collect();
     let count = under.len();
     let worded = under.iter().all(|name| !name.is_empty() && read_time(name, Decimal::Point).is_none());
     under.sort_unstable();
