@@ -16,6 +16,8 @@ import { text } from '../text.js';
 const words = text.reading;
 /** Above so many pairs each has its own strip only when opened. */
 const MANY_PAIRS = 3;
+/** Pairs of longer names are written in letters, which the rows of the groups spell out. */
+const LONG_PAIR = 32;
 
 /** @param {HTMLElement} root @param {Acts} acts @returns {import('../types.js').View} */
 export function mountReading(root, acts) {
@@ -41,13 +43,15 @@ export function mountReading(root, acts) {
       fillRow(node, row.group, numbers?.value ?? '\u2013', numbers, String(row.followed), words.none);
     });
     const many = reading.gaps.length > MANY_PAIRS;
+    const lettered = many || reading.gaps.some(({ from, to }) => from.length + to.length > LONG_PAIR);
     table.classList.toggle('many', many);
+    table.classList.toggle('with-letters', lettered);
     show(gapHead, reading.gaps.length > 0);
     reconcile(gaps, reading.gaps, (row) => `${row.pair}:${row.from}:${row.to}:${many}`,
       (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
         const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
-        fillRow(node, many ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
+        fillRow(node, lettered ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
         node.cells[0]?.setAttribute('aria-label', name);
         node.cells[0]?.setAttribute('title', name);
         node.dataset.lane = row.state;

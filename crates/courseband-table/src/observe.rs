@@ -231,9 +231,28 @@ impl Observer<'_> {
             .map(|&row| TimeCell { text: self.table.cell(row as usize, column), line: self.table.line(row as usize) });
         let unit = self.table.columns[column].unit.as_deref().and_then(crate::time::Unit::from_word);
         let unit = unit.or_else(|| crate::names::time_unit(self.name(column)));
-        let times = read_times(cells, self.name(column), self.profiles[column].decimal, unit, self.request.date_order)?;
+        let times = read_times(cells, self.name(column), self.profiles[column].decimal, unit, self.request.date_order)
+            .map_err(|error| self.with_shift(error))?;
         self.notes.extend(times.note.clone());
         Ok(self.day_numbers_as_dates(times, column))
+    }
+
+    /// Says so where the cell's row has more cells than the header: it has shifted.
+    fn with_shift(&self, error: TableError) -> TableError {
+        let (sheet, width) = (self.table.sheet, self.table.sheet_names.len());
+        let TableError::Cell { row, column, value, message } = error else { return error };
+        let cells = sheet.record_at(row).map_or(0, |record| sheet.width_of(record));
+        let has_shifted = cells > width
+            && sheet
+                .record_at(row)
+                .is_some_and(|record| (width..cells).any(|at| !sheet.cell(record, at).trim().is_empty()));
+        let hint = match has_shifted {
+            true => format!(
+                " The row has {cells} cells and the header {width}: perhaps a separator stands inside a name; put that name in quotation marks."
+            ),
+            false => String::new(),
+        };
+        TableError::Cell { row, column, value, message: message + &hint }
     }
 
     /// A date column of numbers near 45000 holds a spreadsheet's day numbers.
