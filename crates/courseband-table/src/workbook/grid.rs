@@ -4,6 +4,9 @@ use crate::error::TableError;
 use crate::sheet::{MAX_COLUMNS, Sheet};
 use crate::text::{counted, quoted};
 
+/// Spreadsheets end at about a million rows.
+const MAX_ROWS: usize = 1 << 22;
+
 /// A part of a sheet, such as `B3:F90`. Counted from zero, ends included.
 #[derive(Debug, Clone, Copy, PartialEq, Eq)]
 pub struct CellRange {
@@ -133,6 +136,9 @@ impl Grid {
         let inside = self.row >= self.range.rows.0 && self.row <= self.range.rows.1;
         if self.cells.is_empty() || !inside {
             return Ok(false);
+        }
+        if self.row >= MAX_ROWS {
+            return Err(TableError::TooLarge { what: format!("it has cells below row {MAX_ROWS}") });
         }
         self.sheet.push(self.row + 1, &self.cells)?;
         let left = self.cells.iter().position(|cell| !cell.is_empty()).unwrap_or(0) + self.range.columns.0;

@@ -81,7 +81,7 @@ impl Ods {
 }
 
 fn fill_table(stream: &mut Stream<'_>, grid: &mut Grid) -> Result<(), TableError> {
-    let mut row = 0;
+    let mut row: usize = 0;
     loop {
         match stream.next()? {
             Token::Open(tag) => match tag.name().as_str() {
@@ -89,7 +89,7 @@ fn fill_table(stream: &mut Stream<'_>, grid: &mut Grid) -> Result<(), TableError
                     if grid.is_past(row) {
                         return Ok(());
                     }
-                    row += fill_row(stream, &tag, row, grid)?;
+                    row = row.saturating_add(fill_row(stream, &tag, row, grid)?);
                 }
                 // Drawings and notes beside the cells.
                 "shapes" | "forms" => skip(stream, &tag.name())?,
@@ -107,7 +107,7 @@ fn fill_row(stream: &mut Stream<'_>, tag: &Tag<'_>, row: usize, grid: &mut Grid)
     let repeats = tag.count("number-rows-repeated").unwrap_or(1).max(1);
     let hidden = tag.attribute("visibility").is_some_and(|word| word != "visible");
     grid.start(row);
-    let mut column = 0;
+    let mut column: usize = 0;
     loop {
         match stream.next()? {
             Token::Open(tag) => match tag.name().as_str() {
@@ -116,9 +116,9 @@ fn fill_row(stream: &mut Stream<'_>, tag: &Tag<'_>, row: usize, grid: &mut Grid)
                     // What is blank may go on to the last column there can be.
                     let filled = if cell.text.is_empty() { 0 } else { cell.columns };
                     for at in 0..filled.min(MAX_COLUMNS + 1) {
-                        grid.put(column + at, cell.text.clone())?;
+                        grid.put(column.saturating_add(at), cell.text.clone())?;
                     }
-                    column += cell.columns;
+                    column = column.saturating_add(cell.columns);
                 }
                 other => skip(stream, other)?,
             },
@@ -130,8 +130,11 @@ fn fill_row(stream: &mut Stream<'_>, tag: &Tag<'_>, row: usize, grid: &mut Grid)
     let filled = grid.end_row()?;
     grid.hidden += usize::from(filled && hidden);
     if filled {
-        for more in 1..repeats.min(MAX_REPEATS) {
-            grid.repeat(row + more)?;
+        if repeats > MAX_REPEATS {
+            return Err(TableError::TooLarge { what: format!("row {} is repeated {repeats} times", row + 1) });
+        }
+        for more in 1..repeats {
+            grid.repeat(row.saturating_add(more))?;
         }
     }
     Ok(repeats)

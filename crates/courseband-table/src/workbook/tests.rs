@@ -128,6 +128,38 @@ fn open_document_cells_repeat_and_notes_stay_out() {
 }
 
 #[test]
+fn rows_and_columns_without_end_are_refused() {
+    let sheet = |row: &str| {
+        format!(
+            "<document-content><body><spreadsheet><table name=\"T\">{row}</table></spreadsheet></body></document-content>"
+        )
+    };
+    let read = |row: &str| open(&packed(&[("content.xml", &sheet(row))])).read(None, None);
+    let end = "18446744073709551615";
+    let cell = |attributes: &str| format!("<table-cell value-type=\"string\" {attributes}><p>x</p></table-cell>");
+    let blank = format!("<table-cell number-columns-repeated=\"{end}\"/>");
+    let far = read(&format!("<table-row number-rows-repeated=\"{end}\"/><table-row>{}</table-row>", cell("")));
+    assert!(matches!(far, Err(TableError::TooLarge { .. })));
+    assert!(matches!(
+        read(&format!("<table-row>{blank}{blank}{}</table-row>", cell(""))),
+        Err(TableError::TooLarge { .. })
+    ));
+    let wide = read(&format!("<table-row>{}</table-row>", cell(&format!("number-columns-repeated=\"{end}\""))));
+    assert!(matches!(wide, Err(TableError::TooLarge { .. })));
+    let tall = read(&format!("<table-row number-rows-repeated=\"{end}\">{}</table-row>", cell("")));
+    assert!(matches!(tall, Err(TableError::TooLarge { .. })));
+    let rows = TWO.replace("r=\"4\"", &format!("r=\"{end}\""));
+    let parts = [
+        ("_rels/.rels", RELATED),
+        ("xl/workbook.xml", BOOK),
+        ("xl/_rels/workbook.xml.rels", PARTS),
+        ("xl/worksheets/one.xml", ONE),
+        ("xl/worksheets/two.xml", &rows),
+    ];
+    assert!(matches!(open(&packed(&parts)).read(Some("A & B"), None), Err(TableError::TooLarge { .. })));
+}
+
+#[test]
 fn what_cannot_be_read_is_refused_by_what_it_is() {
     let refused = |bytes: &[u8]| Workbook::open(bytes).expect_err("refused").to_string();
     assert!(refused(b"\xD0\xCF\x11\xE0\xA1\xB1\x1A\xE1rest").contains("older workbook (.xls)"));

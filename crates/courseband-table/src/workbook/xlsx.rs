@@ -66,7 +66,7 @@ impl Xlsx {
         let part = &self.parts[at];
         let text = self.archive.text(part)?.ok_or_else(|| damaged(&format!("its part {part} is missing")))?;
         let mut stream = Stream::new(&text, part);
-        let (mut next_row, mut next_column, mut hidden) = (0, 0, false);
+        let (mut next_row, mut next_column, mut hidden) = (0usize, 0, false);
         loop {
             match stream.next()? {
                 Token::Open(tag) if tag.name() == "row" => {
@@ -75,7 +75,7 @@ impl Xlsx {
                     if grid.is_past(row) {
                         return Ok(());
                     }
-                    (next_row, next_column) = (row + 1, 0);
+                    (next_row, next_column) = (row.saturating_add(1), 0);
                     hidden = tag.attribute("hidden").is_some_and(|flag| flag == "1" || flag == "true");
                     grid.start(row);
                 }
