@@ -3,7 +3,7 @@
 use crate::refused::Refused;
 use crate::session::Session;
 use crate::wire;
-use courseband_study::{Counts, SizeRequest};
+use courseband_study::{Counts, ReportContext, SizeRequest};
 use wasm_bindgen::prelude::wasm_bindgen;
 
 #[wasm_bindgen]
@@ -24,6 +24,18 @@ impl Session {
     pub fn usual(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
         wire::text(&study.usual(&plan)?)
+    }
+
+    /// The report of a plan, composed in words. `refits` is a JSON list as for [`Session::run_calibrated`], or empty text;
+    /// `context` is what the author did: see the study crate's `ReportContext`.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn report(&mut self, plan: &str, refits: &str, context: &str) -> Result<String, Refused> {
+        let context: ReportContext = wire::parsed(context, "report's context")?;
+        let refits = if refits.is_empty() { None } else { Some(wire::all_refits(refits)?) };
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.report(&plan, refits.as_ref(), &context)?)
     }
 
     /// A sample-size request that starts from what the table showed of a compared pair; empty text where there is none.

@@ -2,7 +2,7 @@
 
 use crate::refused::Refused;
 use crate::wire;
-use courseband_study::{Calibrator, Plan, Refits, Study};
+use courseband_study::{Calibrator, Plan, Study};
 use courseband_table::Observations;
 use wasm_bindgen::prelude::wasm_bindgen;
 
@@ -121,9 +121,7 @@ impl Session {
     /// # Errors
     /// As [`Session::run`].
     pub fn run_calibrated(&mut self, plan: &str, refits: &str) -> Result<String, Refused> {
-        let chunks: Vec<wire::Refits> = wire::parsed(refits, "refits")?;
-        let mut all = Refits::default();
-        chunks.into_iter().for_each(|chunk| all.add(&chunk.into()));
+        let all = wire::all_refits(refits)?;
         let (study, plan) = self.with(plan)?;
         wire::text(&study.run_calibrated(&plan, &all)?)
     }

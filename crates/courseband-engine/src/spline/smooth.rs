@@ -70,7 +70,7 @@ impl Smooth {
         let d = DMatrix::from_fn(k, k, |i, j| if i == j { eigen.eigenvalues[order[i]] } else { 0.0 });
         let penalty = z.tr_mul(&(d * &z));
         let mix = u * z * inverse_root(&penalty)?;
-        Some(Mixed::new(Raw::Cubes(distinct.to_vec()), mix, distinct))
+        Some(Mixed::smooth(Raw::Cubes(distinct.to_vec()), mix, distinct))
     }
 
     /// Penalised B-splines: `count` coefficients, at least five.
@@ -83,7 +83,7 @@ impl Smooth {
         });
         // Coefficients with given second differences and nothing along level and trend (Currie & Durban 2002, Stat Model 2:333).
         let mix = d.transpose() * (&d * d.transpose()).try_inverse()?;
-        Some(Mixed::new(Raw::Pieces(k), mix, distinct))
+        Some(Mixed::smooth(Raw::Pieces(k), mix, distinct))
     }
 
     /// Gaussian process at the knots. `range` in internal time.
@@ -93,7 +93,7 @@ impl Smooth {
         (0..n).for_each(|i| omega[(i, i)] += 1e-9);
         let mix = inverse_root(&omega)?;
         let at = knots.clone();
-        Some(Mixed::new(Raw::Matern(knots, range, roughness), mix, &at))
+        Some(Mixed::smooth(Raw::Matern(knots, range, roughness), mix, &at))
     }
 
     /// Cyclic cubic spline with `count` values around a circle of length `period`, internal time.
@@ -122,7 +122,7 @@ impl Smooth {
             eigen.eigenvectors[(i, kept[j])] / libm::sqrt(eigen.eigenvalues[kept[j]])
         });
         let places: Vec<f64> = (0..k).map(|j| j as f64 * h).collect();
-        Some(Mixed::new(Raw::Circle(period, seconds), mix, &places))
+        Some(Mixed::smooth(Raw::Circle(period, seconds), mix, &places))
     }
 
     /// Number of columns.
@@ -151,7 +151,7 @@ impl Smooth {
 const SCALE: f64 = 0.02;
 
 impl Mixed {
-    fn new(raw: Raw, mix: DMatrix<f64>, places: &[f64]) -> Smooth {
+    fn smooth(raw: Raw, mix: DMatrix<f64>, places: &[f64]) -> Smooth {
         let mut mixed = Mixed { raw, at_zero: vec![0.0; mix.ncols()], mix };
         let mut row = vec![0.0; mixed.mix.ncols()];
         mixed.fill(0.0, false, &mut row);

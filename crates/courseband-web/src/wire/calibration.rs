@@ -1,5 +1,6 @@
 //! What refits gave, chunk by chunk.
 
+use crate::refused::Refused;
 use courseband_study as study;
 use serde::{Deserialize, Serialize};
 
@@ -22,6 +23,14 @@ impl From<Refits> for study::Refits {
         let whole = |values: Vec<Option<f64>>| values.into_iter().map(|v| v.unwrap_or(f64::INFINITY)).collect();
         study::Refits { curves: whole(refits.curves), differences: whole(refits.differences) }
     }
+}
+
+/// All chunks of a JSON list together.
+pub(crate) fn all_refits(text: &str) -> Result<study::Refits, Refused> {
+    let chunks: Vec<Refits> = super::parsed(text, "refits")?;
+    let mut all = study::Refits::default();
+    chunks.into_iter().for_each(|chunk| all.add(&chunk.into()));
+    Ok(all)
 }
 
 #[cfg(test)]

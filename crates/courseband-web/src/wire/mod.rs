@@ -5,7 +5,7 @@ mod description;
 mod layout;
 mod preview;
 
-pub(crate) use calibration::Refits;
+pub(crate) use calibration::{Refits, all_refits};
 pub(crate) use description::Description;
 pub(crate) use layout::Layout;
 pub(crate) use preview::Preview;
