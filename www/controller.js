@@ -7,7 +7,10 @@ import { EngineError, Overtaken } from './engine.js';
 import { Calibration } from './calibration.js';
 import { Sizing } from './sizing.js';
 import { columnsUsed } from './context.js';
+import { NotOpened, analysisFrom, analysisText, fingerprintOf } from './analysis-file.js';
+import { fileName, save } from './exports.js';
 import { planToSend } from './plan.js';
+import { reportContext } from './report-context.js';
 import { text } from './text.js';
 import * as change from './state.js';
 import { findingsFrom, previewFrom, describedFrom } from './wire.js';
@@ -61,17 +64,21 @@ export class Controller {
   /** Asks for what the room in sight shows beyond the findings, once per plan. */
   #attend() {
     const { room, status } = this.state;
-    if ((room !== 'checks' && room !== 'usual') || (status !== 'ready' && status !== 'boundary')) return;
+    if ((room !== 'checks' && room !== 'usual' && room !== 'report') || (status !== 'ready' && status !== 'boundary')) return;
     const plan = this.#planText(this.state.choices);
-    if (this.state.answers[room]?.plan === plan) return;
-    const mine = () => this.state.answers[room]?.plan === plan;
-    this.set(change.answered(this.state, room, { plan, status: 'working', message: null }));
-    this.engine.answer(room, plan).then(
+    const refits = this.state.refits?.plan === plan ? this.state.refits.refits : '';
+    const context = room === 'report' ? reportContext(this.state, plan) : '';
+    const asked = room === 'report' ? `${plan}${refits.length}${context}` : plan;
+    if (this.state.answers[room]?.plan === asked) return;
+    const mine = () => this.state.answers[room]?.plan === asked;
+    this.set(change.answered(this.state, room, { plan: asked, status: 'working', message: null }));
+    const answer = room === 'report' ? this.engine.report(plan, refits, context) : this.engine.answer(room, plan);
+    answer.then(
       (json) => { if (mine()) this.set(change.answered(this.state, room, { status: 'done', value: JSON.parse(json) })); },
       (cause) => {
         if (!mine()) return;
         const message = cause instanceof Overtaken ? null : cause instanceof Error ? cause.message : String(cause);
-        this.set(change.answered(this.state, room, { plan: message === null ? '' : plan, status: 'done', value: null, message }));
+        this.set(change.answered(this.state, room, { plan: message === null ? '' : asked, status: 'done', value: null, message }));
       },
     );
   }
@@ -92,6 +99,9 @@ export class Controller {
         window.setTimeout(() => document.getElementById('paste-box')?.focus(), 50);
       },
       stop: () => this.stop(),
+      look: () => this.state,
+      saveAnalysis: (whole) => this.saveAnalysis(whole),
+      fixPlan: () => this.set({ ...this.state, fixed: this.state.choices.plan }),
       sizing: () => (this.sizing ??= new Sizing(this.assets.module, this.assets.workerText)),
       sizeFrom: async (pair) => {
         const json = await this.engine.sizeFrom(this.#planText(this.state.choices), pair);
@@ -139,8 +149,41 @@ export class Controller {
     if (bytes) await this.open(bytes, { kind: 'demo', name: demo.title }, demo);
   }
 
+  /** @param {boolean} whole With the table. */
+  async saveAnalysis(whole) {
+    const { table } = this.engine;
+    const { choices, source, fixed, findings } = this.state;
+    if (!table || !source) return;
+    const fingerprint = await fingerprintOf(table);
+    const analysis = { choices, source, table: whole ? table : null, fingerprint, fixed: fixed !== null };
+    save(`${fileName(source.name)}${whole ? '' : '-plan'}.courseband.json`, analysisText(analysis, findings?.version ?? ''), 'application/json');
+  }
+
+  /** A saved analysis takes the place of the table, or joins the open one where it was saved without. @param {File} file */
+  async openAnalysis(file) {
+    try {
+      const analysis = analysisFrom(await file.text());
+      const open = this.engine.table;
+      if (analysis.table === null) {
+        if (!open || this.state.source === null) throw new NotOpened(text.report.refused.otherTable(analysis.source.name));
+        const same = analysis.fingerprint !== null && analysis.fingerprint === (await fingerprintOf(open));
+        if (!same) throw new NotOpened(text.report.refused.wrongTable(analysis.source.name));
+        this.choose(text.report.reopened, () => analysis.choices, false);
+      } else {
+        await this.open(analysis.table, analysis.source, null, analysis.choices);
+      }
+      if (analysis.fixed) this.set({ ...this.state, fixed: analysis.choices.plan });
+    } catch (cause) {
+      this.set({ ...this.state, notice: cause instanceof NotOpened ? cause.message : text.data.paste.unreadable(file.name) });
+    }
+  }
+
   /** @param {File} file */
   async openFile(file) {
+    if (/\.json$/i.test(file.name)) {
+      await this.openAnalysis(file);
+      return;
+    }
     try {
       await this.open(new Uint8Array(await file.arrayBuffer()), { kind: 'own', name: file.name }, null);
     } catch {
@@ -148,11 +191,17 @@ export class Controller {
     }
   }
 
-  /** @param {Uint8Array} bytes @param {import('./types.js').Source} source @param {import('./types.js').Demo|null} demo */
-  async open(bytes, source, demo) {
+  /**
+   * @param {Uint8Array} bytes
+   * @param {import('./types.js').Source} source
+   * @param {import('./types.js').Demo|null} demo
+   * @param {import('./types.js').Choices|null} [choices] Of a saved analysis.
+   */
+  async open(bytes, source, demo, choices = null) {
     const wish = this.#wished();
     window.clearTimeout(this.typing);
     this.set(change.opening(this.state, source, demo));
+    if (choices) this.set({ ...this.state, choices });
     try {
       await this.engine.open(bytes);
     } catch (cause) {
@@ -232,7 +281,7 @@ export class Controller {
       if (wish !== this.wish) return;
       const answer = refits === null ? null : await this.engine.calibrated(plan, refits);
       if (wish !== this.wish) return;
-      this.set(answer ? change.calibrated(this.state, findingsFrom(answer.findings), answer) : { ...this.state, calibrating: null });
+      this.set(answer ? { ...change.calibrated(this.state, findingsFrom(answer.findings), answer), refits: { plan, refits: refits ?? '' } } : { ...this.state, calibrating: null });
     } catch {
       // The findings stand as they were, with bands by degrees of freedom.
       if (wish === this.wish) this.set({ ...this.state, calibrating: null, notice: text.notCalibrated });

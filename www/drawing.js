@@ -22,6 +22,16 @@ export function startDrawing(module) {
 }
 
 /**
+ * The same strips as the text of an SVG file.
+ * @param {{findings: string, traces: string}} drawing
+ * @param {DrawingView & {font: number}} view
+ * @returns {string}
+ */
+export function stripsSvg(drawing, view) {
+  return wasm_bindgen.strips_svg(drawing.findings, drawing.traces, JSON.stringify(view));
+}
+
+/**
  * Draws all strips and says where they are. The canvas gets the size it needs.
  * @param {HTMLCanvasElement} canvas
  * @param {{findings: string, traces: string}} drawing

@@ -123,6 +123,11 @@ export class Engine {
     return this.#ask(room, { plan });
   }
 
+  /** @param {string} plan @param {string} refits @param {string} context @returns {Promise<string>} */
+  report(plan, refits, context) {
+    return this.#ask('report', { plan, refits, context });
+  }
+
   /** A sample-size request from the fitted table. @param {string} plan @param {number} pair @returns {Promise<string>} */
   sizeFrom(plan, pair) {
     return this.#ask('sizeFrom', { plan, pair });

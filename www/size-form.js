@@ -48,7 +48,9 @@ export function freshForm() {
 
 /** Numbers in a list such as "0, 3; 7 10". @param {string} typed */
 export function numbersIn(typed) {
-  return typed.split(/[;\s]+|,\s+|,(?=\d+(?:$|[,;\s]))/).filter((part) => part !== '').map((part) => parseNumber(part));
+  // Beside semicolons a comma is a decimal comma.
+  const apart = typed.includes(';') ? /[;\s]+/ : /[,\s]+/;
+  return typed.split(apart).filter((part) => part !== '').map((part) => parseNumber(part));
 }
 
 /** @param {string} typed @returns {number[][]|null} */

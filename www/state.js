@@ -15,7 +15,7 @@ import { text } from './text.js';
 /** @returns {Choices} */
 export function freshChoices() {
   return {
-    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [],
+    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], edits: {},
   };
 }
 
@@ -26,7 +26,7 @@ export function initialState() {
     choices: freshChoices(), history: { past: [], future: [] },
     findings: null, drawing: null, change: null, message: null, notice: null,
     cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], demos: [], announcement: '',
-    answers: { checks: null, usual: null },
+    answers: { checks: null, usual: null, report: null }, refits: null, fixed: null,
   };
 }
 
@@ -198,7 +198,7 @@ function announcementOf(before, after) {
 /**
  * What a room asked for is under way, has come, or has failed. While a newer one is under way the last stays in sight.
  * @param {State} state
- * @param {'checks'|'usual'} room
+ * @param {'checks'|'usual'|'report'} room
  * @param {Partial<import('./types.js').Answer>} answer
  * @returns {State}
  */

@@ -8,6 +8,7 @@ import { plan } from './text/plan.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
 import { checks } from './text/checks.js';
+import { report } from './text/report.js';
 import { size } from './text/size.js';
 import { usual } from './text/usual.js';
 
@@ -27,11 +28,12 @@ export const text = {
   data,
   privacy,
   checks,
+  report,
   size,
   usual,
   words,
 
-  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses', size: 'Sample size' },
+  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses', size: 'Sample size', report: 'Report' },
   navigation: 'Rooms',
   skip: 'Skip to the room',
 

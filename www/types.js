@@ -109,6 +109,7 @@
  * @property {Record<string, string>} called Short names of columns.
  * @property {{one: string, many: string}} noun
  * @property {LeftOut[]} leftOut
+ * @property {Record<string, {text: string, base: string}>} edits Paragraphs of the report that the author rewrote.
  */
 
 /** @typedef {{plan: string, status: 'working'|'done', value: any, message: string|null}} Answer */
@@ -136,8 +137,10 @@
  * @property {number|null} took Milliseconds of the last fit.
  * @property {number[]} openPairs Pairs whose gap strip is open.
  * @property {Demo[]} demos
+ * @property {{plan: string, refits: string}|null} refits What the calibration of a plan gave.
+ * @property {Plan|null} fixed The plan as it was fixed.
  * @property {string} announcement
- * @property {{checks: Answer|null, usual: Answer|null}} answers What rooms asked for beyond the findings.
+ * @property {{checks: Answer|null, usual: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
  */
 
 /**
@@ -153,6 +156,9 @@
  * @property {(room: string) => void} go
  * @property {() => void} bringTable Goes to the paste box.
  * @property {() => void} stop
+ * @property {() => State} look The state as it is.
+ * @property {(whole: boolean) => Promise<void>} saveAnalysis With the table, or its fingerprint only.
+ * @property {() => void} fixPlan
  * @property {() => import('./sizing.js').Sizing} sizing The workers that simulate studies.
  * @property {(pair: number) => Promise<any>} sizeFrom A sample-size request from the fitted table; `null` where there is none.
  * @property {() => void} retry

@@ -29,6 +29,7 @@
     },
     checks: ({ plan }) => session.checks(plan),
     usual: ({ plan }) => session.usual(plan),
+    report: ({ plan, refits, context }) => session.report(plan, refits, context),
     sizeFrom: ({ plan, pair }) => session.size_from(plan, pair),
     sizeRun: ({ request, design, first, count }) => wasm_bindgen.size_run(request, design, first, count),
     sizeAnswer: ({ request, counts }) => wasm_bindgen.size_answer(request, counts),

@@ -96,3 +96,63 @@ test('sample size: starts from the fitted table', async () => {
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('report: composed, rewritten, exported, and reopened to the same digits', async () => {
+  const page = await openPage(browser);
+  await page.waitForFunction(() => !document.querySelector('.provisional:not([hidden])'), null, { timeout: 60000 });
+  await enter(page, 'report');
+  await page.waitForSelector('[data-section="methods"]');
+  const methods = await page.locator('[data-section="methods"]').innerText();
+  assert.match(methods, /restricted maximum likelihood/);
+  assert.match(methods, /1000 simulated tables/);
+  assert.match(await page.locator('[data-section="data"]').innerText(), /invented example/);
+  // A paragraph is rewritten; undo brings the composed one back.
+  const first = page.locator('[data-paragraph="question.0"]');
+  await first.locator('button').first().click();
+  await first.locator('textarea').fill('Do dressings matter?');
+  await first.locator('button').first().click();
+  assert.match(await first.innerText(), /Do dressings matter/);
+  // What is saved.
+  const saved = async (act) => {
+    const [download] = await Promise.all([page.waitForEvent('download'), page.click(`[data-act="${act}"]`)]);
+    const { readFile } = await import('node:fs/promises');
+    return { name: download.suggestedFilename(), bytes: await readFile(await download.path()) };
+  };
+  const figure = await saved('save-svg');
+  assert.match(figure.name, /invented\.svg$/);
+  assert.match(figure.bytes.toString(), /^<svg[\s\S]*<\/svg>\s*$/);
+  const picture = await saved('save-png');
+  assert.equal(picture.bytes.subarray(1, 4).toString(), 'PNG');
+  // 170 mm at 300 dots per inch.
+  assert.ok(Math.abs(picture.bytes.readUInt32BE(16) - 2008) <= 6, String(picture.bytes.readUInt32BE(16)));
+  const html = await saved('save-html');
+  assert.match(html.bytes.toString(), /Do dressings matter\?/);
+  const gaps = page.locator('summary', { hasText: 'Gaps at the visits' });
+  await gaps.click();
+  assert.match((await saved('csv-gaps')).bytes.toString(), /Gel film,Plain gauze,0,/);
+  await enter(page, 'courses');
+  const before = await page.locator('[data-region="findings"]').innerText();
+  await enter(page, 'report');
+  const analysis = await saved('save-analysis');
+  // Another visit to the page reopens it.
+  const again = await openPage(browser, { room: 'data' });
+  await again.setInputFiles('#table-file', { name: analysis.name, mimeType: 'application/json', buffer: analysis.bytes });
+  await rested(again);
+  await enter(again, 'courses');
+  await again.waitForFunction(() => !document.querySelector('.provisional:not([hidden])'), null, { timeout: 60000 });
+  assert.equal(await again.locator('[data-region="findings"]').innerText(), before);
+  await enter(again, 'report');
+  await again.waitForFunction(() => document.querySelector('[data-paragraph="question.0"]')?.textContent?.includes('Do dressings matter?'));
+  // Without its table it asks for the right one.
+  await enter(page, 'report');
+  const plan = await saved('save-plan');
+  await enter(again, 'data');
+  await again.fill('[data-region="paste"] textarea', 'who,day,arm,y\na,0,x,1\na,1,x,2\nb,0,z,2\nb,1,z,4\nc,0,x,2\nc,1,x,2.5\nd,0,z,3\nd,1,z,6');
+  await again.waitForTimeout(500);
+  await rested(again);
+  await again.setInputFiles('#table-file', { name: plan.name, mimeType: 'application/json', buffer: plan.bytes });
+  await again.waitForFunction(() => document.querySelector('[data-region="message"]')?.textContent?.includes('fingerprint differs'));
+  assert.deepEqual([...page.problems, ...again.problems], []);
+  await page.context().close();
+  await again.context().close();
+});

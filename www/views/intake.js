@@ -17,7 +17,7 @@ const PAUSE = 450;
 export function mountIntake(root, acts) {
   const box = mountPasteBox(acts);
   const file = el('input', {
-    type: 'file', class: 'unseen', id: 'table-file', accept: '.csv,.tsv,.txt,.tab,.xlsx,.xlsm,.ods,text/*',
+    type: 'file', class: 'unseen', id: 'table-file', accept: '.csv,.tsv,.txt,.tab,.xlsx,.xlsm,.ods,.json,text/*',
     onchange: () => {
       const [chosen] = Array.from(file.files ?? []);
       if (chosen) acts.openFile(chosen);

@@ -14,6 +14,7 @@
 //! Nothing is divided by D, so variances may be zero.
 //!
 //! Clusters are taken out after their subjects: see [`crate::clusters`].
+//! For the full likelihood `ln|A|` is taken over the penalised columns alone and N stands for N - p.
 //! The gradient runs backwards through the same steps: the derivative for each
 //! small matrix is formed once and contracted with what that matrix depends on.
 
@@ -243,19 +244,25 @@ impl Pass<'_> {
             log_prior += columns.len() as f64 * theta;
             columns.for_each(|j| a[(j, j)] += precision);
         }
+        let (log_a, counted) = if self.layout.full {
+            (log_det(&Cholesky::new(submatrix(&a, &self.design.penalised(block)))?), rows as f64)
+        } else {
+            (f64::NAN, rows as f64 - free as f64)
+        };
         let factor = Cholesky::new(a)?;
-        let log_a: f64 = factor.l_dirty().diagonal().iter().map(|&d| 2.0 * libm::log(d)).sum();
+        let log_a = if self.layout.full { log_a } else { log_det(&factor) };
         let coefficients = factor.solve(&b);
         let quadratic = c - coefficients.dot(&b);
-        let constant = (rows as f64 - free as f64) * LN_TWO_PI;
+        let constant = counted * LN_TWO_PI;
         Some((constant + log_v + log_prior + log_a + quadratic, Solved { factor, coefficients }))
     }
 
     fn backward(&self, forward: &Forward, solved: &[Solved], derivatives: &[Products], gradient: &mut [f64]) {
         let placement = &self.design.placement;
         // Derivative for F'V^-1 F of each block.
-        let whole: Vec<DMatrix<f64>> =
-            solved.iter().map(|s| s.factor.inverse() + &s.coefficients * s.coefficients.transpose()).collect();
+        let whole: Vec<DMatrix<f64>> = (solved.iter().enumerate())
+            .map(|(block, s)| self.integrated(block, s) + &s.coefficients * s.coefficients.transpose())
+            .collect();
         for (block, adjoint) in whole.iter().enumerate() {
             for (entry, columns) in self.layout.priors(self.design, block) {
                 let count = columns.len() as f64;
@@ -280,6 +287,24 @@ impl Pass<'_> {
         }
         let through = self.cluster_backward(forward, solved, &whole, gradient);
         self.patterns_backward(forward, &parts, &through, derivatives, gradient);
+    }
+
+    /// Derivative of `ln|A|` over the unknowns that are integrated out: all, or the penalised ones.
+    fn integrated(&self, block: usize, solved: &Solved) -> DMatrix<f64> {
+        if !self.layout.full {
+            return solved.factor.inverse();
+        }
+        let l = solved.factor.l();
+        let places = self.design.penalised(block);
+        let mut padded = DMatrix::zeros(l.nrows(), l.nrows());
+        if let Some(inverse) = Cholesky::new(submatrix(&(&l * l.transpose()), &places)).map(|c| c.inverse()) {
+            for (i, &row) in places.iter().enumerate() {
+                for (j, &column) in places.iter().enumerate() {
+                    padded[(row, column)] = inverse[(i, j)];
+                }
+            }
+        }
+        padded
     }
 
     /// Derivatives through the clusters, for each pattern; empty without clusters.
@@ -361,6 +386,14 @@ impl Pass<'_> {
             }
         }
     }
+}
+
+fn submatrix(whole: &DMatrix<f64>, places: &[usize]) -> DMatrix<f64> {
+    DMatrix::from_fn(places.len(), places.len(), |i, j| whole[(places[i], places[j])])
+}
+
+fn log_det(factor: &Cholesky<f64, Dyn>) -> f64 {
+    factor.l_dirty().diagonal().iter().map(|&d| 2.0 * libm::log(d)).sum()
 }
 
 /// A group's part of its block: the derivative for `F'V^-1 F`, and the coefficients.

@@ -8,7 +8,7 @@
 
 use crate::basis::{Units, group_bases, with_start};
 use crate::criterion::{Criterion, Solved};
-use crate::model::{Data, Model, Serial};
+use crate::model::{Data, Likelihood, Model, Serial};
 use crate::optimise::{Bounds, Objective, Point, Polished, newton, plain_inverse, quasi_newton, start};
 use crate::params::{Layout, Parameter};
 use crate::reduce::Design;
@@ -471,6 +471,22 @@ impl Fit {
         -self.value
             - (rows - free) as f64 * libm::log(units.response_scale)
             - trends as f64 * libm::log(units.time_span)
+    }
+
+    /// Log likelihood in the table's own units, all constants included; that which was maximised.
+    #[must_use]
+    pub fn log_likelihood(&self) -> f64 {
+        if self.model.likelihood == Likelihood::Restricted {
+            return self.log_reml();
+        }
+        let rows: usize = self.design.rows.iter().sum();
+        -self.value - rows as f64 * libm::log(self.design.units.response_scale)
+    }
+
+    /// Number of estimated parameters: free columns of the mean, and variance parameters inside their bounds.
+    #[must_use]
+    pub fn parameters(&self) -> usize {
+        self.design.unpenalised() + self.free.len()
     }
 
     /// Total error standard deviation of a group, on the modelled scale.

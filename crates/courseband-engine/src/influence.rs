@@ -66,7 +66,7 @@ impl Design {
     }
 
     /// The design without one subject, units and bases kept. `None` where its group would be empty.
-    fn without(&self, subject: usize) -> Option<Design> {
+    pub(crate) fn without(&self, subject: usize) -> Option<Design> {
         let mut design = self.clone();
         let at = design.patterns.iter().position(|p| p.subjects.contains(&subject))?;
         let pattern = &mut design.patterns[at];

@@ -14,6 +14,7 @@ mod optimise;
 mod params;
 mod placement;
 mod posterior;
+mod predict;
 mod reduce;
 mod refit;
 mod residuals;
@@ -32,9 +33,11 @@ pub use calibrate::{Calibration, calibrated_quantile};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use influence::Influence;
 pub use model::{
-    Basis, ClusterEffects, Data, Dimension, Model, Serial, Shape, Shared, Sharing, SubjectEffects, SubjectRows,
+    Basis, ClusterEffects, Data, Dimension, Likelihood, Model, Serial, Shape, Shared, Sharing, SubjectEffects,
+    SubjectRows,
 };
 pub use params::Parameter;
 pub use posterior::{Contrast, Estimate, Joint, Posterior};
+pub use predict::Foreseen;
 pub use residuals::Residual;
 pub use spline::Roughness;

@@ -176,6 +176,16 @@ pub enum Serial {
     Ar1Nugget,
 }
 
+/// Which likelihood is maximised.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum Likelihood {
+    /// Restricted: free columns integrated out. For estimates and inference.
+    #[default]
+    Restricted,
+    /// Full: free columns at their optimum. For comparing models with different free columns.
+    Full,
+}
+
 /// The model to fit.
 #[derive(Debug, Clone, Copy, PartialEq)]
 pub struct Model {
@@ -196,6 +206,8 @@ pub struct Model {
     pub serial: Serial,
     /// Error variance: one for all groups or one per group.
     pub spread: Sharing,
+    /// Which likelihood is maximised.
+    pub likelihood: Likelihood,
 }
 
 impl Default for Model {
@@ -210,6 +222,7 @@ impl Default for Model {
             clusters: ClusterEffects::None,
             serial: Serial::None,
             spread: Sharing::Common,
+            likelihood: Likelihood::Restricted,
         }
     }
 }

@@ -15,7 +15,7 @@
 //! Responses are internal (unit variance), times are internal (unit span).
 
 use crate::basis::GroupBasis;
-use crate::model::{ClusterEffects, Model, Serial, Sharing, SubjectEffects};
+use crate::model::{ClusterEffects, Likelihood, Model, Serial, Sharing, SubjectEffects};
 use crate::reduce::Design;
 use crate::whiten::ErrorShape;
 use nalgebra::DMatrix;
@@ -72,6 +72,8 @@ pub(crate) struct Layout {
     /// Columns of subject and cluster effects, those of a spline among them.
     width: usize,
     curved: usize,
+    /// True where the free columns are not integrated out.
+    pub(crate) full: bool,
 }
 
 impl Layout {
@@ -93,6 +95,7 @@ impl Layout {
             clusters: model.clusters,
             width: design.effects.width(),
             curved: design.effects.curved(),
+            full: model.likelihood == Likelihood::Full,
         };
         layout.add_smoothing(model, bases);
         for (group, slot) in layout.owners(model.spread, groups) {

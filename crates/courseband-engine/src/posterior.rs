@@ -31,6 +31,11 @@ pub struct Contrast {
 }
 
 impl Contrast {
+    /// Weights on a group's extended columns, the response's centre left out.
+    pub(crate) fn of_columns(group: usize, weights: Vec<f64>) -> Contrast {
+        Contrast { parts: vec![(group, weights)], level: 0.0 }
+    }
+
     /// `factor * self`.
     #[must_use]
     pub fn times(mut self, factor: f64) -> Contrast {
@@ -329,7 +334,7 @@ pub(crate) fn contrast_value(placement: &Placement, contrast: &Contrast, coeffic
     contrast.parts.iter().map(of).sum()
 }
 
-fn solved_value(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
+pub(crate) fn solved_value(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
     let of = |(g, w): &(usize, Vec<f64>)| -> f64 {
         let own = &solved[placement.block(*g)].coefficients;
         w.iter().enumerate().map(|(j, w)| w * own[placement.position(*g, j)]).sum()
@@ -354,7 +359,7 @@ pub(crate) fn draw_coefficients(solved: &[Solved], rng: &mut crate::special::Rng
         .collect()
 }
 
-fn variance(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
+pub(crate) fn variance(placement: &Placement, solved: &[Solved], contrast: &Contrast) -> f64 {
     block_weights(placement, contrast).iter().map(|(block, w)| half_solve(&solved[*block], w).norm_squared()).sum()
 }
 

@@ -121,6 +121,26 @@ impl Design {
         self.bases.iter().map(GroupBasis::unpenalised).sum::<usize>() + self.shared.free
     }
 
+    /// Extended columns of one row of a pattern.
+    pub(crate) fn columns_of(&self, pattern: &Pattern, row: usize) -> Vec<f64> {
+        let own = self.bases[pattern.group].columns();
+        let (from, shared) = (pattern.table_row[row] * own, self.shared.columns());
+        let mut columns = self.tables[pattern.group][from..from + own].to_vec();
+        columns.extend(&pattern.shared[row * shared..(row + 1) * shared]);
+        columns
+    }
+
+    /// Places of a block's penalised unknowns.
+    pub(crate) fn penalised(&self, block: usize) -> Vec<usize> {
+        let own = (0..self.bases.len()).filter(|&g| self.placement.block(g) == block).flat_map(|g| {
+            let first = self.placement.position(g, self.bases[g].unpenalised());
+            first..first + self.bases[g].penalised()
+        });
+        let size = self.placement.size(block);
+        let shared = size - self.placement.shared() + self.shared.free;
+        own.chain(if self.placement.shared() > 0 { shared..size } else { size..size }).collect()
+    }
+
     /// The first free shared column that the groups' own columns and those before it determine.
     pub(crate) fn inseparable(&self) -> Option<usize> {
         if self.shared.free == 0 {

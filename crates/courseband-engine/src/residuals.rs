@@ -64,7 +64,7 @@ impl Fit {
     }
 
     /// Covariance of one subject's rows, internal unit; its cluster's effects count as its own.
-    fn subject_total(&self, pattern: &Pattern) -> DMatrix<f64> {
+    pub(crate) fn subject_total(&self, pattern: &Pattern) -> DMatrix<f64> {
         let times = &pattern.times;
         let factor = self.layout.subject_factor(&self.theta, pattern.group);
         let cluster = self.layout.cluster_factor(&self.theta);

@@ -256,6 +256,7 @@ impl Plan {
                 _ => engine::Serial::None,
             },
             spread: sharing(self.errors.spread == Spread::ByGroup),
+            likelihood: engine::Likelihood::Restricted,
         }
     }
 }

@@ -151,6 +151,16 @@ impl<'a> Evaluation<'a> {
         members
     }
 
+    /// Estimated gaps on the grid, one list per pair.
+    pub(crate) fn gap_estimates(&self) -> Vec<Vec<Option<f64>>> {
+        let gap = |(from, to): (usize, usize)| {
+            let range = self.overlap(from, to).unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
+            let estimates = self.estimates(|t| self.fit.gap(from, to, t), &self.grid, range);
+            estimates.into_iter().map(|e| e.map(|e| e.mean)).collect()
+        };
+        self.pairs().into_iter().map(gap).collect()
+    }
+
     /// The families whose largest error a calibration follows: courses, then gaps.
     pub(crate) fn families(&self) -> Vec<Vec<Contrast>> {
         let contrasts = |members: Vec<(Contrast, Estimate)>| members.into_iter().map(|(c, _)| c).collect();

@@ -8,6 +8,7 @@
 
 mod adjust;
 mod blocks;
+mod candidates;
 mod check_plan;
 mod checks;
 mod cohort;
@@ -27,6 +28,7 @@ mod usual;
 
 pub use adjust::Adjustment;
 pub use blocks::{BendEffect, BlockEffects, BlockGap};
+pub use candidates::{Candidate, Candidates};
 pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
 pub use findings::*;
 pub use housing::ClusterSummary;

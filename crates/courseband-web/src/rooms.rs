@@ -26,6 +26,15 @@ impl Session {
         wire::text(&study.usual(&plan)?)
     }
 
+    /// Other models beside the plan's.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn candidates(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.candidates(&plan)?)
+    }
+
     /// The report of a plan, composed in words. `refits` is a JSON list as for [`Session::run_calibrated`], or empty text;
     /// `context` is what the author did: see the study crate's `ReportContext`.
     ///

@@ -2,7 +2,7 @@
 
 use super::*;
 use crate::basis::GroupBasis;
-use crate::model::{Basis, ClusterEffects, Dimension, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
+use crate::model::{Basis, ClusterEffects, Dimension, Likelihood, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
 use crate::special::Rng;
 use crate::spline::Roughness;
 
@@ -39,6 +39,7 @@ fn model(subjects: SubjectEffects, serial: Serial) -> Model {
         clusters: ClusterEffects::None,
         serial,
         spread: Sharing::Common,
+        likelihood: Likelihood::Restricted,
     }
 }
 
@@ -80,6 +81,9 @@ fn wider() -> Vec<(Data, Model)> {
             }
             all.push((adjusted(plain()), model(subjects, serial)));
         }
+        let full = Model { likelihood: Likelihood::Full, ..model(SubjectEffects::Slope, serial) };
+        all.push((plain(), full));
+        all.push((housed(adjusted(plain()), true), Model { clusters: ClusterEffects::Slope, ..full }));
         let curve = Model { subjects_spread: Sharing::ByGroup, ..model(SubjectEffects::Curve, serial) };
         all.push((plain(), curve));
         all.push((housed(plain(), true), Model { clusters: ClusterEffects::Slope, ..curve }));
@@ -203,9 +207,10 @@ fn dense_value(data: &Data, design: &Design, layout: &Layout, theta: &[f64]) -> 
     let b = xvx.solve(&vx.tr_mul(&y));
     let r = &y - &x * &b;
     let log_det = |l: &DMatrix<f64>| l.diagonal().iter().map(|d| 2.0 * d.ln()).sum::<f64>();
-    0.5 * ((rows - free) as f64 * (2.0 * std::f64::consts::PI).ln()
+    let (counted, integrated) = if layout.full { (rows, 0.0) } else { (rows - free, log_det(&xvx.l())) };
+    0.5 * (counted as f64 * (2.0 * std::f64::consts::PI).ln()
         + log_det(&factor.l())
-        + log_det(&xvx.l())
+        + integrated
         + r.dot(&factor.solve(&r)))
 }
 

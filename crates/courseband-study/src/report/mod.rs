@@ -26,6 +26,8 @@ pub struct ReportContext {
     pub excluded_late: Vec<usize>,
     /// What else was looked at, in words: other models, other scales.
     pub looked_at: Vec<String>,
+    /// Where the plan departs from the one that was fixed beforehand.
+    pub departures: Vec<String>,
     /// What the checks said, in one sentence; empty where they were not looked at.
     pub checks: String,
 }
@@ -235,6 +237,10 @@ fn cautions(findings: &Findings, context: &ReportContext) -> Vec<String> {
             "Also looked at: {}. The bands do not account for a choice among models.",
             joined(&context.looked_at)
         ));
+    }
+    if !context.departures.is_empty() {
+        paragraphs
+            .push(format!("Departures from the plan that was fixed beforehand: {}.", context.departures.join("; ")));
     }
     if findings.groups.len() > 1 {
         paragraphs.push(format!(

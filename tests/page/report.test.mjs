@@ -1,0 +1,68 @@
+/** The analysis file, exports and rewritten paragraphs. */
+
+import assert from 'node:assert/strict';
+import { test } from 'node:test';
+import { NotOpened, analysisFrom, analysisText, departures, fingerprintOf } from '../../www/analysis-file.js';
+import { csvCell, csvOf, htmlOf } from '../../www/exports.js';
+import { defaultPlan } from '../../www/plan.js';
+import { withEdits } from '../../www/views/report-text.js';
+import { designsIn, freshForm, numbersIn, requestOf, schedulesOf } from '../../www/size-form.js';
+
+const choices = { plan: { ...defaultPlan(), subjects: 'slope' }, called: { a: 'b' }, noun: { one: 'mouse', many: 'mice' }, leftOut: [{ row: 3, column: null, reason: 'lost', seen: true }], edits: {} };
+
+test('an analysis comes back as it was saved, to the byte', async () => {
+  const table = new Uint8Array(70000).map((_, k) => k % 251);
+  const fingerprint = await fingerprintOf(table);
+  const back = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table, fingerprint, fixed: true }, '1.2.3'));
+  assert.deepEqual(back.choices, choices);
+  assert.deepEqual(back.table, table);
+  assert.equal(back.fingerprint, fingerprint);
+  assert.equal(fingerprint.length, 64);
+  assert.equal(back.fixed, true);
+  const without = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table: null, fingerprint, fixed: false }, '1.2.3'));
+  assert.equal(without.table, null);
+});
+
+test('what is no analysis, or a later one, is refused in words', () => {
+  for (const bad of ['{', '{}', '[]', '{"courseband": 1}', 'null']) assert.throws(() => analysisFrom(bad), NotOpened, bad);
+  assert.throws(() => analysisFrom('{"courseband": "9.0.0", "format": 99, "choices": {"plan": {}}}'), /later version \(9\.0\.0\)/);
+});
+
+test('departures are named key by key', () => {
+  const now = { ...defaultPlan(), subjects: 'slope', errors: { serial: 'ar1', spread: 'common', nugget: false } };
+  assert.deepEqual(departures(defaultPlan(), now), ['subjects: "intercept" \u2192 "slope"', 'errors.serial: "none" \u2192 "ar1"']);
+  assert.deepEqual(departures(now, now), []);
+});
+
+test('no cell of an exported table is taken for a formula', () => {
+  for (const cell of ['=1+1', '+cmd', '-cmd|x', '@sum', '\tx', '\r=1']) assert.match(csvCell(cell), /^"?'/, cell);
+  assert.equal(csvCell('\u22123.2'), '-3.2');
+  assert.equal(csvCell('-3.2'), '-3.2');
+  assert.equal(csvCell('a "b", c'), '"a ""b"", c"');
+  assert.equal(csvOf({ heads: ['a'], rows: [['=x'], ['1']] }, 'invented'), '\ufeffinvented\r\na\r\n\'=x\r\n1\r\n');
+});
+
+test('cells are text in the report file, never markup', () => {
+  const report = { title: '<b>', sections: [{ title: 'R', paragraphs: ['a < b & "c"'] }], tables: [{ title: 't', heads: ['<i>'], rows: [['<script>']] }], items: [], references: [] };
+  const html = htmlOf(report, '<svg></svg>', { figure: 'f', items: 'i', references: 'r', author: 'a', mark: 'm' });
+  assert.doesNotMatch(html, /<script>|<i>|<b>/);
+  assert.match(html, /a &lt; b &amp; &quot;c&quot;/);
+});
+
+test('a rewritten paragraph stands while the numbers behind it do', () => {
+  const report = { sections: [{ key: 'results', paragraphs: ['gap 3', 'gap 4'] }] };
+  const edits = { 'results.0': { text: 'my words', base: 'gap 3' }, 'results.1': { text: 'old words', base: 'gap 9' } };
+  assert.deepEqual(withEdits(report, edits).sections[0].paragraphs, ['my words', 'gap 4']);
+});
+
+test('the sample-size form makes a request or says what is wrong where', () => {
+  const made = requestOf({ ...freshForm(), known: 'sem', spread: '2', n: '9' });
+  assert.equal(made.request.spread.on_a_day, 6);
+  assert.deepEqual(designsIn('6, 8:12'), [[6, 6], [8, 12]]);
+  assert.equal(designsIn('1'), null);
+  assert.deepEqual(numbersIn('0, 3, 7 10.5'), [0, 3, 7, 10.5]);
+  assert.deepEqual(numbersIn('0; 3,5; 7'), [0, 3.5, 7]);
+  const wrong = requestOf({ ...freshForm(), days: '3, 2', alike: '1', power: 'x' });
+  assert.deepEqual(Object.keys(wrong.problems).sort(), ['alike', 'days', 'power']);
+  assert.deepEqual(schedulesOf([0, 1, 4]).find((one) => one.name === 'even').days, [0, 2, 4]);
+});
