@@ -153,12 +153,12 @@ export function redone(state) {
  */
 export function fitted(state, findings, drawing, took) {
   if (findings.fit.status === 'failed') {
-    return { ...failed(state, findings.fit.remarks.join(' ')), took };
+    return { ...failed(state, findings.fit.remarks.join(' ')), took, refits: null };
   }
   const days = state.change ? onsetChange(state.findings, findings) : null;
   const status = findings.fit.status === 'boundary' ? 'boundary' : 'ready';
   return {
-    ...state, status, findings, drawing, took, message: null, slow: false, seen: true,
+    ...state, status, findings, drawing, took, refits: null, message: null, slow: false, seen: true,
     change: state.change ? { ...state.change, ...(days ?? {}) } : null,
     cursor: keptCursor(state.cursor, findings),
     openPairs: state.openPairs.filter((pair) => pair < findings.differences.length),

@@ -99,7 +99,7 @@ test('sample size: starts from the fitted table', async () => {
 
 test('report: composed, rewritten, exported, and reopened to the same digits', async () => {
   const page = await openPage(browser);
-  await page.waitForFunction(() => !document.querySelector('.provisional:not([hidden])'), null, { timeout: 60000 });
+  await page.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 60000 });
   await enter(page, 'report');
   await page.waitForSelector('[data-section="methods"]');
   const methods = await page.locator('[data-section="methods"]').innerText();
@@ -139,7 +139,7 @@ test('report: composed, rewritten, exported, and reopened to the same digits', a
   await again.setInputFiles('#table-file', { name: analysis.name, mimeType: 'application/json', buffer: analysis.bytes });
   await rested(again);
   await enter(again, 'courses');
-  await again.waitForFunction(() => !document.querySelector('.provisional:not([hidden])'), null, { timeout: 60000 });
+  await again.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 60000 });
   assert.equal(await again.locator('[data-region="findings"]').innerText(), before);
   await enter(again, 'report');
   await again.waitForFunction(() => document.querySelector('[data-paragraph="question.0"]')?.textContent?.includes('Do dressings matter?'));

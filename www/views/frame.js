@@ -52,6 +52,7 @@ export function mountFrame(body, acts) {
   return {
     update(state) {
       document.documentElement.dataset.state = state.status;
+      document.documentElement.dataset.bands = state.calibrating ? 'calibrating' : state.refits ? 'calibrated' : 'quick';
       if (state.room !== shown) enter(state.room);
       for (const { room, home, view } of homes) {
         show(home, room.id === state.room);

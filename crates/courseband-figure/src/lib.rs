@@ -31,7 +31,7 @@ pub use layout::{Anchor, Arrow, End, Layout, Rect, StripBox, Text, TimeRange, la
 pub use palette::{Palette, Rgb};
 pub use scale::{Kind, Scale};
 pub use source::*;
-pub use svg::to_svg;
+pub use svg::{FAMILY as SVG_FAMILY, to_svg};
 pub use text::{Estimate, Measure};
 pub use ticks::Tick;
 pub use view::{Theme, View};

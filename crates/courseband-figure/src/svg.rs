@@ -11,7 +11,7 @@ const GRID: u32 = 10;
 /// The backend divides text sizes by this.
 const TEXT_DIVISOR: f64 = 1.24;
 /// Fonts that are widely there, by their generic kin last.
-const FAMILY: &str = "Helvetica, Arial, sans-serif";
+pub const FAMILY: &str = "Helvetica, Arial, sans-serif";
 
 /// Draws a figure into the text of an SVG file.
 ///

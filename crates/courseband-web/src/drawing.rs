@@ -2,7 +2,9 @@
 
 use crate::refused::Refused;
 use crate::wire;
-use courseband_figure::{Estimate, Figure, Measure, Source, Surface, Traces, View, describe, draw, lay_out, to_svg};
+use courseband_figure::{
+    Estimate, Figure, Measure, SVG_FAMILY, Source, Surface, Traces, View, describe, draw, lay_out, to_svg,
+};
 use plotters_canvas::CanvasBackend;
 use serde::Serialize;
 use wasm_bindgen::prelude::wasm_bindgen;
@@ -28,7 +30,7 @@ pub fn draw_strips(canvas: &HtmlCanvasElement, findings: &str, traces: &str, vie
     let figure = figure(findings, traces, view, FLAG)?;
     let ratio = if figure.view.ratio.is_finite() { figure.view.ratio.clamp(0.5, 8.0) } else { 1.0 };
     let context = context_of(canvas).ok_or_else(|| Refused::page("This browser gives no canvas to draw on."))?;
-    let layout = lay_out(&figure, &Pencil { context: &context });
+    let layout = lay_out(&figure, &Pencil { context: &context, family: FAMILY });
     canvas.set_width((layout.width * ratio).round() as u32);
     canvas.set_height((layout.height * ratio).round() as u32);
     let scaled = context.set_transform(1.0 / FINE, 0.0, 0.0, 1.0 / FINE, 0.0, 0.0);
@@ -48,7 +50,14 @@ pub fn draw_strips(canvas: &HtmlCanvasElement, findings: &str, traces: &str, vie
 #[wasm_bindgen]
 pub fn strips_svg(findings: &str, traces: &str, view: &str) -> Result<String, Refused> {
     let figure = figure(findings, traces, view, 0.0)?;
-    to_svg(&figure, &Estimate).map_err(Refused::page)
+    // Measured as this browser will show it, where it has a canvas.
+    let canvas = web_sys::window().and_then(|window| window.document()?.create_element("canvas").ok());
+    let context = canvas.and_then(|canvas| context_of(canvas.dyn_ref::<HtmlCanvasElement>()?));
+    match &context {
+        Some(context) => to_svg(&figure, &Pencil { context, family: SVG_FAMILY }),
+        None => to_svg(&figure, &Estimate),
+    }
+    .map_err(Refused::page)
 }
 
 fn figure(findings: &str, traces: &str, view: &str, head_room: f64) -> Result<Figure, Refused> {
@@ -66,12 +75,13 @@ fn context_of(canvas: &HtmlCanvasElement) -> Option<CanvasRenderingContext2d> {
 /// Measures with the canvas that is drawn on.
 struct Pencil<'a> {
     context: &'a CanvasRenderingContext2d,
+    family: &'a str,
 }
 
 impl Measure for Pencil<'_> {
     fn width(&self, text: &str, size: f64, bold: bool) -> f64 {
         let weight = if bold { "bold" } else { "normal" };
-        self.context.set_font(&format!("{weight} {size}px {FAMILY}"));
+        self.context.set_font(&format!("{weight} {size}px {}", self.family));
         match self.context.measure_text(text) {
             Ok(metrics) => metrics.width(),
             Err(_) => Estimate.width(text, size, bold),

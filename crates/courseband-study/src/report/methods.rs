@@ -2,8 +2,8 @@
 
 use crate::findings::Findings;
 use crate::plan::{
-    BandKind, Basis, Dimension, Pairs, Serial, Shape, Sharing, SmallSample, Smoothness, Spread, Start, SubjectEffects,
-    Transform,
+    BandKind, Basis, Dimension, MarginUnit, Pairs, Serial, Shape, Sharing, SmallSample, Smoothness, Spread, Start,
+    SubjectEffects, Transform,
 };
 use crate::sentences::{percent, plain};
 
@@ -154,10 +154,15 @@ fn bands(findings: &Findings, calibrated: bool, references: &mut Vec<&'static st
             }
         }
     };
-    let margin =
-        if c.margin > 0.0 { format!(" The margin {} was set in the plan.", plain(c.margin)) } else { String::new() };
+    let kind = if findings.scale.ratio { "ratios of geometric means" } else { "differences of the courses" };
+    let margin = if c.margin > 0.0 {
+        let unit = if c.margin_unit == MarginUnit::Percent { " percent" } else { "" };
+        format!(" The margin of {}{unit} was set in the plan.", plain(c.margin))
+    } else {
+        String::new()
+    };
     format!(
-        "Gaps were compared for {against} as differences of the courses with {} bands that hold {promise}. {small} Groups are called \
+        "Gaps were compared for {against} as {kind} with {} bands that hold {promise}. {small} Groups are called \
          apart where the band excludes zero.{margin}",
         percent(c.level)
     )
