@@ -70,15 +70,23 @@ export class Controller {
     const context = room === 'report' ? reportContext(this.state, plan) : '';
     const asked = room === 'report' ? `${plan}${refits.length}${context}` : plan;
     if (this.state.answers[room]?.plan === asked) return;
-    const mine = () => this.state.answers[room]?.plan === asked;
-    this.set(change.answered(this.state, room, { plan: asked, status: 'working', message: null }));
-    const answer = room === 'report' ? this.engine.report(plan, refits, context) : this.engine.answer(room, plan);
+    this.#ask(room, asked, room === 'report' ? this.engine.report(plan, refits, context) : this.engine.answer(room, plan));
+  }
+
+  /**
+   * @param {'checks'|'usual'|'candidates'|'report'} what
+   * @param {string} asked
+   * @param {Promise<string>} answer
+   */
+  #ask(what, asked, answer) {
+    const mine = () => this.state.answers[what]?.plan === asked;
+    this.set(change.answered(this.state, what, { plan: asked, status: 'working', message: null }));
     answer.then(
-      (json) => { if (mine()) this.set(change.answered(this.state, room, { status: 'done', value: JSON.parse(json) })); },
+      (json) => { if (mine()) this.set(change.answered(this.state, what, { status: 'done', value: JSON.parse(json) })); },
       (cause) => {
         if (!mine()) return;
         const message = cause instanceof Overtaken ? null : cause instanceof Error ? cause.message : String(cause);
-        this.set(change.answered(this.state, room, { plan: message === null ? '' : asked, status: 'done', value: null, message }));
+        this.set(change.answered(this.state, what, { plan: message === null ? '' : asked, status: 'done', value: null, message }));
       },
     );
   }
@@ -99,6 +107,14 @@ export class Controller {
         window.setTimeout(() => document.getElementById('paste-box')?.focus(), 50);
       },
       stop: () => this.stop(),
+      ask: (what) => {
+        const plan = this.#planText(this.state.choices);
+        this.#ask(what, plan, this.engine.answer(what, plan).then((json) => {
+          const names = JSON.parse(json).models.slice(1).map((/** @type {{name: string}} */ model) => model.name);
+          this.set({ ...this.state, lookedAt: Array.from(new Set([...this.state.lookedAt, ...names])) });
+          return json;
+        }));
+      },
       look: () => this.state,
       saveAnalysis: (whole) => this.saveAnalysis(whole),
       fixPlan: () => this.set({ ...this.state, fixed: this.state.choices.plan }),

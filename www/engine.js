@@ -118,7 +118,7 @@ export class Engine {
     return this.#ask('run', { plan });
   }
 
-  /** What a room asks beyond the findings. @param {'checks'|'usual'} room @param {string} plan @returns {Promise<string>} */
+  /** What a room asks beyond the findings. @param {'checks'|'usual'|'candidates'} room @param {string} plan @returns {Promise<string>} */
   answer(room, plan) {
     return this.#ask(room, { plan });
   }

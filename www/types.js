@@ -138,9 +138,10 @@
  * @property {number[]} openPairs Pairs whose gap strip is open.
  * @property {Demo[]} demos
  * @property {{plan: string, refits: string}|null} refits What the calibration of a plan gave.
+ * @property {string[]} lookedAt Other models that were looked at, for the report.
  * @property {Plan|null} fixed The plan as it was fixed.
  * @property {string} announcement
- * @property {{checks: Answer|null, usual: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
+ * @property {{checks: Answer|null, usual: Answer|null, candidates: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
  */
 
 /**
@@ -156,6 +157,7 @@
  * @property {(room: string) => void} go
  * @property {() => void} bringTable Goes to the paste box.
  * @property {() => void} stop
+ * @property {(what: 'candidates') => void} ask Asks for what is computed only when wanted.
  * @property {() => State} look The state as it is.
  * @property {(whole: boolean) => Promise<void>} saveAnalysis With the table, or its fingerprint only.
  * @property {() => void} fixPlan

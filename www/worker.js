@@ -28,6 +28,7 @@
       return { findings, traces: session.traces() };
     },
     checks: ({ plan }) => session.checks(plan),
+    candidates: ({ plan }) => session.candidates(plan),
     usual: ({ plan }) => session.usual(plan),
     report: ({ plan, refits, context }) => session.report(plan, refits, context),
     sizeFrom: ({ plan, pair }) => session.size_from(plan, pair),

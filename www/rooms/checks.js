@@ -5,6 +5,7 @@
 
 import { el, setText, show, whenChanged } from '../dom.js';
 import { text } from '../text.js';
+import { mountCandidates } from '../views/candidates.js';
 import { checkArticle } from '../views/check.js';
 
 const words = text.checks;
@@ -18,10 +19,12 @@ export const checksRoom = {
     const verdict = el('p', { class: 'verdict', 'data-region': 'verdict' });
     const strip = el('ul', { class: 'verdict-strip', 'aria-label': words.verdict });
     const list = el('div', { class: 'checks', 'data-region': 'checks' });
+    const others = el('section', { class: 'other-models' });
     const change = el('p', { class: 'change' });
     const undo = el('button', { type: 'button', class: 'quiet', onclick: acts.undo }, text.change.undo);
     root.append(el('div', { class: 'room-head' }, el('h2', {}, words.title), el('p', { class: 'room-lead' }, words.lead)),
-      change, wait, verdict, strip, list);
+      change, wait, verdict, strip, list, others);
+    const candidates = mountCandidates(others, acts);
     const drawn = whenChanged((state) => [state.answers.checks?.value], (state) => {
       const value = state.answers.checks?.value ?? null;
       setText(verdict, value?.verdict ?? '');
@@ -32,6 +35,7 @@ export const checksRoom = {
       update(state) {
         const answer = state.answers.checks;
         drawn(state);
+        candidates.update(state);
         const message = answer === null ? words.waiting : answer.status === 'working' ? words.working : answer.message ?? '';
         setText(wait, message);
         show(wait, message !== '');

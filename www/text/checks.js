@@ -20,4 +20,18 @@ export const checks = {
   /** @param {string} title @param {string} up @param {string} across @param {string} seen */
   label: (title, up, across, seen) => `${title}. ${up}, by ${across}. ${seen}`,
   verdict: 'What would change the conclusion',
+  candidates: {
+    title: 'Would another model say otherwise?',
+    lead: 'Models one step from the plan are fitted beside it. The band is the plan\u2019s own; the dashed line is what the other model makes of the gap. Choosing among models widens no band: what was looked at is kept for the report.',
+    ask: 'Fit other models beside the plan',
+    working: 'Fitting other models \u2026',
+    old: 'These belong to the plan before the last change.',
+    plan: 'The plan',
+    use: 'Use it',
+    used: (/** @type {string} */ name) => `Model: ${name}`,
+    /** @param {string} name @param {string} to @param {string} from */
+    label: (name, to, from) => `Gap of ${to} to ${from} under ${name}, over the band of the plan`,
+    /** @param {string} to @param {string} from */
+    logGap: (to, from) => `${to} / ${from}, log`,
+  },
 };

@@ -50,10 +50,14 @@ function figure(check, state) {
   }];
   const drawing = smallPlot({
     label: words.label(check.title, plot.up, plot.across, check.seen), across: plot.across, up: plot.up, bands,
-    levels: check.key === 'influence' ? [1] : check.key === 'spread' ? [] : [0],
-    series: plot.series.map((/** @type {any} */ one) => ({ ...one, group: groupClass(groups, one.name) })),
+    levels: check.key === 'robust' ? [1] : check.key === 'spread' ? [] : [0],
+    series: plot.series.map((/** @type {any} */ one, /** @type {number} */ k) => ({
+      ...one, group: groupClass(groups, one.name),
+      // Of those left out in turn only the one that matters most is named.
+      ...(check.key === 'influence' && k > 0 ? { kind: k === 1 ? 'dashed' : 'faint', name: k === 1 ? one.name : '' } : {}),
+    })),
   });
-  const caption = plot.envelope.length > 0 ? `${plot.up} \u00b7 ${words.envelope}` : plot.up;
+  const caption = plot.envelope.length > 0 && check.key !== 'influence' ? `${plot.up} \u00b7 ${words.envelope}` : plot.up;
   return el('figure', { class: 'plot-figure' }, el('figcaption', { class: 'hint' }, caption), drawing, values(plot));
 }
 

@@ -36,6 +36,15 @@ impl Contrast {
         Contrast { parts: vec![(group, weights)], level: 0.0 }
     }
 
+    /// Weights on the unknowns of a block.
+    pub(crate) fn on_block(&self, placement: &Placement, block: usize) -> Vec<f64> {
+        let mut weights = vec![0.0; placement.size(block)];
+        for (group, own) in self.parts.iter().filter(|(group, _)| placement.block(*group) == block) {
+            placement.spread(*group, own, &mut weights);
+        }
+        weights
+    }
+
     /// `factor * self`.
     #[must_use]
     pub fn times(mut self, factor: f64) -> Contrast {

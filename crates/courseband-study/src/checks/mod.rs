@@ -6,11 +6,12 @@
 //! Self & Liang 1987, JASA 82:605), and the check offers that model as the choice to try.
 //! The family has one false-alarm rate: each check lights at [`ALARM`].
 
+mod influence;
 mod models;
+mod robust;
 mod scatter;
 
 use crate::cohort::Cohort;
-use crate::evaluate::Evaluation;
 use crate::plan::Plan;
 use crate::refusal::Refusal;
 use crate::study::Study;
@@ -34,7 +35,7 @@ pub struct ChecksFindings {
 /// One check.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Check {
-    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `influence`.
+    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `robust`, `influence`.
     pub key: String,
     /// What is asked, in a few words.
     pub title: String,
@@ -118,6 +119,7 @@ impl Subject<'_> {
             self.scale(&residuals),
             self.basis(&residuals),
             Some(self.outlying(&residuals)),
+            self.robust(),
             self.influence(&residuals),
         ]
         .into_iter()
@@ -135,70 +137,6 @@ impl Subject<'_> {
             ),
         };
         ChecksFindings { checks, verdict }
-    }
-
-    fn influence(&self, residuals: &[courseband_engine::Residual]) -> Option<Check> {
-        let evaluation = Evaluation::new(self.plan, self.cohort, self.fit, None);
-        let pairs = evaluation.pairs();
-        let mut contrasts = Vec::new();
-        let mut places = Vec::new();
-        for &(from, to) in &pairs {
-            if let Some([low, high]) = evaluation.overlap(from, to) {
-                for &t in self.cohort.visits.iter().filter(|&&t| t >= low && t <= high) {
-                    contrasts.push(self.fit.gap(from, to, t));
-                    places.push((from, to, t));
-                }
-            }
-        }
-        if contrasts.is_empty() {
-            return None;
-        }
-        let influence = self.fit.influence(&contrasts, &self.left_out(residuals));
-        let most = influence.iter().max_by(|a, b| a.largest.total_cmp(&b.largest))?;
-        let group = &self.cohort.groups[self.cohort.data.subjects[most.subject].group];
-        // Without one of n, a gap moves by about one n-th of its spread; one standard error is large.
-        let lit = most.largest > 1.0;
-        let (from, to, time) = places[most.at];
-        let word = &self.plan.words.subject;
-        let name = &self.names[most.subject];
-        let series = PlotSeries {
-            name: String::new(),
-            joined: false,
-            x: (0..influence.len()).map(|k| k as f64 + 1.0).collect(),
-            y: influence.iter().map(|i| i.largest).collect(),
-        };
-        Some(Check {
-            key: "influence".into(),
-            title: "One decides".into(),
-            lit,
-            p: None,
-            seen: format!(
-                "Without {word} {name} ({}) the gap {} to {} moves most, by {} of its standard errors at time {}.",
-                group.name,
-                self.cohort.groups[from].name,
-                self.cohort.groups[to].name,
-                crate::sentences::number(most.largest, 2),
-                crate::sentences::plain(time)
-            ),
-            means: if lit {
-                format!("The conclusion leans on this {word}.")
-            } else {
-                format!("No single {word} moves a gap by more than one standard error.")
-            },
-            advice: if lit {
-                "Look at its rows in Data. Leave it out only for a reason that does not come from its values, and report both."
-                    .to_string()
-            } else {
-                String::new()
-            },
-            trial: None,
-            plot: CheckPlot {
-                across: format!("{word}, in the order of the table"),
-                up: "largest movement of a gap, in standard errors".into(),
-                series: vec![series],
-                envelope: Vec::new(),
-            },
-        })
     }
 
     /// All subjects, or those with the largest sums of squared residuals.

@@ -1,0 +1,107 @@
+//! What one subject, or one cluster, does to the gaps.
+
+use super::{Check, CheckPlot, PlotSeries, Subject};
+use crate::evaluate::Evaluation;
+use crate::sentences::{number, plain};
+use courseband_engine::{ClusterEffects, Residual};
+
+/// Lines of the plot besides that of all together.
+const MOST_LINES: usize = 60;
+
+impl Subject<'_> {
+    /// Every subject, or every cluster where groups differ between clusters, left out in turn.
+    pub(super) fn influence(&self, residuals: &[Residual]) -> Option<Check> {
+        let evaluation = Evaluation::new(self.plan, self.cohort, self.fit, None);
+        let (mut contrasts, mut places) = (Vec::new(), Vec::new());
+        for (from, to) in evaluation.pairs() {
+            if let Some([low, high]) = evaluation.overlap(from, to) {
+                for &t in self.cohort.visits.iter().filter(|&&t| t >= low && t <= high) {
+                    contrasts.push(self.fit.gap(from, to, t));
+                    places.push((from, to, t));
+                }
+            }
+        }
+        if contrasts.is_empty() {
+            return None;
+        }
+        let (sets, by_cluster) = self.sets(residuals);
+        let influence = self.fit.influence_of(&contrasts, &sets);
+        let most = influence.iter().max_by(|a, b| a.largest.total_cmp(&b.largest))?;
+        let group = &self.cohort.groups[self.cohort.data.subjects[most.subject].group];
+        // Without one of n, a gap moves by about one n-th of its spread; one standard error is large.
+        let lit = most.largest > 1.0;
+        let (from, to, time) = places[most.at];
+        let word = if by_cluster { "cluster" } else { &self.plan.words.subject };
+        let name =
+            if by_cluster { format!("of {}", self.names[most.subject]) } else { self.names[most.subject].clone() };
+        let (a, b) = (&self.cohort.groups[from].name, &self.cohort.groups[to].name);
+        let own: Vec<usize> = (0..places.len()).filter(|&k| (places[k].0, places[k].1) == (from, to)).collect();
+        Some(Check {
+            key: "influence".into(),
+            title: "One decides".into(),
+            lit,
+            p: None,
+            seen: format!(
+                "Without {word} {name} ({}) the gap {b} to {a} moves most, by {} of its standard errors at time {}.",
+                group.name,
+                number(most.largest, 2),
+                plain(time)
+            ),
+            means: if lit {
+                format!("The conclusion leans on this {word}.")
+            } else {
+                format!("No single {word} moves a gap by more than one standard error.")
+            },
+            advice: if lit {
+                "Look at its rows in Data. Leave it out only for a reason that does not come from its values, and report both."
+                    .to_string()
+            } else {
+                String::new()
+            },
+            trial: None,
+            plot: self.movement(&influence, &contrasts, &places, &own, (a, b, &name)),
+        })
+    }
+
+    /// The gap of the pair that moves most with everybody and its band, and without each that moves it much.
+    fn movement(
+        &self,
+        influence: &[courseband_engine::Influence],
+        contrasts: &[courseband_engine::Contrast],
+        places: &[(usize, usize, f64)],
+        own: &[usize],
+        (from, to, most): (&str, &str, &str),
+    ) -> CheckPlot {
+        let posterior = self.fit.corrected();
+        let times: Vec<f64> = own.iter().map(|&k| places[k].2).collect();
+        let full: Vec<_> = own.iter().map(|&k| posterior.estimate(&contrasts[k])).collect();
+        let mut order: Vec<&courseband_engine::Influence> = influence.iter().filter(|i| !i.values.is_empty()).collect();
+        order.sort_by(|a, b| b.largest.total_cmp(&a.largest));
+        let line = |name: String, y: Vec<f64>| PlotSeries { name, joined: true, x: times.clone(), y };
+        let mut series = vec![line(String::new(), full.iter().map(|e| e.mean).collect())];
+        series.extend(order.iter().take(MOST_LINES).enumerate().map(|(rank, one)| {
+            let name = if rank == 0 { format!("without {most}") } else { self.names[one.subject].clone() };
+            line(name, own.iter().map(|&k| one.values[k]).collect())
+        }));
+        CheckPlot {
+            across: "time".into(),
+            up: format!("gap {to} to {from} with everybody (and one standard error), and without each in turn"),
+            series,
+            envelope: full.iter().map(|e| [e.mean - e.se, e.mean + e.se]).collect(),
+        }
+    }
+
+    /// What is left out together, and whether these are clusters.
+    fn sets(&self, residuals: &[Residual]) -> (Vec<Vec<usize>>, bool) {
+        let housing = &self.cohort.housing;
+        let nested = housing.summary.as_ref().is_some_and(|s| s.nested);
+        if housing.effects == ClusterEffects::None || !nested {
+            return (self.left_out(residuals).into_iter().map(|s| vec![s]).collect(), false);
+        }
+        let mut sets: std::collections::BTreeMap<usize, Vec<usize>> = std::collections::BTreeMap::new();
+        for (k, subject) in self.cohort.data.subjects.iter().enumerate() {
+            sets.entry(subject.cluster.unwrap_or(usize::MAX - k)).or_default().push(k);
+        }
+        (sets.into_values().collect(), true)
+    }
+}
