@@ -65,6 +65,7 @@ async function ownAssets(packed) {
 
 /** @returns {Promise<Assets>} */
 export async function loadAssets() {
+  withoutPeers();
   const packed = held('courseband-wasm');
   if (packed !== '') return ownAssets(packed);
   const [module, glue, worker, demos] = await Promise.all([
@@ -78,12 +79,25 @@ export async function loadAssets() {
 }
 
 /**
- * Adds a policy that forbids connections. Policies only ever add up, so no
- * later code can open this again, and workers started from here on inherit it.
+ * What the page needs from here on: its module, workers made of its own text, pictures that it draws itself, and
+ * the style attribute with which text is measured. Nothing from any address, not even its own.
+ */
+const SHUT = "default-src 'none'; script-src 'wasm-unsafe-eval'; worker-src blob:; style-src-attr 'unsafe-inline'; img-src data: blob:; connect-src 'none'; form-action 'none'";
+
+/**
+ * Adds that policy. Policies only ever add up, so no later code can open this again, and workers started from
+ * here on inherit it.
  */
 function shutTheDoor() {
   const meta = document.createElement('meta');
   meta.httpEquiv = 'Content-Security-Policy';
-  meta.content = "connect-src 'none'";
+  meta.content = SHUT;
   document.head.append(meta);
+}
+
+/** No policy covers the packets with which peers look for each other, so the way to them is taken out of the page. */
+function withoutPeers() {
+  for (const name of ['RTCPeerConnection', 'webkitRTCPeerConnection', 'mozRTCPeerConnection', 'RTCDataChannel', 'WebTransport']) {
+    Reflect.deleteProperty(window, name);
+  }
 }

@@ -99,9 +99,14 @@ test('both are small enough, and hold no call that sends', { skip }, async (t) =
   assert.ok(file <= 3_000_000 && wasm <= 1_200_000);
   const text = await readFile(FILE, 'utf8');
   const script = text.slice(text.lastIndexOf('<script>'));
-  for (const way of ['XMLHttpRequest', 'WebSocket', 'EventSource', 'sendBeacon', 'RTCPeerConnection', 'importScripts', 'window.open', 'localStorage', 'sessionStorage', 'indexedDB', 'eval(', 'innerHTML', 'document.write']) {
+  for (const way of ['XMLHttpRequest', 'WebSocket', 'EventSource', 'sendBeacon', 'new RTC', 'importScripts', 'window.open', 'location.href =', 'location.assign', 'location.replace', '.submit(', '_blank', 'http-equiv=\"refresh', 'localStorage', 'sessionStorage', 'indexedDB', 'eval(', 'innerHTML', 'document.write']) {
     assert.ok(!script.includes(way), way);
   }
+  // Comments name types by `import(…)`; nothing else may.
+  assert.doesNotMatch(script.replace(/\/\*\*[^]*?\*\//g, ''), /\bimport\s*\(/);
+  // Addresses are names of drawing vocabularies, or of nothing.
+  const addresses = new Set(script.match(/\b(?:https?|wss?):\/\/[^\s'"`)]*/g) ?? []);
+  assert.deepEqual([...addresses].filter((address) => address !== 'http://www.w3.org/2000/svg'), []);
   // The folder's own start fetches its files; that is the only place.
   assert.equal(script.split('fetch(').length - 1, 1);
 });
