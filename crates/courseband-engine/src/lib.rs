@@ -39,7 +39,7 @@ pub use model::{
 };
 pub use params::Parameter;
 pub use posterior::{Contrast, Estimate, Joint, Posterior};
-pub use predict::Foreseen;
+pub use predict::{Foreseen, OddSubject};
 pub use residuals::Residual;
 pub use robust::RobustError;
 pub use spline::Roughness;

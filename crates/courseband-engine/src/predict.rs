@@ -6,6 +6,9 @@
 use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::posterior::{Contrast, solved_value, variance};
+use crate::reduce::Design;
+use crate::refit::Refitter;
+use nalgebra::{Cholesky, DVector};
 
 /// Predictions of one subject's rows by the others, on the modelled scale.
 #[derive(Debug, Clone, PartialEq)]
@@ -53,11 +56,78 @@ impl Fit {
     }
 }
 
+/// A subject whose level is far from its group's, in standard deviations of a new subject's.
+#[derive(Debug, Clone, Copy, PartialEq)]
+pub struct OddSubject {
+    /// Index of the subject in the data.
+    pub subject: usize,
+    /// Signed distance; variances and curves estimated without the subject.
+    pub distance: f64,
+}
+
+/// Subjects whose distance is computed again without them.
+const LOOKED_AT: usize = 3;
+
+impl Fit {
+    /// The subject whose level is farthest from its group's: the few farthest are each left out and everything is
+    /// estimated again, so that a subject does not hide behind the variance that it makes. `None` where no refit succeeds.
+    #[must_use]
+    pub fn odd_subject(&self) -> Option<OddSubject> {
+        let subjects: Vec<usize> = self.design.patterns.iter().flat_map(|p| p.subjects.iter().copied()).collect();
+        let mut all: Vec<OddSubject> =
+            subjects.into_iter().filter_map(|s| self.distance_of(s, &self.design, self)).collect();
+        all.sort_by(|a, b| b.distance.abs().total_cmp(&a.distance.abs()).then(a.subject.cmp(&b.subject)));
+        let refitter = Refitter::new(self);
+        let again = all.iter().take(LOOKED_AT).filter_map(|one| {
+            let without = self.design.without(one.subject)?;
+            let refitted = refitter.refit_closely(without, &self.theta)?;
+            self.distance_of(one.subject, &self.design, &refitted)
+        });
+        again.max_by(|a, b| a.distance.abs().total_cmp(&b.distance.abs()))
+    }
+
+    /// `1'V^-1 r` over its standard deviation, curves and variances those of `by`.
+    fn distance_of(&self, subject: usize, design: &Design, by: &Fit) -> Option<OddSubject> {
+        let pattern = design.patterns.iter().find(|p| p.subjects.contains(&subject))?;
+        let (n, m) = (pattern.times.len(), pattern.subjects.len());
+        let s = pattern.subjects.iter().position(|&own| own == subject)?;
+        let mut total = by.subject_total(pattern);
+        let contrasts: Vec<Contrast> =
+            (0..n).map(|j| Contrast::of_columns(pattern.group, design.columns_of(pattern, j))).collect();
+        let placement = &by.design.placement;
+        // The curve's own uncertainty, about the same at all rows: its mean over them.
+        let curve = contrasts.iter().map(|c| variance(placement, &by.solved, c)).sum::<f64>() / n as f64;
+        total.add_scalar_mut(curve);
+        let factor = Cholesky::new(total)?;
+        let ones = DVector::from_element(n, 1.0);
+        let r = DVector::from_fn(n, |j, _| {
+            pattern.responses[j * m + s] - solved_value(placement, &by.solved, &contrasts[j])
+        });
+        let weights = factor.solve(&ones);
+        Some(OddSubject { subject, distance: weights.dot(&r) / libm::sqrt(weights.dot(&ones)) })
+    }
+}
+
 #[cfg(test)]
 mod tests {
     use crate::fit::fit;
     use crate::model::{Data, Model, SubjectRows};
     use crate::special::Rng;
+
+    #[test]
+    fn a_subject_far_off_is_found_although_it_widens_the_spread() {
+        let mut rng = Rng::new(6);
+        let mut subjects = Vec::new();
+        for k in 0..20 {
+            let level = if k == 7 { 4.0 } else { rng.normal() };
+            let times: Vec<f64> = (0..6).map(f64::from).collect();
+            let responses = times.iter().map(|t| t + level + 0.5 * rng.normal()).collect();
+            subjects.push(SubjectRows { group: k % 2, times, responses, ..SubjectRows::default() });
+        }
+        let odd =
+            fit(&Data { groups: 2, subjects, ..Data::default() }, &Model::default()).unwrap().odd_subject().unwrap();
+        assert!(odd.subject == 7 && odd.distance > 3.0, "{odd:?}");
+    }
 
     #[test]
     fn new_subjects_lie_in_their_predictions_as_often_as_promised() {

@@ -44,6 +44,7 @@ fn done(task: &Task) -> Outcome<()> {
         Task::Tidy => tidy::check(&places),
         Task::Reference => run::show(run::command("bash").arg("tests/reference/run.sh").current_dir(places.root())),
         Task::Bench { args } => bin(&places, "bench", args),
+        Task::Rates { args } => bin(&places, "rates", args),
         Task::Evidence { args } => bin(&places, "evidence", args),
         Task::Help => {
             println!("{}", words::HELP);

@@ -15,6 +15,7 @@ cargo xtask dist                  write the page for giving away into dist: a fo
 cargo xtask tidy                  check the texts and the layout of the repository
 cargo xtask reference             recompute the reference values of the tests
 cargo xtask bench                 print how long fits take
+cargo xtask rates [RUNS [FILE]]   how often the checks light on tables with a known fault
 cargo xtask evidence FILE         simulate studies and add to the counts in FILE
     --cells TEXT                  cells whose name holds this text
     --studies N --refits N        further studies per cell, refits per study
@@ -30,6 +31,7 @@ pub(crate) enum Task {
     Tidy,
     Reference,
     Bench { args: Vec<String> },
+    Rates { args: Vec<String> },
     Evidence { args: Vec<String> },
     Help,
 }
@@ -50,6 +52,7 @@ impl Task {
             "tidy" => Self::Tidy,
             "reference" => Self::Reference,
             "bench" => Self::Bench { args: words.by_ref().collect() },
+            "rates" => Self::Rates { args: words.by_ref().collect() },
             "evidence" => Self::Evidence { args: words.by_ref().collect() },
             "help" | "--help" | "-h" => Self::Help,
             other => return Err(unknown(other)),

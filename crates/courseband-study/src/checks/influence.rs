@@ -3,6 +3,7 @@
 use super::{Check, CheckPlot, PlotSeries, Subject};
 use crate::evaluate::Evaluation;
 use crate::sentences::{number, plain};
+use courseband_engine::special::t_sf;
 use courseband_engine::{ClusterEffects, Residual};
 
 /// Lines of the plot besides that of all together.
@@ -91,6 +92,64 @@ impl Subject<'_> {
         }
     }
 
+    /// A subject far from the others of its group at all its visits.
+    pub(super) fn odd_subject(&self) -> Option<Check> {
+        let count = self.cohort.data.subjects.len();
+        let spare = count.checked_sub(self.cohort.groups.len() + 1).filter(|&spare| spare >= 4)?;
+        if count > super::MOST_LEFT_OUT || self.plan.subjects == crate::plan::SubjectEffects::None {
+            return None;
+        }
+        let odd = self.fit.odd_subject()?;
+        // As an externally studentised residual, over all subjects (Bonferroni).
+        let p = (2.0 * count as f64 * t_sf(odd.distance.abs(), spare as f64)).min(1.0);
+        // Twice the alarm of the other checks: with few subjects less would be blind.
+        let lit = p < 2.0 * super::ALARM;
+        let word = &self.plan.words.subject;
+        let name = &self.names[odd.subject];
+        let group = &self.cohort.groups[self.cohort.data.subjects[odd.subject].group].name;
+        let all = self.fit.residuals();
+        let means = (0..count).map(|s| {
+            let own: Vec<f64> = all.iter().filter(|r| r.subject == s).map(|r| r.around_course).collect();
+            own.iter().sum::<f64>() / own.len().max(1) as f64
+        });
+        let series = PlotSeries {
+            name: String::new(),
+            joined: false,
+            x: (0..count).map(|k| k as f64 + 1.0).collect(),
+            y: means.collect(),
+        };
+        Some(Check {
+            key: "subject".into(),
+            title: format!("An outlying {word}"),
+            lit,
+            p: Some(p),
+            seen: format!(
+                "{} {name} ({group}) lies farthest from its group's course, by {} standard deviations of the others.",
+                capital(word),
+                number(odd.distance.abs(), 1)
+            ),
+            means: if lit {
+                format!("One {word} widens every band and pulls its group's course.")
+            } else {
+                String::new()
+            },
+            advice: if lit {
+                format!(
+                    "Look at what is known of this {word}. Leave it out only for a reason that does not come from its values."
+                )
+            } else {
+                String::new()
+            },
+            trial: None,
+            plot: CheckPlot {
+                across: format!("{word}, in the order of the table"),
+                up: "mean distance from the group's course".into(),
+                series: vec![series],
+                envelope: Vec::new(),
+            },
+        })
+    }
+
     /// What is left out together, and whether these are clusters.
     fn sets(&self, residuals: &[Residual]) -> (Vec<Vec<usize>>, bool) {
         let housing = &self.cohort.housing;
@@ -104,4 +163,9 @@ impl Subject<'_> {
         }
         (sets.into_values().collect(), true)
     }
+}
+
+fn capital(word: &str) -> String {
+    let mut letters = word.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }

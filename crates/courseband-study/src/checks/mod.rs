@@ -35,7 +35,7 @@ pub struct ChecksFindings {
 /// One check.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Check {
-    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `robust`, `influence`.
+    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `subject`, `robust`, `influence`.
     pub key: String,
     /// What is asked, in a few words.
     pub title: String,
@@ -119,6 +119,7 @@ impl Subject<'_> {
             self.scale(&residuals),
             self.basis(&residuals),
             Some(self.outlying(&residuals)),
+            self.odd_subject(),
             self.robust(),
             self.influence(&residuals),
         ]
