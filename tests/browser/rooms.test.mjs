@@ -156,3 +156,24 @@ test('report: composed, rewritten, exported, and reopened to the same digits', a
   await page.context().close();
   await again.context().close();
 });
+
+test('other models: laid over the plan, one can be used and taken back', async () => {
+  const page = await openPage(browser);
+  await enter(page, 'checks');
+  await page.waitForSelector('.check');
+  const began = Date.now();
+  await page.click('[data-act="candidates"]');
+  await page.waitForSelector('.candidate');
+  assert.ok(Date.now() - began < 20000);
+  assert.ok(await count(page, '.candidate') >= 8);
+  assert.match(await page.locator('[data-region="proposal"]').innerText(), /plan/);
+  const straight = page.locator('.candidate', { hasText: 'Straight courses' });
+  assert.match(await straight.innerText(), /foresees new subjects worse.*gaps move by at most/i);
+  await straight.locator('button').click();
+  await rested(page);
+  await enter(page, 'courses');
+  assert.match(await page.locator('.plan').innerText(), /straight/);
+  
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

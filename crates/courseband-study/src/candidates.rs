@@ -7,7 +7,7 @@
 
 use crate::cohort::Cohort;
 use crate::evaluate::Evaluation;
-use crate::plan::{Plan, Serial, Shape, Spread, SubjectEffects, Transform};
+use crate::plan::{MarginUnit, Plan, Serial, Shape, Spread, SubjectEffects, Transform};
 use crate::refusal::Refusal;
 use crate::sentences::number;
 use crate::study::Study;
@@ -121,8 +121,15 @@ fn others(plan: &Plan) -> Vec<(String, Plan)> {
     });
     add("one spread for all groups", &|p| p.errors.spread = Spread::Common);
     add("a spread of its own in each group", &|p| p.errors.spread = Spread::ByGroup);
-    add("the measured scale", &|p| p.response.transform = Transform::Identity);
-    add("a log scale", &|p| p.response.transform = Transform::Log);
+    // A margin has a meaning on its own scale only.
+    let rescaled = |p: &mut Plan, transform: Transform| {
+        if p.response.transform != transform {
+            p.response.transform = transform;
+            (p.comparisons.margin, p.comparisons.margin_unit) = (0.0, MarginUnit::Response);
+        }
+    };
+    add("the measured scale", &|p| rescaled(p, Transform::Identity));
+    add("a log scale", &|p| rescaled(p, Transform::Log));
     all
 }
 
