@@ -3,7 +3,7 @@
  * shut: a second policy forbids every connection from here on.
  */
 
-/** @typedef {{module: WebAssembly.Module, workerText: string, demos: import('./types.js').Demo[], tables: Map<string, Uint8Array>}} Assets */
+/** @typedef {{module: WebAssembly.Module, workerText: string, demos: import('./types.js').Demo[], tables: Map<string, Uint8Array>, bytes: Promise<ArrayBuffer>}} Assets `bytes`: the wasm, for its checksum. */
 
 const GLUE = './wasm/courseband.js';
 const WASM = './wasm/courseband_bg.wasm';
@@ -54,11 +54,12 @@ const held = (id) => document.getElementById(id)?.textContent ?? '';
 async function ownAssets(packed) {
   const bytes = Uint8Array.from(atob(packed), (letter) => letter.charCodeAt(0));
   const stream = new Blob([bytes]).stream().pipeThrough(new DecompressionStream('gzip'));
-  const module = await WebAssembly.compile(await new Response(stream).arrayBuffer());
+  const wasm = await new Response(stream).arrayBuffer();
+  const module = await WebAssembly.compile(wasm);
   const { demos, tables } = JSON.parse(held('courseband-demos'));
   const encoder = new TextEncoder();
   return {
-    module, demos, workerText: `${held('courseband-glue')}\n${held('courseband-worker')}`,
+    module, demos, bytes: Promise.resolve(wasm), workerText: `${held('courseband-glue')}\n${held('courseband-worker')}`,
     tables: new Map(Object.entries(tables).map(([file, table]) => [file, encoder.encode(/** @type {string} */ (table))])),
   };
 }
@@ -68,14 +69,17 @@ export async function loadAssets() {
   withoutPeers();
   const packed = held('courseband-wasm');
   if (packed !== '') return ownAssets(packed);
+  const wasm = fetched(WASM);
+  const bytes = wasm.then((response) => response.clone().arrayBuffer());
+  bytes.catch(() => {});
   const [module, glue, worker, demos] = await Promise.all([
-    fetched(WASM).then(compiled),
+    wasm.then(compiled),
     fetched(GLUE).then((response) => response.text()),
     fetched(WORKER).then((response) => response.text()),
     loadDemos(),
   ]);
   shutTheDoor();
-  return { module, workerText: `${glue}\n${worker}`, ...demos };
+  return { module, bytes, workerText: `${glue}\n${worker}`, ...demos };
 }
 
 /**

@@ -5,6 +5,7 @@
 
 import { EngineError, Overtaken } from './engine.js';
 import { Calibration } from './calibration.js';
+import { checkCopy } from './copy-check.js';
 import { Sizing } from './sizing.js';
 import { columnsUsed } from './context.js';
 import { NotOpened, analysisFrom, analysisText, fingerprintOf } from './analysis-file.js';
@@ -107,6 +108,7 @@ export class Controller {
         window.setTimeout(() => document.getElementById('paste-box')?.focus(), 50);
       },
       stop: () => this.stop(),
+      checkCopy: (held, tell) => checkCopy(this.assets, held, tell),
       ask: (what) => {
         const plan = this.#planText(this.state.choices);
         this.#ask(what, plan, this.engine.answer(what, plan).then((json) => {

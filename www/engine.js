@@ -93,6 +93,12 @@ export class Engine {
     });
   }
 
+  /** Nothing more is asked. */
+  end() {
+    this.worker.terminate();
+    URL.revokeObjectURL(this.address);
+  }
+
   /**
    * Gives the worker a table.
    * @param {Uint8Array} bytes

@@ -5,6 +5,7 @@
 
 import { words } from './text/words.js';
 import { plan } from './text/plan.js';
+import { copyCheck } from './text/copy-check.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
 import { checks } from './text/checks.js';
@@ -25,6 +26,7 @@ export function counted(count, one, many) {
 export const text = {
   name: 'Courseband',
   plan,
+  copyCheck,
   data,
   privacy,
   checks,

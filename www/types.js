@@ -157,6 +157,7 @@
  * @property {(room: string) => void} go
  * @property {() => void} bringTable Goes to the paste box.
  * @property {() => void} stop
+ * @property {(held: import('./copy-check.js').Reference, tell: (done: number, total: number) => void) => Promise<import('./copy-check.js').CopyReport>} checkCopy
  * @property {(what: 'candidates') => void} ask Asks for what is computed only when wanted.
  * @property {() => State} look The state as it is.
  * @property {(whole: boolean) => Promise<void>} saveAnalysis With the table, or its fingerprint only.

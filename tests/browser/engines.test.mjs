@@ -151,6 +151,16 @@ for (const { name, open, missing } of engines) {
         // Calibration begins a while after the last choice, and ends.
         await until(page, () => /Calibrated: on \d/.test(document.body.innerText) && !/being calibrated/.test(document.body.innerText), 90);
 
+        // The copy checks itself: this engine computes what the native command computed.
+        await page.run(() => document.querySelector('[data-act="check-copy"]').click());
+        await until(page, () => document.querySelector('dialog.copy-check').dataset.agrees !== undefined, 60);
+        const check = await page.run(() => document.querySelector('dialog.copy-check').innerText);
+        assert.equal(await page.run(() => document.querySelector('dialog.copy-check').dataset.agrees), 'true', check);
+        assert.match(check, /as it was made/);
+        t.diagnostic(check.split('\n').find((line) => line.includes('numbers of')));
+        if (process.env.COURSEBAND_SHOTS) await page.shot(`${process.env.COURSEBAND_SHOTS}/${name}-${form.replace(' ', '-')}-check.png`);
+        await page.run(() => document.querySelector('dialog.copy-check').close());
+
         // Nothing was asked for since the start, and nothing of the data lies about.
         const own = (url) => /^(file|blob|data|about):/.test(url) || (form === 'folder' && url.startsWith(origin + SUB));
         assert.deepEqual(heard.slice(loaded), []);

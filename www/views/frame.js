@@ -6,6 +6,7 @@
 import { el, setText, show, whenChanged } from '../dom.js';
 import { rooms } from '../rooms.js';
 import { text } from '../text.js';
+import { mountCopyCheck } from './copy-check.js';
 import { mountPrivacy } from './privacy.js';
 import { mountProgress } from './progress.js';
 
@@ -23,14 +24,16 @@ export function mountFrame(body, acts) {
   const mark = mountMark(acts);
   const progress = mountProgress(acts);
   const privacy = mountPrivacy();
+  const copyCheck = mountCopyCheck(acts);
   body.append(
     el('a', { class: 'skip', href: '#room', onclick: (/** @type {Event} */ event) => { event.preventDefault(); main.focus(); } }, text.skip),
     el('header', { class: 'head' }, el('h1', { class: 'name' }, text.name), navigation.node, privacy.button),
     mark.node,
     progress.node,
     main,
-    el('footer', { class: 'foot' }, el('p', {}, text.footer)),
+    el('footer', { class: 'foot' }, el('p', {}, text.footer), copyCheck.button),
     privacy.dialog,
+    copyCheck.dialog,
     voice,
   );
 

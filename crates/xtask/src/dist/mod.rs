@@ -1,15 +1,14 @@
 //! The page for giving away: a folder for any web server, and one file that holds everything.
 
 mod bundle;
+mod cases;
 mod licences;
 mod single;
 
 use std::fs;
 use std::path::{Path, PathBuf};
 
-use sha2::{Digest, Sha256};
-
-use crate::failure::{About, Outcome};
+use crate::failure::{About, Failure, Outcome};
 use crate::places::Places;
 
 /// What was written.
@@ -34,10 +33,13 @@ pub(crate) fn write(places: &Places) -> Outcome<Written> {
         !matches!(name(path), "stamp" | "package.json") && !name(path).ends_with(".d.ts")
     })?;
     copy(&places.demo_data(), &folder.join("demo-data"), &|path| !name(path).ends_with(".py"))?;
+    let wasm = fs::read(places.page_wasm().join("courseband_bg.wasm")).about("the wasm")?;
+    let cases = cases::text(places, &wasm)?;
+    hold(&folder.join("index.html"), &cases)?;
     let licences = licences::list(places)?;
     put(&folder.join("licences.txt"), licences.as_bytes())?;
     let file = dist.join(format!("courseband-{version}.html"));
-    put(&file, single::page(places, &licences)?.as_bytes())?;
+    put(&file, single::page(places, &licences, &cases)?.as_bytes())?;
     put(&dist.join("for-it.html"), fs::read(places.www().join("for-it.html")).about("www/for-it.html")?.as_slice())?;
     put(&dist.join("licences.txt"), licences.as_bytes())?;
     let sums = sums(&dist)?;
@@ -56,6 +58,19 @@ fn put(path: &Path, bytes: &[u8]) -> Outcome<()> {
         fs::create_dir_all(parent).about(parent.display())?;
     }
     fs::write(path, bytes).about(path.display())
+}
+
+/// Puts the reference cases into the folder's page, as data that the policy has nothing against.
+fn hold(index: &Path, cases: &str) -> Outcome<()> {
+    const END: &str = "</body>";
+    let page = fs::read_to_string(index).about(index.display())?;
+    if page.matches(END).count() != 1 {
+        return Err(Failure::new(format!("{} must hold {END} once", index.display())));
+    }
+    put(
+        index,
+        page.replace(END, &format!("{}{END}", single::data("courseband-cases", "application/json", cases))).as_bytes(),
+    )
 }
 
 /// Copies a folder, those files alone that are wanted.
@@ -87,8 +102,7 @@ fn files(folder: &Path) -> Outcome<Vec<PathBuf>> {
 fn sums(dist: &Path) -> Outcome<String> {
     let mut lines = String::new();
     for path in files(dist)? {
-        let digest = Sha256::digest(fs::read(&path).about(path.display())?);
-        let digest: String = digest.iter().map(|byte| format!("{byte:02x}")).collect();
+        let digest = cases::digest(&fs::read(&path).about(path.display())?);
         let local = path.strip_prefix(dist).unwrap_or(&path);
         lines += &format!("{digest}  {}\n", local.display());
     }

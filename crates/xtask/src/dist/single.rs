@@ -20,7 +20,7 @@ use crate::places::Places;
 ///
 /// # Errors
 /// When a part cannot be read, or holds what would end its element early.
-pub(super) fn page(places: &Places, licences: &str) -> Outcome<String> {
+pub(super) fn page(places: &Places, licences: &str, cases: &str) -> Outcome<String> {
     let www = places.www();
     let read = |path: &Path| fs::read_to_string(www.join(path)).about(path.display());
     let shell = read(Path::new("index.html"))?;
@@ -39,25 +39,26 @@ pub(super) fn page(places: &Places, licences: &str) -> Outcome<String> {
         ("worker", &worker),
         ("demos", &demos),
         ("licences", &licences.to_string()),
+        ("cases", &cases.to_string()),
     ] {
         if text.contains("</script") || text.contains("<!--") {
             return Err(Failure::new(format!("the {what} would end its element early")));
         }
     }
-    let data = |id: &str, kind: &str, text: &str| format!("<script type=\"{kind}\" id=\"{id}\">{text}</script>\n");
     Ok(format!(
         "<!doctype html>\n<html lang=\"en\" data-state=\"reading\">\n<head>\n<meta charset=\"utf-8\">\n\
          <meta http-equiv=\"Content-Security-Policy\" content=\"{}\">\n\
          <meta name=\"viewport\" content=\"width=device-width, initial-scale=1\">\n\
          <meta name=\"color-scheme\" content=\"light dark\">\n<meta name=\"referrer\" content=\"no-referrer\">\n\
          <title>Courseband</title>\n<link rel=\"icon\" href=\"data:,\">\n<style>{styles}</style>\n</head>\n<body>\n\
-         <noscript>Courseband computes in the browser and needs JavaScript.</noscript>\n{}{}{}{}{}<script>{script}</script>\n</body>\n</html>\n",
+         <noscript>Courseband computes in the browser and needs JavaScript.</noscript>\n{}{}{}{}{}{}<script>{script}</script>\n</body>\n</html>\n",
         policy(&script, &styles),
         data("courseband-wasm", "text/plain", &wasm),
         data("courseband-glue", "text/plain", &glue),
         data("courseband-worker", "text/plain", &worker),
         data("courseband-demos", "application/json", &demos),
         data("courseband-licences", "text/plain", licences),
+        data("courseband-cases", "application/json", cases),
     ))
 }
 
@@ -74,6 +75,11 @@ fn policy(script: &str, styles: &str) -> String {
 /// What stands between each occurrence of `before` and the next quotation mark.
 fn quoted(text: &str, before: &str) -> Vec<String> {
     text.split(before).skip(1).filter_map(|rest| rest.split('"').next()).map(str::to_string).collect()
+}
+
+/// An element that holds a text as data: nothing in it is run.
+pub(super) fn data(id: &str, kind: &str, text: &str) -> String {
+    format!("<script type=\"{kind}\" id=\"{id}\">{text}</script>\n")
 }
 
 /// Packed as `DecompressionStream("gzip")` unpacks it; without name or time, so that the same bytes pack alike.
