@@ -99,7 +99,7 @@ pub fn calibrated_quantile(values: &[f64], level: f64) -> (f64, [f64; 2]) {
 }
 
 /// Draws of the variance parameters.
-fn chain(fit: &Fit, seed: u64) -> Option<Vec<Vec<f64>>> {
+pub(crate) fn chain(fit: &Fit, seed: u64) -> Option<Vec<Vec<f64>>> {
     let mut rng = Rng::stream(seed, 0);
     let mut criterion = Criterion::new(&fit.design, &fit.layout);
     let n = fit.theta.len();

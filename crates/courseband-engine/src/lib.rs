@@ -8,6 +8,7 @@ mod chains;
 mod clusters;
 mod criterion;
 mod fit;
+mod impute;
 mod influence;
 mod model;
 mod optimise;
@@ -32,6 +33,7 @@ pub use band::{CriticalValues, Run, runs_above_zero};
 pub use bend::Bend;
 pub use calibrate::{Calibration, calibrated_quantile};
 pub use fit::{Fit, FitError, Remark, Verdict, fit};
+pub use impute::{AfterLeaving, Filling, Imputer};
 pub use influence::Influence;
 pub use model::{
     Basis, ClusterEffects, Data, Dimension, Likelihood, Model, Serial, Shape, Shared, Sharing, SubjectEffects,
