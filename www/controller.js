@@ -65,7 +65,7 @@ export class Controller {
   /** Asks for what the room in sight shows beyond the findings, once per plan. */
   #attend() {
     const { room, status } = this.state;
-    if ((room !== 'checks' && room !== 'usual' && room !== 'report') || (status !== 'ready' && status !== 'boundary')) return;
+    if ((room !== 'checks' && room !== 'usual' && room !== 'dropout' && room !== 'report') || (status !== 'ready' && status !== 'boundary')) return;
     const plan = this.#planText(this.state.choices);
     const refits = this.state.refits?.plan === plan ? this.state.refits.refits : '';
     const context = room === 'report' ? reportContext(this.state, plan) : '';
@@ -75,7 +75,7 @@ export class Controller {
   }
 
   /**
-   * @param {'checks'|'usual'|'candidates'|'report'} what
+   * @param {'checks'|'usual'|'dropout'|'candidates'|'report'} what
    * @param {string} asked
    * @param {Promise<string>} answer
    */
@@ -117,6 +117,8 @@ export class Controller {
           return json;
         }));
       },
+      planText: () => this.#planText(this.state.choices),
+      sensitivity: async (asked) => JSON.parse(await this.engine.sensitivity(this.#planText(this.state.choices), JSON.stringify(asked))),
       look: () => this.state,
       saveAnalysis: (whole) => this.saveAnalysis(whole),
       fixPlan: () => this.set({ ...this.state, fixed: this.state.choices.plan }),

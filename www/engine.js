@@ -124,7 +124,7 @@ export class Engine {
     return this.#ask('run', { plan });
   }
 
-  /** What a room asks beyond the findings. @param {'checks'|'usual'|'candidates'} room @param {string} plan @returns {Promise<string>} */
+  /** What a room asks beyond the findings. @param {'checks'|'usual'|'dropout'|'candidates'} room @param {string} plan @returns {Promise<string>} */
   answer(room, plan) {
     return this.#ask(room, { plan });
   }
@@ -132,6 +132,11 @@ export class Engine {
   /** @param {string} plan @param {string} refits @param {string} context @returns {Promise<string>} */
   report(plan, refits, context) {
     return this.#ask('report', { plan, refits, context });
+  }
+
+  /** @param {string} plan @param {string} asked @returns {Promise<string>} */
+  sensitivity(plan, asked) {
+    return this.#ask('sensitivity', { plan, asked });
   }
 
   /** A sample-size request from the fitted table. @param {string} plan @param {number} pair @returns {Promise<string>} */

@@ -6,12 +6,13 @@
 import { checksRoom } from './rooms/checks.js';
 import { coursesRoom } from './rooms/courses.js';
 import { dataRoom } from './rooms/data.js';
+import { dropoutRoom } from './rooms/dropout.js';
 import { reportRoom } from './rooms/report.js';
 import { sizeRoom } from './rooms/size.js';
 import { usualRoom } from './rooms/usual.js';
 
 /** @type {readonly import('./types.js').Room[]} */
-export const rooms = [dataRoom, coursesRoom, checksRoom, usualRoom, sizeRoom, reportRoom];
+export const rooms = [dataRoom, coursesRoom, checksRoom, usualRoom, dropoutRoom, sizeRoom, reportRoom];
 
 /** The room for an address that names none. */
 export const FIRST_ROOM = coursesRoom.id;

@@ -26,7 +26,7 @@ export function initialState() {
     choices: freshChoices(), history: { past: [], future: [] },
     findings: null, drawing: null, change: null, message: null, notice: null,
     cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], demos: [], announcement: '',
-    answers: { checks: null, usual: null, candidates: null, report: null }, refits: null, fixed: null, lookedAt: [],
+    answers: { checks: null, usual: null, dropout: null, candidates: null, report: null }, refits: null, fixed: null, lookedAt: [],
   };
 }
 
@@ -198,7 +198,7 @@ function announcementOf(before, after) {
 /**
  * What a room asked for is under way, has come, or has failed. While a newer one is under way the last stays in sight.
  * @param {State} state
- * @param {'checks'|'usual'|'candidates'|'report'} room
+ * @param {'checks'|'usual'|'dropout'|'candidates'|'report'} room
  * @param {Partial<import('./types.js').Answer>} answer
  * @returns {State}
  */

@@ -9,6 +9,7 @@ import { copyCheck } from './text/copy-check.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
 import { checks } from './text/checks.js';
+import { dropout } from './text/dropout.js';
 import { report } from './text/report.js';
 import { size } from './text/size.js';
 import { usual } from './text/usual.js';
@@ -30,12 +31,13 @@ export const text = {
   data,
   privacy,
   checks,
+  dropout,
   report,
   size,
   usual,
   words,
 
-  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses', size: 'Sample size', report: 'Report' },
+  rooms: { data: 'Data', courses: 'Time courses', checks: 'Checks', usual: 'Usual analyses', dropout: 'Dropout', size: 'Sample size', report: 'Report' },
   navigation: 'Rooms',
   skip: 'Skip to the room',
 

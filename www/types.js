@@ -141,7 +141,7 @@
  * @property {string[]} lookedAt Other models that were looked at, for the report.
  * @property {Plan|null} fixed The plan as it was fixed.
  * @property {string} announcement
- * @property {{checks: Answer|null, usual: Answer|null, candidates: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
+ * @property {{checks: Answer|null, usual: Answer|null, dropout: Answer|null, candidates: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
  */
 
 /**
@@ -159,6 +159,8 @@
  * @property {() => void} stop
  * @property {(held: import('./copy-check.js').Reference, tell: (done: number, total: number) => void) => Promise<import('./copy-check.js').CopyReport>} checkCopy
  * @property {(what: 'candidates') => void} ask Asks for what is computed only when wanted.
+ * @property {() => string} planText The plan as it is sent.
+ * @property {(asked: Record<string, any>) => Promise<any>} sensitivity Pooled gaps under an assumption on those who left.
  * @property {() => State} look The state as it is.
  * @property {(whole: boolean) => Promise<void>} saveAnalysis With the table, or its fingerprint only.
  * @property {() => void} fixPlan

@@ -28,6 +28,8 @@
       return { findings, traces: session.traces() };
     },
     checks: ({ plan }) => session.checks(plan),
+    dropout: ({ plan }) => session.dropout(plan),
+    sensitivity: ({ plan, asked }) => session.sensitivity(plan, asked),
     candidates: ({ plan }) => session.candidates(plan),
     usual: ({ plan }) => session.usual(plan),
     report: ({ plan, refits, context }) => session.report(plan, refits, context),

@@ -13,7 +13,7 @@ let browser;
 before(async () => { browser = await launch(); });
 after(async () => { await browser?.close(); });
 
-for (const room of ['courses', 'data', 'checks', 'usual', 'size', 'report']) {
+for (const room of ['courses', 'data', 'checks', 'usual', 'dropout', 'size', 'report']) {
   for (const dark of [false, true]) {
     test(`${room}, ${dark ? 'dark' : 'light'}`, async () => {
       // The checker is put into the page, which the page's own policy would refuse.

@@ -177,3 +177,19 @@ test('other models: laid over the plan, one can be used and taken back', async (
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('dropout: who leaves is said, and a shift takes the conclusion away', async () => {
+  const page = await openPage(browser);
+  await enter(page, 'dropout');
+  await page.waitForSelector('[data-region="dropout"] p');
+  assert.match(await page.locator('[data-region="dropout"]').innerText(), /Before the last visit leave: .* of 12 in Plain gauze/);
+  await page.fill('[data-field="delta-from"]', '-0.5');
+  await page.fill('[data-field="delta-to"]', '0.5');
+  await page.fill('[data-field="delta-step"]', '0.5');
+  await page.fill('[data-field="tables"]', '10');
+  await page.click('[data-act="sensitivity"]');
+  await page.waitForFunction(() => document.querySelector('[data-region="sensitivity-state"]')?.textContent === '' && document.querySelectorAll('.tipping').length > 0, null, { timeout: 60000 });
+  assert.match(await page.locator('.tipping').first().innerText(), /conclusion (is lost|stands)/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

@@ -40,7 +40,7 @@ pub use model::{
     SubjectRows,
 };
 pub use params::Parameter;
-pub use posterior::{Contrast, Estimate, Joint, Posterior};
+pub use posterior::{Contrast, Estimate, Joint, Posterior, correlation_rows};
 pub use predict::{Foreseen, OddSubject};
 pub use residuals::Residual;
 pub use robust::RobustError;

@@ -295,6 +295,14 @@ pub struct Joint {
 }
 
 impl Joint {
+    /// Covariance matrix, row by row.
+    #[must_use]
+    pub fn covariance(&self) -> Vec<f64> {
+        let m = self.means.len();
+        let row = |k: usize| &self.flat[k * self.rank..(k + 1) * self.rank];
+        (0..m * m).map(|at| row(at / m).iter().zip(row(at % m)).map(|(a, b)| a * b).sum()).collect()
+    }
+
     /// One draw: deviations are multiplied by `stretch`.
     pub fn draw(&self, rng: &mut crate::special::Rng, stretch: f64, out: &mut Vec<f64>) {
         let x: Vec<f64> = (0..self.rank).map(|_| rng.normal() * stretch).collect();
@@ -385,6 +393,25 @@ fn half_solve(solved: &Solved, weights: &[f64]) -> DVector<f64> {
         x[i] = value / l[(i, i)];
     }
     x
+}
+
+/// Rows of unit length whose products are the correlations of a covariance matrix (m x m, row by row), and their
+/// length, for [`DirectionMaxima::new`]. Rows without variance are zero.
+#[must_use]
+pub fn correlation_rows(covariance: &[f64], m: usize) -> (Vec<f64>, usize) {
+    let sd: Vec<f64> = (0..m).map(|j| libm::sqrt(covariance[j * m + j].max(0.0))).collect();
+    let correlation =
+        DMatrix::from_fn(
+            m,
+            m,
+            |i, j| {
+                if sd[i] > 0.0 && sd[j] > 0.0 { covariance[i * m + j] / (sd[i] * sd[j]) } else { 0.0 }
+            },
+        );
+    let eigen = symmetric_eigen(&((&correlation + correlation.transpose()) * 0.5));
+    let root = DMatrix::from_fn(m, m, |i, k| eigen.eigenvectors[(i, k)] * libm::sqrt(eigen.eigenvalues[k].max(0.0)));
+    let rows: Vec<Vec<f64>> = (0..m).map(|i| root.row(i).iter().copied().collect()).collect();
+    reduce_rank(&rows)
 }
 
 /// Rows in the fewest dimensions that hold all but a 1e-5 share of their squared length, lengths kept.

@@ -3,7 +3,7 @@
 use crate::refused::Refused;
 use crate::session::Session;
 use crate::wire;
-use courseband_study::{Counts, ReportContext, SizeRequest};
+use courseband_study::{Counts, ReportContext, Sensitivity, SizeRequest};
 use wasm_bindgen::prelude::wasm_bindgen;
 
 #[wasm_bindgen]
@@ -24,6 +24,25 @@ impl Session {
     pub fn usual(&mut self, plan: &str) -> Result<String, Refused> {
         let (study, plan) = self.with(plan)?;
         wire::text(&study.usual(&plan)?)
+    }
+
+    /// Who leaves when.
+    ///
+    /// # Errors
+    /// As [`Session::run`].
+    pub fn dropout(&mut self, plan: &str) -> Result<String, Refused> {
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.dropout(&plan)?)
+    }
+
+    /// Gaps when those who left are taken to go on as asked.
+    ///
+    /// # Errors
+    /// As [`Session::run`], and rows that cannot be filled in.
+    pub fn sensitivity(&mut self, plan: &str, asked: &str) -> Result<String, Refused> {
+        let asked: Sensitivity = wire::parsed(asked, "assumption")?;
+        let (study, plan) = self.with(plan)?;
+        wire::text(&study.sensitivity(&plan, &asked)?)
     }
 
     /// Other models beside the plan's.

@@ -1,0 +1,47 @@
+/** Words of the room Dropout. */
+
+export const dropout = {
+  title: 'What if those who left differ?',
+  waiting: 'This appears when the table has been fitted.',
+  working: 'Looking at who leaves \u2026',
+  followed: 'Share still followed',
+  followedHint: 'Steps: share of each group still followed (Kaplan-Meier), with limits by themselves.',
+  leavers: 'Last values before leaving',
+  leaversHint: 'Each dot is one that leaves, at its last visit; lines are the groups\u2019 courses.',
+  leaversTable: 'All who leave',
+  heads: { subject: 'Who', group: 'Group', time: 'Last seen', value: 'Last value', course: 'Course of the group then' },
+  estimand: 'What the main analysis says',
+  sensitivity: {
+    title: 'If they had gone on otherwise',
+    lead: 'Rows after leaving are filled in many times from the fitted model, then shifted away from it as you say; each filled-in table is fitted anew and the results are pooled. With no shift this repeats the main analysis.',
+    delta: 'Shift per time unit since last seen, from',
+    to: 'to',
+    steps: 'in steps',
+    unit: 'On the modelled scale; on a log scale 0.1 is about 10 percent.',
+    who: 'Who is shifted',
+    everyone: 'all who left',
+    after: 'After leaving, the mean is that of',
+    own: 'their own group',
+    jump: 'the reference group, at once',
+    increments: 'their own last mean, changing as the reference group',
+    reference: 'Reference group',
+    tables: 'Filled-in tables',
+    run: 'Fill in and pool',
+    stop: 'Stop',
+    /** @param {number} done @param {number} all */
+    progress: (done, all) => `${done} of ${all} shifts`,
+    stopped: 'Stopped. What was pooled is kept.',
+    /** @param {string} pair @param {string} delta */
+    lost: (pair, delta) => `${pair}: the conclusion is lost at a shift of ${delta} per time unit, when no visit of the stretch is left.`,
+    /** @param {string} pair @param {string} low @param {string} high */
+    kept: (pair, low, high) => `${pair}: the conclusion stands at every shift from ${low} to ${high}.`,
+    none: (/** @type {string} */ pair) => `${pair}: the main analysis shows no visit apart, so there is no conclusion to lose.`,
+    curve: (/** @type {string} */ pair) => `Gap ${pair} at the last common visit, by shift`,
+    across: 'shift per time unit',
+    gaps: (/** @type {string} */ pair) => `Gap ${pair} over time, one line per shift; the band is that without a shift`,
+    numbers: 'All numbers',
+    head: ['Shift', 'Gap', 'Lower', 'Upper', 'Share due to what is missing', 'Visits still apart'],
+    reminder: 'Under a reference group the limits are conservative.',
+    number: 'Give numbers: from, to, and a step above zero; at most 41 shifts.',
+  },
+};
