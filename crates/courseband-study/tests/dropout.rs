@@ -35,7 +35,10 @@ fn leaving_is_counted_and_its_dependence_on_values_is_said() {
     assert!(found.p.unwrap() < 0.01);
     assert!(found.groups[1].share.windows(2).all(|w| w[1] <= w[0]));
     let text = found.sentences.join(" ");
-    assert!(text.contains("Leaving differs between the groups") && text.contains("below their group's course"), "{text}");
+    assert!(
+        text.contains("Leaving differs between the groups") && text.contains("below their group's course"),
+        "{text}"
+    );
     assert!(found.no_sensitivity.is_none());
 }
 
