@@ -51,7 +51,8 @@ pub struct Leaving {
     pub lower: Vec<Option<f64>>,
     /// Upper limits.
     pub upper: Vec<Option<f64>>,
-    /// Mean distance of the leavers' last values from their group's course, in error and subject SDs; `null` without leavers.
+    /// Mean distance of the leavers' last values from their group's course, in standard deviations of a subject's value at
+    /// that time; `null` without leavers.
     pub leavers_last: Option<f64>,
 }
 
@@ -165,7 +166,13 @@ impl Study {
             let scale = residuals.iter().rfind(|r| r.subject == k).map(|r| (r.around_course, r.independent));
             if let Some((around, _)) = scale {
                 let covariance = fitted.subject_covariance(subject.group);
-                let between = covariance.first().and_then(|row| row.first()).copied().unwrap_or(0.0);
+                let since = t - cohort.visits.first().copied().unwrap_or(0.0);
+                let z = [1.0, since];
+                let pairs = covariance
+                    .iter()
+                    .enumerate()
+                    .flat_map(|(a, row)| row.iter().enumerate().map(move |(b, d)| z[a] * d * z[b]));
+                let between: f64 = pairs.sum();
                 let sd = fitted.residual_sd(subject.group);
                 distances[subject.group].push(around / libm::sqrt(between + sd * sd));
             }
