@@ -145,6 +145,11 @@ impl Units {
         }
     }
 
+    /// The same with responses in their own unit, as a distribution with a link needs them.
+    pub(crate) fn with_plain_responses(self) -> Self {
+        Units { response_centre: 0.0, response_scale: 1.0, ..self }
+    }
+
     /// Table time to internal time.
     pub(crate) fn inner_time(&self, t: f64) -> f64 {
         (t - self.time_origin) / self.time_span

@@ -19,6 +19,7 @@
 
 use crate::criterion::Criterion;
 use crate::fit::Fit;
+use crate::model::Family;
 use crate::params::Parameter;
 use crate::posterior::{Contrast, contrast_value, draw_coefficients};
 use crate::refit::Refitter;
@@ -44,9 +45,12 @@ pub struct Calibration {
 }
 
 impl Calibration {
-    /// Prepares: runs the chain. `None` where the criterion cannot be computed.
+    /// Prepares: runs the chain. `None` where the criterion cannot be computed, or the response is not normal.
     #[must_use]
     pub fn new(fit: Fit, families: Vec<Vec<Contrast>>, seed: u64) -> Option<Self> {
+        if fit.model.family != Family::Normal {
+            return None;
+        }
         let draws = chain(&fit, seed)?;
         let refitter = Refitter::new(&fit);
         Some(Calibration { fit, families, draws, refitter, seed })

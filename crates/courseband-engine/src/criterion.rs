@@ -19,6 +19,8 @@
 //! small matrix is formed once and contracted with what that matrix depends on.
 
 use crate::clusters::{ClusterSlopes, ClusterState, Share, Through};
+use crate::laplace::{Laplace, Mode};
+use crate::model::Family;
 use crate::params::Layout;
 use crate::reduce::{Design, Pattern, PatternProducts, Products, reduce};
 use crate::whiten::ErrorShape;
@@ -52,6 +54,8 @@ pub(crate) struct Criterion<'a> {
     kept: Option<(Option<ErrorShape>, bool, Products, Vec<Products>)>,
     /// Evaluations so far.
     pub(crate) evaluations: usize,
+    /// For responses that are not normal, with the last mode.
+    laplace: Option<(Laplace<'a>, Option<Mode>)>,
 }
 
 /// What the backward pass needs of a pattern.
@@ -64,12 +68,16 @@ pub(crate) struct PatternState {
 
 impl<'a> Criterion<'a> {
     pub(crate) fn new(design: &'a Design, layout: &'a Layout) -> Self {
-        Criterion { design, layout, kept: None, evaluations: 0 }
+        let laplace = (layout.family != Family::Normal).then(|| (Laplace::new(design, layout), None));
+        Criterion { design, layout, kept: None, evaluations: 0, laplace }
     }
 
     /// `None` where a matrix is not positive definite or a number is not finite.
     pub(crate) fn evaluate(&mut self, theta: &[f64], with_gradient: bool) -> Option<Evaluation> {
         self.evaluations += 1;
+        if self.laplace.is_some() {
+            return self.evaluate_laplace(theta, with_gradient);
+        }
         let shape = self.layout.error_shape(theta);
         let slopes = self.slopes();
         let fresh = !matches!(&self.kept, Some((s, full, ..)) if *s == shape && (*full || !with_gradient));
@@ -81,6 +89,29 @@ impl<'a> Criterion<'a> {
         let (_, _, products, derivatives) = self.kept.as_ref()?;
         let pass = Pass { design: self.design, layout: self.layout, theta, products };
         pass.run(if with_gradient { Some(derivatives) } else { None })
+    }
+
+    /// By Laplace's approximation; the gradient by central differences.
+    fn evaluate_laplace(&mut self, theta: &[f64], with_gradient: bool) -> Option<Evaluation> {
+        let (laplace, kept) = self.laplace.as_mut()?;
+        let here = laplace.at(theta, kept.as_ref())?;
+        let mut gradient = Vec::new();
+        if with_gradient {
+            let h = 1e-3;
+            for k in 0..theta.len() {
+                if self.layout.lower[k] == self.layout.upper[k] {
+                    gradient.push(0.0);
+                    continue;
+                }
+                let mut moved = theta.to_vec();
+                moved[k] = theta[k] + h;
+                let up = laplace.at(&moved, Some(&here.mode))?.value;
+                moved[k] = theta[k] - h;
+                gradient.push((up - laplace.at(&moved, Some(&here.mode))?.value) / (2.0 * h));
+            }
+        }
+        *kept = Some(here.mode);
+        Some(Evaluation { value: here.value, gradient, solved: here.solved })
     }
 
     fn slopes(&self) -> Vec<usize> {

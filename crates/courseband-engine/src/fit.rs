@@ -8,7 +8,7 @@
 
 use crate::basis::{Units, group_bases, with_start};
 use crate::criterion::{Criterion, Solved};
-use crate::model::{Data, Likelihood, Model, Serial};
+use crate::model::{Data, Family, Likelihood, Model, Serial};
 use crate::optimise::{Bounds, Objective, Point, Polished, newton, plain_inverse, quasi_newton, start};
 use crate::params::{Layout, Parameter};
 use crate::reduce::Design;
@@ -91,6 +91,7 @@ impl Objective for Criterion<'_> {
 pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
     check(data)?;
     let units = Units::of(data);
+    let units = if model.family == Family::Normal { units } else { units.with_plain_responses() };
     let bases = group_bases(data, model, &units);
     if let Some(group) = model.common_start.then(|| group_without_start(data)).flatten() {
         return Err(FitError::NoCommonStart(group));

@@ -10,6 +10,7 @@ mod criterion;
 mod fit;
 mod impute;
 mod influence;
+mod laplace;
 mod model;
 mod optimise;
 mod params;
@@ -36,7 +37,7 @@ pub use fit::{Fit, FitError, Remark, Verdict, fit};
 pub use impute::{AfterLeaving, Filling, Imputer};
 pub use influence::Influence;
 pub use model::{
-    Basis, ClusterEffects, Data, Dimension, Likelihood, Model, Serial, Shape, Shared, Sharing, SubjectEffects,
+    Basis, ClusterEffects, Data, Dimension, Family, Likelihood, Model, Serial, Shape, Shared, Sharing, SubjectEffects,
     SubjectRows,
 };
 pub use params::Parameter;

@@ -176,6 +176,30 @@ pub enum Serial {
     Ar1Nugget,
 }
 
+/// Distribution of the response around its course, with its link.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
+pub enum Family {
+    /// Normal, identity link.
+    #[default]
+    Normal,
+    /// Poisson, log link.
+    Poisson,
+    /// Negative binomial with variance `mu + phi mu^2`, log link; phi is the error parameter.
+    NegativeBinomial,
+    /// Gamma with variance `phi mu^2`, log link; phi is the error parameter.
+    Gamma,
+    /// 0 or 1, logit link.
+    Binomial,
+}
+
+impl Family {
+    /// True where a dispersion is estimated.
+    #[must_use]
+    pub fn has_dispersion(self) -> bool {
+        matches!(self, Family::Normal | Family::NegativeBinomial | Family::Gamma)
+    }
+}
+
 /// Which likelihood is maximised.
 #[derive(Debug, Clone, Copy, PartialEq, Eq, Default)]
 pub enum Likelihood {
@@ -208,6 +232,8 @@ pub struct Model {
     pub spread: Sharing,
     /// Which likelihood is maximised.
     pub likelihood: Likelihood,
+    /// Distribution of the response. Other than normal: independent errors of one kind, no clusters.
+    pub family: Family,
 }
 
 impl Default for Model {
@@ -223,6 +249,7 @@ impl Default for Model {
             serial: Serial::None,
             spread: Sharing::Common,
             likelihood: Likelihood::Restricted,
+            family: Family::Normal,
         }
     }
 }

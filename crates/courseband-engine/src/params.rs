@@ -15,7 +15,7 @@
 //! Responses are internal (unit variance), times are internal (unit span).
 
 use crate::basis::GroupBasis;
-use crate::model::{ClusterEffects, Likelihood, Model, Serial, Sharing, SubjectEffects};
+use crate::model::{ClusterEffects, Family, Likelihood, Model, Serial, Sharing, SubjectEffects};
 use crate::reduce::Design;
 use crate::whiten::ErrorShape;
 use nalgebra::DMatrix;
@@ -74,6 +74,7 @@ pub(crate) struct Layout {
     curved: usize,
     /// True where the free columns are not integrated out.
     pub(crate) full: bool,
+    pub(crate) family: Family,
 }
 
 impl Layout {
@@ -96,10 +97,17 @@ impl Layout {
             width: design.effects.width(),
             curved: design.effects.curved(),
             full: model.likelihood == Likelihood::Full,
+            family: model.family,
         };
         layout.add_smoothing(model, bases);
         for (group, slot) in layout.owners(model.spread, groups) {
-            let index = layout.add(Parameter::Error(slot), -36.0, 12.0);
+            // Without a dispersion the entry is there and held at 1.
+            let (low, high) = match model.family {
+                Family::Normal => (-36.0, 12.0),
+                Family::NegativeBinomial | Family::Gamma => (-12.0, 6.0),
+                _ => (0.0, 0.0),
+            };
+            let index = layout.add(Parameter::Error(slot), low, high);
             group.into_iter().for_each(|g| layout.error[g] = index);
         }
         if model.subjects.count() > 0 {

@@ -257,6 +257,7 @@ impl Plan {
             },
             spread: sharing(self.errors.spread == Spread::ByGroup),
             likelihood: engine::Likelihood::Restricted,
+            family: engine::Family::Normal,
         }
     }
 }

@@ -2,7 +2,9 @@
 
 use super::*;
 use crate::basis::GroupBasis;
-use crate::model::{Basis, ClusterEffects, Dimension, Likelihood, Shape, Shared, Sharing, SubjectEffects, SubjectRows};
+use crate::model::{
+    Basis, ClusterEffects, Dimension, Family, Likelihood, Shape, Shared, Sharing, SubjectEffects, SubjectRows,
+};
 use crate::special::Rng;
 use crate::spline::Roughness;
 
@@ -40,6 +42,7 @@ fn model(subjects: SubjectEffects, serial: Serial) -> Model {
         serial,
         spread: Sharing::Common,
         likelihood: Likelihood::Restricted,
+        family: Family::Normal,
     }
 }
 
