@@ -3,14 +3,14 @@
  * fits, whether it can be had here, and the plan that results. Pure functions.
  */
 
-import { pairCount, withSection, withTransform } from './plan.js';
+import { pairCount, withDistribution, withSection, withTransform } from './plan.js';
 import { text } from './text.js';
 import { percentLevel } from './numbers.js';
 
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'start'|'covariates'|'block'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'distribution'|'start'|'covariates'|'block'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -265,6 +265,9 @@ function plainAlternatives(choice, plan) {
     case 'clusters':
       return list(plan, plan.clusters, words.clusters,
         (id) => ({ ...plan, clusters: id }), ['auto', 'slope', 'intercept', 'none']);
+    case 'distribution':
+      return list(plan, plan.response.distribution, words.distribution, (id) => withDistribution(plan, id),
+        ['normal', 'poisson', 'negative-binomial', 'gamma']);
     case 'start':
       return startAlternatives(plan);
     case 'serial':

@@ -82,7 +82,9 @@ function followed(choices, context, open) {
   const { covariates, bending, block } = plan.columns;
   const adjusted = covariates
     .map((name) => (bending.includes(name) ? words.choices.covariates.bent(called(name)) : called(name))).join(words.and);
+  const { distribution } = plan.response;
   const finer = withFiner([
+    { lead: words.valuesAre, part: chosen('distribution', choices, context), isDefault: distribution === 'normal' },
     ...finerOfCurve,
     { lead: words.start, part: chosen('start', choices, context), isDefault: plan.response.start === 'as-measured' },
     {

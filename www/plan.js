@@ -96,6 +96,24 @@ export function withTransform(plan, transform) {
 }
 
 /**
+ * Another distribution. What it cannot have beside it is set back; a log link makes gaps ratios, so a margin in
+ * the response's unit is set aside.
+ * @param {Plan} plan
+ * @param {string} distribution
+ * @returns {Plan}
+ */
+export function withDistribution(plan, distribution) {
+  const log = distribution !== 'normal';
+  const changed = withSection(withTransform(plan, log ? 'log' : 'identity'), 'response', {
+    distribution, ...(log ? { transform: 'identity', start: 'as-measured' } : {}),
+  });
+  if (!log) return changed;
+  const plain = withSection(changed, 'errors', { serial: 'none', spread: 'common', nugget: false });
+  const bare = withSection(plain, 'columns', { covariates: [], bending: [], block: null });
+  return { ...bare, subjects: bare.subjects === 'curve' ? 'slope' : bare.subjects };
+}
+
+/**
  * A role given to a column by hand. The column loses its other role, and a
  * role without a column is said to be absent.
  * @param {Plan} plan

@@ -25,6 +25,7 @@ export const plan = {
   onScale: ', on ',
   scaleEnd: ' scale',
   made: '; made of ',
+  valuesAre: '; values are ',
   bends: '; bends ',
   smoothness: '; smoothness ',
   each: 'each ',
@@ -88,6 +89,13 @@ export const plan = {
       /** @param {string} rows @param {number} count */
       greyed: (rows, count) =>
         `Not possible: ${count === 1 ? 'line' : 'lines'} ${rows} ${count === 1 ? 'holds' : 'hold'} zero or less. No constant is added.`,
+    },
+    distribution: {
+      label: 'What the values are',
+      normal: ['measured values', 'Scatter evenly around the course, on the scale chosen. Fits most measurements.'],
+      poisson: ['counts', 'Whole numbers from 0 on whose variance is their mean (Poisson). Fits rare, independent events.'],
+      'negative-binomial': ['counts that scatter widely', 'Whole numbers from 0 on whose variance grows faster than their mean (negative binomial). Fits colonies, lesions, cells.'],
+      gamma: ['positive values, wider when larger', 'Above zero, with a spread in proportion to the mean (gamma). Fits concentrations and times.'],
     },
     noun: {
       label: 'What a subject is called',

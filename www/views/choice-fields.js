@@ -101,7 +101,7 @@ function mountMargin(root, acts) {
     /** @param {State} state */
     update(state) {
       const { plan } = state.choices;
-      percent = plan.response.transform === 'log';
+      percent = plan.response.transform === 'log' || plan.response.distribution !== 'normal';
       unit.value = percent ? 'percent' : 'response';
       if (inPercent) inPercent.disabled = !percent;
       if (inResponse) {

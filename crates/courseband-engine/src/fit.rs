@@ -496,6 +496,13 @@ impl Fit {
         libm::sqrt(self.layout.variance(&self.theta, group)) * self.design.units.response_scale
     }
 
+    /// Dispersion of a gamma (variance `phi mu^2`) or negative binomial (`mu + phi mu^2`) response.
+    #[must_use]
+    pub fn dispersion(&self) -> Option<f64> {
+        let estimated = self.model.family != Family::Normal && self.model.family.has_dispersion();
+        estimated.then(|| self.layout.variance(&self.theta, 0))
+    }
+
     /// Covariance of the subject effects of a group, q x q: level at the table's first
     /// time, trend per time unit of the table.
     #[must_use]

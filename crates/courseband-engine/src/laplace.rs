@@ -255,12 +255,7 @@ impl<'a> Laplace<'a> {
     }
 
     /// Moves of all subjects from those of the blocks, and the rise that a whole step promises.
-    fn eliminated(
-        &self,
-        blocks: Vec<(Cholesky<f64, nalgebra::Dyn>, DVector<f64>, DVector<f64>)>,
-        subjects: Vec<Eliminated>,
-        log_h: f64,
-    ) -> Step {
+    fn eliminated(&self, blocks: Vec<SolvedStep>, subjects: Vec<Eliminated>, log_h: f64) -> Step {
         let placement = &self.design.placement;
         let mut gain: f64 = blocks.iter().map(|(_, db, right)| 0.5 * db.dot(right)).sum();
         let mut dv = Vec::with_capacity(self.design.patterns.len());
@@ -320,6 +315,9 @@ impl<'a> Laplace<'a> {
         value.is_finite().then_some(AtMode { value: 0.5 * value, solved, mode })
     }
 }
+
+/// A block's factor, its move and its right side.
+type SolvedStep = (Cholesky<f64, nalgebra::Dyn>, DVector<f64>, DVector<f64>);
 
 struct Eliminated {
     h: Cholesky<f64, nalgebra::Dyn>,

@@ -76,6 +76,7 @@ impl Study {
     /// A plan or table that cannot be used.
     pub fn candidates(&mut self, plan: &Plan) -> Result<Candidates, Refusal> {
         plan.check()?;
+        plan.need_normal("Other models beside the plan")?;
         let mut all = Vec::new();
         for (name, candidate) in others(plan) {
             if candidate.check().is_err() {

@@ -36,7 +36,7 @@ impl Plan {
             return Err(Refusal::plan(format!("comparisons.margin is {}: give 0 or a positive number.", c.margin)));
         }
         if c.margin_unit == MarginUnit::Percent && c.margin > 0.0 {
-            if self.response.transform != Transform::Log {
+            if !self.is_ratio() {
                 return Err(Refusal::plan(
                     "comparisons.margin_unit is percent, which needs a ratio scale. Set response.transform to \"log\", \
                      or give the margin in the response's unit.",
@@ -113,17 +113,75 @@ impl Plan {
         Ok(())
     }
 
+    /// What goes with a distribution other than the normal.
+    fn check_family(&self) -> Result<(), Refusal> {
+        let name = match self.response.distribution {
+            Distribution::Normal => return Ok(()),
+            Distribution::Poisson => "poisson",
+            Distribution::NegativeBinomial => "negative-binomial",
+            Distribution::Gamma => "gamma",
+            Distribution::Binomial | Distribution::Beta | Distribution::Tweedie => {
+                return Err(Refusal::plan(
+                    "response.distribution binomial, beta and tweedie are not available in this version. Use \"poisson\" or \
+                     \"negative-binomial\" for counts, \"gamma\" or the log scale for skewed values.",
+                ));
+            }
+        };
+        let columns = !self.columns.covariates.is_empty() || self.columns.block.is_some();
+        let clash = [
+            (
+                self.response.transform == Transform::Log,
+                "response.transform log",
+                "its own link is the log: set \"identity\"",
+            ),
+            (self.errors.serial != Serial::None, "errors.serial", "set \"none\""),
+            (self.errors.spread != Spread::Common, "errors.spread", "set \"common\""),
+            (self.subjects == SubjectEffects::Curve, "subjects: curve", "set \"slope\""),
+            (self.response.start != Start::AsMeasured, "response.start", "set \"as-measured\""),
+            (columns, "columns.covariates and columns.block", "leave them out"),
+        ];
+        match clash.iter().find(|(clashes, ..)| *clashes) {
+            Some((_, what, instead)) => Err(Refusal::plan(format!(
+                "{what} is not available beside response.distribution \"{name}\": {instead}."
+            ))),
+            None => Ok(()),
+        }
+    }
+
+    /// True where gaps are ratios: on the log scale, and for distributions with a log link.
+    #[must_use]
+    pub fn is_ratio(&self) -> bool {
+        self.response.transform == Transform::Log || self.response.distribution != Distribution::Normal
+    }
+
+    /// Refuses, for what is made for normal responses only.
+    ///
+    /// # Errors
+    /// Another distribution.
+    pub(crate) fn need_normal(&self, what: &str) -> Result<(), Refusal> {
+        if self.response.distribution == Distribution::Normal {
+            return Ok(());
+        }
+        Err(Refusal::plan(format!(
+            "{what} are made for normal responses, on the measured or the log scale, and not for other distributions in this version."
+        )))
+    }
+
+    fn family(&self) -> engine::Family {
+        match self.response.distribution {
+            Distribution::Poisson => engine::Family::Poisson,
+            Distribution::NegativeBinomial => engine::Family::NegativeBinomial,
+            Distribution::Gamma => engine::Family::Gamma,
+            _ => engine::Family::Normal,
+        }
+    }
+
     /// Refuses what this version does not compute, rather than computing something else.
     fn check_reach(&self) -> Result<(), Refusal> {
         let missing = |what: &str, instead: &str| {
             Err(Refusal::plan(format!("{what} is not available in this version. Use {instead}.")))
         };
-        if self.response.distribution != Distribution::Normal {
-            return missing(
-                "A response.distribution other than normal",
-                "\"normal\", on the log scale where values are skewed",
-            );
-        }
+        self.check_family()?;
         if self.subjects == SubjectEffects::Curve && self.errors.serial == Serial::Ar1 && !self.errors.nugget {
             return Err(Refusal::plan(
                 "subjects is curve and errors.serial is ar1 without measurement error: the two cannot be told apart. \
@@ -257,7 +315,7 @@ impl Plan {
             },
             spread: sharing(self.errors.spread == Spread::ByGroup),
             likelihood: engine::Likelihood::Restricted,
-            family: engine::Family::Normal,
+            family: self.family(),
         }
     }
 }

@@ -4,7 +4,7 @@ use crate::adjust::{Adjustment, Started, adjust, started};
 use crate::blocks::RunKind;
 use crate::findings::{ColumnsUsed, GroupInfo, Note, Problem, Reason};
 use crate::housing::Housing;
-use crate::plan::{Basis, Pairs, Plan, Serial, Shape, Transform};
+use crate::plan::{Basis, Distribution, Pairs, Plan, Serial, Shape, Transform};
 use crate::refusal::Refusal;
 use crate::sentences;
 use courseband_engine::{Data, SubjectRows};
@@ -41,6 +41,7 @@ impl Cohort {
         let (observations, cluster) = (&reading.observations, reading.columns.cluster.as_deref());
         refuse_extremes(observations)?;
         refuse_non_positive(observations, plan)?;
+        crate::families::refuse_values(observations, plan)?;
         let started = started(observations, plan)?;
         refuse_ties(observations, plan)?;
         let (mut subjects, subject_names) = rows_by_subject(observations, &started);
@@ -82,7 +83,9 @@ impl Cohort {
 
     /// The model to fit: the plan's, with the clusters that the table has.
     pub(crate) fn model(&self, plan: &Plan) -> courseband_engine::Model {
-        courseband_engine::Model { clusters: self.housing.effects, ..plan.model(self.range) }
+        let normal = plan.response.distribution == Distribution::Normal;
+        let clusters = if normal { self.housing.effects } else { courseband_engine::ClusterEffects::None };
+        courseband_engine::Model { clusters, ..plan.model(self.range) }
     }
 
     /// The range of a Gaussian process with the largest restricted likelihood, by fits over a grid of shares of the

@@ -147,6 +147,7 @@ impl Study {
     /// A plan or table that cannot be used, or a fit that failed.
     pub fn dropout(&mut self, plan: &Plan) -> Result<DropoutFindings, Refusal> {
         plan.check()?;
+        plan.need_normal("Last values before leaving")?;
         let cohort = Cohort::new(self.answered(plan)?, plan)?;
         let fitted = fit(&cohort.data, &cohort.model(plan))
             .map_err(|error| Refusal::plan(crate::remarks::failure(&error, &cohort.groups)))?;
@@ -216,6 +217,7 @@ impl Study {
     /// A plan or table that cannot be used, or rows that cannot be filled in.
     pub fn sensitivity(&mut self, plan: &Plan, asked: &Sensitivity) -> Result<SensitivityFindings, Refusal> {
         plan.check()?;
+        plan.need_normal("Rows after leaving")?;
         let cohort = Cohort::new(self.answered(plan)?, plan)?;
         let model = cohort.model(plan);
         let failure = |error| Refusal::plan(crate::remarks::failure(&error, &cohort.groups));

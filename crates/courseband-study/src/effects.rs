@@ -106,7 +106,7 @@ impl Evaluation<'_> {
     }
 
     fn is_ratio(&self) -> bool {
-        self.plan.response.transform == crate::plan::Transform::Log
+        self.plan.is_ratio()
     }
 
     /// The onset beyond the margin, in the direction in which the gap ends.

@@ -3,7 +3,7 @@
 use crate::adjust::Adjustment;
 use crate::cohort::Cohort;
 use crate::findings::*;
-use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample, Transform};
+use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample};
 use courseband_engine::special::{DirectionMaxima, t_quantile};
 use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
 
@@ -127,7 +127,7 @@ impl<'a> Evaluation<'a> {
     }
 
     pub(crate) fn back(&self, value: f64) -> f64 {
-        if self.plan.response.transform == Transform::Log { libm::exp(value) } else { value }
+        if self.plan.is_ratio() { libm::exp(value) } else { value }
     }
 
     pub(crate) fn curves(&self) -> Vec<Curve> {

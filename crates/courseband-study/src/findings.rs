@@ -137,6 +137,8 @@ pub struct FitSummary {
     pub log_reml: Option<f64>,
     /// Total error standard deviation per group, in the modelled unit.
     pub residual_sd: PerGroup,
+    /// Dispersion of a gamma or negative binomial response; `null` for others.
+    pub dispersion: Option<f64>,
     /// Covariance of the subject effects, level at the first time, trend per time unit.
     /// Empty without subject effects; per group in `subject_covariance_by_group`.
     pub subject_covariance: Vec<Vec<f64>>,

@@ -15,6 +15,7 @@ mod cohort;
 mod dropout;
 mod effects;
 mod evaluate;
+mod families;
 mod findings;
 mod housing;
 mod plan;

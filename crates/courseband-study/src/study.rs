@@ -3,7 +3,7 @@
 use crate::cohort::{Cohort, columns_used, problems};
 use crate::evaluate::{CalibratedValues, Evaluation};
 use crate::findings::*;
-use crate::plan::{BandKind, MarginUnit, Plan, Serial, SmallSample, Transform};
+use crate::plan::{BandKind, Distribution, MarginUnit, Plan, Serial, SmallSample};
 use crate::refusal::Refusal;
 use crate::{adjust, remarks, sentences};
 use courseband_engine::{Calibration, Fit, FitError, Verdict, calibrated_quantile, fit};
@@ -181,7 +181,7 @@ pub fn run(bytes: &[u8], plan: &Plan) -> Result<Findings, Refusal> {
 fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findings, Refusal> {
     let cohort = Cohort::new(reading, plan)?;
     let columns = columns_used(reading);
-    let ratio = plan.response.transform == Transform::Log;
+    let ratio = plan.is_ratio();
     let scale = ScaleInfo {
         time_word: plan.words.time.clone().unwrap_or_else(|| reading.observations.time_word.clone()),
         response: adjust::called(
@@ -229,6 +229,7 @@ fn failed_summary() -> FitSummary {
         status: FitStatus::Failed,
         log_reml: None,
         residual_sd: PerGroup::default(),
+        dispersion: None,
         subject_covariance: Vec::new(),
         subject_covariance_by_group: Vec::new(),
         cluster_covariance: Vec::new(),
@@ -289,6 +290,7 @@ fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
     let per_group = |f: &dyn Fn(usize) -> f64| {
         PerGroup(cohort.groups.iter().enumerate().map(|(g, info)| (info.name.clone(), f(g))).collect())
     };
+    let normal = plan.response.distribution == Distribution::Normal;
     let by_group = plan.subjects_spread == crate::plan::Sharing::ByGroup;
     FitSummary {
         status: match fitted.verdict() {
@@ -296,7 +298,8 @@ fn summary(plan: &Plan, cohort: &Cohort, fitted: &Fit) -> FitSummary {
             Verdict::Boundary => FitStatus::Boundary,
         },
         log_reml: Some(fitted.log_reml()),
-        residual_sd: per_group(&|g| fitted.residual_sd(g)),
+        residual_sd: if normal { per_group(&|g| fitted.residual_sd(g)) } else { PerGroup::default() },
+        dispersion: fitted.dispersion(),
         subject_covariance: fitted.subject_covariance(0),
         subject_covariance_by_group: if by_group {
             (0..cohort.groups.len()).map(|g| fitted.subject_covariance(g)).collect()
@@ -329,8 +332,11 @@ fn plan_notes(plan: &Plan, cohort: &Cohort) -> Vec<Note> {
                 .into(),
         );
     }
+    if let Some(message) = crate::families::note(plan) {
+        say("fit", message);
+    }
     let c = &plan.comparisons;
-    if c.margin > 0.0 && c.margin_unit == MarginUnit::Response && plan.response.transform == Transform::Log {
+    if c.margin > 0.0 && c.margin_unit == MarginUnit::Response && plan.is_ratio() {
         say(
             "comparisons",
             format!(

@@ -120,3 +120,58 @@ fn what_cannot_be_adjusted_for_is_refused_by_name() {
     assert!(refused(&text, r#"{"curves": {"basis": "cyclic"}}"#).contains("curves.period"));
     assert!(refused(&text, r#"{"response": {"transform": "log", "start": "percent"}}"#).contains("change"));
 }
+
+/// Colonies counted on plates over days; the second arm grows faster.
+fn colonies() -> String {
+    let mut rng = Rng::new(13);
+    let mut rows = vec!["plate,arm,day,colonies".to_string()];
+    for s in 0..20 {
+        let level = 0.3 * rng.normal();
+        for day in 0..6 {
+            let mean = libm::exp(1.2 + 0.2 * f64::from(day) * (1 + s % 2) as f64 * 0.7 + level);
+            let (mut product, mut count) = (rng.uniform(), 0);
+            while product > libm::exp(-mean) {
+                product *= rng.uniform();
+                count += 1;
+            }
+            rows.push(format!("p{s},{},{day},{count}", ["a", "b"][s % 2]));
+        }
+    }
+    rows.join("\n")
+}
+
+#[test]
+fn counts_are_compared_as_ratios() {
+    let text = colonies();
+    for family in ["poisson", "negative-binomial"] {
+        let findings = found(
+            &text,
+            &format!(
+                r#"{{"response": {{"distribution": "{family}"}}, "comparisons": {{"margin": 20, "margin_unit": "percent"}}}}"#
+            ),
+        );
+        let d = &findings.differences[0];
+        let last = d.at_visits.response_estimate[5].unwrap();
+        assert!(findings.scale.ratio && (last - libm::exp(0.7)).abs() < 0.5, "{family}: {last}");
+        assert!(!d.stretches.is_empty() && findings.fit.residual_sd.0.is_empty());
+        assert!(findings.notes.iter().any(|n| n.message.contains("Laplace")));
+        assert_eq!(findings.fit.dispersion.is_some(), family == "negative-binomial");
+    }
+}
+
+#[test]
+fn values_that_a_distribution_cannot_give_are_refused_by_row() {
+    let text = colonies();
+    let with = |family: &str, more: &str| format!(r#"{{"response": {{"distribution": "{family}"}}{more}}}"#);
+    let fraction = text.replacen("p0,a,0,", "p0,a,0,1.5", 1).replacen(",1.52", ",1.5", 1);
+    assert!(refused(&fraction, &with("poisson", "")).contains("row 2"), "{}", refused(&fraction, &with("poisson", "")));
+    let zero = text.lines().enumerate().map(|(k, line)| if k == 1 { "p0,a,0,0" } else { line });
+    let zero = zero.collect::<Vec<_>>().join("\n");
+    assert!(refused(&zero, &with("gamma", "")).contains("row 2 has 0"), "{}", refused(&zero, &with("gamma", "")));
+    assert!(refused(&text, &with("poisson", r#", "errors": {"serial": "ar1"}"#)).contains("errors.serial"));
+    assert!(refused(&text, &with("beta", "")).contains("not available"));
+    let plan = Plan::from_json(&with("poisson", "")).unwrap();
+    let mut study = courseband_study::Study::open(text.as_bytes()).unwrap();
+    assert!(study.checks(&plan).unwrap_err().message.contains("normal responses"));
+    assert!(study.calibration(&plan).unwrap().is_none());
+}

@@ -97,6 +97,7 @@ impl Study {
     /// A plan or table that cannot be used.
     pub fn checks(&mut self, plan: &Plan) -> Result<ChecksFindings, Refusal> {
         plan.check()?;
+        plan.need_normal("Checks of the model")?;
         let reading = self.answered(plan)?;
         let cohort = Cohort::new(reading, plan)?;
         let Ok(fitted) = fit(&cohort.data, &cohort.model(plan)) else {

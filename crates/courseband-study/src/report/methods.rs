@@ -2,8 +2,8 @@
 
 use crate::findings::Findings;
 use crate::plan::{
-    BandKind, Basis, Dimension, MarginUnit, Pairs, Serial, Shape, Sharing, SmallSample, Smoothness, Spread, Start,
-    SubjectEffects, Transform,
+    BandKind, Basis, Dimension, Distribution, MarginUnit, Pairs, Serial, Shape, Sharing, SmallSample, Smoothness,
+    Spread, Start, SubjectEffects, Transform,
 };
 use crate::sentences::{percent, plain};
 
@@ -56,6 +56,20 @@ fn mean(findings: &Findings, references: &mut Vec<&'static str>) -> String {
             format!("a penalised {basis} ({knots}; {shared})")
         }
     };
+    let family = match plan.response.distribution {
+        Distribution::Poisson => Some("Poisson"),
+        Distribution::NegativeBinomial => Some("negative binomial"),
+        Distribution::Gamma => Some("gamma"),
+        _ => None,
+    };
+    if let Some(family) = family {
+        references.push("Wood SN (2011). Fast stable restricted maximum likelihood estimation of semiparametric models. JRSS-B 73:3.");
+        return format!(
+            "Responses were taken as {family} with a log link, the restricted likelihood by Laplace's approximation. The course of each \
+             group, that of a typical {}, was {what} of the logarithm of the mean; gaps are ratios.",
+            plan.words.subject
+        );
+    }
     let scale = if plan.response.transform == Transform::Log {
         " of the natural logarithm of the response, so that curves are geometric means and gaps are ratios"
     } else {

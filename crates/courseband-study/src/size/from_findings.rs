@@ -9,7 +9,10 @@ impl SizeRequest {
     /// An effect that was observed is optimistic: [`SizeRequest::effect`] shrinks it.
     #[must_use]
     pub fn from_findings(findings: &Findings, pair: usize) -> Option<SizeRequest> {
-        let difference = findings.differences.get(pair).filter(|_| findings.fit.status != FitStatus::Failed)?;
+        let difference = findings
+            .differences
+            .get(pair)
+            .filter(|_| findings.fit.status != FitStatus::Failed && !findings.fit.residual_sd.0.is_empty())?;
         let course = |name: &str| {
             let curve = findings.curves.iter().find(|c| c.group == name)?;
             let points = &curve.at_visits;

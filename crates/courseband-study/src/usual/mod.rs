@@ -60,6 +60,7 @@ impl Study {
     }
 
     fn usual_beside(&mut self, plan: &Plan, findings: &Findings) -> Result<UsualFindings, Refusal> {
+        plan.need_normal("The usual analyses")?;
         let cohort = Cohort::new(self.reading(plan)?, plan)?;
         Ok(analyse(&Context::new(plan, &cohort, findings)))
     }
