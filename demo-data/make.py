@@ -111,7 +111,28 @@ def weights():
     write("weights.csv", ("animal", "diet", "cage", *(f"week {week}" for week in weeks)), rows)
 
 
+def colonies():
+    """Colonies on plates under two washes: counts that scatter more than chance, some days not counted."""
+    draw = random.Random(4507)
+    days = [0, 1, 2, 3, 5, 7]
+    rows = []
+    for plate in range(1, 31):
+        wash = "plain wash" if plate % 2 else "acid wash"
+        level = draw.gauss(0, 0.25)
+        for day in days:
+            if day and draw.random() < 0.04:
+                continue
+            grown = piecewise([(0, 0.0), (3, 1.1), (7, 1.9)] if wash == "plain wash" else [(0, 0.0), (3, 0.75), (7, 0.9)], day)
+            mean = math.exp(math.log(12) + grown + level) * draw.gammavariate(12, 1 / 12)
+            product, count = draw.random(), 0
+            while product > math.exp(-mean):
+                product, count = product * draw.random(), count + 1
+            rows.append((f"plate {plate}", wash, f"{day}", f"{count}"))
+    write("colonies.csv", ("plate", "wash", "day", "colonies"), rows)
+
+
 if __name__ == "__main__":
     wounds()
     ferritin()
     weights()
+    colonies()

@@ -270,7 +270,7 @@ def main(only):
             kept = list(csv.reader(file))[1:]
     rows, likelihood = [], {}
     for case, (name, plan) in plans().items():
-        if name == "housed" or plan["curves"]["shape"] != "smooth" or plan["grid"]["count"] != 21:
+        if name in ("housed", "colonies") or plan["curves"]["shape"] != "smooth" or plan["grid"]["count"] != 21:
             continue
         if only and case not in only:
             rows += [row for row in kept if row[0] == case]

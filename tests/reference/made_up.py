@@ -1,4 +1,4 @@
-"""Writes data/uneven.csv, data/spread.csv and data/housed.csv: invented tables for the dense reference, seeded."""
+"""Writes data/uneven.csv, data/spread.csv, data/housed.csv and data/colonies.csv: invented tables for the dense reference, seeded."""
 
 import math
 import pathlib
@@ -55,7 +55,22 @@ def housed():
     (HERE / "housed.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
 
 
+def colonies():
+    """Colonies on plates over days in two arms; at least one each, so that a gamma response can be tried too."""
+    draw = random.Random(44)
+    lines = ["subject,group,time,y"]
+    for s in range(24):
+        for t in range(6):
+            mean = math.exp(1.0 + 0.15 * t * (1 + s % 2))
+            product, count = draw.random(), 0
+            while product > math.exp(-mean):
+                product, count = product * draw.random(), count + 1
+            lines.append(f"p{s},{'ab'[s % 2]},{t},{count + 1}")
+    (HERE / "colonies.csv").write_text("\n".join(lines) + "\n", encoding="utf-8")
+
+
 if __name__ == "__main__":
     uneven()
     spread()
     housed()
+    colonies()

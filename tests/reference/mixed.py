@@ -60,7 +60,7 @@ def report(table, fit):
 def main():
     rows = []
     for case, (name, plan) in plans().items():
-        if name != "housed" and wanted(plan):
+        if name not in ("housed", "colonies") and wanted(plan):
             table = read(name, plan)
             for quantity, group, t, value in report(table, fitted(table, plan["subjects"] == "slope")):
                 rows.append((case, quantity, group, t if t == "" else repr(float(t)), f"{value:.10g}"))

@@ -52,7 +52,7 @@ fn stepped(points: &[(f64, f64)], t: f64) -> f64 {
 #[test]
 fn every_demo_is_listed_with_its_words_and_is_fitted() {
     let demos = list();
-    assert_eq!(demos.len(), 3);
+    assert_eq!(demos.len(), 4);
     for demo in demos {
         let file = demo["file"].as_str().unwrap();
         assert!(demo["blurb"].as_str().unwrap().starts_with("Invented."), "{file} must say that it is invented");

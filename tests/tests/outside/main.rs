@@ -78,6 +78,11 @@ fn mixed_models_against_second_computations() {
 }
 
 #[test]
+fn counts_and_positive_values_against_statsmodels() {
+    check("families.csv", "statsmodels 0.15.0, GLM", &ALLOWED, 12);
+}
+
+#[test]
 fn curves_against_dense_matrices() {
     check("dense.csv", "numpy 2.4.6 and scipy 1.17.1, reference/dense.py", &ALLOWED, 1000);
 }
