@@ -9,6 +9,7 @@ import { copyCheck } from './text/copy-check.js';
 import { data } from './text/data.js';
 import { privacy } from './text/privacy.js';
 import { checks } from './text/checks.js';
+import { effects } from './text/effects.js';
 import { dropout } from './text/dropout.js';
 import { report } from './text/report.js';
 import { size } from './text/size.js';
@@ -32,6 +33,7 @@ export const text = {
   privacy,
   checks,
   dropout,
+  effects,
   report,
   size,
   usual,

@@ -193,3 +193,13 @@ test('dropout: who leaves is said, and a shift takes the conclusion away', async
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('effect sizes: folded under the strips, each with its interval', async () => {
+  const page = await openPage(browser);
+  await page.click('[data-region="effects"] summary');
+  const shown = await page.locator('[data-region="effects"]').innerText();
+  assert.match(shown, /gap at day 21\s+0\.5\d\s+0\.4\d to 0\.7\d/);
+  assert.match(shown, /time to halve/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

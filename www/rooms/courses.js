@@ -5,6 +5,7 @@
 import { el } from '../dom.js';
 import { text } from '../text.js';
 import { mountChange } from '../views/change.js';
+import { mountEffects } from '../views/effects.js';
 import { mountFindings } from '../views/findings.js';
 import { mountNotes } from '../views/notes.js';
 import { mountPlan } from '../views/plan.js';
@@ -28,13 +29,14 @@ export const coursesRoom = {
     const question = el('section', { class: 'question', hidden: true });
     const strips = el('section', { class: 'strips' });
     const tables = el('section', { class: 'tables', 'data-region': 'tables' });
-    const column = el('div', { class: 'strips-column' }, strips, tables);
+    const effects = el('section', { class: 'tables', 'data-region': 'effects' });
+    const column = el('div', { class: 'strips-column' }, strips, effects, tables);
     const reading = el('section', { class: 'reading' });
     const findings = el('section', { class: 'findings' });
     const notes = el('section', { class: 'beside' });
     const views = [
       mountPlan(plan, acts), mountChange(change, acts), mountQuestion(question, acts), mountStrips(strips, acts),
-      mountReading(reading, acts), mountFindings(findings), mountNotes(notes), mountTables(tables),
+      mountReading(reading, acts), mountFindings(findings), mountNotes(notes), mountEffects(effects), mountTables(tables),
     ];
     const aside = el('div', { class: 'aside' });
     const body = el('div', { class: 'courses-body' });
@@ -43,10 +45,10 @@ export const coursesRoom = {
       if (narrow.matches) {
         column.replaceChildren(strips);
         body.replaceChildren(column, reading);
-        root.replaceChildren(question, change, findings, body, plan, notes, tables);
+        root.replaceChildren(question, change, findings, body, plan, notes, effects, tables);
       } else {
         aside.replaceChildren(reading, findings, notes);
-        column.replaceChildren(strips, tables);
+        column.replaceChildren(strips, effects, tables);
         body.replaceChildren(column, aside);
         root.replaceChildren(question, plan, change, body);
       }

@@ -1,0 +1,24 @@
+/** Words of the effect sizes. */
+
+export const effects = {
+  title: 'Effect sizes',
+  lead: 'Each number with an interval by itself, at the level of the plan. They rest on the fitted model and on its degrees of freedom (df).',
+  head: { what: 'What', value: 'Value', interval: 'Interval', df: 'df' },
+  /** @param {string} word @param {string} time */
+  landmark: (word, time) => `gap at ${word} ${time}`,
+  average: 'gap averaged over the common follow-up',
+  area: 'area between the courses',
+  onset: (/** @type {string} */ margin) => `passes ${margin} for good`,
+  level: 'average gap is zero: chance of one so large',
+  shape: 'gap is alike at all times: chance of one so uneven',
+  group: {
+    average: 'mean level', area: 'area under the course', growth: (/** @type {string} */ word) => `change per ${word}`,
+    doubling: 'time to double', halving: 'time to halve', peak: 'highest', nadir: 'lowest', when: (/** @type {string} */ what) => `${what}: when`,
+    atEnd: 'at an end of the follow-up: it may lie beyond',
+  },
+  notReached: 'not reached',
+  orBefore: 'at or before the first visit',
+  /** @param {string} already @param {string} never */
+  chances: (already, never) => `already at the start ${already}, never ${never}`,
+  small: '< 0.001',
+};
