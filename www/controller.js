@@ -129,6 +129,10 @@ export class Controller {
       },
       retry: () => void this.refit(),
       togglePair: (pair) => this.set(change.pairToggled(this.state, pair)),
+      layOver: (over) => {
+        this.set(change.laidOver(this.state, over));
+        if (over !== null) window.location.hash = '#/courses';
+      },
       leaveOut: (row, column, reason) =>
         this.choose(text.data.leftOut.label(row), change.leavingOut({ row, column, reason, seen: this.state.seen }), false),
       takeBack: (row, column) => this.choose(text.data.leftOut.back(row), change.takingBack(row, column), false),

@@ -123,3 +123,28 @@ export function whenChanged(look, then) {
     then(state);
   };
 }
+
+/**
+ * Fills a list with what `make` gives for each item, one item a frame, so that the page stays
+ * responsive; a later call takes over from an earlier one.
+ * @template T
+ * @param {HTMLElement} list
+ * @param {readonly T[]} items
+ * @param {(item: T, index: number) => Node} make
+ */
+export function fillByFrames(list, items, make) {
+  const turn = Symbol('turn');
+  turns.set(list, turn);
+  list.replaceChildren();
+  /** @param {number} k */
+  const next = (k) => {
+    const item = items[k];
+    if (turns.get(list) !== turn || item === undefined) return;
+    list.append(make(item, k));
+    if (k + 1 < items.length) requestAnimationFrame(() => next(k + 1));
+  };
+  next(0);
+}
+
+/** @type {WeakMap<HTMLElement, symbol>} */
+const turns = new WeakMap();

@@ -13,6 +13,7 @@
  * @property {'light'|'dark'|'print'} theme
  * @property {boolean} letters Letters instead of names at the curves' ends.
  * @property {number[]} open_pairs
+ * @property {import('./types.js').LaidOver['lines']} [over] Lines of another model.
  * @property {string} noun What several subjects are called.
  */
 

@@ -25,7 +25,7 @@ export function initialState() {
     room: 'courses', status: 'empty', source: null, preview: null, description: null,
     choices: freshChoices(), history: { past: [], future: [] },
     findings: null, drawing: null, change: null, message: null, notice: null,
-    cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], demos: [], announcement: '',
+    cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], over: null, demos: [], announcement: '',
     answers: { checks: null, usual: null, dropout: null, candidates: null, report: null }, refits: null, fixed: null, lookedAt: [],
   };
 }
@@ -161,6 +161,7 @@ export function fitted(state, findings, drawing, took) {
     ...state, status, findings, drawing, took, refits: null, message: null, slow: false, seen: true,
     change: state.change ? { ...state.change, ...(days ?? {}) } : null,
     cursor: keptCursor(state.cursor, findings),
+    over: null,
     openPairs: state.openPairs.filter((pair) => pair < findings.differences.length),
     announcement: announcementOf(state.findings, findings),
   };
@@ -242,4 +243,14 @@ export function leavingOut(left) {
 /** @param {number} row @param {string|null} column @returns {(choices: Choices) => Choices} */
 export function takingBack(row, column) {
   return (choices) => ({ ...choices, leftOut: choices.leftOut.filter((one) => one.row !== row || one.column !== column) });
+}
+
+/**
+ * Lines of another model laid over the courses, or taken away; they go with the next fit.
+ * @param {State} state
+ * @param {import('./types.js').LaidOver|null} over
+ * @returns {State}
+ */
+export function laidOver(state, over) {
+  return { ...state, over };
 }

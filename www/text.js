@@ -92,6 +92,8 @@ export const text = {
     caption: 'Judge gaps by the gap strips below, not by whether course bands overlap.',
     log: (/** @type {string} */ noun) => `On the log scale each line is the typical ${noun} (geometric mean).`,
     keys: 'With the strips focused: left and right arrows step, page up and page down go from visit to visit, home and end go to the ends.',
+    over: (/** @type {string} */ name) => `Over the courses, as thin double lines: ${name}.`,
+    overAway: 'Take them away',
     grey: 'These strips belong to the last plan that could be fitted.',
   },
 

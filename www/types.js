@@ -114,6 +114,8 @@
 
 /** @typedef {{plan: string, status: 'working'|'done', value: any, message: string|null}} Answer */
 /** @typedef {{label: string, choices: Choices}} Step */
+/** @typedef {{name: string, lines: {group: string, time: number[], response_mean: number[]}[]}} LaidOver */
+
 /** @typedef {{label: string, back: boolean, before: string|null, after: string|null, pair: {from: string, to: string}|null}} Change `back`: it took a choice back. */
 
 /**
@@ -136,6 +138,7 @@
  * @property {{done: number, total: number, secondsLeft: number|null}|null} calibrating
  * @property {number|null} took Milliseconds of the last fit.
  * @property {number[]} openPairs Pairs whose gap strip is open.
+ * @property {LaidOver|null} over Lines of another model over the courses.
  * @property {Demo[]} demos
  * @property {{plan: string, refits: string}|null} refits What the calibration of a plan gave.
  * @property {string[]} lookedAt Other models that were looked at, for the report.
@@ -167,6 +170,7 @@
  * @property {() => import('./sizing.js').Sizing} sizing The workers that simulate studies.
  * @property {(pair: number) => Promise<any>} sizeFrom A sample-size request from the fitted table; `null` where there is none.
  * @property {() => void} retry
+ * @property {(over: LaidOver|null) => void} layOver
  * @property {(pair: number) => void} togglePair
  * @property {(row: number, column: string|null, reason: string) => void} leaveOut
  * @property {(row: number, column: string|null) => void} takeBack

@@ -32,6 +32,25 @@ test('checks: every check has its plot and its words, and a fault lights one tha
   await enter(page, 'checks');
   const lit = page.locator('.check[data-key="serial"][data-lit="true"]');
   await lit.waitFor();
+  // What each would change stands above all, with its stretches on the time axis; its name leads to it, focus and all.
+  assert.equal(await count(page, '.verdict-strip li'), await count(page, '.check'));
+  assert.ok(await count(page, '.verdict-strip .stake-lane') > 4);
+  await page.locator('.verdict-strip [data-key="serial"] button').click();
+  assert.equal(await page.evaluate(() => document.activeElement?.id), 'check-serial');
+  assert.equal(await count(page, '[data-key="serial"].check .small-plot'), 2);
+  // A trial that leaves rows out is a choice like any other, and is taken back with them.
+  await page.click('[data-act="try-influence"]');
+  await rested(page);
+  await page.waitForFunction(() => /out/.test(document.querySelector('.room-checks .change')?.textContent ?? '') || document.querySelector('.room-checks .change button'));
+  await enter(page, 'data');
+  assert.ok((await page.locator('main').innerText()).includes('Left out to see what it changes.'));
+  await enter(page, 'checks');
+  await page.locator('.room-checks .change button').click();
+  await rested(page);
+  await enter(page, 'data');
+  assert.ok(!(await page.locator('main').innerText()).includes('Left out to see what it changes.'));
+  await enter(page, 'checks');
+  await lit.waitFor();
   await page.click('[data-act="try-serial"]');
   await rested(page);
   await page.waitForFunction(() => document.querySelectorAll('.check').length > 0 && !document.querySelector('.check[data-key="serial"][data-lit="true"]'));
@@ -49,6 +68,15 @@ test('usual analyses: five, each with its sentence to copy and where it parts fr
   assert.match(await page.locator('[data-kind="repeated-anova"] .usual-result').innerText(), /F\(.*p [<=]/);
   assert.ok(await count(page, '[data-kind="day-by-day"] .usual-lane') >= 1);
   assert.ok(await count(page, '[data-kind="straight-lines"] .plot-line.dashed') >= 3);
+  // Straight lines over the courses strip, until they are taken away.
+  await page.click('[data-act="lay-over"]');
+  await page.waitForSelector('[data-act="over-away"]');
+  assert.match(await page.locator('.strips-over').innerText(), /straight/i);
+  const with_ = await page.locator('.strips-drawing').evaluate((canvas) => canvas.toDataURL());
+  await page.click('[data-act="over-away"]');
+  await page.waitForTimeout(100);
+  assert.notEqual(await page.locator('.strips-drawing').evaluate((canvas) => canvas.toDataURL()), with_);
+  await enter(page, 'usual');
   await page.context().grantPermissions(['clipboard-read', 'clipboard-write']);
   await page.locator('[data-kind="repeated-anova"] .copy-line button').click();
   const copied = await page.evaluate(() => navigator.clipboard.readText());

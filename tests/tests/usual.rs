@@ -92,3 +92,19 @@ fn times_that_nobody_shares() {
         assert!(refused.tables.is_empty());
     }
 }
+
+/// Cars of two countries in the two-sample example of the NIST/SEMATECH e-Handbook of Statistical Methods, section 1.3.5.3
+/// (miles per gallon: 249 with mean 20.14458 and SD 6.41470, 79 with mean 30.48101 and SD 6.10771): printed t and
+/// degrees of freedom, by Satterthwaite's rule for unequal variances. Values recalled from memory; they agree with the printed moments.
+#[test]
+fn two_means_of_the_handbook() {
+    use courseband_engine::usual::{Variances, compare_means};
+    let sample = |n: usize, mean: f64, sd: f64| -> Vec<f64> {
+        (0..n).map(|k| if k == 0 { mean } else { mean + if k % 2 == 0 { sd } else { -sd } }).collect()
+    };
+    let (first, second) = (sample(249, 20.14458, 6.41470), sample(79, 30.48101, 6.10771));
+    for (variances, t, df) in [(Variances::Unequal, 12.94627, 136.8750), (Variances::Equal, 12.62059, 326.0)] {
+        let got = compare_means(&first, &second, variances, 0.95).unwrap();
+        assert!((got.t - t).abs() < 2e-5 * t && (got.df - df).abs() < 2e-3, "{got:?}");
+    }
+}

@@ -3,10 +3,11 @@
  * change the conclusion.
  */
 
-import { el, setText, show, whenChanged } from '../dom.js';
+import { el, fillByFrames, setText, show, whenChanged } from '../dom.js';
 import { text } from '../text.js';
 import { mountCandidates } from '../views/candidates.js';
 import { checkArticle } from '../views/check.js';
+import { stakes, stakesKey } from '../views/stakes.js';
 
 const words = text.checks;
 
@@ -17,19 +18,22 @@ export const checksRoom = {
   mount(root, acts) {
     const wait = el('p', { class: 'hint', role: 'status', 'data-region': 'checks-state' });
     const verdict = el('p', { class: 'verdict', 'data-region': 'verdict' });
-    const strip = el('ul', { class: 'verdict-strip', 'aria-label': words.verdict });
+    const strip = el('section', { class: 'verdict-strip', 'aria-label': words.verdict });
+    const key = el('p', { class: 'hint' });
     const list = el('div', { class: 'checks', 'data-region': 'checks' });
     const others = el('section', { class: 'other-models' });
     const change = el('p', { class: 'change' });
     const undo = el('button', { type: 'button', class: 'quiet', onclick: acts.undo }, text.change.undo);
     root.append(el('div', { class: 'room-head' }, el('h2', {}, words.title), el('p', { class: 'room-lead' }, words.lead)),
-      change, wait, verdict, strip, list, others);
+      change, wait, verdict, key, strip, list, others);
     const candidates = mountCandidates(others, acts);
     const drawn = whenChanged((state) => [state.answers.checks?.value], (state) => {
       const value = state.answers.checks?.value ?? null;
       setText(verdict, value?.verdict ?? '');
-      strip.replaceChildren(...(value?.checks ?? []).map(stripItem));
-      list.replaceChildren(...(value?.checks ?? []).map((/** @type {any} */ check) => checkArticle(check, state, acts)));
+      strip.replaceChildren(...stakes(value?.checks ?? [], state));
+      setText(key, stakesKey(value?.checks ?? []));
+      show(key, key.textContent !== '');
+      fillByFrames(list, value?.checks ?? [], (/** @type {any} */ check) => checkArticle(check, state, acts));
     });
     return {
       update(state) {
@@ -46,11 +50,3 @@ export const checksRoom = {
     };
   },
 };
-
-/** @param {{title: string, lit: boolean, key: string}} check */
-function stripItem(check) {
-  const to = () => document.getElementById(`check-${check.key}`)?.scrollIntoView({ block: 'start' });
-  return el('li', { 'data-lit': String(check.lit) },
-    el('button', { type: 'button', class: 'quiet', onclick: to }, check.title),
-    el('span', {}, check.lit ? words.speaks : words.quiet));
-}

@@ -5,6 +5,7 @@
 
 import { el, setText, show, whenChanged } from '../dom.js';
 import { text } from '../text.js';
+import { goTo } from '../views/stakes.js';
 import { analysisArticle } from '../views/usual-analysis.js';
 
 const words = text.usual;
@@ -13,7 +14,7 @@ const words = text.usual;
 export const usualRoom = {
   id: 'usual',
   title: text.rooms.usual,
-  mount(root) {
+  mount(root, acts) {
     const wait = el('p', { class: 'hint', role: 'status', 'data-region': 'usual-state' });
     const jump = el('ul', { class: 'asked-for', 'aria-label': words.jump });
     const list = el('div', { class: 'analyses', 'data-region': 'usual' });
@@ -23,7 +24,7 @@ export const usualRoom = {
       const value = state.answers.usual?.value ?? null;
       jump.replaceChildren(...(value?.analyses ?? []).map(jumpItem));
       notes.replaceChildren(...(value?.notes ?? []).map((/** @type {{message: string}} */ note) => el('p', { class: 'hint' }, note.message)));
-      list.replaceChildren(...(value?.analyses ?? []).map((/** @type {any} */ analysis) => analysisArticle(analysis, value, state)));
+      list.replaceChildren(...(value?.analyses ?? []).map((/** @type {any} */ analysis) => analysisArticle(analysis, value, state, acts)));
     });
     return {
       update(state) {
@@ -42,7 +43,7 @@ export const usualRoom = {
 function jumpItem(analysis) {
   const { agrees } = analysis.beside;
   const stands = !analysis.done ? words.notDone : agrees === null ? words.incomparable : agrees ? words.agrees : words.disagrees;
-  const to = () => document.getElementById(`usual-${analysis.kind}`)?.scrollIntoView({ block: 'start' });
+  const to = () => goTo(`usual-${analysis.kind}`);
   return el('li', {}, el('button', { type: 'button', class: 'quiet', onclick: to }, analysis.name), ` ${stands}`);
 }
 

@@ -34,6 +34,7 @@ export const usual = {
     none: 'no day is called apart',
   },
   lines: {
+    lay: 'Lay these lines over the courses strip',
     label: 'Straight lines over the curved courses with their bands: where a line leaves its band, it misses.',
     title: 'Straight lines (dashed) over the courses (with bands)',
   },

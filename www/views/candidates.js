@@ -4,7 +4,7 @@
  * foresees and fits.
  */
 
-import { el, setText, show, whenChanged } from '../dom.js';
+import { el, fillByFrames, setText, show, whenChanged } from '../dom.js';
 import { completePlan } from '../plan.js';
 import { text } from '../text.js';
 import { groupClass, smallPlot } from './small-plot.js';
@@ -25,7 +25,7 @@ export function mountCandidates(root, acts) {
   const drawn = whenChanged((state) => [state.answers.candidates?.value, state.findings], (state) => {
     const value = state.answers.candidates?.value ?? null;
     setText(reason, value?.reason ?? '');
-    list.replaceChildren(...(value ? value.models.map((/** @type {any} */ model, /** @type {number} */ k) => article(model, k, value, state, acts)) : []));
+    fillByFrames(list, value?.models ?? [], (/** @type {any} */ model, k) => article(model, k, value, state, acts));
   });
   return {
     update(state) {

@@ -33,6 +33,8 @@ const LEFT = 46;
 const BOTTOM = 34;
 const TOP = 8;
 const RIGHT = 12;
+/** More named lines than this are not named at their ends. */
+const MOST_NAMES = 8;
 
 /**
  * Round numbers in a range: at most `most`.
@@ -78,17 +80,20 @@ function extent(values, more) {
  */
 export function smallPlot(ask) {
   const { width = 420, height = 190, series, bands = [], levels = [] } = ask;
+  const named = series.filter((one) => one.joined && one.name);
+  const longest = named.length > MOST_NAMES ? 0 : Math.max(0, ...named.map((one) => one.name?.length ?? 0));
+  const right = RIGHT + Math.min(0.3 * width, 6.6 * longest);
   const xs = extent([...series.flatMap((one) => one.x), ...bands.flatMap((band) => band.x)], []);
   const ys = ask.yRange ?? extent(
     [...series.flatMap((one) => one.y), ...bands.flatMap((band) => [...band.low, ...band.high])], levels);
-  const px = (/** @type {number} */ x) => LEFT + ((x - xs[0]) / (xs[1] - xs[0])) * (width - LEFT - RIGHT);
+  const px = (/** @type {number} */ x) => LEFT + ((x - xs[0]) / (xs[1] - xs[0])) * (width - LEFT - right);
   const py = (/** @type {number} */ y) => height - BOTTOM - ((y - ys[0]) / (ys[1] - ys[0])) * (height - BOTTOM - TOP);
   const parts = [
-    ...frame(ask, xs, ys, px, py, width, height),
+    ...frame(ask, xs, ys, px, py, { width, height, right }),
     ...bands.map((band) => bandPath(band, px, py)),
-    ...levels.map((level) => svg('line', { class: 'plot-level', x1: LEFT, x2: width - RIGHT, y1: py(level), y2: py(level) })),
+    ...levels.map((level) => svg('line', { class: 'plot-level', x1: LEFT, x2: width - right, y1: py(level), y2: py(level) })),
     ...series.flatMap((one) => drawn(one, px, py)),
-    ...names(series, px, py),
+    ...(longest > 0 ? names(named, px, py, width) : []),
   ];
   return svg('svg', { class: 'small-plot', viewBox: `0 0 ${width} ${height}`, role: 'img', 'aria-label': ask.label }, ...parts);
 }
@@ -99,10 +104,9 @@ export function smallPlot(ask) {
  * @param {[number, number]} ys
  * @param {(x: number) => number} px
  * @param {(y: number) => number} py
- * @param {number} width
- * @param {number} height
+ * @param {{width: number, height: number, right: number}} size
  */
-function frame(ask, xs, ys, px, py, width, height) {
+function frame(ask, xs, ys, px, py, { width, height, right }) {
   const across = ticksIn(xs[0], xs[1], Math.max(3, Math.floor(width / 70)));
   const up = ticksIn(ys[0], ys[1], 4);
   const text = (/** @type {string} */ words, /** @type {Record<string, any>} */ attributes) => {
@@ -113,11 +117,11 @@ function frame(ask, xs, ys, px, py, width, height) {
   const yNames = written(up);
   const xNames = written(across);
   return [
-    ...up.map((y) => svg('line', { class: 'plot-grid', x1: LEFT, x2: width - RIGHT, y1: py(y), y2: py(y) })),
-    svg('line', { class: 'plot-axis', x1: LEFT, x2: width - RIGHT, y1: height - BOTTOM, y2: height - BOTTOM }),
+    ...up.map((y) => svg('line', { class: 'plot-grid', x1: LEFT, x2: width - right, y1: py(y), y2: py(y) })),
+    svg('line', { class: 'plot-axis', x1: LEFT, x2: width - right, y1: height - BOTTOM, y2: height - BOTTOM }),
     ...up.map((y, k) => text(yNames[k] ?? '', { class: 'plot-tick', x: LEFT - 6, y: py(y) + 4, 'text-anchor': 'end' })),
     ...across.map((x, k) => text(xNames[k] ?? '', { class: 'plot-tick', x: px(x), y: height - BOTTOM + 14, 'text-anchor': 'middle' })),
-    text(ask.across, { class: 'plot-title', x: width - RIGHT, y: height - 4, 'text-anchor': 'end' }),
+    text(ask.across, { class: 'plot-title', x: width - right, y: height - 4, 'text-anchor': 'end' }),
   ];
 }
 
@@ -146,7 +150,8 @@ function drawn(one, px, py) {
     return y === null || y === undefined || !Number.isFinite(y) ? [] : [/** @type {[number, number]} */ ([px(x), py(y)])];
   });
   if (!one.joined) {
-    return points.map(([x, y]) => svg('circle', { class: `plot-point ${classes}`, cx: x.toFixed(1), cy: y.toFixed(1), r: 2.4 }));
+    // One path of round dots: thousands of elements would hold the page up.
+    return [svg('path', { class: `plot-point ${classes}`, d: points.map(([x, y]) => `M${x.toFixed(1)},${y.toFixed(1)}h0`).join('') })];
   }
   return [svg('polyline', { class: `plot-line ${classes}`, points: points.map(([x, y]) => `${x.toFixed(1)},${y.toFixed(1)}`).join(' ') })];
 }
@@ -159,20 +164,23 @@ const LINE = 12;
  * @param {Series[]} series
  * @param {(x: number) => number} px
  * @param {(y: number) => number} py
+ * @param {number} width
  */
-function names(series, px, py) {
-  const ends = series.filter((one) => one.joined && one.name).flatMap((one) => {
+function names(series, px, py, width) {
+  const ends = series.flatMap((one) => {
     const last = one.y.reduce((/** @type {number} */ found, y, k) => (y === null || y === undefined ? found : k), -1);
     const y = last < 0 ? null : one.y[last];
-    return y === null || y === undefined ? [] : [{ one, x: px(one.x[last] ?? 0), y: py(y) - 5 }];
+    return y === null || y === undefined ? [] : [{ one, x: px(one.x[last] ?? 0), y: py(y) + 4 }];
   }).sort((a, b) => a.y - b.y);
   ends.forEach((end, k) => {
     const above = ends[k - 1];
     if (above && end.y - above.y < LINE) end.y = above.y + LINE;
   });
   return ends.map(({ one, x, y }) => {
-    const name = svg('text', { class: `plot-name ${one.group ?? ''}`, x: x - 4, y, 'text-anchor': 'end' });
-    name.textContent = one.name ?? '';
+    const name = svg('text', { class: `plot-name ${one.group ?? ''}`, x: x + 5, y });
+    const room = Math.floor((width - x - 5) / 6);
+    const full = one.name ?? '';
+    name.textContent = full.length > room ? `${full.slice(0, Math.max(1, room - 1))}\u2026` : full;
     return name;
   });
 }

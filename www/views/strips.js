@@ -35,7 +35,9 @@ export function mountStrips(root, acts) {
   const frame = el('div', { class: 'strips-frame' }, canvas, overlay, slider);
   const caption = el('p', { class: 'unseen' });
   const grey = el('p', { class: 'strips-grey' }, text.strips.grey);
-  root.append(el('h2', { class: 'unseen' }, text.strips.label), caption, grey, frame,
+  const over = el('p', { class: 'strips-over', role: 'status' });
+  const takeAway = el('button', { type: 'button', class: 'quiet', 'data-act': 'over-away', onclick: () => acts.layOver(null) }, text.strips.overAway);
+  root.append(el('h2', { class: 'unseen' }, text.strips.label), caption, grey, over, frame,
     el('p', { class: 'unseen', id: 'strips-keys' }, text.strips.keys));
 
   /** @type {State|null} */
@@ -53,7 +55,7 @@ export function mountStrips(root, acts) {
     layout = drawStrips(canvas, last.drawing, {
       width, ratio: window.devicePixelRatio || 1, head_room: HEAD_ROOM, 
       theme: printing ? 'print' : matchMedia('(prefers-color-scheme: dark)').matches ? 'dark' : 'light',
-      letters: width < NARROW, open_pairs: last.openPairs, noun: last.choices.noun.many,
+      letters: width < NARROW, open_pairs: last.openPairs, noun: last.choices.noun.many, over: last.over?.lines ?? [],
     });
     document.body.classList.toggle('with-letters', width < NARROW);
     frame.style.height = `${layout.height}px`;
@@ -84,7 +86,7 @@ export function mountStrips(root, acts) {
   matchMedia('(prefers-color-scheme: dark)').addEventListener('change', redraw);
   watchRatio(redraw);
 
-  const drawn = whenChanged((state) => [state.drawing, state.openPairs, state.choices.noun], redraw);
+  const drawn = whenChanged((state) => [state.drawing, state.openPairs, state.choices.noun, state.over], redraw);
   const moved = whenChanged((state) => [state.cursor, state.findings], moveCursor);
   return {
     update(state) {
@@ -96,6 +98,8 @@ export function mountStrips(root, acts) {
       frame.classList.toggle('stale', stale);
       const log = state.findings?.scale.ratio ? ` ${text.strips.log(state.choices.noun.one)}` : '';
       setText(caption, text.strips.caption + log);
+      over.replaceChildren(...(state.over ? [`${text.strips.over(state.over.name)} `, takeAway] : []));
+      show(over, state.over !== null && !frame.hidden);
       drawn(state);
       moved(state);
     },

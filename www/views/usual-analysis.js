@@ -17,10 +17,11 @@ const words = text.usual;
  * @param {any} analysis
  * @param {any} usual
  * @param {State} state
+ * @param {import('../types.js').Acts} acts
  */
-export function analysisArticle(analysis, usual, state) {
+export function analysisArticle(analysis, usual, state, acts) {
   const result = el('p', { class: 'usual-result' }, analysis.result);
-  const article = el('article', { class: 'analysis', id: `usual-${analysis.kind}`, 'data-kind': analysis.kind },
+  const article = el('article', { class: 'analysis', id: `usual-${analysis.kind}`, tabindex: '-1', 'data-kind': analysis.kind },
     el('h3', {}, analysis.name), result);
   if (!analysis.done) {
     article.append(el('p', { class: 'hint' }, uses(analysis.used, state)));
@@ -34,7 +35,11 @@ export function analysisArticle(analysis, usual, state) {
     el('dt', {}, words.beside), el('dd', { 'data-agrees': String(analysis.beside.agrees) }, analysis.beside.sentence),
   ));
   if (analysis.beside.pairs.length > 0) article.append(lanes(analysis, usual, state));
-  if (analysis.lines.length > 0 && state.findings) article.append(overlay(analysis, state));
+  if (analysis.lines.length > 0 && state.findings) {
+    article.append(overlay(analysis, state), el('p', {}, el('button', {
+      type: 'button', 'data-act': 'lay-over', onclick: () => acts.layOver({ name: analysis.name, lines: analysis.lines }),
+    }, words.lines.lay)));
+  }
   article.append(el('details', { class: 'as-tables' }, el('summary', {}, words.numbers),
     ...analysis.tables.map(numbersTable)));
   return article;

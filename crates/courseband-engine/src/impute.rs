@@ -11,6 +11,7 @@ use crate::criterion::Criterion;
 use crate::fit::Fit;
 use crate::model::Data;
 use crate::posterior::draw_coefficients;
+use crate::residuals::covariance;
 use crate::special::Rng;
 use nalgebra::{Cholesky, DMatrix, DVector};
 
@@ -112,20 +113,8 @@ impl Imputer {
 
     /// Covariance of one subject's rows at internal times, internal unit.
     fn covariance(&self, theta: &[f64], group: usize, times: &[f64]) -> DMatrix<f64> {
-        let (design, layout) = (&self.fit.design, &self.fit.layout);
-        let factor = layout.subject_factor(theta, group);
-        let d = &factor * factor.transpose();
-        let z = DMatrix::from_row_slice(times.len(), d.nrows(), &design.effects.table(times));
-        let between = &z * d * z.transpose();
-        let variance = layout.variance(theta, group);
-        let shape = layout.error_shape(theta);
-        DMatrix::from_fn(times.len(), times.len(), |i, j| {
-            let own = if i == j { 1.0 } else { 0.0 };
-            let error = shape.map_or(own, |shape| {
-                (1.0 - shape.nugget) * libm::exp(-shape.rate * (times[i] - times[j]).abs()) + shape.nugget * own
-            });
-            variance * error + between[(i, j)]
-        })
+        let effects = self.fit.design.effects.table(times);
+        covariance(&self.fit.layout, theta, group, times, &effects, None)
     }
 }
 

@@ -19,6 +19,7 @@ mod posterior;
 mod predict;
 mod reduce;
 mod refit;
+mod replica;
 mod residuals;
 mod robust;
 mod simulate;
@@ -42,7 +43,8 @@ pub use model::{
 };
 pub use params::Parameter;
 pub use posterior::{Contrast, Estimate, Joint, Posterior, correlation_rows};
-pub use predict::{Foreseen, OddSubject};
+pub use predict::{Foreseen, ForeseenValues, OddSubject};
+pub use replica::{Replicas, envelope};
 pub use residuals::Residual;
 pub use robust::RobustError;
 pub use spline::Roughness;

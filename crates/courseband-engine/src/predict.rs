@@ -5,9 +5,11 @@
 
 use crate::criterion::Criterion;
 use crate::fit::Fit;
+use crate::model::Family;
 use crate::posterior::{Contrast, solved_value, variance};
 use crate::reduce::Design;
 use crate::refit::Refitter;
+use crate::special::Rng;
 use nalgebra::{Cholesky, DVector};
 
 /// Predictions of one subject's rows by the others, on the modelled scale.
@@ -53,6 +55,65 @@ impl Fit {
         }
         all.sort_by_key(|one| one.subject);
         all
+    }
+}
+
+/// Values that a model foresees for one subject by the others, in the response's own unit.
+#[derive(Debug, Clone, PartialEq)]
+pub struct ForeseenValues {
+    /// Index of the subject in the data.
+    pub subject: usize,
+    /// Simulated values of each row.
+    pub values: Vec<Vec<f64>>,
+    /// What was measured.
+    pub response: Vec<f64>,
+}
+
+impl Fit {
+    /// The same as [`Fit::foreseen`] for a response that is not normal: `draws` simulated values per row, of a new
+    /// subject, the curve's uncertainty included. The same for the same seed.
+    #[must_use]
+    pub fn foreseen_values(&self, draws: usize, seed: u64) -> Vec<ForeseenValues> {
+        let mut all = Vec::new();
+        for pattern in &self.design.patterns {
+            let variance_of_error = self.layout.variance(&self.theta, pattern.group);
+            let total = self.subject_total(pattern);
+            let m = pattern.subjects.len();
+            for (s, &subject) in pattern.subjects.iter().enumerate() {
+                let Some(design) = self.design.without(subject) else { continue };
+                let solved = Criterion::new(&design, &self.layout).evaluate(&self.theta, false).map(|e| e.solved);
+                let Some(solved) = solved else { continue };
+                let mut rng = Rng::stream(seed, subject as u64);
+                let rows = (0..pattern.times.len()).map(|j| {
+                    let contrast = Contrast::of_columns(pattern.group, self.design.columns_of(pattern, j));
+                    let mean = solved_value(&design.placement, &solved, &contrast);
+                    let between = (total[(j, j)] - variance_of_error).max(0.0);
+                    let sd = libm::sqrt(variance(&design.placement, &solved, &contrast) + between);
+                    let value = |rng: &mut Rng| {
+                        let mu = libm::exp((mean + sd * rng.normal()).min(50.0));
+                        drawn(self.model.family, mu, variance_of_error, rng)
+                    };
+                    (0..draws).map(|_| value(&mut rng)).collect()
+                });
+                let values = rows.collect();
+                let response = (0..pattern.times.len()).map(|j| pattern.responses[j * m + s]).collect();
+                all.push(ForeseenValues { subject, values, response });
+            }
+        }
+        all.sort_by_key(|one| one.subject);
+        all
+    }
+}
+
+/// One value of a distribution with this mean.
+fn drawn(family: Family, mu: f64, dispersion: f64, rng: &mut Rng) -> f64 {
+    match family {
+        Family::Gamma => mu * dispersion * 0.5 * rng.chi2(2.0 / dispersion),
+        Family::NegativeBinomial => {
+            let rate = mu * dispersion * 0.5 * rng.chi2(2.0 / dispersion);
+            rng.poisson(rate)
+        }
+        _ => rng.poisson(mu),
     }
 }
 
@@ -112,7 +173,6 @@ impl Fit {
 mod tests {
     use crate::fit::fit;
     use crate::model::{Data, Model, SubjectRows};
-    use crate::special::Rng;
 
     #[test]
     fn a_subject_far_off_is_found_although_it_widens_the_spread() {

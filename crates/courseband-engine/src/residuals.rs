@@ -6,6 +6,7 @@
 //! subject's earlier visits, over that prediction's standard deviation.
 
 use crate::fit::Fit;
+use crate::params::Layout;
 use crate::reduce::Pattern;
 use crate::simulate::curve_at;
 use nalgebra::{Cholesky, DMatrix, DVector};
@@ -65,22 +66,38 @@ impl Fit {
 
     /// Covariance of one subject's rows, internal unit; its cluster's effects count as its own.
     pub(crate) fn subject_total(&self, pattern: &Pattern) -> DMatrix<f64> {
-        let times = &pattern.times;
-        let factor = self.layout.subject_factor(&self.theta, pattern.group);
         let cluster = self.layout.cluster_factor(&self.theta);
-        let d = &factor * factor.transpose() + &cluster * cluster.transpose();
-        let variance = self.layout.variance(&self.theta, pattern.group);
-        let shape = self.layout.error_shape(&self.theta);
-        let z = DMatrix::from_row_slice(times.len(), d.nrows(), &pattern.effects);
-        let between = &z * d * z.transpose();
-        DMatrix::from_fn(times.len(), times.len(), |i, j| {
-            let own = if i == j { 1.0 } else { 0.0 };
-            let error = shape.map_or(own, |shape| {
-                (1.0 - shape.nugget) * libm::exp(-shape.rate * (times[i] - times[j]).abs()) + shape.nugget * own
-            });
-            variance * error + between[(i, j)]
-        })
+        let shared = &cluster * cluster.transpose();
+        covariance(&self.layout, &self.theta, pattern.group, &pattern.times, &pattern.effects, Some(shared))
     }
+}
+
+/// Covariance of the rows of one subject of `group` at `times`, with its effects' columns (row by row) and what its
+/// cluster adds to their covariance.
+pub(crate) fn covariance(
+    layout: &Layout,
+    theta: &[f64],
+    group: usize,
+    times: &[f64],
+    effects: &[f64],
+    cluster: Option<DMatrix<f64>>,
+) -> DMatrix<f64> {
+    let factor = layout.subject_factor(theta, group);
+    let mut d = &factor * factor.transpose();
+    if let Some(cluster) = cluster {
+        d += cluster;
+    }
+    let variance = layout.variance(theta, group);
+    let shape = layout.error_shape(theta);
+    let z = DMatrix::from_row_slice(times.len(), d.nrows(), effects);
+    let between = &z * d * z.transpose();
+    DMatrix::from_fn(times.len(), times.len(), |i, j| {
+        let own = if i == j { 1.0 } else { 0.0 };
+        let error = shape.map_or(own, |shape| {
+            (1.0 - shape.nugget) * libm::exp(-shape.rate * (times[i] - times[j]).abs()) + shape.nugget * own
+        });
+        variance * error + between[(i, j)]
+    })
 }
 
 #[cfg(test)]

@@ -208,6 +208,13 @@ pub enum Mark {
         /// Stands out.
         strong: bool,
     },
+    /// A line of another model.
+    Over {
+        /// Whose.
+        tone: Tone,
+        /// Its points.
+        points: Vec<(f64, f64)>,
+    },
     /// Range of the subjects: (time, low, high).
     Range {
         /// Whose.

@@ -34,4 +34,4 @@ pub use source::*;
 pub use svg::{FAMILY as SVG_FAMILY, to_svg};
 pub use text::{Estimate, Measure};
 pub use ticks::Tick;
-pub use view::{Theme, View};
+pub use view::{OverLine, Theme, View};

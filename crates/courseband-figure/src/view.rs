@@ -49,6 +49,20 @@ pub struct View {
     pub decimate: bool,
     /// Groups are labelled by letters at their curves; `None`: on narrow figures.
     pub letters: Option<bool>,
+    /// Lines of another model, laid over the courses.
+    pub over: Vec<OverLine>,
+}
+
+/// A group's line under another model.
+#[derive(Debug, Clone, Default, Deserialize)]
+#[serde(default)]
+pub struct OverLine {
+    /// Whose; a name that no group has is passed over.
+    pub group: String,
+    /// Times.
+    pub time: Vec<f64>,
+    /// Its mean.
+    pub response_mean: Vec<Option<f64>>,
 }
 
 impl Default for View {
@@ -69,6 +83,7 @@ impl Default for View {
             noun: None,
             decimate: true,
             letters: None,
+            over: Vec::new(),
         }
     }
 }

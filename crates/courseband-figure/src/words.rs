@@ -9,6 +9,9 @@ fn percent(level: f64) -> String {
     format!("{}\u{a0}%", plain((level * 1e6).round() / 1e4))
 }
 
+/// Said where lines of another model lie over the courses.
+pub(crate) const LAID_OVER: &str = "\u{a0}· thin double lines: the other model laid over";
+
 /// What the courses strip shows.
 pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, is_hatched: bool) -> String {
     let mut parts = Vec::new();

@@ -7,16 +7,21 @@
 
 use crate::cohort::Cohort;
 use crate::evaluate::Evaluation;
-use crate::plan::{MarginUnit, Plan, Serial, Shape, Spread, SubjectEffects, Transform};
+use crate::plan::{
+    Distribution, MarginUnit, Plan, Serial, Shape, Sharing, SmallSample, Spread, SubjectEffects, Transform,
+};
 use crate::refusal::Refusal;
-use crate::sentences::number;
+use crate::sentences::{capital, number};
 use crate::study::Study;
-use courseband_engine::special::{normal_cdf, normal_pdf};
-use courseband_engine::{Fit, Foreseen, Likelihood, Model, fit};
+use courseband_engine::special::{normal_cdf, normal_pdf, normal_quantile};
+use courseband_engine::{Fit, Foreseen, ForeseenValues, Likelihood, Model, fit};
 use serde::Serialize;
 
-/// Most subjects that are left out one by one.
+/// Most subjects that are left out one by one, and where every one costs an approximation of its own.
 const MOST_LEFT_OUT: usize = 400;
+const MOST_APPROXIMATED: usize = 80;
+/// Simulated values per row where the response is not normal.
+const DRAWS: usize = 200;
 
 /// All candidates.
 #[derive(Debug, Clone, PartialEq, Serialize)]
@@ -52,7 +57,7 @@ pub struct Candidate {
     pub score: Option<f64>,
     /// Standard error of that difference over subjects.
     pub score_se: Option<f64>,
-    /// Estimated gaps, one list per pair, on the plan's own scale; empty on another scale or where a fit failed.
+    /// Estimated gaps, one list per pair, on the plan's own scale; empty where a fit failed.
     pub gaps: Vec<Vec<Option<f64>>>,
     /// Largest move of a gap against the plan's, in the plan's standard errors.
     pub moves: Option<f64>,
@@ -123,6 +128,14 @@ fn others(plan: &Plan) -> Vec<(String, Plan)> {
     add("one spread for all groups", &|p| p.errors.spread = Spread::Common);
     add("a spread of its own in each group", &|p| p.errors.spread = Spread::ByGroup);
     // A margin has a meaning on its own scale only.
+    let gamma = |p: &mut Plan| {
+        p.response.transform = Transform::Identity;
+        p.response.distribution = Distribution::Gamma;
+        (p.errors.serial, p.errors.nugget, p.errors.spread) = (Serial::None, false, Spread::Common);
+        p.subjects_spread = Sharing::Common;
+        p.comparisons.small_sample = SmallSample::Df;
+        (p.comparisons.margin, p.comparisons.margin_unit) = (0.0, MarginUnit::Response);
+    };
     let rescaled = |p: &mut Plan, transform: Transform| {
         if p.response.transform != transform {
             p.response.transform = transform;
@@ -131,6 +144,7 @@ fn others(plan: &Plan) -> Vec<(String, Plan)> {
     };
     add("the measured scale", &|p| rescaled(p, Transform::Identity));
     add("a log scale", &|p| rescaled(p, Transform::Log));
+    add("gamma values, whose spread grows with the mean", &gamma);
     all
 }
 
@@ -140,10 +154,18 @@ fn fitted(name: String, plan: Plan, cohort: Cohort) -> Fitted {
     let Ok(own) = fit(&cohort.data, &model) else {
         return Fitted { plan, name, cohort: Some(cohort), fit: None, aic: None, scores: Vec::new() };
     };
-    let full = fit(&cohort.data, &Model { likelihood: Likelihood::Full, ..model }).ok();
+    let normal = plan.response.distribution == Distribution::Normal;
+    let full = normal.then(|| fit(&cohort.data, &Model { likelihood: Likelihood::Full, ..model }).ok()).flatten();
     let aic = full.map(|full| 2.0 * (full.parameters() as f64 - full.log_likelihood()));
-    let few = cohort.data.subjects.len() <= MOST_LEFT_OUT;
-    let scores = if few { own.foreseen().iter().map(|one| score(one, log)).collect() } else { Vec::new() };
+    let subjects = cohort.data.subjects.len();
+    let scores = match plan.response.distribution {
+        Distribution::Normal if subjects <= MOST_LEFT_OUT => own.foreseen().iter().map(|one| score(one, log)).collect(),
+        Distribution::Normal => Vec::new(),
+        _ if subjects <= MOST_APPROXIMATED => {
+            own.foreseen_values(DRAWS, plan.seed).iter().map(simulated_score).collect()
+        }
+        _ => Vec::new(),
+    };
     Fitted { plan, name, cohort: Some(cohort), fit: Some(own), aic, scores }
 }
 
@@ -152,6 +174,23 @@ fn score(one: &Foreseen, log: bool) -> f64 {
     let rows = one.mean.iter().zip(&one.sd).zip(&one.response);
     let sum: f64 = rows.map(|((&m, &s), &y)| if log { log_normal_score(m, s, y) } else { normal_score(m, s, y) }).sum();
     sum / one.mean.len() as f64
+}
+
+/// Mean ranked probability score of a subject's rows from simulated values: mean |x - y| less half the mean |x - x'|
+/// (Gneiting & Raftery 2007, eq 21).
+fn simulated_score(one: &ForeseenValues) -> f64 {
+    let rows = one.values.iter().zip(&one.response);
+    let sum: f64 = rows
+        .map(|(values, y)| {
+            let mut x = values.clone();
+            x.sort_by(f64::total_cmp);
+            let n = x.len() as f64;
+            let near = x.iter().map(|x| (x - y).abs()).sum::<f64>() / n;
+            let apart: f64 = x.iter().enumerate().map(|(k, x)| (2.0 * k as f64 - n + 1.0) * x).sum();
+            near - apart / (n * (n - 1.0))
+        })
+        .sum();
+    sum / one.response.len() as f64
 }
 
 fn normal_score(mean: f64, sd: f64, y: f64) -> f64 {
@@ -188,12 +227,9 @@ fn compared(all: &[Fitted]) -> Candidates {
 type Gap = (Vec<Option<f64>>, Vec<Option<f64>>);
 
 fn candidate(one: &Fitted, own: &Fitted, base: &[Gap]) -> Candidate {
-    let same_scale = one.plan.response.transform == own.plan.response.transform;
+    let same_scale = one.plan.response == own.plan.response;
     let gaps: Vec<Vec<Option<f64>>> = match (&one.cohort, &one.fit) {
-        (Some(cohort), Some(fit)) if same_scale => {
-            let evaluation = Evaluation::new(&one.plan, cohort, fit, None);
-            evaluation.gap_estimates()
-        }
+        (Some(cohort), Some(fit)) => Evaluation::new(&one.plan, cohort, fit, None).gaps_on_scale(own.plan.is_ratio()),
         _ => Vec::new(),
     };
     let moves = (!gaps.is_empty()).then(|| largest_move(&gaps, base));
@@ -262,22 +298,30 @@ fn sentence(c: &Candidate) -> String {
     };
     let moves = match c.moves {
         Some(moves) => format!("; gaps move by at most {} of their standard errors", number(moves, 1)),
-        None => "; its gaps are on another scale".into(),
+        None => String::new(),
     };
     let text = format!("{foresees}{weighs}{moves}.");
     text[..1].to_uppercase() + &text[1..]
 }
 
 /// The model to propose: one that foresees clearly better, else one of the same scale that fits clearly better for
-/// its size without foreseeing worse, else the plan's own.
+/// its size without foreseeing worse, else the plan's own. "Clearly" allows for the number of models looked at
+/// (Bonferroni at 5 %, normal limit); a difference of 6 in Akaike's criterion is common practice, no source.
 fn propose(models: &[Candidate]) -> (usize, String) {
     let gain = |c: &Candidate| match (c.score, c.score_se) {
         (Some(score), Some(se)) if se > 0.0 => -score / se,
         _ => 0.0,
     };
-    let best = (1..models.len()).filter(|&k| models[k].fitted && gain(&models[k]) > 2.0);
+    let looked_at = models.iter().skip(1).filter(|c| c.score.is_some()).count().max(1);
+    let clear = normal_quantile(1.0 - 0.025 / looked_at as f64);
+    let best = (1..models.len()).filter(|&k| models[k].fitted && gain(&models[k]) > clear);
     if let Some(k) = best.max_by(|&a, &b| gain(&models[a]).total_cmp(&gain(&models[b]))) {
-        let text = format!("{} foresees subjects that it has not seen clearly better than the plan.", models[k].name);
+        let text = format!(
+            "{} foresees subjects that it has not seen clearly better than the plan: by {} standard errors, more than the {} that              looking at {looked_at} models asks for.",
+            models[k].name,
+            number(gain(&models[k]), 1),
+            number(clear, 1)
+        );
         return (k, capital(&text));
     }
     let better = (1..models.len()).filter(|&k| models[k].aic.is_some_and(|aic| aic < -6.0) && gain(&models[k]) > -1.0);
@@ -286,12 +330,8 @@ fn propose(models: &[Candidate]) -> (usize, String) {
         let text = format!("{} fits clearly better for its size than the plan and foresees no worse.", models[k].name);
         return (k, capital(&text));
     }
-    (0, "None of these foresees or fits clearly better than the plan: it can stay.".into())
-}
-
-fn capital(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
+    let text = format!("None of the {looked_at} foresees or fits clearly better than the plan: it can stay.");
+    (0, text)
 }
 
 #[cfg(test)]
@@ -319,6 +359,15 @@ mod tests {
             let log = integral(&|x| normal_cdf((x.ln() - mean) / sd), y.exp(), 0.0, 150.0);
             assert!((log_normal_score(mean, sd, y) - log).abs() < 2e-3, "{} {log}", log_normal_score(mean, sd, y));
         }
+    }
+
+    /// Simulated values score like the distribution that they come from.
+    #[test]
+    fn simulated_values_score_like_their_distribution() {
+        let mut rng = Rng::new(9);
+        let values: Vec<f64> = (0..20_000).map(|_| 1.0 + 0.5 * rng.normal()).collect();
+        let one = ForeseenValues { subject: 0, values: vec![values], response: vec![1.3] };
+        assert!((simulated_score(&one) - normal_score(1.0, 0.5, 1.3)).abs() < 3e-3);
     }
 
     fn table(bent: bool, serial: bool) -> String {
@@ -350,6 +399,10 @@ mod tests {
         let right = of(&table(true, false), "{}");
         assert_eq!(right.proposed, 0, "{}", right.reason);
         let log = right.models.iter().find(|m| m.name == "a log scale").unwrap();
-        assert!(log.aic.is_none() && log.gaps.is_empty() && log.score.is_some());
+        assert!(log.aic.is_none() && log.gaps.len() == 1 && log.score.is_some());
+        // Another scale, put on the plan's: about the same gap.
+        assert!(log.moves.unwrap() < 1.5, "{:?}", log.moves);
+        let gamma = right.models.iter().find(|m| m.name.starts_with("gamma")).unwrap();
+        assert!(gamma.aic.is_none() && gamma.score.is_some() && gamma.moves.unwrap() < 1.5, "{gamma:?}");
     }
 }

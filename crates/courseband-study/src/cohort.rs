@@ -19,6 +19,8 @@ pub(crate) struct Cohort {
     pub(crate) data: Data,
     /// In the order of the data.
     pub(crate) subject_names: Vec<String>,
+    /// For every subject, its rows as indices into the observations.
+    pub(crate) places: Vec<Vec<usize>>,
     pub(crate) groups: Vec<GroupInfo>,
     /// First and last time of each group.
     pub(crate) supports: Vec<[f64; 2]>,
@@ -44,7 +46,7 @@ impl Cohort {
         crate::families::refuse_values(observations, plan)?;
         let started = started(observations, plan)?;
         refuse_ties(observations, plan)?;
-        let (mut subjects, subject_names) = rows_by_subject(observations, &started);
+        let Filed { mut subjects, names: subject_names, places } = rows_by_subject(observations, &started);
         let (names, kept) = keep_filled_groups(observations, &mut subjects);
         let mut data = Data { groups: names.len(), subjects, ..Data::default() };
         let adjustments = adjust(&mut data, observations, &started, plan)?;
@@ -67,6 +69,7 @@ impl Cohort {
         let mut cohort = Cohort {
             data,
             subject_names,
+            places,
             groups,
             supports,
             visits,
@@ -136,9 +139,16 @@ impl Cohort {
     }
 }
 
-/// The kept rows, subject by subject, and the subjects' names.
-fn rows_by_subject(observations: &Observations, started: &Started) -> (Vec<SubjectRows>, Vec<String>) {
-    let (mut subjects, mut names): (Vec<SubjectRows>, Vec<String>) = (Vec::new(), Vec::new());
+/// The kept rows, subject by subject.
+#[derive(Default)]
+struct Filed {
+    subjects: Vec<SubjectRows>,
+    names: Vec<String>,
+    places: Vec<Vec<usize>>,
+}
+
+fn rows_by_subject(observations: &Observations, started: &Started) -> Filed {
+    let Filed { mut subjects, mut names, mut places } = Filed::default();
     let mut last: Option<u32> = None;
     for &k in &started.kept {
         let subject = observations.subject[k];
@@ -147,14 +157,16 @@ fn rows_by_subject(observations: &Observations, started: &Started) -> (Vec<Subje
             let (group, cluster) = (info.group as usize, info.cluster.map(|c| c as usize));
             subjects.push(SubjectRows { group, cluster, ..SubjectRows::default() });
             names.push(info.name.clone());
+            places.push(Vec::new());
             last = Some(subject);
         }
         if let Some(rows) = subjects.last_mut() {
             rows.times.push(observations.time[k]);
             rows.responses.push(started.response[k]);
         }
+        places.last_mut().into_iter().for_each(|own| own.push(k));
     }
-    (subjects, names)
+    Filed { subjects, names, places }
 }
 
 /// Groups with at least one row, renumbered; their names and how many they are.

@@ -161,6 +161,26 @@ impl<'a> Evaluation<'a> {
         self.pairs().into_iter().map(gap).collect()
     }
 
+    /// Estimated gaps on the grid put on another scale: logarithms of ratios of the courses where `ratio`, differences of
+    /// the courses otherwise. `None` outside support and where a course is not above zero.
+    pub(crate) fn gaps_on_scale(&self, ratio: bool) -> Vec<Vec<Option<f64>>> {
+        if ratio == self.plan.is_ratio() {
+            return self.gap_estimates();
+        }
+        let course = |g: usize, t: f64| self.posterior.estimate(&self.fit.course(g, t)).mean;
+        let gap = |(from, to): (usize, usize)| {
+            let support = self.overlap(from, to);
+            let at = |&t: &f64| {
+                support.filter(|[low, high]| t >= *low && t <= *high)?;
+                let (a, b) = (course(from, t), course(to, t));
+                let value = if ratio { libm::log(b) - libm::log(a) } else { libm::exp(b) - libm::exp(a) };
+                value.is_finite().then_some(value)
+            };
+            self.grid.iter().map(at).collect()
+        };
+        self.pairs().into_iter().map(gap).collect()
+    }
+
     /// The families whose largest error a calibration follows: courses, then gaps.
     pub(crate) fn families(&self) -> Vec<Vec<Contrast>> {
         let contrasts = |members: Vec<(Contrast, Estimate)>| members.into_iter().map(|(c, _)| c).collect();

@@ -2,6 +2,7 @@
 
 use crate::findings::Note;
 use crate::plan::{ClusterChoice, Plan};
+use crate::sentences::capital;
 use courseband_engine::{ClusterEffects, Data};
 use courseband_table::Observations;
 use serde::Serialize;
@@ -121,9 +122,4 @@ fn unit_note(nested: bool, summary: &ClusterSummary, column: &str, plan: &Plan) 
             summary.count
         )
     }
-}
-
-fn capital(word: &str) -> String {
-    let mut letters = word.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }

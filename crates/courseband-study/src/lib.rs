@@ -31,7 +31,7 @@ mod usual;
 pub use adjust::Adjustment;
 pub use blocks::{BendEffect, BlockEffects, BlockGap};
 pub use candidates::{Candidate, Candidates};
-pub use checks::{Check, CheckPlot, ChecksFindings, PlotSeries};
+pub use checks::{Check, CheckPlot, ChecksFindings, Consequence, Outcome, PlotSeries, TriedPair};
 pub use dropout::{After, DropoutFindings, Leaver, Leaving, PooledGap, Sensitivity, SensitivityFindings};
 pub use findings::*;
 pub use housing::ClusterSummary;

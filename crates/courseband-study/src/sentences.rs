@@ -168,15 +168,14 @@ impl Speaker<'_> {
         }
         let many = &self.findings.plan.words.subjects;
         let text = parts.join(", and ");
-        let mut letters = text.chars();
-        let capital = letters.next().map(|c| c.to_uppercase().collect::<String>()).unwrap_or_default();
+        let text = capital(&text);
         let times = |s: &Stretch| usize::from(!s.open_start) + usize::from(!s.open_end);
         let tail = match d.stretches.iter().chain(&d.beyond).map(times).sum::<usize>() {
-            0 => return format!("{capital}{}.", letters.as_str()),
+            0 => return format!("{text}."),
             1 => "this time depends",
             _ => "these times depend",
         };
-        format!("{capital}{}; {tail} on the number of {many}.", letters.as_str())
+        format!("{text}; {tail} on the number of {many}.")
     }
 
     /// The day the gap passes the margin for good: a property of the curve, with its interval.
@@ -336,6 +335,12 @@ pub(crate) fn joined(parts: &[String]) -> String {
         [one] => one.clone(),
         [first @ .., last] => format!("{} and {last}", first.join(", ")),
     }
+}
+
+/// First letter in upper case.
+pub(crate) fn capital(text: &str) -> String {
+    let mut letters = text.chars();
+    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }
 
 /// `95 %`, `99.9 %`.

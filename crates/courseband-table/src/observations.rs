@@ -20,10 +20,23 @@ pub struct Observations {
     pub response: Vec<f64>,
     /// Line in the file; the header is line 1.
     pub line: Vec<u32>,
+    /// In a wide table: the sheet's column that holds the measurement, an index into `measured`; empty in a long one.
+    pub cell: Vec<u32>,
+    /// Names of the sheet's columns in a wide table.
+    pub measured: Vec<String>,
     /// Further explanatory columns asked for.
     pub covariates: Vec<Covariate>,
     /// One time unit in words: `day`, `week`, `hour` or, where unknown, the column's name.
     pub time_word: String,
+}
+
+impl Observations {
+    /// How an exclusion names a measurement: its line, and in a wide table its column.
+    #[must_use]
+    pub fn place(&self, measurement: usize) -> (usize, Option<&str>) {
+        let column = self.cell.get(measurement).and_then(|&at| self.measured.get(at as usize));
+        (self.line[measurement] as usize, column.map(String::as_str))
+    }
 }
 
 /// One subject. Belongs to one group and at most one cluster.

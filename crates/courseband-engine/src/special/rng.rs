@@ -110,6 +110,33 @@ impl Rng {
     pub fn chi2(&mut self, df: f64) -> f64 {
         2.0 * self.gamma(0.5 * df)
     }
+
+    /// Poisson with this mean: small means by multiplication, larger ones by a gamma waiting time
+    /// (Ahrens & Dieter 1974, Computing 12:223); above a million the normal approximation, rounded.
+    pub fn poisson(&mut self, mean: f64) -> f64 {
+        if mean > 1e6 {
+            return libm::round(mean + libm::sqrt(mean) * self.normal()).max(0.0);
+        }
+        let (mut left, mut count) = (mean, 0.0);
+        while left > 12.0 {
+            let waits = libm::floor(0.875 * left);
+            let waited = self.gamma(waits);
+            if waited > left {
+                let share = left / waited;
+                // What fell before the end among `waits - 1` uniform times.
+                let events = (1..waits as u64).filter(|_| self.uniform() < share).count();
+                return count + events as f64;
+            }
+            count += waits;
+            left -= waited;
+        }
+        let (limit, mut product) = (libm::exp(-left), self.uniform());
+        while product > limit {
+            product *= self.uniform();
+            count += 1.0;
+        }
+        count
+    }
 }
 
 /// Steele, Lea & Flood 2014; the constants are those of the published generator.

@@ -21,6 +21,7 @@ impl Builder<'_> {
         let mut marks = self.subjects();
         marks.extend(self.bands(&curves));
         marks.extend(self.lines(&curves));
+        marks.extend(self.laid_over());
         let scale = self.course_scale(&curves, &marks);
         let narrow = self.view.is_narrow();
         let height = if narrow { 240.0 } else { (0.36 * self.view.safe_width()).clamp(260.0, 380.0) };
@@ -32,7 +33,8 @@ impl Builder<'_> {
             pair: None,
             title: "Courses".into(),
             subject: self.key(),
-            caption: words::courses(self.source, self.noun(), scale.kind(), is_ranged, is_hatched),
+            caption: words::courses(self.source, self.noun(), scale.kind(), is_ranged, is_hatched)
+                + if self.view.over.is_empty() { "" } else { words::LAID_OVER },
             plot: Some(Plot {
                 height,
                 scale,
@@ -107,6 +109,17 @@ impl Builder<'_> {
         marks
     }
 
+    /// Lines of another model.
+    fn laid_over(&self) -> Vec<Mark> {
+        let mark = |over: &crate::view::OverLine| {
+            let group = self.source.groups.iter().position(|group| group.name == over.group)?;
+            let pairs = over.time.iter().zip(&over.response_mean);
+            let points: Vec<(f64, f64)> = pairs.filter_map(|(&t, y)| Some((t, (*y)?))).collect();
+            (points.len() > 1).then_some(Mark::Over { tone: Tone::Group(group), points })
+        };
+        self.view.over.iter().filter_map(mark).collect()
+    }
+
     /// With few visits, or a mean per visit, the points carry the evidence.
     pub(super) fn marks_visits(&self) -> bool {
         self.source.visits.len() <= FEW_VISITS || self.is_by_time()
@@ -127,6 +140,7 @@ impl Builder<'_> {
         let subjects = marks.iter().flat_map(|mark| match mark {
             Mark::Trace { points, .. } => points.iter().map(|p| p.1).collect(),
             Mark::Range { points, .. } => points.iter().flat_map(|p| [p.1, p.2]).collect(),
+            Mark::Over { points, .. } => points.iter().map(|p| p.1).collect(),
             _ => Vec::new(),
         });
         let mut all: Vec<f64> = bands.chain(subjects).filter(|v| v.is_finite()).collect();

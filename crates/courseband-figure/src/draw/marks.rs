@@ -59,6 +59,12 @@ pub(super) fn draw_mark<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, place: &Place
             let colour = pen.colour(*tone);
             place.line(points).iter().try_for_each(|part| pen.dashed(part, *dash, colour, alpha, CURVE))
         }
+        // Two thin lines, apart from every dash of the groups.
+        Mark::Over { tone, points } => [-1.5, 1.5].into_iter().try_for_each(|off| {
+            let colour = pen.colour(*tone);
+            let beside = |part: &Vec<(f64, f64)>| part.iter().map(|&(x, y)| (x, y + off)).collect::<Vec<_>>();
+            place.line(points).iter().try_for_each(|part| pen.dashed(&beside(part), Dash::Solid, colour, 1.0, 0.9))
+        }),
         Mark::Dots { tone, beside, points } => dots(pen, place, *tone, *beside, points),
         Mark::Steps { tone, dash, points } => steps(pen, place, *tone, *dash, points),
     }

@@ -2,7 +2,7 @@
 
 use super::{Check, CheckPlot, PlotSeries, Subject};
 use crate::evaluate::Evaluation;
-use crate::sentences::{number, plain};
+use crate::sentences::{capital, number, plain};
 use courseband_engine::special::t_sf;
 use courseband_engine::{ClusterEffects, Residual};
 
@@ -32,6 +32,13 @@ impl Subject<'_> {
         // Without one of n, a gap moves by about one n-th of its spread; one standard error is large.
         let lit = most.largest > 1.0;
         let (from, to, time) = places[most.at];
+        let together = sets.iter().find(|set| set.first() == Some(&most.subject))?;
+        let mut trial = self.plan.clone();
+        for &subject in together {
+            let more = self.without(subject, None).exclusions.split_off(self.plan.exclusions.len());
+            trial.exclusions.extend(more);
+        }
+        let trial = Some(trial);
         let word = if by_cluster { "cluster" } else { &self.plan.words.subject };
         let name =
             if by_cluster { format!("of {}", self.names[most.subject]) } else { self.names[most.subject].clone() };
@@ -43,9 +50,10 @@ impl Subject<'_> {
             lit,
             p: None,
             seen: format!(
-                "Without {word} {name} ({}) the gap {b} to {a} moves most, by {} of its standard errors at time {}.",
+                "Without {word} {name} ({}) the gap {b} to {a} moves most, by {} of its standard errors at {} {}.",
                 group.name,
                 number(most.largest, 2),
+                self.time_word(),
                 plain(time)
             ),
             means: if lit {
@@ -59,7 +67,9 @@ impl Subject<'_> {
             } else {
                 String::new()
             },
-            trial: None,
+            trial,
+            consequence: None,
+            more: Vec::new(),
             plot: self.movement(&influence, &contrasts, &places, &own, (a, b, &name)),
         })
     }
@@ -78,7 +88,7 @@ impl Subject<'_> {
         let full: Vec<_> = own.iter().map(|&k| posterior.estimate(&contrasts[k])).collect();
         let mut order: Vec<&courseband_engine::Influence> = influence.iter().filter(|i| !i.values.is_empty()).collect();
         order.sort_by(|a, b| b.largest.total_cmp(&a.largest));
-        let line = |name: String, y: Vec<f64>| PlotSeries { name, joined: true, x: times.clone(), y };
+        let line = |name: String, y: Vec<f64>| PlotSeries { name, group: None, joined: true, x: times.clone(), y };
         let mut series = vec![line(String::new(), full.iter().map(|e| e.mean).collect())];
         series.extend(order.iter().take(MOST_LINES).enumerate().map(|(rank, one)| {
             let name = if rank == 0 { format!("without {most}") } else { self.names[one.subject].clone() };
@@ -86,9 +96,10 @@ impl Subject<'_> {
         }));
         CheckPlot {
             across: "time".into(),
-            up: format!("gap {to} to {from} with everybody (and one standard error), and without each in turn"),
+            up: format!("gap {to} to {from} with everybody, and without each in turn"),
             series,
             envelope: full.iter().map(|e| [e.mean - e.se, e.mean + e.se]).collect(),
+            says: "grey: one standard error around the gap with everybody".into(),
         }
     }
 
@@ -107,13 +118,14 @@ impl Subject<'_> {
         let word = &self.plan.words.subject;
         let name = &self.names[odd.subject];
         let group = &self.cohort.groups[self.cohort.data.subjects[odd.subject].group].name;
-        let all = self.fit.residuals();
+        let all = &self.residuals;
         let means = (0..count).map(|s| {
             let own: Vec<f64> = all.iter().filter(|r| r.subject == s).map(|r| r.around_course).collect();
             own.iter().sum::<f64>() / own.len().max(1) as f64
         });
         let series = PlotSeries {
             name: String::new(),
+            group: None,
             joined: false,
             x: (0..count).map(|k| k as f64 + 1.0).collect(),
             y: means.collect(),
@@ -140,12 +152,14 @@ impl Subject<'_> {
             } else {
                 String::new()
             },
-            trial: None,
+            trial: Some(self.without(odd.subject, None)),
+            consequence: None,
+            more: Vec::new(),
             plot: CheckPlot {
                 across: format!("{word}, in the order of the table"),
                 up: "mean distance from the group's course".into(),
                 series: vec![series],
-                envelope: Vec::new(),
+                ..CheckPlot::default()
             },
         })
     }
@@ -163,9 +177,4 @@ impl Subject<'_> {
         }
         (sets.into_values().collect(), true)
     }
-}
-
-fn capital(word: &str) -> String {
-    let mut letters = word.chars();
-    letters.next().map_or_else(String::new, |first| first.to_uppercase().chain(letters).collect())
 }

@@ -1,8 +1,8 @@
 //! Checks that compare the plan's model with the one that would mend it.
 
-use super::{ALARM, Check, CheckPlot, PlotSeries, Subject};
+use super::{ALARM, Check, Subject};
 use crate::plan::{self, Plan, Transform};
-use crate::sentences::{number, plain};
+use crate::sentences::{capital, number, plain};
 use courseband_engine::special::chi2_sf;
 use courseband_engine::{Fit, Residual, fit};
 
@@ -15,7 +15,7 @@ impl Subject<'_> {
     }
 
     /// Do errors go on from visit to visit?
-    pub(super) fn serial(&self, residuals: &[Residual]) -> Option<Check> {
+    pub(super) fn serial(&self) -> Option<Check> {
         if self.plan.errors.serial != plan::Serial::None || !self.has_several_visits() {
             return None;
         }
@@ -35,9 +35,10 @@ impl Subject<'_> {
             p: Some(p),
             seen: if lit {
                 format!(
-                    "Neighbouring visits of one {} err alike: correlation {} one time unit apart.",
+                    "Neighbouring visits of one {} err alike: correlation {} one {} apart.",
                     self.plan.words.subject,
-                    number(phi, 2)
+                    number(phi, 2),
+                    self.time_word()
                 )
             } else {
                 "Neighbouring visits do not err alike beyond what the model holds.".into()
@@ -48,8 +49,10 @@ impl Subject<'_> {
                 String::new()
             },
             advice: if lit { "Let visits be serially correlated.".into() } else { String::new() },
-            trial: lit.then_some(trial),
-            plot: self.lag_plot(residuals),
+            trial: Some(trial),
+            consequence: None,
+            more: vec![self.semivariogram()],
+            plot: self.lag_plot(),
         })
     }
 
@@ -93,7 +96,9 @@ impl Subject<'_> {
                 String::new()
             },
             advice: if lit { "Give every group its own spread.".into() } else { String::new() },
-            trial: lit.then_some(trial),
+            trial: Some(trial),
+            consequence: None,
+            more: Vec::new(),
             plot: self.spread_plot(residuals),
         })
     }
@@ -118,7 +123,7 @@ impl Subject<'_> {
         let many = &self.plan.words.subjects;
         Some(Check {
             key: "subjects".into(),
-            title: format!("{many} differ in {more}"),
+            title: capital(&format!("{many} differ in {more}")),
             lit,
             p: Some(p),
             seen: if lit {
@@ -132,7 +137,9 @@ impl Subject<'_> {
                 String::new()
             },
             advice: if lit { format!("Let {many} differ in {more}.") } else { String::new() },
-            trial: lit.then_some(trial),
+            trial: Some(trial),
+            consequence: None,
+            more: Vec::new(),
             plot: self.trend_plot(residuals),
         })
     }
@@ -170,7 +177,9 @@ impl Subject<'_> {
                     "The log scale needs values above zero; look for outlying rows, or another distribution.".into()
                 }
             },
-            trial: (lit && positive).then_some(trial),
+            trial: positive.then_some(trial),
+            consequence: None,
+            more: Vec::new(),
             plot: self.fitted_plot(residuals),
         })
     }
@@ -210,7 +219,9 @@ impl Subject<'_> {
             },
             means: if lit { "The courses miss bends that the table shows.".into() } else { String::new() },
             advice: if lit { "Let the courses bend more.".into() } else { String::new() },
-            trial: lit.then_some(trial),
+            trial: Some(trial),
+            consequence: None,
+            more: Vec::new(),
             plot: self.time_plot(residuals),
         })
     }
@@ -221,35 +232,6 @@ impl Subject<'_> {
 
     fn has_ties(&self) -> bool {
         self.cohort.data.subjects.iter().any(|s| s.times.windows(2).any(|w| w[0] == w[1]))
-    }
-
-    /// Products of independent residuals by time between them.
-    fn lag_plot(&self, residuals: &[Residual]) -> CheckPlot {
-        let mut pairs: Vec<(f64, f64)> = Vec::new();
-        for (k, a) in residuals.iter().enumerate() {
-            let later = residuals[k + 1..].iter().take_while(|b| b.subject == a.subject).take(6);
-            pairs.extend(later.map(|b| (b.time - a.time, a.independent * b.independent)));
-        }
-        pairs.sort_by(|a, b| a.0.total_cmp(&b.0));
-        let bins = super::scatter::means_in_bins(&pairs, 10);
-        let envelope = bins
-            .iter()
-            .map(|bin| {
-                let r = 1.96 / libm::sqrt(bin.count);
-                [-r, r]
-            })
-            .collect();
-        CheckPlot {
-            across: "time between two visits".into(),
-            up: "correlation of what the model leaves".into(),
-            series: vec![PlotSeries {
-                name: String::new(),
-                joined: true,
-                x: bins.iter().map(|bin| bin.x).collect(),
-                y: bins.iter().map(|bin| bin.y).collect(),
-            }],
-            envelope,
-        }
     }
 }
 

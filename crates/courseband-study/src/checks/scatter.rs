@@ -3,13 +3,12 @@
 use super::{ALARM, Check, CheckPlot, PlotSeries, Subject};
 use crate::sentences::{number, plain};
 use courseband_engine::Residual;
-use courseband_engine::special::{normal_quantile, normal_sf, t_sf};
+use courseband_engine::special::{normal_sf, t_sf};
 
 /// A bin of ascending x.
 pub(super) struct Bin {
     pub(super) x: f64,
     pub(super) y: f64,
-    pub(super) count: f64,
 }
 
 /// Means of y in bins of about equal count; equal x stay together.
@@ -24,7 +23,7 @@ pub(super) fn means_in_bins(pairs: &[(f64, f64)], bins: usize) -> Vec<Bin> {
         }
         let count = (end - start) as f64;
         let mean = |f: &dyn Fn(&(f64, f64)) -> f64| pairs[start..end].iter().map(f).sum::<f64>() / count;
-        result.push(Bin { x: mean(&|p| p.0), y: mean(&|p| p.1), count });
+        result.push(Bin { x: mean(&|p| p.0), y: mean(&|p| p.1) });
         start = end;
     }
     result
@@ -40,14 +39,20 @@ impl Subject<'_> {
         let lit = p.is_some_and(|p| p < ALARM);
         let seen = match far {
             Some(r) if lit => format!(
-                "{} {} at time {} is {} standard deviations from what its group and its other visits suggest.",
-                self.plan.words.subject,
+                "{} {} at {} {} is {} standard deviations from what its group and its other visits suggest.",
+                crate::sentences::capital(&self.plan.words.subject),
                 self.names[r.subject],
+                self.time_word(),
                 plain(r.time),
                 number(r.given_rest.abs(), 1)
             ),
             _ => "No row is far from what the model suggests.".into(),
         };
+        let trial = far.map(|far| {
+            let before = residuals.iter().take_while(|r| r.subject != far.subject).count();
+            let own = residuals[before..].iter().position(|r| std::ptr::eq(r, far));
+            self.without(far.subject, own)
+        });
         Check {
             key: "outlying".into(),
             title: "An outlying value".into(),
@@ -60,8 +65,10 @@ impl Subject<'_> {
             } else {
                 String::new()
             },
-            trial: None,
-            plot: quantile_plot(residuals),
+            trial,
+            consequence: None,
+            more: Vec::new(),
+            plot: self.quantile_plot(),
         }
     }
 
@@ -96,13 +103,14 @@ impl Subject<'_> {
                 let own: Vec<&Residual> = residuals.iter().filter(|r| r.group == g).collect();
                 PlotSeries {
                     name: info.name.clone(),
+                    group: None,
                     joined: false,
                     x: own.iter().map(|r| x(r)).collect(),
                     y: own.iter().map(|r| r.independent).collect(),
                 }
             })
             .collect();
-        CheckPlot { across: across.into(), up: up.into(), series, envelope: Vec::new() }
+        CheckPlot { across: across.into(), up: up.into(), series, ..CheckPlot::default() }
     }
 
     /// Standard deviation around the course by time, a line per group.
@@ -116,6 +124,7 @@ impl Subject<'_> {
                 let bins = means_in_bins(&squares, 8);
                 PlotSeries {
                     name: info.name.clone(),
+                    group: None,
                     joined: true,
                     x: bins.iter().map(|bin| bin.x).collect(),
                     y: bins.iter().map(|bin| libm::sqrt(bin.y)).collect(),
@@ -126,7 +135,7 @@ impl Subject<'_> {
             across: "time".into(),
             up: "standard deviation around the course".into(),
             series,
-            envelope: Vec::new(),
+            ..CheckPlot::default()
         }
     }
 
@@ -147,30 +156,12 @@ impl Subject<'_> {
                 own.y.push(r.around_course);
             }
         }
-        CheckPlot { across: "time".into(), up: "distance from the group's course".into(), series, envelope: Vec::new() }
-    }
-}
-
-/// Sorted residuals against normal quantiles, with the pointwise 95 % range of order statistics
-/// (normal approximation of the binomial; David & Nagaraja 2003).
-fn quantile_plot(residuals: &[Residual]) -> CheckPlot {
-    let mut y: Vec<f64> = residuals.iter().map(|r| r.independent).collect();
-    y.sort_by(f64::total_cmp);
-    let n = y.len() as f64;
-    let share = |k: usize| (k as f64 + 0.5) / n;
-    let x: Vec<f64> = (0..y.len()).map(|k| normal_quantile(share(k))).collect();
-    let envelope = (0..y.len())
-        .map(|k| {
-            let p = share(k);
-            let reach = 1.96 * libm::sqrt(p * (1.0 - p) / n);
-            [p - reach, p + reach].map(|p| normal_quantile(p.clamp(0.5 / n / 10.0, 1.0 - 0.5 / n / 10.0)))
-        })
-        .collect();
-    CheckPlot {
-        across: "what the normal distribution expects".into(),
-        up: "what the model leaves, in standard deviations".into(),
-        series: vec![PlotSeries { name: String::new(), joined: false, x, y }],
-        envelope,
+        CheckPlot {
+            across: "time".into(),
+            up: "distance from the group's course".into(),
+            series,
+            ..CheckPlot::default()
+        }
     }
 }
 

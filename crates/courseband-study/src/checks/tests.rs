@@ -4,7 +4,7 @@
 //! to visit; standard deviation 2.5 times as large in one group; one value off by six error SDs; trends with
 //! SD 0.35 per visit in a model with levels only; lognormal values with SD 0.6 of the logs on the raw scale.
 
-use super::ChecksFindings;
+use super::{Check, ChecksFindings, Outcome};
 use crate::{Plan, Study};
 use courseband_engine::special::Rng;
 use std::fmt::Write as _;
@@ -19,7 +19,7 @@ enum Fault {
     Scale,
 }
 
-fn checked(fault: Fault, seed: u64) -> ChecksFindings {
+fn table(fault: Fault, seed: u64) -> String {
     let mut rng = Rng::new(seed);
     let mut text = String::from("mouse,arm,day,y\n");
     for s in 0..20 {
@@ -41,13 +41,15 @@ fn checked(fault: Fault, seed: u64) -> ChecksFindings {
             let _ = writeln!(text, "m{s},{},{day},{y:.4}", ["a", "b"][s % 2]);
         }
     }
-    Study::open(text.as_bytes()).unwrap().checks(&Plan::default()).unwrap()
+    text
+}
+
+fn lit(fault: Fault, seed: u64) -> Vec<String> {
+    Study::open(table(fault, seed).as_bytes()).unwrap().checks_lit(&Plan::default()).unwrap()
 }
 
 fn lights(fault: Fault, key: &str, runs: u64) -> u64 {
-    (0..runs)
-        .filter(|&k| checked(fault, 100 + k).checks.iter().any(|c| c.lit && (key.is_empty() || c.key == key)))
-        .count() as u64
+    (0..runs).filter(|&k| lit(fault, 100 + k).iter().any(|own| key.is_empty() || own == key)).count() as u64
 }
 
 #[test]
@@ -68,4 +70,47 @@ fn seeded_faults_light_the_right_check() {
 fn clean_tables_stay_dark() {
     let lit = lights(Fault::None, "", 60);
     assert!(lit <= 9, "{lit} of 60");
+}
+
+fn checked(table: &str) -> ChecksFindings {
+    Study::open(table.as_bytes()).unwrap().checks(&Plan::default()).unwrap()
+}
+
+fn find<'a>(findings: &'a ChecksFindings, key: &str) -> &'a Check {
+    findings.checks.iter().find(|check| check.key == key).unwrap()
+}
+
+#[test]
+fn remedies_are_tried_and_named() {
+    let findings = checked(&table(Fault::Serial, 100));
+    for check in &findings.checks {
+        let consequence = check.consequence.as_ref().unwrap_or_else(|| panic!("{} has no remedy", check.key));
+        assert_eq!(consequence.pairs.len(), 1, "{}", check.key);
+        assert!(check.trial.is_some());
+    }
+    let serial = find(&findings, "serial");
+    assert!(serial.lit && serial.more.len() == 1);
+    // What goes on from visit to visit leaves the envelope of tables in which nothing does.
+    let out = serial.plot.series[0].y.iter().zip(&serial.plot.envelope).any(|(y, [low, high])| y < low || y > high);
+    assert!(out, "{:?}", serial.plot);
+    assert!(findings.verdict.contains(" of 8 checks speak"), "{}", findings.verdict);
+}
+
+/// Both tables differ in one subject only, and the remedy that leaves it out says what that does.
+#[test]
+fn leaving_out_the_odd_subject_is_one_trial() {
+    let mut text = table(Fault::None, 7);
+    let far = |line: &str| {
+        let (head, y) = line.rsplit_once(',').unwrap();
+        format!("{head},{:.4}", y.parse::<f64>().unwrap() + 12.0)
+    };
+    text = text.lines().map(|line| if line.starts_with("m7,") { far(line) } else { line.into() } + "\n").collect();
+    let findings = checked(&text);
+    let odd = find(&findings, "subject");
+    assert!(odd.lit, "{odd:?}");
+    let trial = odd.trial.as_ref().unwrap();
+    assert_eq!(trial.exclusions.len(), 8);
+    let lines: Vec<&str> = text.lines().collect();
+    assert!(trial.exclusions.iter().all(|e| lines[e.row - 1].starts_with("m7,") && e.column.is_none()));
+    assert_ne!(odd.consequence.as_ref().unwrap().outcome, Outcome::Unknown);
 }

@@ -112,7 +112,7 @@ fn notes(context: &Context, by_visit: Option<&ByVisit>) -> Vec<Note> {
     if let Some(cluster) = &context.findings.columns.cluster {
         messages.push(format!(
             "{} of one {cluster} are taken as independent. Where treatment was given per {cluster}, the p-values are too small.",
-            print::sentence_case(&context.plan.words.subjects)
+            crate::sentences::capital(&context.plan.words.subjects)
         ));
     }
     if context.findings.fit.status == FitStatus::Failed {

@@ -114,9 +114,3 @@ pub(super) fn unit(time_word: &str) -> &str {
     const KNOWN: [&str; 8] = ["second", "minute", "hour", "day", "week", "month", "quarter", "year"];
     if KNOWN.contains(&time_word) { time_word } else { "unit of time" }
 }
-
-/// First letter in upper case.
-pub(super) fn sentence_case(text: &str) -> String {
-    let mut letters = text.chars();
-    letters.next().map(|c| c.to_uppercase().collect::<String>()).unwrap_or_default() + letters.as_str()
-}

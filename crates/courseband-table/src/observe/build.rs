@@ -175,6 +175,7 @@ impl Observer<'_> {
             SubjectInfo { name, group: group_codes.new[subject.group as usize], cluster }
         });
         let time_column = self.needed(Role::Time)?;
+        let wide = self.table.layout != crate::request::Layout::Long;
         let observations = Observations {
             subjects: info.collect(),
             groups: group_codes.names(&groups.names),
@@ -183,6 +184,11 @@ impl Observer<'_> {
             time: order.iter().map(|&kept| times.values[kept as usize]).collect(),
             response: order.iter().map(|&kept| responses[kept as usize]).collect(),
             line: order.iter().map(|&kept| self.line(kept as usize) as u32).collect(),
+            cell: match wide {
+                true => order.iter().map(|&kept| self.table.places[self.kept[kept as usize] as usize].column).collect(),
+                false => Vec::new(),
+            },
+            measured: if wide { self.table.sheet_names.clone() } else { Vec::new() },
             covariates: covariates.into_iter().map(|covariate| sorted(covariate, &order)).collect(),
             time_word: times.unit.map_or_else(|| self.name(time_column).to_string(), |unit| unit.word().to_string()),
         };
