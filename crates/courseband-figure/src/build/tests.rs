@@ -66,6 +66,7 @@ fn dump(figure: &Figure) -> String {
 fn mark(mark: &Mark) -> String {
     match mark {
         Mark::Trace { tone, points, .. } => format!("trace {tone:?} of {}", points.len()),
+        Mark::Over { tone, points } => format!("over {tone:?} of {}", points.len()),
         Mark::Range { tone, points } => format!("range {tone:?} of {}", points.len()),
         Mark::Band { tone, points, .. } => format!("band {tone:?} of {}", points.len()),
         Mark::Hatch { tone, points } => format!("hatch {tone:?} from {:.2}", points[0].0),
