@@ -173,6 +173,7 @@ impl Fit {
 mod tests {
     use crate::fit::fit;
     use crate::model::{Data, Model, SubjectRows};
+    use crate::special::Rng;
 
     #[test]
     fn a_subject_far_off_is_found_although_it_widens_the_spread() {
