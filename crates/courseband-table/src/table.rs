@@ -68,6 +68,16 @@ impl Table {
         outline(&long, &profiles, request, error.as_ref())
     }
 
+    /// Names of the columns, in the long form of the table, nearly all of whose cells are numbers of more than two kinds.
+    #[must_use]
+    pub fn number_columns(&self, request: &Request) -> Vec<String> {
+        let long = self.long(request);
+        let profiles = profile_all(&long);
+        let is_measured = |profile: &Profile| profile.is_numeric(0.8) && profile.distinct > 2;
+        let kept = long.columns.iter().zip(&profiles).filter(|(_, profile)| is_measured(profile));
+        kept.map(|(column, _)| column.name.clone()).collect()
+    }
+
     /// The cells as written.
     pub fn sheet(&self) -> &Sheet {
         &self.sheet

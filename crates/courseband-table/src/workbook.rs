@@ -8,10 +8,12 @@ mod archive;
 mod grid;
 mod ods;
 mod values;
+mod write;
 mod xlsx;
 mod xml;
 
 pub use grid::CellRange;
+pub use write::{WrittenSheet, write_workbook};
 
 use crate::error::TableError;
 use crate::sheet::Sheet;

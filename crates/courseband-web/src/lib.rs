@@ -9,6 +9,7 @@
 //! the module must then be replaced.
 
 mod drawing;
+mod files;
 mod panic;
 mod refused;
 mod rooms;
@@ -16,6 +17,7 @@ mod session;
 mod wire;
 
 pub use drawing::{draw_strips, strips_svg};
+pub use files::{markers_answer, tables_xlsx};
 pub use refused::Refused;
 pub use rooms::{size_answer, size_run};
 pub use session::Session;

@@ -3,15 +3,19 @@
 //! Every number in it is in the findings or in what the author did, and printed as they print it.
 
 mod effects;
+mod files;
 mod items;
 mod methods;
+mod subjects;
 mod tables;
 
+use crate::cohort::Cohort;
 use crate::findings::{Findings, FitStatus};
 use crate::plan::Plan;
 use crate::refusal::Refusal;
 use crate::sentences::{joined, percent, plain};
 use crate::study::{Refits, Study};
+pub use files::tables_workbook;
 use serde::{Deserialize, Serialize};
 
 /// What the report knows beyond findings: what the author did with the table.
@@ -61,9 +65,9 @@ pub struct ReportSection {
 }
 
 /// A table of texts.
-#[derive(Debug, Clone, PartialEq, Serialize)]
+#[derive(Debug, Clone, PartialEq, Serialize, Deserialize)]
 pub struct ReportTable {
-    /// `curves`, `gaps`, `stretches`, `effects`.
+    /// `curves`, `gaps`, `stretches`, `effects`, `subjects`, `responses`.
     pub key: String,
     /// Its title, with what the numbers are.
     pub title: String,
@@ -94,7 +98,10 @@ impl Study {
             Some(refits) => self.run_calibrated(plan, refits)?,
             None => self.run(plan)?,
         };
-        Ok(compose(&findings, refits.is_some(), context))
+        let mut report = compose(&findings, refits.is_some(), context);
+        let cohort = Cohort::new(self.reading(plan)?, plan)?;
+        report.tables.push(subjects::table(&cohort, &findings, subjects::is_log(&findings)));
+        Ok(report)
     }
 }
 
