@@ -8,7 +8,7 @@ import { text } from './text.js';
 
 /** @typedef {import('./types.js').Choices} Choices */
 /** @typedef {import('./types.js').Source} Source */
-/** @typedef {{choices: Choices, source: Source, table: Uint8Array|null, fingerprint: string|null, fixed: boolean}} Analysis */
+/** @typedef {{choices: Choices, source: Source, table: Uint8Array|null, fingerprint: string|null, fixed: import('./types.js').Plan|null}} Analysis `fixed`: the plan as it was fixed. */
 
 /** Raise it when the file changes in a way that an older page cannot read. */
 const FORMAT = 1;
@@ -66,10 +66,11 @@ export function analysisFrom(json) {
     source: { kind: source?.kind === 'demo' ? 'demo' : 'own', name: String(source?.name ?? '') },
     table: base64 === null ? null : Uint8Array.from(atob(base64), (letter) => letter.charCodeAt(0)),
     fingerprint: table?.sha256 ?? null,
-    fixed: read.fixed === true,
+    fixed: read.fixed === true ? completePlan(choices.plan) : read.fixed ? completePlan(read.fixed) : null,
     choices: {
       plan: completePlan(choices.plan), called: choices.called ?? {}, noun: choices.noun ?? { ...text.plan.choices.noun.default },
-      leftOut: choices.leftOut ?? [], edits: choices.edits ?? {},
+      leftOut: choices.leftOut ?? [], edits: choices.edits ?? {}, masks: choices.masks ?? null,
+      markers: choices.markers ?? { columns: null, rate: 0.05 },
     },
   };
 }

@@ -7,6 +7,8 @@ import { EngineError, Overtaken } from './engine.js';
 import { Calibration } from './calibration.js';
 import { checkCopy } from './copy-check.js';
 import { Sizing } from './sizing.js';
+import { Batch } from './batch.js';
+import { Keeping } from './keeping.js';
 import { columnsUsed } from './context.js';
 import { NotOpened, analysisFrom, analysisText, fingerprintOf } from './analysis-file.js';
 import { fileName, save } from './exports.js';
@@ -44,6 +46,8 @@ export class Controller {
     this.calibration = new Calibration(assets.module, assets.workerText);
     /** @type {Sizing|null} */
     this.sizing = null;
+    this.batch = new Batch(this);
+    this.keeping = new Keeping(this);
     this.busySince = 0;
     this.shown = false;
   }
@@ -53,6 +57,7 @@ export class Controller {
     if (next === this.state) return;
     this.state = next;
     this.#attend();
+    this.keeping.attend();
     if (this.shown) return;
     // Several changes in one turn are shown once.
     this.shown = true;
@@ -117,11 +122,20 @@ export class Controller {
           return json;
         }));
       },
-      planText: () => this.#planText(this.state.choices),
+      planText: () => this.planText(),
       sensitivity: async (asked) => JSON.parse(await this.engine.sensitivity(this.#planText(this.state.choices), JSON.stringify(asked))),
       look: () => this.state,
       saveAnalysis: (whole) => this.saveAnalysis(whole),
-      fixPlan: () => this.set({ ...this.state, fixed: this.state.choices.plan }),
+      keepWork: () => void this.keeping.turnOn(),
+      eraseWork: () => void this.keeping.erase(),
+      openKept: () => void this.keeping.open(),
+      fixPlan: () => {
+        this.set({ ...this.state, fixed: this.state.choices.plan });
+        void this.saveAnalysis(false);
+      },
+      lookForMarkers: () => void this.batch.look(),
+      runMarkers: (columns, rate) => void this.batch.run(columns, rate),
+      stopMarkers: () => this.batch.stop(),
       sizing: () => (this.sizing ??= new Sizing(this.assets.module, this.assets.workerText)),
       sizeFrom: async (pair) => {
         const json = await this.engine.sizeFrom(this.#planText(this.state.choices), pair);
@@ -134,7 +148,7 @@ export class Controller {
         if (over !== null) window.location.hash = '#/courses';
       },
       leaveOut: (row, column, reason) =>
-        this.choose(text.data.leftOut.label(row), change.leavingOut({ row, column, reason, seen: this.state.seen }), false),
+        this.choose(text.data.leftOut.label(row), change.leavingOut({ row, column, reason, seen: this.state.seen, masked: this.state.choices.masks !== null }), false),
       takeBack: (row, column) => this.choose(text.data.leftOut.back(row), change.takingBack(row, column), false),
     };
   }
@@ -162,6 +176,11 @@ export class Controller {
     else void this.refit();
   }
 
+  /** The plan as it is sent. */
+  planText() {
+    return this.#planText(this.state.choices);
+  }
+
   /** @param {import('./types.js').Choices} choices */
   #planText(choices) {
     return JSON.stringify(planToSend(choices, columnsUsed(this.state)));
@@ -179,14 +198,23 @@ export class Controller {
     const { choices, source, fixed, findings } = this.state;
     if (!table || !source) return;
     const fingerprint = await fingerprintOf(table);
-    const analysis = { choices, source, table: whole ? table : null, fingerprint, fixed: fixed !== null };
+    const analysis = { choices, source, table: whole ? table : null, fingerprint, fixed };
     save(`${fileName(source.name)}${whole ? '' : '-plan'}.courseband.json`, analysisText(analysis, findings?.version ?? ''), 'application/json');
   }
 
   /** A saved analysis takes the place of the table, or joins the open one where it was saved without. @param {File} file */
   async openAnalysis(file) {
     try {
-      const analysis = analysisFrom(await file.text());
+      await this.openAnalysisText(await file.text(), file.name);
+    } catch {
+      this.set({ ...this.state, notice: text.data.paste.unreadable(file.name) });
+    }
+  }
+
+  /** @param {string} json @param {string} name */
+  async openAnalysisText(json, name) {
+    try {
+      const analysis = analysisFrom(json);
       const open = this.engine.table;
       if (analysis.table === null) {
         if (!open || this.state.source === null) throw new NotOpened(text.report.refused.otherTable(analysis.source.name));
@@ -196,9 +224,9 @@ export class Controller {
       } else {
         await this.open(analysis.table, analysis.source, null, analysis.choices);
       }
-      if (analysis.fixed) this.set({ ...this.state, fixed: analysis.choices.plan });
+      if (analysis.fixed !== null) this.set({ ...this.state, fixed: analysis.fixed });
     } catch (cause) {
-      this.set({ ...this.state, notice: cause instanceof NotOpened ? cause.message : text.data.paste.unreadable(file.name) });
+      this.set({ ...this.state, notice: cause instanceof NotOpened ? cause.message : text.data.paste.unreadable(name) });
     }
   }
 
@@ -223,6 +251,7 @@ export class Controller {
    */
   async open(bytes, source, demo, choices = null) {
     const wish = this.#wished();
+    this.batch.stop();
     window.clearTimeout(this.typing);
     this.set(change.opening(this.state, source, demo));
     if (choices) this.set({ ...this.state, choices });

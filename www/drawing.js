@@ -1,6 +1,6 @@
 /**
  * Drawing on the page's own thread, because the drawing library measures text
- * through the document. The only place on this thread that calls the module.
+ * through the document; and the files made of what is drawn and tabled. The only place on this thread that calls the module.
  */
 
 /** @typedef {import('./types.js').Layout} Layout */
@@ -30,6 +30,16 @@ export function startDrawing(module) {
  */
 export function stripsSvg(drawing, view) {
   return wasm_bindgen.strips_svg(drawing.findings, drawing.traces, JSON.stringify(view));
+}
+
+/**
+ * Tables as the bytes of a workbook; `about` are lines for its first sheet.
+ * @param {any[]} tables
+ * @param {string[]} about
+ * @returns {Uint8Array}
+ */
+export function tablesXlsx(tables, about) {
+  return wasm_bindgen.tables_xlsx(JSON.stringify(tables), JSON.stringify(about));
 }
 
 /**

@@ -139,6 +139,21 @@ export class Engine {
     return this.#ask('sensitivity', { plan, asked });
   }
 
+  /** Columns that could be the response. @param {string} plan @returns {Promise<string>} */
+  markerColumns(plan) {
+    return this.#ask('markerColumns', { plan });
+  }
+
+  /** What a plan says of its response, as one of many. @param {string} plan @param {string} name @returns {Promise<string>} */
+  marker(plan, name) {
+    return this.#ask('marker', { plan, name });
+  }
+
+  /** @param {string} markers @param {number} rate @param {number} level @returns {Promise<string>} */
+  markersAnswer(markers, rate, level) {
+    return this.#ask('markersAnswer', { markers, rate, level });
+  }
+
   /** A sample-size request from the fitted table. @param {string} plan @param {number} pair @returns {Promise<string>} */
   sizeFrom(plan, pair) {
     return this.#ask('sizeFrom', { plan, pair });

@@ -95,7 +95,7 @@ export function htmlOf(report, drawing, words) {
 <h1>${escaped(report.title)}</h1>${words.mark ? `<p class="mark">${escaped(words.mark)}</p>` : ''}
 ${report.sections.map((/** @type {any} */ s) => `<h2>${escaped(s.title)}</h2>\n${paragraphs(s.paragraphs)}`).join('\n')}
 <h2>${escaped(words.figure)}</h2>${drawing}
-${report.tables.map(table).join('\n')}
+${report.tables.filter((/** @type {any} */ one) => one.key !== 'subjects').map(table).join('\n')}
 <h2>${escaped(words.references)}</h2>${paragraphs(report.references)}
 <h2>${escaped(words.items)}</h2>${table({ title: '', heads: ['', '', ''], rows: items })}
 </body></html>

@@ -7,6 +7,7 @@ import { loadAssets } from './assets.js';
 import { Controller } from './controller.js';
 import { startDrawing } from './drawing.js';
 import { Engine } from './engine.js';
+import { listenForUndo } from './undo-keys.js';
 import { roomOf } from './rooms.js';
 import { entered } from './state.js';
 import { text } from './text.js';
@@ -27,6 +28,8 @@ async function start() {
   startDrawing(assets.module);
   frame = mountFrame(document.body, acts);
   acceptDrops(document.body, acts);
+  listenForUndo(acts);
+  void controller.keeping.start();
 
   const enter = () => controller.set(entered(controller.state, roomOf(window.location.hash)));
   window.addEventListener('hashchange', enter);

@@ -3,6 +3,8 @@
  * is sent to the worker. Pure functions.
  */
 
+import { maskedPlan } from './masks.js';
+
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./types.js').Choices} Choices */
 
@@ -63,7 +65,8 @@ export function withSection(plan, section, values) {
  * @returns {Plan}
  */
 export function planToSend(choices, columns) {
-  const { plan, noun, called, leftOut } = choices;
+  const { noun, called, leftOut } = choices;
+  const plan = maskedPlan(choices.plan, choices.masks);
   /** @param {string|null} column */
   const byHand = (column) => (column === null ? null : called[column] || null);
   return {

@@ -12,6 +12,7 @@ export function reportContext(state, plan) {
   return JSON.stringify({
     table: source?.name ?? '', invented: source?.kind === 'demo',
     excluded_late: choices.leftOut.filter((row) => row.seen).map((row) => row.row),
+    excluded_masked: choices.leftOut.filter((row) => row.masked).map((row) => row.row),
     looked_at: state.lookedAt, checks,
     departures: fixed === null ? [] : departures(fixed, choices.plan),
   });

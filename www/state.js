@@ -15,8 +15,13 @@ import { text } from './text.js';
 /** @returns {Choices} */
 export function freshChoices() {
   return {
-    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], edits: {},
+    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], edits: {}, masks: null, markers: { columns: null, rate: 0.05 },
   };
+}
+
+/** @returns {State['markers']} */
+export function noMarkers() {
+  return { offered: null, progress: null, of: null, answer: null, message: null };
 }
 
 /** @returns {State} */
@@ -27,6 +32,7 @@ export function initialState() {
     findings: null, drawing: null, change: null, message: null, notice: null,
     cursor: null, seen: false, slow: false, calibrating: null, took: null, openPairs: [], over: null, demos: [], announcement: '',
     answers: { checks: null, usual: null, dropout: null, candidates: null, report: null }, refits: null, fixed: null, lookedAt: [],
+    markers: noMarkers(), keeping: { on: false, found: null, message: null },
   };
 }
 
@@ -45,7 +51,7 @@ export function entered(state, room) {
 export function opening(state, source, demo) {
   const choices = freshChoices();
   return {
-    ...initialState(), room: state.room, demos: state.demos, source, status: 'reading',
+    ...initialState(), room: state.room, demos: state.demos, keeping: state.keeping, source, status: 'reading',
     choices: demo ? demoChoices(choices, demo) : choices,
   };
 }

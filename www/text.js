@@ -4,6 +4,7 @@
  */
 
 import { words } from './text/words.js';
+import { markers } from './text/markers.js';
 import { plan } from './text/plan.js';
 import { copyCheck } from './text/copy-check.js';
 import { data } from './text/data.js';
@@ -34,6 +35,7 @@ export const text = {
   checks,
   dropout,
   effects,
+  markers,
   report,
   size,
   usual,

@@ -100,7 +100,7 @@
 
 /** @typedef {{file: string, title: string, blurb: string, plan: Object, called?: Record<string, string>}} Demo */
 /** @typedef {{kind: 'demo'|'own', name: string}} Source */
-/** @typedef {{row: number, column: string|null, reason: string, seen: boolean}} LeftOut `column`: only this cell of a wide table. */
+/** @typedef {{row: number, column: string|null, reason: string, seen: boolean, masked?: boolean}} LeftOut `column`: only this cell of a wide table. `masked`: judged with the groups' names masked. */
 
 /**
  * Everything that undo covers.
@@ -109,6 +109,8 @@
  * @property {Record<string, string>} called Short names of columns.
  * @property {{one: string, many: string}} noun
  * @property {LeftOut[]} leftOut
+ * @property {{columns: string[]|null, rate: number}} markers Response columns to go through (`null`: all), and the false-discovery rate.
+ * @property {Record<string, string>|null} masks Names of the groups to what is shown instead; `null`: shown.
  * @property {Record<string, {text: string, base: string}>} edits Paragraphs of the report that the author rewrote.
  */
 
@@ -143,6 +145,8 @@
  * @property {{plan: string, refits: string}|null} refits What the calibration of a plan gave.
  * @property {string[]} lookedAt Other models that were looked at, for the report.
  * @property {Plan|null} fixed The plan as it was fixed.
+ * @property {{on: boolean, found: {name: string, when: number, analysis: string}|null, message: string|null}} keeping Work kept on this device.
+ * @property {{offered: string[]|null, progress: {done: number, total: number}|null, of: string|null, answer: any, message: string|null}} markers One plan over many columns: `of` is the plan of the answer.
  * @property {string} announcement
  * @property {{checks: Answer|null, usual: Answer|null, dropout: Answer|null, candidates: Answer|null, report: Answer|null}} answers What rooms asked for beyond the findings.
  */
@@ -166,6 +170,12 @@
  * @property {(asked: Record<string, any>) => Promise<any>} sensitivity Pooled gaps under an assumption on those who left.
  * @property {() => State} look The state as it is.
  * @property {(whole: boolean) => Promise<void>} saveAnalysis With the table, or its fingerprint only.
+ * @property {() => void} lookForMarkers Asks which columns could be the response.
+ * @property {(columns: string[], rate: number) => void} runMarkers
+ * @property {() => void} stopMarkers
+ * @property {() => void} keepWork
+ * @property {() => void} eraseWork
+ * @property {() => void} openKept
  * @property {() => void} fixPlan
  * @property {() => import('./sizing.js').Sizing} sizing The workers that simulate studies.
  * @property {(pair: number) => Promise<any>} sizeFrom A sample-size request from the fitted table; `null` where there is none.

@@ -8,19 +8,21 @@ import { defaultPlan } from '../../www/plan.js';
 import { withEdits } from '../../www/views/report-text.js';
 import { designsIn, freshForm, numbersIn, requestOf, schedulesOf } from '../../www/size-form.js';
 
-const choices = { plan: { ...defaultPlan(), subjects: 'slope' }, called: { a: 'b' }, noun: { one: 'mouse', many: 'mice' }, leftOut: [{ row: 3, column: null, reason: 'lost', seen: true }], edits: {} };
+const choices = { plan: { ...defaultPlan(), subjects: 'slope' }, called: { a: 'b' }, noun: { one: 'mouse', many: 'mice' }, leftOut: [{ row: 3, column: null, reason: 'lost', seen: true }], edits: {}, masks: { a: 'Group B' }, markers: { columns: ['x'], rate: 0.1 } };
 
 test('an analysis comes back as it was saved, to the byte', async () => {
   const table = new Uint8Array(70000).map((_, k) => k % 251);
   const fingerprint = await fingerprintOf(table);
-  const back = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table, fingerprint, fixed: true }, '1.2.3'));
+  const back = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table, fingerprint, fixed: { ...defaultPlan(), subjects: 'none' } }, '1.2.3'));
   assert.deepEqual(back.choices, choices);
   assert.deepEqual(back.table, table);
   assert.equal(back.fingerprint, fingerprint);
   assert.equal(fingerprint.length, 64);
-  assert.equal(back.fixed, true);
-  const without = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table: null, fingerprint, fixed: false }, '1.2.3'));
+  // The plan as it was fixed, not as it stands now: departures are kept.
+  assert.equal(back.fixed.subjects, 'none');
+  const without = analysisFrom(analysisText({ choices, source: { kind: 'own', name: 'x.csv' }, table: null, fingerprint, fixed: null }, '1.2.3'));
   assert.equal(without.table, null);
+  assert.equal(without.fixed, null);
 });
 
 test('what is no analysis, or a later one, is refused in words', () => {

@@ -5,6 +5,8 @@
 
 import { el, setText, show, whenChanged } from '../dom.js';
 import { text } from '../text.js';
+import { mountChange } from '../views/change.js';
+import { markersPart } from '../views/markers.js';
 import { analysisPart, figurePart, givePart, itemsPart, tablesPart } from '../views/report-parts.js';
 import { sectionNode, withEdits } from '../views/report-text.js';
 
@@ -17,15 +19,18 @@ export const reportRoom = {
   mount(root, acts) {
     const wait = el('p', { class: 'hint', role: 'status', 'data-region': 'report-state' });
     const title = el('h2', {});
+    const changed = el('p', { class: 'change' });
+    const change = mountChange(changed, acts);
     const prose = el('div', { class: 'report-text', 'data-region': 'report' });
     const figure = figurePart(acts);
     const tables = el('section', { class: 'report-tables' });
+    const markers = markersPart(acts);
     const items = el('section', { class: 'report-items' });
     const give = givePart(() => current, () => figure.drawing(), acts);
     const analysis = analysisPart(acts);
-    root.append(el('div', { class: 'room-head' }, title, el('p', { class: 'room-lead' }, words.lead)), wait,
+    root.append(el('div', { class: 'room-head' }, title, el('p', { class: 'room-lead' }, words.lead)), changed, wait,
       el('div', { class: 'report-body' },
-        el('article', {}, prose, figure.node, tables, items),
+        el('article', {}, prose, figure.node, tables, markers.node, items),
         el('div', { class: 'report-side' }, give.node, analysis.node)));
     /** @type {any} */
     let current = null;
@@ -41,7 +46,9 @@ export const reportRoom = {
       update(state) {
         const answer = state.answers.report;
         drawn(state);
+        change.update(state);
         figure.update(state);
+        markers.update(state);
         analysis.update(state);
         const held = state.calibrating !== null;
         const message = answer === null ? words.waiting : held ? words.provisional

@@ -12,8 +12,8 @@ export const privacy = {
       title: 'What this page does',
       points: [
         'It computes on this machine, in this tab. No address to send anything to is in its code.',
-        'It writes nothing to cookies, to browser storage, to the address line or to the console.',
-        'Close the tab and the table is gone.',
+        'It writes nothing to cookies, to the address line or to the console, and nothing to browser storage unless you ask it in Data to keep your work on this device.',
+        'Close the tab and the table is gone, unless you asked to keep it.',
       ],
     },
     {

@@ -23,6 +23,7 @@ export const report = {
   tables: 'Tables',
   asCsv: (/** @type {string} */ title) => `Save as CSV: ${title}`,
   csv: 'Save as CSV',
+  xlsx: 'Save all tables as XLSX',
   items: 'What reporting standards ask of the statistics',
   itemsHint: 'In words of our own; read the standards themselves before you submit.',
   author: 'Only the author can say this.',

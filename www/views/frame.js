@@ -7,6 +7,7 @@ import { el, setText, show, whenChanged } from '../dom.js';
 import { rooms } from '../rooms.js';
 import { text } from '../text.js';
 import { mountCopyCheck } from './copy-check.js';
+import { mountFound } from './keeping.js';
 import { mountPrivacy } from './privacy.js';
 import { mountProgress } from './progress.js';
 
@@ -22,12 +23,14 @@ export function mountFrame(body, acts) {
   const voice = el('div', { class: 'unseen', role: 'status', 'aria-live': 'polite' });
   const navigation = mountNavigation(acts);
   const mark = mountMark(acts);
+  const found = mountFound(acts);
   const progress = mountProgress(acts);
   const privacy = mountPrivacy();
   const copyCheck = mountCopyCheck(acts);
   body.append(
     el('a', { class: 'skip', href: '#room', onclick: (/** @type {Event} */ event) => { event.preventDefault(); main.focus(); } }, text.skip),
     el('header', { class: 'head' }, el('h1', { class: 'name' }, text.name), navigation.node, privacy.button),
+    found.node,
     mark.node,
     progress.node,
     main,
@@ -62,6 +65,7 @@ export function mountFrame(body, acts) {
         if (room.id === state.room) view.update(state);
       }
       navigation.update(state);
+      found.update(state);
       mark.update(state);
       progress.update(state);
       setText(voice, state.announcement);

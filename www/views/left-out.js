@@ -21,7 +21,7 @@ export function mountLeftOut(root, acts) {
       show(root, leftOut.length > 0);
       reconcile(list, leftOut, (row) => `${row.row}:${row.column}:${row.reason}`, (row) => el('li', {},
         el('strong', {}, text.data.problems.where(row.row, row.column ?? '')), ' ', row.reason, ' ',
-        el('span', { class: 'hint' }, `(${row.seen ? words.seen : words.before})`), ' ',
+        el('span', { class: 'hint' }, `(${row.seen ? words.seen : words.before}${row.masked ? `, ${words.masked}` : ''})`), ' ',
         el('button', { type: 'button', class: 'quiet', onclick: () => acts.takeBack(row.row, row.column) }, words.takeBack)));
     }),
   };

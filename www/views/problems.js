@@ -4,6 +4,7 @@
 
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
 import { parseNumber } from '../numbers.js';
+import { maskedText } from '../masks.js';
 import { withSection } from '../plan.js';
 import { text } from '../text.js';
 
@@ -24,8 +25,9 @@ export function mountProblems(root, acts) {
   const other = mountOther(acts);
   root.append(el('h2', {}, words.title), none, offers, list, more, other.node);
   return {
-    update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.message], (state) => {
-      const known = [...(state.preview?.problems ?? []), ...(state.findings?.problems ?? [])];
+    update: whenChanged((state) => [state.preview, state.findings, state.choices.leftOut, state.choices.masks, state.message], (state) => {
+      const all = [...(state.preview?.problems ?? []), ...(state.findings?.problems ?? [])];
+      const known = all.map((one) => ({ ...one, value: maskedText(one.value, state.choices.masks), message: maskedText(one.message, state.choices.masks) }));
       const open = unique(known).filter((problem) => !isOut(problem, state.choices.leftOut));
       const stopping = open.filter((problem) => problem.stops);
       const problems = [...stopping, ...open.filter((problem) => !problem.stops)];

@@ -2,16 +2,18 @@
 
 import { departures } from '../analysis-file.js';
 import { el, setText, show, whenChanged } from '../dom.js';
-import { stripsSvg } from '../drawing.js';
+import { stripsSvg, tablesXlsx } from '../drawing.js';
 import { csvOf, fileName, htmlOf, pngOf, save } from '../exports.js';
 import { parseNumber } from '../numbers.js';
 import { text } from '../text.js';
+import { plainTable } from './plain-table.js';
 
 /** @typedef {import('../types.js').State} State */
 /** @typedef {import('../types.js').Acts} Acts */
 
 const words = text.report;
 const PX_PER_MM = 96 / 25.4;
+const XLSX = 'application/vnd.openxmlformats-officedocument.spreadsheetml.sheet';
 
 /** @param {string} label @param {HTMLElement} input */
 const field = (label, input) => el('label', { class: 'field' }, el('span', {}, label), input);
@@ -69,18 +71,13 @@ export function figurePart(acts) {
 /** @param {any} report @param {State} state */
 export function tablesPart(report, state) {
   const remark = state.source?.kind === 'demo' ? text.demo.mark(state.source.name) : '';
-  return [el('h3', {}, words.tables), ...report.tables.map((/** @type {any} */ table) => el('details', { class: 'as-tables', open: table.key === 'stretches' },
+  const xlsx = el('button', { type: 'button', 'data-gives': '', 'data-act': 'save-xlsx', onclick: () =>
+    save(`${fileName(report.title)}-tables.xlsx`, /** @type {any} */ (tablesXlsx(report.tables, [report.title, remark].filter((line) => line !== ''))), XLSX) }, words.xlsx);
+  return [el('h3', {}, words.tables), el('p', {}, xlsx), ...report.tables.map((/** @type {any} */ table) => el('details', { class: 'as-tables', open: table.key === 'stretches' },
     el('summary', {}, table.title),
     el('div', { class: 'table-scroller tall', tabindex: '0', role: 'region', 'aria-label': table.title }, plainTable(table)),
     el('p', {}, el('button', { type: 'button', class: 'quiet', 'data-gives': '', 'data-act': `csv-${table.key}`, 'aria-label': words.asCsv(table.title),
       onclick: () => save(`${fileName(report.title)}-${table.key}.csv`, csvOf(table, remark), 'text/csv') }, words.csv))))];
-}
-
-/** @param {{heads: string[], rows: string[][]}} table */
-function plainTable({ heads, rows }) {
-  return el('table', { class: 'plain-table' },
-    el('thead', {}, el('tr', {}, ...heads.map((head) => el('th', { scope: 'col' }, head)))),
-    el('tbody', {}, ...rows.map((row) => el('tr', {}, ...row.map((cell, k) => (k === 0 ? el('th', { scope: 'row' }, cell) : el('td', {}, cell)))))));
 }
 
 /** @param {any} report */

@@ -5,6 +5,7 @@
 
 import { ROLES, columnsUsed } from '../context.js';
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
+import { maskedText } from '../masks.js';
 import { withRole } from '../plan.js';
 import { text } from '../text.js';
 import { mountSheetChoice } from './sheet-choice.js';
@@ -60,7 +61,7 @@ export function mountTable(root, acts) {
     drawRows(body, rows, state, preview);
     setText(count, rows.length < preview.totalRows ? words.shown(rows.length, preview.totalRows) : words.all(preview.totalRows));
     show(more, rows.length < preview.rows.length);
-    reconcile(notes, preview.notes, (note) => note, (note) => el('li', {}, note));
+    reconcile(notes, preview.notes, (note) => note, (note) => el('li', {}, maskedText(note, state.choices.masks)));
   }
   const update = whenChanged((state) => [state.preview, state.choices, state.source], draw);
   return {
@@ -99,7 +100,8 @@ function drawHeads(heads, state, preview, acts) {
       show(select, !column.measured);
       show(called, !column.measured);
       node.used = used;
-      setText(/** @type {Element} */ (node.querySelector('.why')), chosen || role === 'unused' && !column.reason ? '' : column.reason);
+      setText(/** @type {Element} */ (node.querySelector('.why')), chosen || role === 'unused' && !column.reason ? '' : maskedText(column.reason, state.choices.masks));
+      setText(/** @type {Element} */ (node.querySelector('.column-name')), maskedText(column.name, state.choices.masks));
       if (document.activeElement !== called) called.value = state.choices.called[column.name] ?? '';
     });
 }
@@ -134,13 +136,14 @@ function drawRows(body, rows, state, preview) {
   const out = new Set(state.choices.leftOut.map((one) => `${one.row}:${one.column ?? ''}`));
   /** @type {Map<string, string>} */
   const troubled = new Map(preview.problems.map((problem) => [`${problem.row}:${problem.column}`, problem.message]));
+  const { masks } = state.choices;
   const stopping = new Set(preview.problems.filter((problem) => problem.stops).map((problem) => `${problem.row}:${problem.column}`));
   reconcile(body, rows, (row) => String(row.line), (row) => el('tr', {}, el('th', { scope: 'row', class: 'line' }, String(row.line)),
     ...preview.columns.map(() => el('td'))), (node, row) => {
     node.classList.toggle('is-out', out.has(`${row.line}:`));
     preview.columns.forEach((column, index) => {
       const cell = /** @type {HTMLTableCellElement} */ (node.children[index + 1]);
-      setText(cell, row.cells[index] ?? '');
+      setText(cell, maskedText(row.cells[index] ?? '', masks));
       const message = troubled.get(`${row.line}:${column.name}`);
       cell.classList.toggle('is-troubled', message !== undefined);
       cell.classList.toggle('is-stopping', stopping.has(`${row.line}:${column.name}`));

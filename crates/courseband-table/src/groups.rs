@@ -7,7 +7,8 @@ use std::collections::HashMap;
 
 /// Unites spellings that differ by case and white space, and those asked for.
 ///
-/// The most frequent spelling is kept, the earlier one where two are equally frequent.
+/// The most frequent spelling is kept, the earlier one where two are equally frequent. A merge into a name that the table
+/// does not have gives the group that name, so that names can be masked.
 pub(crate) fn unite(labels: &mut Labels, merges: &[Merge], notes: &mut Vec<String>) {
     let rows = row_counts(labels);
     let mut by_key: HashMap<String, usize> = HashMap::new();
@@ -23,7 +24,8 @@ pub(crate) fn unite(labels: &mut Labels, merges: &[Merge], notes: &mut Vec<Strin
     let mut names = Vec::with_capacity(united.len());
     for (slot, spellings) in united.iter().enumerate() {
         spellings.iter().for_each(|&spelling| code[spelling] = slot as u32);
-        names.push(chosen(&labels.names, &rows, spellings, merges, notes));
+        let name = chosen(&labels.names, &rows, spellings, merges, notes);
+        names.push(new_name(&name, &labels.names, merges).unwrap_or(name));
     }
     labels.names = names;
     labels.index.iter_mut().filter(|index| **index != Labels::NONE).for_each(|index| *index = code[*index as usize]);
@@ -48,6 +50,14 @@ fn plain_key(name: &str) -> String {
         Ok(value) if value.is_finite() && !folded.starts_with('0') || folded == "0" => format!("{value}"),
         _ => folded,
     }
+}
+
+/// The name that merges give and no spelling has.
+fn new_name(name: &str, names: &[String], merges: &[Merge]) -> Option<String> {
+    let last = key(name, merges);
+    let merge = merges.iter().find(|merge| plain_key(&merge.into) == last)?;
+    let is_there = names.iter().any(|other| plain_key(other) == last);
+    (!is_there && !merge.into.trim().is_empty()).then(|| merge.into.trim().to_string())
 }
 
 fn chosen(names: &[String], rows: &[usize], spellings: &[usize], merges: &[Merge], notes: &mut Vec<String>) -> String {

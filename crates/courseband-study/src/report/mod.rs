@@ -28,6 +28,8 @@ pub struct ReportContext {
     pub invented: bool,
     /// Lines left out after findings had been seen.
     pub excluded_late: Vec<usize>,
+    /// Lines left out while the groups' names were masked.
+    pub excluded_masked: Vec<usize>,
     /// What else was looked at, in words: other models, other scales.
     pub looked_at: Vec<String>,
     /// Where the plan departs from the one that was fixed beforehand.
@@ -186,7 +188,9 @@ fn data(findings: &Findings, context: &ReportContext) -> Vec<String> {
         let each: Vec<String> = (excluded.iter())
             .map(|e| {
                 let late = if context.excluded_late.contains(&e.row) { ", after findings had been seen" } else { "" };
-                format!("line {} ({}{late})", e.row, e.reason)
+                let masked =
+                    if context.excluded_masked.contains(&e.row) { ", with the groups' names masked" } else { "" };
+                format!("line {} ({}{late}{masked})", e.row, e.reason)
             })
             .collect();
         paragraphs.push(format!("Left out by hand: {}.", each.join("; ")));

@@ -48,6 +48,14 @@ fn offers_to_unite_a_near_spelling() {
     let reading = common::read(text.as_bytes(), &united).expect("a reading");
     assert_eq!(reading.observations.groups, ["Saline", "Drug"]);
     assert!(reading.near_spellings.is_empty());
+    // Masked: every spelling gets the name that the table does not have.
+    let merge = |from: &str, into: &str| Merge { from: from.into(), into: into.into() };
+    let masked = Request {
+        merges: vec![merge("Salnie", "Saline"), merge("Saline", "Group B"), merge("Drug", "Group A")],
+        ..Request::default()
+    };
+    let reading = common::read(text.as_bytes(), &masked).expect("a reading");
+    assert_eq!(reading.observations.groups, ["Group B", "Group A"]);
 }
 
 #[test]
