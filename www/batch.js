@@ -48,8 +48,8 @@ export class Batch {
       const answer = await this.markers.run(table, wanted, { rate, level: plan.comparisons.level }, (done, total) => {
         if (controller.engine.table === table) this.#set({ progress: { done, total } });
       });
-      if (controller.engine.table !== table) return;
-      this.#set(answer === null ? { progress: null } : { progress: null, answer, of });
+      // When stopped, that has been said already.
+      if (answer !== null && controller.engine.table === table) this.#set({ progress: null, answer, of });
     } catch (cause) {
       if (controller.engine.table === table) this.#set({ progress: null, message: cause instanceof Error ? cause.message : String(cause) });
     }

@@ -30,6 +30,9 @@ export function markersPart(acts) {
 
   /** @type {State|null} */
   let last = null;
+  /** What is wrong with what was asked, until something else is asked. */
+  let complaint = '';
+  const complain = (/** @type {string} */ words) => { complaint = words; setText(said, words); };
   const ticked = () => Array.from(boxes.querySelectorAll('input'), (box) => ({ name: box.value, on: box.checked }));
   const choose = (/** @type {string[]} */ columns) => acts.choose(words.choice, (choices) => ({ ...choices, markers: { ...choices.markers, columns } }));
   rate.addEventListener('input', () => {
@@ -41,9 +44,8 @@ export function markersPart(acts) {
   run.addEventListener('click', () => {
     const columns = ticked().filter((one) => one.on).map((one) => one.name);
     const percent = parseNumber(rate.value);
-    if (columns.length < 2) setText(said, words.few);
-    else if (percent === null || !(percent > 0 && percent < 50)) setText(said, words.badRate);
-    else acts.runMarkers(columns, percent / 100);
+    complain(columns.length < 2 ? words.few : percent === null || !(percent > 0 && percent < 50) ? words.badRate : '');
+    if (complaint === '' && percent !== null) acts.runMarkers(columns, percent / 100);
   });
 
   const offered = whenChanged((state) => [state.markers.offered, state.choices.markers], ({ markers: { offered }, choices }) => {
@@ -84,7 +86,7 @@ export function markersPart(acts) {
         bar.setAttribute('aria-label', words.progress(progress.done, progress.total));
       }
       const old = of !== null && of !== acts.planText();
-      setText(said, progress ? words.progress(progress.done, progress.total) : message ?? (old ? words.old : ''));
+      setText(said, complaint !== '' ? complaint : progress ? words.progress(progress.done, progress.total) : message ?? (old ? words.old : ''));
       found.classList.toggle('stale', old);
     },
   };
