@@ -6,6 +6,7 @@
 //! Self & Liang 1987, JASA 82:605), and the check offers that model as the choice to try.
 //! The family has one false-alarm rate: each check lights at [`ALARM`].
 
+mod clustered;
 mod consequence;
 mod influence;
 mod models;
@@ -44,7 +45,7 @@ pub struct ChecksFindings {
 /// One check.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct Check {
-    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `subject`, `robust`, `influence`.
+    /// `serial`, `spread`, `subjects`, `scale`, `basis`, `outlying`, `subject`, `robust`, `influence`, `clusters`.
     pub key: String,
     /// What is asked, in a few words.
     pub title: String,
@@ -173,6 +174,7 @@ impl<'a> Subject<'a> {
             self.subject_effects(residuals),
             self.scale(residuals),
             self.basis(residuals),
+            self.clustered(),
             Some(self.outlying(residuals)),
             self.odd_subject(),
             self.robust(),

@@ -236,7 +236,7 @@ impl Subject<'_> {
 }
 
 /// Chance of such a rise for one variance that may be zero (Self & Liang 1987, case 5).
-fn edge(rise: f64) -> f64 {
+pub(super) fn edge(rise: f64) -> f64 {
     if rise <= 0.0 { 1.0 } else { 0.5 * chi2_sf(2.0 * rise, 1.0) }
 }
 

@@ -114,3 +114,26 @@ fn leaving_out_the_odd_subject_is_one_trial() {
     assert!(trial.exclusions.iter().all(|e| lines[e.row - 1].starts_with("m7,") && e.column.is_none()));
     assert_ne!(odd.consequence.as_ref().unwrap().outcome, Outcome::Unknown);
 }
+
+/// Cages that are ignored light their check, and the remedy holds them.
+#[test]
+fn cages_that_are_ignored_are_seen() {
+    let mut rng = Rng::new(5);
+    let mut text = String::from("mouse,cage,arm,day,y\n");
+    for cage in 0..10 {
+        let own = 1.5 * rng.normal();
+        for k in 0..4 {
+            let level = 0.5 * rng.normal();
+            for day in 0..6 {
+                let y = 10.0 + own + level + 0.5 * rng.normal();
+                let _ = writeln!(text, "m{cage}_{k},c{cage},{},{day},{y:.4}", ["a", "b"][cage % 2]);
+            }
+        }
+    }
+    let checks = |plan: &str| Study::open(text.as_bytes()).unwrap().checks(&Plan::from_json(plan).unwrap()).unwrap();
+    let ignored = checks(r#"{"clusters": "none"}"#);
+    let clusters = find(&ignored, "clusters");
+    assert!(clusters.lit && clusters.consequence.is_some(), "{clusters:?}");
+    let held = checks("{}");
+    assert!(!find(&held, "clusters").lit);
+}
