@@ -4,32 +4,14 @@
  * waits for them.
  */
 
-import { Engine } from './engine.js';
-
-/** Most workers, whatever the machine says it has. */
-const MOST_WORKERS = 2;
-/** A chunk should take about this long, in milliseconds. */
-const CHUNK_TIME = 200;
+import { Pool } from './pool.js';
 
 /** @typedef {(progress: {done: number, total: number, secondsLeft: number|null}) => void} Report */
 
-export class Calibration {
-  /**
-   * @param {WebAssembly.Module} module
-   * @param {string} workerText
-   */
+export class Calibration extends Pool {
+  /** @param {WebAssembly.Module} module @param {string} workerText */
   constructor(module, workerText) {
-    this.module = module;
-    this.workerText = workerText;
-    /** @type {Engine[]} */
-    this.engines = [];
-    /** Counts calibrations; chunks of an older one are dropped. */
-    this.turn = 0;
-  }
-
-  /** Ends the calibration under way; a chunk that runs is let run out. */
-  stop() {
-    this.turn += 1;
+    super(module, workerText, { most: 8, spare: 1, most_at_once: 50, chunk: 200 });
   }
 
   /**
@@ -51,7 +33,7 @@ export class Calibration {
       const each = (performance.now() - started) / Math.max(1, work.done);
       report({ done: work.done, total, secondsLeft: work.done < 20 ? null : Math.ceil(((total - work.done) * each) / 1000) });
     };
-    await Promise.all(this.#ready(table).map(async (ready) => {
+    await Promise.all(this.#holding(table).map(async (ready) => {
       const engine = await ready;
       while (!isOver()) {
         const first = work.next;
@@ -63,7 +45,7 @@ export class Calibration {
         if (chunk === '') return this.stop();
         work.chunks.push(chunk);
         work.done += count;
-        work.size = Math.max(1, Math.min(50, Math.round((count * CHUNK_TIME) / Math.max(1, performance.now() - began))));
+        work.size = this.nextSize(count, began);
         said();
       }
     }));
@@ -73,13 +55,9 @@ export class Calibration {
   /**
    * The workers, each holding this table.
    * @param {Uint8Array} table
-   * @returns {Promise<Engine>[]}
    */
-  #ready(table) {
-    const cores = navigator.hardwareConcurrency || 2;
-    const count = Math.max(1, Math.min(MOST_WORKERS, cores - 1));
-    while (this.engines.length < count) this.engines.push(new Engine(this.module, this.workerText));
-    return this.engines.map(async (engine) => {
+  #holding(table) {
+    return this.ready().map(async (engine) => {
       if (engine.table !== table) await engine.open(table);
       return engine;
     });

@@ -3,6 +3,7 @@
  * command found when the copy was made.
  */
 
+import { fingerprintOf } from './analysis-file.js';
 import { Engine } from './engine.js';
 
 /** Relative difference up to which two numbers agree. */
@@ -67,16 +68,6 @@ export function exampleOf(expected, got) {
 }
 
 /**
- * SHA-256 in hexadecimal digits; null where the browser computes none, as on plain http.
- * @param {ArrayBuffer} bytes
- */
-async function digestOf(bytes) {
-  if (!globalThis.crypto?.subtle) return null;
-  const digest = new Uint8Array(await crypto.subtle.digest('SHA-256', bytes));
-  return Array.from(digest, (byte) => byte.toString(16).padStart(2, '0')).join('');
-}
-
-/**
  * Computes all cases, one after another, in a worker of its own.
  * @param {import('./assets.js').Assets} assets
  * @param {Reference} held
@@ -106,6 +97,6 @@ export async function checkCopy(assets, held, tell) {
   } finally {
     engine.end();
   }
-  const digest = await digestOf(await assets.bytes);
+  const digest = await fingerprintOf(await assets.bytes);
   return { version, made: held.version, expectedDigest: held.wasm, digest, results };
 }

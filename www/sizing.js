@@ -3,11 +3,7 @@
  * own. What is done is kept: stopping and going on add up to the same counts.
  */
 
-import { Engine } from './engine.js';
-
-const MOST_WORKERS = 4;
-/** A chunk should take about this long, in milliseconds. */
-const CHUNK_TIME = 150;
+import { Pool } from './pool.js';
 
 /** @typedef {{studies: number, met: number, failed: number}} Counts */
 /** @typedef {{request: string, designs: number, counts: Counts[]}} Job One request with what is counted so far. */
@@ -20,18 +16,10 @@ export function jobOf(request) {
   };
 }
 
-export class Sizing {
+export class Sizing extends Pool {
   /** @param {WebAssembly.Module} module @param {string} workerText */
   constructor(module, workerText) {
-    this.module = module;
-    this.workerText = workerText;
-    /** @type {Engine[]} */
-    this.engines = [];
-    this.turn = 0;
-  }
-
-  stop() {
-    this.turn += 1;
+    super(module, workerText, { most: 8, spare: 0, most_at_once: 100, chunk: 150 });
   }
 
   /**
@@ -60,7 +48,7 @@ export class Sizing {
       }
       return best;
     };
-    await Promise.all(this.#ready().map(async (engine) => {
+    await Promise.all(this.ready().map(async (engine) => {
       for (;;) {
         const chunk = turn === this.turn ? take() : null;
         if (!chunk) return;
@@ -74,7 +62,7 @@ export class Sizing {
         sum.met += counts.met;
         sum.failed += counts.failed;
         done += count;
-        size = Math.max(1, Math.min(100, Math.round((count * CHUNK_TIME) / Math.max(1, performance.now() - started))));
+        size = this.nextSize(count, started);
         const each = (performance.now() - began) / Math.max(1, done - before);
         report(done, total, done - before < 40 ? null : Math.ceil(((total - done) * each) / 1000));
       }
@@ -84,14 +72,7 @@ export class Sizing {
 
   /** @param {Job} job @returns {Promise<any>} */
   async answer(job) {
-    const [engine] = this.#ready();
+    const [engine] = this.ready();
     return JSON.parse(await /** @type {Engine} */ (engine).sizeAnswer(job.request, JSON.stringify(job.counts)));
-  }
-
-  #ready() {
-    const cores = navigator.hardwareConcurrency || 2;
-    const count = Math.max(1, Math.min(MOST_WORKERS, cores));
-    while (this.engines.length < count) this.engines.push(new Engine(this.module, this.workerText));
-    return this.engines;
   }
 }
