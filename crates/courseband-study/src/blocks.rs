@@ -203,7 +203,7 @@ impl Evaluation<'_> {
     fn block_gaps(&self, levels: &[String], first: usize) -> Vec<BlockGap> {
         let shared = self.cohort.data.shared.columns();
         let mut gaps = Vec::new();
-        for (from, to) in self.pairs() {
+        for (from, to) in self.cohort.pairs(self.plan) {
             for (k, block) in levels.iter().enumerate() {
                 let mut values = vec![0.0; shared];
                 values[first + from * levels.len() + k] = -1.0;

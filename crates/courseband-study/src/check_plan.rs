@@ -206,6 +206,34 @@ impl Plan {
                 "columns.bending names \"{name}\", which is not among columns.covariates. Add it there too."
             )));
         }
+        let used = |name: &String| self.columns.covariates.contains(name) || self.columns.block.as_ref() == Some(name);
+        if let Some(name) = self.columns.crossed.as_ref().filter(|name| used(name)) {
+            return Err(Refusal::plan(format!(
+                "columns.crossed is \"{name}\", which is used as a covariate or block too. Use it once."
+            )));
+        }
+        let c = &self.comparisons;
+        if c.not_worse.is_some() && !(c.margin > 0.0) {
+            return Err(Refusal::plan(
+                "comparisons.not_worse needs a comparisons.margin above zero: how much worse still does not matter.",
+            ));
+        }
+        if let Some([start, end]) = c.growth_over.filter(|[start, end]| !(start < end)) {
+            return Err(Refusal::plan(format!(
+                "comparisons.growth_over is [{start}, {end}]; it needs a first time and a later one."
+            )));
+        }
+        if let Some(target) = c.target.filter(|t| !t.is_finite() || self.is_ratio() && *t <= 0.0) {
+            return Err(Refusal::plan(format!(
+                "comparisons.target is {target}; it needs a level of the response{}.",
+                if self.is_ratio() { " above zero, as the log scale does" } else { "" }
+            )));
+        }
+        if self.columns.crossed.is_some() && self.comparisons.trend {
+            return Err(Refusal::plan(
+                "comparisons.trend asks for one order of groups and is not available beside columns.crossed. Use one of them.",
+            ));
+        }
         if let Some(name) = self.columns.block.iter().find(|name| self.columns.covariates.contains(name)) {
             return Err(Refusal::plan(format!(
                 "columns.block is \"{name}\", which is among columns.covariates too. Use it once."
@@ -234,7 +262,11 @@ impl Plan {
             group: column(&self.columns.group),
             response: column(&self.columns.response),
             cluster: column(&self.columns.cluster),
-            covariates: self.columns.covariates.iter().chain(&self.columns.block).cloned().collect(),
+            covariates: (self.columns.covariates.iter())
+                .chain(&self.columns.block)
+                .chain(&self.columns.crossed)
+                .cloned()
+                .collect(),
             exclusions: self
                 .exclusions
                 .iter()

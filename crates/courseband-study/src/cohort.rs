@@ -22,6 +22,8 @@ pub(crate) struct Cohort {
     /// For every subject, its rows as indices into the observations.
     pub(crate) places: Vec<Vec<usize>>,
     pub(crate) groups: Vec<GroupInfo>,
+    /// In a crossed design the two labels of every group.
+    pub(crate) cells: Vec<[String; 2]>,
     /// First and last time of each group.
     pub(crate) supports: Vec<[f64; 2]>,
     /// Distinct times, ascending.
@@ -48,13 +50,17 @@ impl Cohort {
         refuse_ties(observations, plan)?;
         let Filed { mut subjects, names: subject_names, places } = rows_by_subject(observations, &started);
         let (names, kept) = keep_filled_groups(observations, &mut subjects);
+        let cell =
+            |name: &String| observations.groups.iter().position(|g| g == name).and_then(|g| observations.cells.get(g));
+        let cells = names.iter().filter_map(cell).cloned().collect();
         let mut data = Data { groups: names.len(), subjects, ..Data::default() };
         let adjustments = adjust(&mut data, observations, &started, plan)?;
         let housing = Housing::new(&data, observations, cluster.unwrap_or("cluster"), plan);
         let visits = distinct(data.subjects.iter().flat_map(|s| s.times.iter().copied()));
         let groups = describe_groups(&data, names, &visits);
         let supports = supports(&data);
-        let control = find_control(plan, &groups)?;
+        let control = if observations.cells.is_empty() { find_control(plan, &groups)? } else { None };
+        refuse_unknown_control(plan, observations)?;
         let mut notes = Vec::new();
         if kept < observations.groups.len() {
             let note = "A group without a single usable row is left out.";
@@ -71,6 +77,7 @@ impl Cohort {
             subject_names,
             places,
             groups,
+            cells,
             supports,
             visits,
             control,
@@ -127,8 +134,18 @@ impl Cohort {
     pub(crate) fn pairs(&self, plan: &Plan) -> Vec<(usize, usize)> {
         let groups = self.groups.len();
         let mut pairs = Vec::new();
+        let wanted = |g: usize| plan.comparisons.control.as_ref() == self.cells.get(g).map(|cell| &cell[0]);
         for a in 0..groups {
             for b in a + 1..groups {
+                if let (Some(one), Some(two)) = (self.cells.get(a), self.cells.get(b)) {
+                    // Cells are compared where they share one of their labels.
+                    let pair = if wanted(b) { (b, a) } else { (a, b) };
+                    let against = plan.comparisons.pairs == Pairs::AgainstControl;
+                    if one[1] == two[1] && (!against || wanted(pair.0)) || one[0] == two[0] && !against {
+                        pairs.push(pair);
+                    }
+                    continue;
+                }
                 let pair = if Some(b) == self.control { (b, a) } else { (a, b) };
                 if plan.comparisons.pairs == Pairs::All || Some(pair.0) == self.control {
                     pairs.push(pair);
@@ -241,6 +258,20 @@ fn find_control(plan: &Plan, groups: &[GroupInfo]) -> Result<Option<usize>, Refu
             )))
         }
     }
+}
+
+/// In a crossed design the control is a name of the group column.
+fn refuse_unknown_control(plan: &Plan, observations: &Observations) -> Result<(), Refusal> {
+    let Some(name) = plan.comparisons.control.as_ref().filter(|_| !observations.cells.is_empty()) else {
+        return Ok(());
+    };
+    if observations.cells.iter().any(|cell| cell[0] == *name) {
+        return Ok(());
+    }
+    Err(Refusal::plan(format!(
+        "comparisons.control is \"{name}\", which is no group of the table. In a crossed design name the group alone, without the \
+         value of the crossed column."
+    )))
 }
 
 /// Squares of values beyond these do not fit into a number of the computer.

@@ -226,9 +226,10 @@ impl Study {
         let evaluation = Evaluation::new(plan, &cohort, &fitted, None);
         let main = evaluation.differences();
         let mut places = Vec::new();
-        for (k, (from, to)) in evaluation.pairs().into_iter().enumerate() {
-            if let Some([low, high]) = evaluation.overlap(from, to) {
-                places.extend(cohort.visits.iter().filter(|&&t| t >= low && t <= high).map(|&t| (k, from, to, t)));
+        let comparisons = evaluation.comparisons();
+        for (k, comparison) in comparisons.iter().enumerate() {
+            if let Some([low, high]) = evaluation.overlap(comparison) {
+                places.extend(cohort.visits.iter().filter(|&&t| t >= low && t <= high).map(|&t| (k, t)));
             }
         }
         let imputer = Imputer::new(fitted.clone(), &cohort.data, plan.seed).ok_or_else(|| {
@@ -242,7 +243,7 @@ impl Study {
                 failed += 1;
                 continue;
             };
-            let contrasts: Vec<_> = places.iter().map(|&(_, from, to, t)| again.gap(from, to, t)).collect();
+            let contrasts: Vec<_> = places.iter().map(|&(k, t)| comparisons[k].at(&again, t)).collect();
             let posterior = again.corrected();
             let estimates: Vec<_> = contrasts.iter().map(|c| posterior.estimate(c)).collect();
             most_df = estimates.iter().map(|e| e.df).fold(most_df, f64::min);
@@ -260,10 +261,10 @@ impl Study {
         let pairs = main.iter().enumerate().map(|(k, d)| {
             let own: Vec<usize> = (0..m).filter(|&j| places[j].0 == k).collect();
             let inside = |t: f64| d.stretches.iter().find(|s: &&Stretch| t >= s.start - 1e-9 && t <= s.end + 1e-9);
-            let main_apart: Vec<f64> = own.iter().map(|&j| places[j].3).filter(|&t| inside(t).is_some()).collect();
+            let main_apart: Vec<f64> = own.iter().map(|&j| places[j].1).filter(|&t| inside(t).is_some()).collect();
             let still = own.iter().filter(|&&j| {
                 let (low, high) = (pooled.estimate[j] - critical * se[j], pooled.estimate[j] + critical * se[j]);
-                match inside(places[j].3).and_then(|s| s.direction) {
+                match inside(places[j].1).and_then(|s| s.direction) {
                     Some(crate::findings::Direction::Above) => low > 0.0,
                     Some(crate::findings::Direction::Below) => high < 0.0,
                     None => false,
@@ -272,12 +273,12 @@ impl Study {
             PooledGap {
                 from: d.from.clone(),
                 to: d.to.clone(),
-                time: own.iter().map(|&j| places[j].3).collect(),
+                time: own.iter().map(|&j| places[j].1).collect(),
                 estimate: own.iter().map(|&j| pooled.estimate[j]).collect(),
                 lower: own.iter().map(|&j| pooled.estimate[j] - critical * se[j]).collect(),
                 upper: own.iter().map(|&j| pooled.estimate[j] + critical * se[j]).collect(),
                 missing_share: own.iter().map(|&j| pooled.missing_share[j]).collect(),
-                still_apart: still.map(|&j| places[j].3).collect(),
+                still_apart: still.map(|&j| places[j].1).collect(),
                 main_apart,
             }
         });

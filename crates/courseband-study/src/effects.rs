@@ -7,6 +7,7 @@
 //! The onset follows the band: its interval holds every day that some course
 //! inside the band could have as its onset.
 
+use crate::comparison::Comparison;
 use crate::evaluate::Evaluation;
 use crate::findings::*;
 use courseband_engine::special::{Rng, t_quantile, t_sf};
@@ -57,14 +58,14 @@ impl Evaluation<'_> {
     }
 
     pub(crate) fn pair_effects(&self, differences: &[Difference]) -> Vec<PairEffects> {
-        (self.pairs().into_iter().zip(differences))
-            .map(|((from, to), difference)| self.pair_effect(from, to, difference))
+        (self.comparisons().iter().zip(differences))
+            .map(|(comparison, difference)| self.pair_effect(comparison, difference))
             .collect()
     }
 
-    fn pair_effect(&self, from: usize, to: usize, difference: &Difference) -> PairEffects {
-        let gap = |t: f64| self.fit.gap(from, to, t);
-        let support = self.overlap(from, to).filter(|_| !self.is_lone(from, to));
+    fn pair_effect(&self, comparison: &Comparison, difference: &Difference) -> PairEffects {
+        let gap = |t: f64| comparison.at(self.fit, t);
+        let support = self.overlap(comparison).filter(|_| !self.is_lone(comparison));
         let asked = self.plan.comparisons.landmark;
         let inside = |t: &f64| support.is_some_and(|[low, high]| *t >= low && *t <= high);
         let landmark_time = asked.or(difference.at_visits.time.last().copied()).filter(inside);
@@ -82,6 +83,7 @@ impl Evaluation<'_> {
             area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
             onset,
             onset_direction,
+            to_level: comparison.pair().and_then(|pair| self.later(pair)),
             level_p: average.filter(|e| e.se > 0.0).map(|e| 2.0 * t_sf(e.mean.abs() / e.se, e.df)),
             shape_p: support.and_then(|support| self.shape_p(support, &gap)),
         }
@@ -177,8 +179,12 @@ impl Evaluation<'_> {
 
     fn draw(&self, points: &[f64], contrast: &impl Fn(f64) -> Contrast, mut each: impl FnMut(&[f64])) {
         let contrasts: Vec<Contrast> = points.iter().map(|&t| contrast(t)).collect();
+        self.draw_from(&contrasts, &mut each);
+    }
+
+    fn draw_from(&self, contrasts: &[Contrast], mut each: impl FnMut(&[f64])) {
         let df = contrasts.iter().map(|c| self.posterior.estimate(c).df).fold(f64::INFINITY, f64::min);
-        let joint = self.posterior.joint(&contrasts);
+        let joint = self.posterior.joint(contrasts);
         let mut rng = Rng::stream(self.plan.seed, 77);
         let mut values = Vec::new();
         for _ in 0..DRAWS {
@@ -198,19 +204,86 @@ impl Evaluation<'_> {
         let course = |t: f64| self.fit.course(g, t);
         let average = self.average(course, support);
         let ratio = self.is_ratio();
-        let growth = (span > 0.0).then(|| {
-            let change = course(support[1]).plus(-1.0, &course(support[0])).times(1.0 / span);
+        let over = self.growth_over(support);
+        let growth = over.map(|[start, end]| {
+            let change = course(end).plus(-1.0, &course(start)).times(1.0 / (end - start));
             self.posterior.estimate(&change)
         });
         let [peak, nadir] = self.extremes(g);
         GroupEffects {
             average: average.map(|e| self.interval(e, |x| self.back(x))),
             area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
+            growth_over: over,
+            to_level: self.to_level(g),
             growth: growth.map(|e| self.interval(e, |x| self.back(x))),
             doubling_time: growth.filter(|_| ratio).and_then(|e| self.doubling(e)),
             peak,
             nadir,
         }
+    }
+
+    /// The stretch over which growth is taken: the plan's, as far as the group was followed.
+    fn growth_over(&self, [low, high]: [f64; 2]) -> Option<[f64; 2]> {
+        let [start, end] = self.plan.comparisons.growth_over.unwrap_or([low, high]);
+        let (start, end) = (start.max(low), end.min(high));
+        (end > start).then_some([start, end])
+    }
+
+    /// When a course reaches the plan's level first, coming from where it starts.
+    fn to_level(&self, g: usize) -> Option<TimeEffect> {
+        let points = self.inside(self.cohort.supports[g]);
+        let course = |t: f64| self.fit.course(g, t);
+        let value = |t: f64| self.posterior.estimate(&course(t)).mean;
+        let level = self.level_sought()?;
+        let side = if value(*points.first()?) < level { 1.0 } else { -1.0 };
+        let beyond = |t: f64| side * (value(t) - level);
+        let at: Vec<f64> = points.iter().map(|&t| beyond(t)).collect();
+        let estimate = runs_above_zero(&points, &at, beyond).first().map(|run| run.start);
+        let mut times = Vec::with_capacity(DRAWS);
+        self.draw(&points, &course, |values| times.push(reached(&points, values, level, side)));
+        let share = |wanted: f64| times.iter().filter(|&&t| t == wanted).count() as f64 / DRAWS as f64;
+        let (already_at_start, never) = (share(f64::NEG_INFINITY), share(f64::INFINITY));
+        times.sort_by(f64::total_cmp);
+        let q = |share: f64| times[((share * DRAWS as f64) as usize).min(DRAWS - 1)];
+        let (lower, upper) = (q(0.5 - 0.5 * self.plan.comparisons.level), q(0.5 + 0.5 * self.plan.comparisons.level));
+        let start = points[0];
+        Some(TimeEffect {
+            estimate,
+            lower: (lower < f64::INFINITY).then_some(lower.max(start)),
+            upper: (upper < f64::INFINITY).then_some(upper.max(start)),
+            at_or_before_start: lower == f64::NEG_INFINITY,
+            already_at_start,
+            never,
+        })
+    }
+
+    /// How much later `to` reaches the level than `from`; `None` where one does not in over a fortieth of the draws.
+    fn later(&self, (from, to): (usize, usize)) -> Option<Effect> {
+        let level = self.level_sought()?;
+        let first = |g: usize| self.inside(self.cohort.supports[g]);
+        let (a, b) = (first(from), first(to));
+        // One list of contrasts, drawn together: the courses may share uncertainty.
+        let places: Vec<(usize, f64)> = a.iter().map(|&t| (from, t)).chain(b.iter().map(|&t| (to, t))).collect();
+        let contrasts: Vec<Contrast> = places.iter().map(|&(g, t)| self.fit.course(g, t)).collect();
+        let fitted: Vec<f64> = contrasts.iter().map(|c| self.posterior.estimate(c).mean).collect();
+        let side = |value: f64| if value < level { 1.0 } else { -1.0 };
+        let sides = (side(fitted[0]), side(fitted[a.len()]));
+        let gap = |values: &[f64]| {
+            let (own_a, own_b) = values.split_at(a.len());
+            reached(&b, own_b, level, sides.1) - reached(&a, own_a, level, sides.0)
+        };
+        let estimate = Some(gap(&fitted)).filter(|gap| gap.is_finite())?;
+        let mut gaps = Vec::with_capacity(DRAWS);
+        self.draw_from(&contrasts, |values| gaps.push(gap(values)));
+        gaps.retain(|gap| gap.is_finite());
+        (gaps.len() * 40 >= DRAWS * 39).then(|| quantiles(estimate, gaps, self.plan.comparisons.level))
+    }
+
+    /// The level whose day is sought, on the modelled scale.
+    fn level_sought(&self) -> Option<f64> {
+        let level = self.plan.comparisons.target?;
+        let level = if self.is_ratio() { libm::log(level) } else { level };
+        level.is_finite().then_some(level)
     }
 
     /// `ln 2` over the growth rate; none where the interval of the rate holds zero.
@@ -256,6 +329,20 @@ impl Evaluation<'_> {
             }
         });
         [parts.next(), parts.next()]
+    }
+}
+
+/// When a course first lies on the other side of `level`, between points by a straight line; minus infinity where
+/// it does from the first point on, infinity where it never does. `side` is 1 where it comes from below.
+fn reached(points: &[f64], values: &[f64], level: f64, side: f64) -> f64 {
+    let beyond = |k: usize| side * (values[k] - level);
+    match (0..points.len()).find(|&k| beyond(k) >= 0.0) {
+        None => f64::INFINITY,
+        Some(0) => f64::NEG_INFINITY,
+        Some(k) => {
+            let (a, b) = (beyond(k - 1), beyond(k));
+            points[k - 1] + (points[k] - points[k - 1]) * (-a / (b - a))
+        }
     }
 }
 

@@ -2,8 +2,9 @@
 
 use crate::adjust::Adjustment;
 use crate::cohort::Cohort;
+use crate::comparison::Comparison;
 use crate::findings::*;
-use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample};
+use crate::plan::{BandKind, MarginUnit, Plan, Shape, SmallSample, Worse};
 use courseband_engine::special::{DirectionMaxima, t_quantile};
 use courseband_engine::{Contrast, CriticalValues, Estimate, Fit, Posterior, Run, runs_above_zero};
 
@@ -76,9 +77,9 @@ impl<'a> Evaluation<'a> {
         self.posterior.is_corrected()
     }
 
-    /// Pairs that are compared, as group indices `(from, to)`.
-    pub(crate) fn pairs(&self) -> Vec<(usize, usize)> {
-        self.cohort.pairs(self.plan)
+    /// All that is compared.
+    pub(crate) fn comparisons(&self) -> Vec<Comparison> {
+        self.cohort.comparisons(self.plan)
     }
 
     /// Grid and visits inside `support`, with its ends, ascending.
@@ -136,6 +137,30 @@ impl<'a> Evaluation<'a> {
         (0..groups).map(|g| self.curve(g, &family)).collect()
     }
 
+    /// Rates of change of all courses, with one band over all of them.
+    pub(crate) fn rates(&self) -> Vec<Rate> {
+        let groups = 0..self.cohort.groups.len();
+        let spread = |g: &usize| self.cohort.supports[*g][1] > self.cohort.supports[*g][0];
+        let own: Vec<usize> = groups.filter(spread).filter(|_| self.plan.curves.shape != Shape::ByTime).collect();
+        let members =
+            own.iter().flat_map(|&g| self.asked(|t| self.fit.rate(g, t), &self.inside(self.cohort.supports[g])));
+        let family = self.family(members.collect(), DIRECTIONS / 2, None);
+        let rate = |&g: &usize| {
+            let support = self.cohort.supports[g];
+            let estimates = self.estimates(|t| self.fit.rate(g, t), &self.grid, support);
+            let points = self.curve_points(self.grid.clone(), &estimates, &family);
+            Rate {
+                group: self.cohort.groups[g].name.clone(),
+                support,
+                time: points.time,
+                response_mean: points.response_mean,
+                response_lower: points.response_lower,
+                response_upper: points.response_upper,
+            }
+        };
+        own.iter().map(rate).collect()
+    }
+
     fn curve_members(&self) -> Vec<(Contrast, Estimate)> {
         let groups = 0..self.cohort.groups.len();
         groups.flat_map(|g| self.asked(|t| self.fit.course(g, t), &self.inside(self.cohort.supports[g]))).collect()
@@ -143,9 +168,9 @@ impl<'a> Evaluation<'a> {
 
     fn gap_members(&self) -> Vec<(Contrast, Estimate)> {
         let mut members = Vec::new();
-        for (from, to) in self.pairs() {
-            if let Some(support) = self.overlap(from, to) {
-                members.extend(self.asked(|t| self.fit.gap(from, to, t), &self.inside(support)));
+        for comparison in self.comparisons() {
+            if let Some(support) = self.overlap(&comparison) {
+                members.extend(self.asked(|t| comparison.at(self.fit, t), &self.inside(support)));
             }
         }
         members
@@ -153,12 +178,12 @@ impl<'a> Evaluation<'a> {
 
     /// Estimated gaps on the grid, one list per pair.
     pub(crate) fn gap_estimates(&self) -> Vec<Vec<Option<f64>>> {
-        let gap = |(from, to): (usize, usize)| {
-            let range = self.overlap(from, to).unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
-            let estimates = self.estimates(|t| self.fit.gap(from, to, t), &self.grid, range);
+        let gap = |comparison: &Comparison| {
+            let range = self.overlap(comparison).unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
+            let estimates = self.estimates(|t| comparison.at(self.fit, t), &self.grid, range);
             estimates.into_iter().map(|e| e.map(|e| e.mean)).collect()
         };
-        self.pairs().into_iter().map(gap).collect()
+        self.comparisons().iter().map(gap).collect()
     }
 
     /// Estimated gaps on the grid put on another scale: logarithms of ratios of the courses where `ratio`, differences of
@@ -168,17 +193,17 @@ impl<'a> Evaluation<'a> {
             return self.gap_estimates();
         }
         let course = |g: usize, t: f64| self.posterior.estimate(&self.fit.course(g, t)).mean;
-        let gap = |(from, to): (usize, usize)| {
-            let support = self.overlap(from, to);
+        let gap = |comparison: &Comparison| {
+            let support = self.overlap(comparison);
             let at = |&t: &f64| {
                 support.filter(|[low, high]| t >= *low && t <= *high)?;
-                let (a, b) = (course(from, t), course(to, t));
-                let value = if ratio { libm::log(b) - libm::log(a) } else { libm::exp(b) - libm::exp(a) };
+                let on = |value: f64| if ratio { libm::log(value) } else { libm::exp(value) };
+                let value: f64 = comparison.weights.iter().map(|&(g, weight)| weight * on(course(g, t))).sum();
                 value.is_finite().then_some(value)
             };
             self.grid.iter().map(at).collect()
         };
-        self.pairs().into_iter().map(gap).collect()
+        self.comparisons().iter().map(gap).collect()
     }
 
     /// The families whose largest error a calibration follows: courses, then gaps.
@@ -219,14 +244,13 @@ impl<'a> Evaluation<'a> {
     }
 
     pub(crate) fn differences(&self) -> Vec<Difference> {
-        let pairs = self.pairs();
         let family = self.family(self.gap_members(), DIRECTIONS, self.calibrated.map(|c| c.differences));
-        pairs.iter().map(|&(from, to)| self.difference(from, to, &family)).collect()
+        self.comparisons().iter().map(|comparison| self.difference(comparison, &family)).collect()
     }
 
-    pub(crate) fn overlap(&self, from: usize, to: usize) -> Option<[f64; 2]> {
-        let (a, b) = (self.cohort.supports[from], self.cohort.supports[to]);
-        let (low, high) = (a[0].max(b[0]), a[1].min(b[1]));
+    pub(crate) fn overlap(&self, comparison: &Comparison) -> Option<[f64; 2]> {
+        let supports = comparison.weights.iter().map(|&(g, _)| self.cohort.supports[g]);
+        let [low, high] = supports.fold([f64::NEG_INFINITY, f64::INFINITY], |a, b| [a[0].max(b[0]), a[1].min(b[1])]);
         (low <= high).then_some([low, high])
     }
 
@@ -242,9 +266,9 @@ impl<'a> Evaluation<'a> {
         }
     }
 
-    fn difference(&self, from: usize, to: usize, family: &Family) -> Difference {
-        let support = self.overlap(from, to);
-        let gap = |t: f64| self.fit.gap(from, to, t);
+    fn difference(&self, comparison: &Comparison, family: &Family) -> Difference {
+        let support = self.overlap(comparison);
+        let gap = |t: f64| comparison.at(self.fit, t);
         let range = support.unwrap_or([f64::INFINITY, f64::NEG_INFINITY]);
         let estimates = self.estimates(gap, &self.grid, range);
         let visits: Vec<f64> = self.cohort.visits.iter().copied().filter(|&t| t >= range[0] && t <= range[1]).collect();
@@ -255,8 +279,8 @@ impl<'a> Evaluation<'a> {
             let reach = family.at(e.df) * e.se;
             (e.mean - reach, e.mean + reach)
         };
-        let (mut stretches, mut beyond, mut inside) = (Vec::new(), Vec::new(), Vec::new());
-        let told = !self.is_lone(from, to);
+        let (mut stretches, mut beyond, mut inside, mut not_worse) = (Vec::new(), Vec::new(), Vec::new(), Vec::new());
+        let told = !self.is_lone(comparison);
         if let Some(support) = support.filter(|_| told) {
             let points = self.inside(support);
             let limits: Vec<(f64, f64)> = points.iter().map(|&t| limits_at(t)).collect();
@@ -278,11 +302,19 @@ impl<'a> Evaluation<'a> {
                 beyond = directed(margin[0], margin[1]);
                 let within = runs(&|(lower, upper)| (margin[1] - upper).min(lower - margin[0]));
                 inside = within.into_iter().map(|run| stretch(run, None)).collect();
+                let spared = match self.plan.comparisons.not_worse {
+                    Some(Worse::Higher) => runs(&|(_, upper)| margin[1] - upper),
+                    Some(Worse::Lower) => runs(&|(lower, _)| lower - margin[0]),
+                    None => Vec::new(),
+                };
+                not_worse = spared.into_iter().map(|run| stretch(run, None)).collect();
             }
         }
         Difference {
-            from: self.cohort.groups[from].name.clone(),
-            to: self.cohort.groups[to].name.clone(),
+            kind: comparison.kind,
+            from: comparison.from.clone(),
+            to: comparison.to.clone(),
+            not_worse,
             critical: family.critical(&estimates),
             grid: self.difference_points(self.grid.clone(), &estimates, family).bounded(told),
             support,
@@ -309,13 +341,14 @@ impl<'a> Evaluation<'a> {
 
     /// True where a gap between the groups cannot be told from a difference between two subjects: nowhere is
     /// there a second subject of a group to show how subjects differ.
-    pub(crate) fn is_lone(&self, from: usize, to: usize) -> bool {
+    pub(crate) fn is_lone(&self, comparison: &Comparison) -> bool {
         let groups = &self.cohort.groups;
-        if self.cohort.housing.lone[from] || self.cohort.housing.lone[to] {
+        let own = || comparison.weights.iter().map(|&(g, _)| g);
+        if own().any(|g| self.cohort.housing.lone[g]) {
             return true;
         }
         if self.plan.subjects_spread == crate::plan::Sharing::ByGroup {
-            groups[from].subjects < 2 || groups[to].subjects < 2
+            own().any(|g| groups[g].subjects < 2)
         } else {
             groups.iter().all(|group| group.subjects < 2)
         }

@@ -5,6 +5,7 @@
 
 use crate::adjust::Adjustment;
 use crate::blocks::{BendEffect, BlockEffects};
+use crate::comparison::ComparisonKind;
 use crate::housing::ClusterSummary;
 use crate::plan::Plan;
 use serde::Serialize;
@@ -26,6 +27,8 @@ pub struct Findings {
     pub fit: FitSummary,
     /// One per group; empty when the fit failed.
     pub curves: Vec<Curve>,
+    /// How fast the courses change; empty unless asked for.
+    pub rates: Vec<Rate>,
     /// One per compared pair; empty when the fit failed.
     pub differences: Vec<Difference>,
     /// What else must be known, in plain words.
@@ -208,9 +211,11 @@ pub enum Critical {
 /// One compared pair: `to` minus `from`.
 #[derive(Debug, Clone, Serialize)]
 pub struct Difference {
-    /// The control, else the earlier group.
+    /// What it is between: `pair`, `factor`, `interaction` or `trend`.
+    pub kind: ComparisonKind,
+    /// The control, else the earlier group; of a trend the first group in order.
     pub from: String,
-    /// The other group.
+    /// The other group; of a trend the last in order.
     pub to: String,
     /// The asked grid.
     #[serde(flatten)]
@@ -230,6 +235,8 @@ pub struct Difference {
     pub beyond: Vec<Stretch>,
     /// Maximal runs where the band lies inside the margin.
     pub inside: Vec<Stretch>,
+    /// Maximal runs where the band rules out that `to` is worse by more than the margin; empty unless asked for.
+    pub not_worse: Vec<Stretch>,
     /// The same at the visits inside support.
     pub at_visits: DifferencePoints,
 }
@@ -324,6 +331,23 @@ pub struct Sentence {
     pub depends: String,
 }
 
+/// How fast a course changes.
+#[derive(Debug, Clone, Serialize)]
+pub struct Rate {
+    /// Group name.
+    pub group: String,
+    /// First and last time of the group.
+    pub support: [f64; 2],
+    /// The asked grid.
+    pub time: Vec<f64>,
+    /// Change per time unit: in the response's unit or, under log, the factor per time unit.
+    pub response_mean: Vec<Option<f64>>,
+    /// Lower limit of a band of its own over all courses' rates; it rests on degrees of freedom.
+    pub response_lower: Vec<Option<f64>>,
+    /// Upper limit.
+    pub response_upper: Vec<Option<f64>>,
+}
+
 /// A number with its interval, on the response scale; ratios where `scale.ratio` and it is a gap.
 #[derive(Debug, Clone, Copy, PartialEq, Serialize)]
 pub struct Effect {
@@ -370,6 +394,9 @@ pub struct PairEffects {
     pub onset: Option<TimeEffect>,
     /// Direction of `onset`.
     pub onset_direction: Option<Direction>,
+    /// How much later `to` reaches the plan's level than `from`, in time units; `null` without a level, or where one of
+    /// them may not reach it.
+    pub to_level: Option<Effect>,
     /// Were the average gap zero: chance of one so large (t test).
     pub level_p: Option<f64>,
     /// Were the gap the same at all times: chance of so large a largest departure from its average.
@@ -383,7 +410,11 @@ pub struct GroupEffects {
     pub average: Option<Effect>,
     /// Area under the course: response unit times time unit; `null` on a ratio scale.
     pub area: Option<Effect>,
-    /// Change per time unit over the support: a difference, or a ratio.
+    /// First and last time of `growth`.
+    pub growth_over: Option<[f64; 2]>,
+    /// When the course reaches the plan's level; `null` without a level.
+    pub to_level: Option<TimeEffect>,
+    /// Change per time unit over `growth_over`: a difference, or a ratio.
     pub growth: Option<Effect>,
     /// Time to double under log, negative where it halves; limits `null` where the growth's interval holds no change.
     pub doubling_time: Option<Effect>,

@@ -360,6 +360,16 @@ pub struct Comparisons {
     pub small_sample: SmallSample,
     /// Number of refits behind a calibrated critical value.
     pub refits: usize,
+    /// A trend over the order of the groups (`reading.group_order`) beside the pairs.
+    pub trend: bool,
+    /// Level of the response whose day is sought, on the response's own scale.
+    pub target: Option<f64>,
+    /// First and last time of the stretch over which growth is taken; `null`: the group's whole follow-up.
+    pub growth_over: Option<[f64; 2]>,
+    /// Which way harm lies, where it is to be shown that a group is not worse than another by more than the margin.
+    pub not_worse: Option<Worse>,
+    /// Also the rate of change of every course, with bands of its own.
+    pub rates: bool,
     /// Time at which the gap is read out; `null`: the last visit that both groups have.
     pub landmark: Option<f64>,
 }
@@ -375,9 +385,24 @@ impl Default for Comparisons {
             band: BandKind::Simultaneous,
             small_sample: SmallSample::Auto,
             refits: 1000,
+            trend: false,
+            target: None,
+            growth_over: None,
+            not_worse: None,
+            rates: false,
             landmark: None,
         }
     }
+}
+
+/// Which way harm lies.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Serialize, Deserialize)]
+#[serde(rename_all = "kebab-case")]
+pub enum Worse {
+    /// Higher values are worse.
+    Higher,
+    /// Lower values are worse.
+    Lower,
 }
 
 /// Which pairs are compared.

@@ -3,6 +3,8 @@
 use crate::findings::*;
 use crate::plan::MarginUnit;
 
+mod combined;
+
 /// Sentences of one analysis, most important first.
 pub(crate) fn write(findings: &Findings) -> Vec<Sentence> {
     if findings.fit.status == FitStatus::Failed {
@@ -12,7 +14,10 @@ pub(crate) fn write(findings: &Findings) -> Vec<Sentence> {
     let mut quiet = Vec::new();
     for (index, difference) in findings.differences.iter().enumerate() {
         let speaker = Speaker { findings, difference, index };
-        if difference.stretches.is_empty() {
+        if let Some(sentence) = speaker.combined() {
+            let list = if difference.stretches.is_empty() { &mut quiet } else { &mut told };
+            list.push((index, sentence));
+        } else if difference.stretches.is_empty() {
             quiet.push((index, speaker.undecided()));
         } else {
             told.push((index, speaker.apart()));
@@ -55,6 +60,7 @@ impl Speaker<'_> {
         let mut text: Vec<String> = landmarks.into_iter().filter_map(|t| self.reading_at(t)).collect();
         text.push(self.days());
         text.extend(self.onset());
+        text.extend(self.not_worse());
         if let Some(rest) = self.rest() {
             text.push(rest);
         }
@@ -93,6 +99,7 @@ impl Speaker<'_> {
             format!("{} and {} are not shown apart.", d.to, d.from)
         };
         text.extend(self.reading_at(support[1]));
+        text.extend(self.not_worse());
         if let Some(rest) = self.rest() {
             text.push(rest);
         }

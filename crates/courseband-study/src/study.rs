@@ -68,7 +68,10 @@ impl Study {
         };
         if !self.kept.as_ref().is_some_and(|(kept, _)| same(kept)) {
             self.kept = None;
-            let reading = self.table.observe(&plan.request())?;
+            let mut reading = self.table.observe(&plan.request())?;
+            if reading.open_question().is_none() {
+                crate::factors::settle(&mut reading.observations, plan)?;
+            }
             self.kept = Some((plan.clone(), reading));
         }
         match &self.kept {
@@ -202,6 +205,7 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         problems: problems(reading),
         fit: failed_summary(),
         curves: Vec::new(),
+        rates: Vec::new(),
         differences: Vec::new(),
         notes,
         plan: plan.clone(),
@@ -247,6 +251,9 @@ fn fill(findings: &mut Findings, plan: &Plan, cohort: &Cohort, fitted: &Fit, ref
     let evaluation = Evaluation::new(plan, cohort, fitted, calibrated);
     findings.curves = evaluation.curves();
     findings.differences = evaluation.differences();
+    if plan.comparisons.rates {
+        findings.rates = evaluation.rates();
+    }
     findings.pair_effects = evaluation.pair_effects(&findings.differences);
     findings.group_effects = evaluation.group_effects();
     evaluation.fill_adjustments(&mut findings.adjustments);
@@ -356,7 +363,7 @@ fn plan_notes(plan: &Plan, cohort: &Cohort) -> Vec<Note> {
 fn band_notes(plan: &Plan, evaluation: &Evaluation, calibrated: bool) -> Vec<Note> {
     let c = &plan.comparisons;
     let percent = sentences::percent(c.level);
-    let pairs = evaluation.pairs().len();
+    let pairs = evaluation.comparisons().len();
     let reach = match (c.band, pairs) {
         (BandKind::Pointwise, _) => format!("{percent} bands hold at each time by itself, not over the whole course."),
         (BandKind::Simultaneous, 0 | 1) => format!("{percent} bands hold over the whole course at once."),

@@ -10,6 +10,8 @@ pub struct Observations {
     pub subjects: Vec<SubjectInfo>,
     /// Group names, in order of first appearance. One entry, `"all"`, without a group column.
     pub groups: Vec<String>,
+    /// In a crossed design the two labels of every group; otherwise empty.
+    pub cells: Vec<[String; 2]>,
     /// Cluster names (cage, litter, site), in order of first appearance; empty without a cluster column.
     pub clusters: Vec<String>,
     /// Index into `subjects`.

@@ -14,11 +14,12 @@ impl Subject<'_> {
     pub(super) fn influence(&self, residuals: &[Residual]) -> Option<Check> {
         let evaluation = Evaluation::new(self.plan, self.cohort, self.fit, None);
         let (mut contrasts, mut places) = (Vec::new(), Vec::new());
-        for (from, to) in evaluation.pairs() {
-            if let Some([low, high]) = evaluation.overlap(from, to) {
+        let comparisons = evaluation.comparisons();
+        for (at, comparison) in comparisons.iter().enumerate() {
+            if let Some([low, high]) = evaluation.overlap(comparison) {
                 for &t in self.cohort.visits.iter().filter(|&&t| t >= low && t <= high) {
-                    contrasts.push(self.fit.gap(from, to, t));
-                    places.push((from, to, t));
+                    contrasts.push(comparison.at(self.fit, t));
+                    places.push((at, t));
                 }
             }
         }
@@ -31,7 +32,7 @@ impl Subject<'_> {
         let group = &self.cohort.groups[self.cohort.data.subjects[most.subject].group];
         // Without one of n, a gap moves by about one n-th of its spread; one standard error is large.
         let lit = most.largest > 1.0;
-        let (from, to, time) = places[most.at];
+        let (at, time) = places[most.at];
         let together = sets.iter().find(|set| set.first() == Some(&most.subject))?;
         let mut trial = self.plan.clone();
         for &subject in together {
@@ -42,8 +43,8 @@ impl Subject<'_> {
         let word = if by_cluster { "cluster" } else { &self.plan.words.subject };
         let name =
             if by_cluster { format!("of {}", self.names[most.subject]) } else { self.names[most.subject].clone() };
-        let (a, b) = (&self.cohort.groups[from].name, &self.cohort.groups[to].name);
-        let own: Vec<usize> = (0..places.len()).filter(|&k| (places[k].0, places[k].1) == (from, to)).collect();
+        let (a, b) = (&comparisons[at].from, &comparisons[at].to);
+        let own: Vec<usize> = (0..places.len()).filter(|&k| places[k].0 == at).collect();
         Some(Check {
             key: "influence".into(),
             title: "One decides".into(),
@@ -79,12 +80,12 @@ impl Subject<'_> {
         &self,
         influence: &[courseband_engine::Influence],
         contrasts: &[courseband_engine::Contrast],
-        places: &[(usize, usize, f64)],
+        places: &[(usize, f64)],
         own: &[usize],
         (from, to, most): (&str, &str, &str),
     ) -> CheckPlot {
         let posterior = self.fit.corrected();
-        let times: Vec<f64> = own.iter().map(|&k| places[k].2).collect();
+        let times: Vec<f64> = own.iter().map(|&k| places[k].1).collect();
         let full: Vec<_> = own.iter().map(|&k| posterior.estimate(&contrasts[k])).collect();
         let mut order: Vec<&courseband_engine::Influence> = influence.iter().filter(|i| !i.values.is_empty()).collect();
         order.sort_by(|a, b| b.largest.total_cmp(&a.largest));

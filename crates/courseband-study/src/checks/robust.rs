@@ -67,13 +67,14 @@ impl Subject<'_> {
     /// Gaps at the visits, pair by pair.
     fn gaps(&self) -> Vec<(usize, usize, Vec<f64>, Vec<Contrast>)> {
         let evaluation = Evaluation::new(self.plan, self.cohort, self.fit, None);
-        let pair = |(from, to): (usize, usize)| {
-            let [low, high] = evaluation.overlap(from, to)?;
+        let pair = |comparison: crate::comparison::Comparison| {
+            let (from, to) = comparison.pair()?;
+            let [low, high] = evaluation.overlap(&comparison)?;
             let times: Vec<f64> = self.cohort.visits.iter().copied().filter(|&t| t >= low && t <= high).collect();
             let contrasts = times.iter().map(|&t| self.fit.gap(from, to, t)).collect();
             Some((from, to, times, contrasts))
         };
-        evaluation.pairs().into_iter().filter_map(pair).collect()
+        evaluation.comparisons().into_iter().filter_map(pair).collect()
     }
 
     /// Share of simulated tables that obey the model with so large an average ratio, the table itself counted as one

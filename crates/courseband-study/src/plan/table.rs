@@ -65,6 +65,8 @@ pub struct Columns {
     pub bending: Vec<String>,
     /// Repeat of the experiment, batch or plate that every group has a part in.
     pub block: Option<String>,
+    /// A second factor of the subjects, crossed with the groups, such as the genotype.
+    pub crossed: Option<String>,
 }
 
 /// One row left out.
@@ -99,6 +101,8 @@ pub struct ReadingChoice {
     /// What it means that ids occur under several groups at overlapping times; `null`: not said, and
     /// taken for different subjects.
     pub shared_ids: Option<SharedIds>,
+    /// Groups in the order in which they are shown, and in which doses rise; those left out follow as they come.
+    pub group_order: Vec<String>,
 }
 
 /// What it means that an id occurs under several groups at overlapping times.

@@ -179,6 +179,7 @@ impl Observer<'_> {
         let observations = Observations {
             subjects: info.collect(),
             groups: group_codes.names(&groups.names),
+            cells: Vec::new(),
             clusters: cluster_codes.names(&clusters.1),
             subject: order.iter().map(|&kept| subject_codes.new[subjects.of_row[kept as usize] as usize]).collect(),
             time: order.iter().map(|&kept| times.values[kept as usize]).collect(),
