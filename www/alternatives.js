@@ -10,7 +10,7 @@ import { percentLevel } from './numbers.js';
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'distribution'|'start'|'covariates'|'block'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'distribution'|'start'|'covariates'|'block'|'crossed'|'order'|'also'|'not_worse'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -77,8 +77,8 @@ function pairAlternatives(plan, context) {
   const allPlan = withSection(plan, 'comparisons', { pairs: 'all', control: null });
   const all = {
     id: 'all',
-    name: words.pairs.all(pairCount(allPlan, count)),
-    fits: words.pairs.allFits(pairCount(allPlan, count)),
+    name: plan.columns.crossed === null ? words.pairs.all(pairCount(allPlan, count)) : words.pairs.cells,
+    fits: plan.columns.crossed === null ? words.pairs.allFits(pairCount(allPlan, count)) : words.pairs.cellsFits,
     chosen: pairs === 'all',
     plan: allPlan,
   };
@@ -98,7 +98,8 @@ function pairAlternatives(plan, context) {
  * @returns {Alternative[]}
  */
 function bandAlternatives(plan, context) {
-  const pairs = pairCount(plan, context.groups.length);
+  const more = plan.columns.crossed !== null || plan.comparisons.trend;
+  const pairs = (more ? context.compared : null) ?? pairCount(plan, context.groups.length);
   const simultaneous = pairs > 1 ? words.band.simultaneousPairs(pairs) : words.band.simultaneous;
   const named = {
     simultaneous: [simultaneous, words.band.simultaneousFits],
@@ -115,7 +116,7 @@ function bandAlternatives(plan, context) {
  * @returns {Alternative[]}
  */
 function covariateAlternatives(plan, context) {
-  const taken = [...Object.values(context.columns), plan.columns.block];
+  const taken = [...Object.values(context.columns), plan.columns.block, plan.columns.crossed];
   const { covariates: now, bending } = plan.columns;
   /** @param {string[]} covariates @param {string[]} bent */
   const set = (covariates, bent) => withSection(plan, 'columns', {
@@ -146,7 +147,7 @@ function covariateAlternatives(plan, context) {
  * @returns {Alternative[]}
  */
 function blockAlternatives(plan, context) {
-  const taken = [...Object.values(context.columns), ...plan.columns.covariates];
+  const taken = [...Object.values(context.columns), ...plan.columns.covariates, plan.columns.crossed];
   const { block } = plan.columns;
   const set = (/** @type {string|null} */ name) => withSection(plan, 'columns', { block: name });
   const none = { id: 'none', name: words.block.none, fits: words.block.noneFits, chosen: block === null, plan: set(null) };
@@ -154,6 +155,71 @@ function blockAlternatives(plan, context) {
   return [none, ...free.map(({ name }) => ({
     id: `column:${name}`, name, fits: words.block.fits, chosen: block === name, plan: set(name),
   }))];
+}
+
+/**
+ * A second factor, crossed with the groups.
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function crossedAlternatives(plan, context) {
+  const taken = [...Object.values(context.columns), ...plan.columns.covariates, plan.columns.block];
+  const { crossed } = plan.columns;
+  /** @param {string|null} name */
+  const set = (name) => {
+    const next = withSection(plan, 'columns', { crossed: name });
+    return name === null ? next : withSection(next, 'comparisons', { trend: false });
+  };
+  const none = { id: 'none', name: words.crossed.none, fits: words.crossed.noneFits, chosen: crossed === null, plan: set(null) };
+  const free = context.candidates.filter(({ name }) => !taken.includes(name) || name === crossed);
+  return [none, ...free.map(({ name }) => ({
+    id: `column:${name}`, name, fits: words.crossed.fits, chosen: crossed === name, plan: set(name),
+  }))];
+}
+
+/**
+ * The order of the groups: each can be put first.
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function orderAlternatives(plan, context) {
+  const { group_order: order } = plan.reading;
+  const asRead = { id: 'as-read', name: words.order.asRead, fits: words.order.asReadFits, chosen: order.length === 0, plan: withSection(plan, 'reading', { group_order: [] }) };
+  const each = context.groups.map((group, k) => ({
+    id: `first:${group}`, name: words.order.first(group), fits: k === 0 ? words.order.isFirst : words.order.firstFits, chosen: k === 0 && order.length > 0,
+    plan: withSection(plan, 'reading', { group_order: [group, ...context.groups.filter((other) => other !== group)] }),
+  }));
+  return [asRead, ...each];
+}
+
+/**
+ * What is told beside the pairs: each is added or taken away by itself.
+ * @param {Plan} plan
+ * @param {Context} context
+ * @returns {Alternative[]}
+ */
+function alsoAlternatives(plan, context) {
+  const { trend, rates } = plan.comparisons;
+  const { also } = words;
+  const set = (/** @type {Partial<Plan['comparisons']>} */ values) => withSection(plan, 'comparisons', values);
+  const lone = context.groups.length < 3 ? also.trendFew : plan.columns.crossed !== null ? also.trendCrossed : undefined;
+  return [
+    { id: 'none', name: also.none, fits: also.noneFits, chosen: !trend && !rates, plan: set({ trend: false, rates: false }) },
+    { id: 'trend', name: also.trend, fits: also.trendFits(context.groups.join(', ')), chosen: trend, plan: set({ trend: !trend }), ...(lone ? { greyed: lone } : {}) },
+    { id: 'rates', name: also.rates, fits: also.ratesFits, chosen: rates, plan: set({ rates: !rates }) },
+  ];
+}
+
+/**
+ * @param {Plan} plan
+ * @returns {Alternative[]}
+ */
+function notWorseAlternatives(plan) {
+  const rows = list(plan, plan.comparisons.not_worse ?? 'none', words.not_worse,
+    (id) => withSection(plan, 'comparisons', { not_worse: id === 'none' ? null : id }), ['none', 'lower', 'higher']);
+  return rows.map((row) => (row.id !== 'none' && plan.comparisons.margin === 0 ? { ...row, greyed: words.not_worse.greyed } : row));
 }
 
 /**
@@ -235,6 +301,14 @@ export function alternativesOf(choice, plan, context) {
       return covariateAlternatives(plan, context);
     case 'block':
       return blockAlternatives(plan, context);
+    case 'crossed':
+      return crossedAlternatives(plan, context);
+    case 'order':
+      return orderAlternatives(plan, context);
+    case 'also':
+      return alsoAlternatives(plan, context);
+    case 'not_worse':
+      return notWorseAlternatives(plan);
     default:
       return plainAlternatives(choice, plan);
   }

@@ -11,7 +11,8 @@ import { text } from './text.js';
 /**
  * @typedef {Object} Context
  * @property {Record<Role, string|null>} columns Column used for each role.
- * @property {string[]} groups
+ * @property {string[]} groups In a crossed design those of the group column.
+ * @property {number|null} compared Differences in the findings.
  * @property {string} timeWord
  * @property {{name: string, reason: string}[]} candidates All columns.
  * @property {'none'|'intercept'|'slope'|null} clusters What differs from cluster to cluster in the model.
@@ -44,13 +45,15 @@ export function columnsUsed(state) {
  */
 export function contextOf(state) {
   const { findings, preview, description } = state;
-  const groups = findings
-    ? findings.groups.map((group) => group.name)
+  const crossed = findings?.cells ?? [];
+  const groups = crossed.length > 0 ? Array.from(new Set(crossed.map(([own]) => own)))
+    : findings ? findings.groups.map((group) => group.name)
     : Array.from(new Set((description?.rows ?? []).map((row) => row.group)));
   const columns = columnsUsed(state);
   return {
     columns,
     groups,
+    compared: findings?.differences.length ?? null,
     timeWord: findings?.scale.time_word ?? columns.time ?? text.plan.choices.time.none,
     candidates: (preview?.columns ?? []).map(({ name, reason }) => ({ name, reason })),
     clusters: findings?.clusters?.effects ?? null,

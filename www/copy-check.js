@@ -97,6 +97,6 @@ export async function checkCopy(assets, held, tell) {
   } finally {
     engine.end();
   }
-  const digest = await fingerprintOf(await assets.bytes);
+  const digest = await fingerprintOf(new Uint8Array(await assets.bytes));
   return { version, made: held.version, expectedDigest: held.wasm, digest, results };
 }

@@ -79,7 +79,7 @@ function followed(choices, context, open) {
     { lead: words.smoothness, part: chosen('smoothness', choices, context), isDefault: plan.curves.smoothness === 'per-group' },
   ] : [];
   const called = (/** @type {string} */ name) => calledName(choices, name, name);
-  const { covariates, bending, block } = plan.columns;
+  const { covariates, bending, block, crossed } = plan.columns;
   const adjusted = covariates
     .map((name) => (bending.includes(name) ? words.choices.covariates.bent(called(name)) : called(name))).join(words.and);
   const { distribution } = plan.response;
@@ -95,6 +95,13 @@ function followed(choices, context, open) {
       lead: words.repeated, isDefault: block === null,
       part: { text: block === null ? words.choices.block.none : called(block), choice: /** @type {const} */ ('block') },
     },
+    ...(group === null ? [] : [{
+      lead: words.crossedWith, isDefault: crossed === null,
+      part: { text: crossed === null ? words.choices.crossed.none : called(crossed), choice: /** @type {const} */ ('crossed') },
+    }, {
+      lead: words.ordered, isDefault: plan.reading.group_order.length === 0,
+      part: { text: plan.reading.group_order.length === 0 ? words.choices.order.asRead : context.groups.join(', '), choice: /** @type {const} */ ('order') },
+    }]),
   ], open);
   /** @type {Part[]} */
   const parts = [
@@ -179,7 +186,18 @@ function marginParts(choices) {
 function compared(choices, context, open) {
   const { comparisons } = choices.plan;
   const alone = context.columns.group === null || context.groups.length === 1;
+  const { trend, rates, target, growth_over: over, not_worse: notWorse } = comparisons;
+  const { also } = words.choices;
+  const told = [
+    ...(trend ? [also.trend] : []), ...(rates ? [also.rates] : []), ...(target === null ? [] : [also.targetWritten(String(target))]),
+    ...(over === null ? [] : [also.growthWritten(String(over[0]), String(over[1]))]),
+  ];
   const finer = withFiner([
+    ...(alone ? [] : [{ lead: words.notWorse, part: chosen('not_worse', choices, context), isDefault: notWorse === null }]),
+    {
+      lead: words.also, isDefault: told.length === 0,
+      part: { text: told.join(words.and) || also.none, choice: /** @type {const} */ ('also') },
+    },
     { lead: words.small, part: chosen('small_sample', choices, context), isDefault: comparisons.small_sample !== 'none' },
   ], open);
   /** @type {Part[]} */

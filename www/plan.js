@@ -11,7 +11,7 @@ import { maskedPlan } from './masks.js';
 /** @returns {Plan} */
 export function defaultPlan() {
   return {
-    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [], bending: [], block: null },
+    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [], bending: [], block: null, crossed: null },
     exclusions: [],
     response: { distribution: 'normal', transform: 'identity', detection: 'as-written', start: 'as-measured' },
     curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group', period: null, range: null, roughness: '5/2' },
@@ -22,9 +22,10 @@ export function defaultPlan() {
     comparisons: {
       pairs: 'all', control: null, level: 0.95, margin: 0, margin_unit: 'response',
       band: 'simultaneous', small_sample: 'auto', refits: 1000, landmark: null,
+      trend: false, target: null, growth_over: null, not_worse: null, rates: false,
     },
     grid: { start: null, end: null, count: 101 },
-    reading: { day_zero: 'common', date_order: null, layout: null, merges: [], shared_ids: null, sheet: null, cells: null },
+    reading: { day_zero: 'common', date_order: null, layout: null, merges: [], shared_ids: null, sheet: null, cells: null, group_order: [] },
     words: { subject: 'subject', subjects: 'subjects', time: null, response: null },
     seed: 20260,
   };
@@ -112,7 +113,7 @@ export function withDistribution(plan, distribution) {
   });
   if (!log) return changed;
   const plain = withSection(changed, 'errors', { serial: 'none', spread: 'common', nugget: false });
-  const bare = withSection(plain, 'columns', { covariates: [], bending: [], block: null });
+  const bare = withSection(plain, 'columns', { covariates: [], bending: [], block: null, crossed: null });
   return { ...bare, subjects: bare.subjects === 'curve' ? 'slope' : bare.subjects };
 }
 

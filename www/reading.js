@@ -79,6 +79,7 @@ function valueAt(row, key, time) {
 /**
  * @typedef {Object} GapReading
  * @property {number} pair
+ * @property {string} kind What it is between: `pair`, `factor`, `interaction`, `trend`.
  * @property {string} from
  * @property {string} to
  * @property {number|null} value Difference, or ratio on the log scale.
@@ -120,6 +121,7 @@ export function readingAt(findings, time) {
     const seen = isWithin(difference.support, time);
     return {
       pair,
+      kind: difference.kind ?? 'pair',
       from: difference.from,
       to: difference.to,
       value: seen ? valueAt(difference, 'response_estimate', time) : null,

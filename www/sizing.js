@@ -73,6 +73,6 @@ export class Sizing extends Pool {
   /** @param {Job} job @returns {Promise<any>} */
   async answer(job) {
     const [engine] = this.ready();
-    return JSON.parse(await /** @type {Engine} */ (engine).sizeAnswer(job.request, JSON.stringify(job.counts)));
+    return JSON.parse(await /** @type {import('./engine.js').Engine} */ (engine).sizeAnswer(job.request, JSON.stringify(job.counts)));
   }
 }

@@ -17,7 +17,7 @@ import { text } from './text.js';
  * @param {boolean} ratio
  */
 export function writtenGap(gap, ratio) {
-  const name = ratio ? text.reading.ratio(gap.to, gap.from) : text.reading.difference(gap.to, gap.from);
+  const name = text.reading.gap(gap, ratio);
   /** @param {number|null} value */
   const scaled = (value) => (value === null ? null : value * (ratio ? 100 : 1));
   return { name, unit: ratio ? '\u00a0%' : '', numbers: withInterval(scaled(gap.value), scaled(gap.lower), scaled(gap.upper)) };

@@ -96,6 +96,11 @@ export const text = {
     keys: 'With the strips focused: left and right arrows step, page up and page down go from visit to visit, home and end go to the ends.',
     over: (/** @type {string} */ name) => `Over the courses, as thin double lines: ${name}.`,
     overAway: 'Take them away',
+    grip: {
+      title: 'Drag to say how large a gap does not matter',
+      none: 'every gap matters',
+      value: (/** @type {string} */ margin, /** @type {boolean} */ ratio) => `\u00b1${margin}${ratio ? '\u00a0%' : ''}`,
+    },
     grey: 'These strips belong to the last plan that could be fitted.',
   },
 
@@ -118,6 +123,13 @@ export const text = {
     ratio: (to, from) => `${to} / ${from}`,
     /** @param {string} to @param {string} from */
     difference: (to, from) => `${to} \u2212 ${from}`,
+    /**
+     * What a difference's numbers are.
+     * @param {{kind?: string, to: string, from: string}} gap
+     * @param {boolean} ratio
+     */
+    gap: ({ kind, to, from }, ratio) => (kind === 'trend' ? `${ratio ? 'Factor' : 'Change'} per step, ${from} to ${to}`
+      : ratio ? `${to} / ${from}` : `${to} \u2212 ${from}`),
     states: { beyond: 'beyond', apart: 'apart', inside: 'inside', undecided: 'undecided', outside: 'not compared' },
     openLabel: (/** @type {string} */ pair) => `Show the gap strip of ${pair}`,
   },

@@ -12,7 +12,7 @@
 
 /**
  * @typedef {Object} Plan
- * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null}} columns
+ * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null, crossed: string|null}} columns
  * @property {{row: number, column?: string, reason: string}[]} exclusions
  * @property {{distribution: string, transform: 'identity'|'log', detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
  * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared', period: number|null, range: number|null, roughness: string}} curves
@@ -20,9 +20,9 @@
  * @property {'auto'|'none'|'intercept'|'slope'} clusters
  * @property {'common'|'by-group'} subjects_spread
  * @property {{serial: 'none'|'ar1'|'unstructured', spread: 'common'|'by-group'|'with-mean'|'by-visit', nugget: boolean}} errors
- * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null}} comparisons
+ * @property {{pairs: 'all'|'against-control', control: string|null, level: number, margin: number, margin_unit: 'response'|'percent', band: 'simultaneous'|'pointwise', small_sample: 'none'|'df'|'calibrated'|'auto', refits: number, landmark: number|null, trend: boolean, target: number|null, growth_over: [number, number]|null, not_worse: 'higher'|'lower'|null, rates: boolean}} comparisons
  * @property {{start: number|null, end: number|null, count: number}} grid
- * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[], shared_ids: null|'different'|'same'|'mistake', sheet: string|null, cells: string|null}} reading
+ * @property {{day_zero: 'common'|'per-subject', date_order: string|null, layout: string|null, merges: {from: string, into: string}[], shared_ids: null|'different'|'same'|'mistake', sheet: string|null, cells: string|null, group_order: string[]}} reading
  * @property {{subject: string, subjects: string, time: string|null, response: string|null}} words
  * @property {number} seed
  */
@@ -32,7 +32,7 @@
 /** @typedef {CurvePoints & {group: string, critical: number|Series, support: [number, number], at_visits: CurvePoints}} Curve */
 /** @typedef {{time: number[], estimate: Series, se: Series, lower: Series, upper: Series, response_estimate: Series, response_lower: Series, response_upper: Series}} DifferencePoints */
 /** @typedef {{start: number, end: number, direction?: 'above'|'below', open_start: boolean, open_end: boolean}} Stretch */
-/** @typedef {DifferencePoints & {from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
+/** @typedef {DifferencePoints & {kind?: 'pair'|'factor'|'interaction'|'trend', from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
 /** @typedef {{row: number, column: string, value: string, message: string, kept?: boolean, stops?: boolean}} Problem `kept`: the value is fitted all the same. `stops`: nothing is computed before it is mended or left out. */
 /** @typedef {{kind: string, pair: number|null, headline: string, text: string, depends: string}} Sentence */
 /** @typedef {{name: string, subjects: number, rows: number, last_times: number[], at_visit: number[]}} GroupInfo */
@@ -51,6 +51,7 @@
  * @property {{about: string, message: string}[]} notes
  * @property {Plan} plan
  * @property {GroupInfo[]} groups
+ * @property {[string, string][]} [cells] In a crossed design the labels of every group.
  * @property {number[]} visits
  * @property {{time_word: string, response: string, ratio: boolean}} scale
  * @property {Sentence[]} sentences
@@ -204,7 +205,7 @@
  * @property {number} width
  * @property {number} height
  * @property {{left: number, right: number, start: number, end: number}} x
- * @property {(Rect & {kind: string, pair: number|null})[]} strips
+ * @property {(Rect & {kind: string, pair: number|null, plot?: {top: number, bottom: number}|null, y?: {kind: string, low: number, high: number}|null})[]} strips
  */
 
 export {};

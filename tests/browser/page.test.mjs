@@ -150,3 +150,57 @@ for (const [width, dark] of [[1440, false], [1440, true], [390, false], [390, tr
     await page.context().close();
   });
 }
+
+test('the margin is dragged on the gap strip, and moved by keys', async () => {
+  const page = await openPage(browser, { height: 1300 });
+  const grip = page.locator('.margin-grip');
+  await grip.waitFor();
+  const before = await grip.getAttribute('aria-valuetext');
+  const { x, y } = await grip.boundingBox();
+  await page.mouse.move(x + 12, y + 12);
+  await page.mouse.down();
+  await page.mouse.move(x + 12, y - 18, { steps: 4 });
+  await page.mouse.up();
+  await rested(page);
+  const dragged = await grip.getAttribute('aria-valuetext');
+  assert.notEqual(dragged, before);
+  assert.match(await page.locator('.plan').innerText(), new RegExp(`a gap under ${dragged.replace('\u00b1', '')} of`));
+  await grip.focus();
+  await page.keyboard.press('Home');
+  await rested(page);
+  assert.equal(await grip.getAttribute('aria-valuetext'), 'every gap matters');
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('two crossed factors, rates and days to a level by plain choices', async () => {
+  const page = await openPage(browser);
+  const rows = ['mouse,treatment,genotype,day,size'];
+  let seed = 5;
+  const noise = () => { seed = (seed * 16807) % 2147483647; return (4 * seed) / 2147483647 - 2; };
+  ['vehicle', 'compound'].forEach((arm, a) => ['wild', 'mutant'].forEach((kind, k) => {
+    for (let s = 0; s < 6; s += 1) {
+      for (let day = 0; day < 6; day += 1) rows.push(`m${a}${k}${s},${arm},${kind},${day},${(10 + 3 * day - (a && k ? 2.5 * day : 0) + noise()).toFixed(2)}`);
+    }
+  }));
+  await paste(page, rows.join('\n'));
+  await enter(page, 'courses');
+  const choose = async (choice, alternative) => {
+    await page.locator(`[data-choice="${choice}"]`).click();
+    await page.locator(`[data-alternative="${alternative}"]`).click();
+    await rested(page);
+  };
+  await page.getByRole('button', { name: 'finer choices' }).click();
+  await choose('crossed', 'column:genotype');
+  assert.match(await findingsOf(page), /compound against vehicle in mutant differs from compound against vehicle in wild/);
+  await choose('also', 'rates');
+  await page.locator('[data-choice="also"]').click();
+  await page.fill('[data-field="target"]', '20');
+  await page.waitForTimeout(700);
+  await rested(page);
+  await page.keyboard.press('Escape');
+  await page.locator('[data-region="effects"] summary, .as-tables summary').first().click();
+  assert.match(await page.locator('main').innerText(), /first reaches 20/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

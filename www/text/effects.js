@@ -9,10 +9,12 @@ export const effects = {
   average: 'gap averaged over the common follow-up',
   area: 'area between the courses',
   onset: (/** @type {string} */ margin) => `passes ${margin} for good`,
+  later: (/** @type {number} */ target, /** @type {string} */ word) => `reaches ${target} later by (${word}s)`,
   level: 'average gap is zero: chance of one so large',
   shape: 'gap is alike at all times: chance of one so uneven',
   group: {
     average: 'mean level', area: 'area under the course', growth: (/** @type {string} */ word) => `change per ${word}`,
+    reaches: (/** @type {number} */ target) => `first reaches ${target}`, over: (/** @type {string} */ from, /** @type {string} */ to) => `, ${from} to ${to}`,
     doubling: 'time to double', halving: 'time to halve', peak: 'highest', nadir: 'lowest', when: (/** @type {string} */ what) => `${what}: when`,
     atEnd: 'at an end of the follow-up: it may lie beyond',
   },

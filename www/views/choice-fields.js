@@ -32,6 +32,8 @@ export function mountField(choice, root, acts) {
       return mountBasis(root, acts);
     case 'dimension':
       return mountDimension(root, acts);
+    case 'also':
+      return mountAlso(root, acts);
     case 'noun':
       return mountNoun(root, acts);
     case 'response':
@@ -140,6 +142,51 @@ function mountDimension(root, acts) {
     update(state) {
       const { dimension } = state.choices.plan.curves;
       knots.show(typeof dimension === 'number' ? String(dimension) : '');
+    },
+  };
+}
+
+/**
+ * A level whose day is sought, and the stretch over which growth is taken.
+ * @param {HTMLElement} root
+ * @param {Acts} acts
+ */
+function mountAlso(root, acts) {
+  const { also } = words;
+  const problem = el('p', { class: 'complaint', role: 'alert' });
+  /** @param {Partial<import('../types.js').Plan['comparisons']>} values @param {string} label */
+  const set = (values, label) => acts.choose(label, (choices) => ({
+    ...choices, plan: withSection(choices.plan, 'comparisons', values),
+  }), true);
+  let positive = false;
+  const target = field(also.target, { inputmode: 'decimal', 'data-field': 'target' }, (typed) => {
+    const value = typed.trim() === '' ? null : parseNumber(typed);
+    const good = typed.trim() === '' || (value !== null && (!positive || value > 0));
+    setText(problem, good ? '' : also.targetWrong);
+    if (good) set({ target: value }, value === null ? also.none : also.targetWritten(String(value)));
+  });
+  const stretch = () => {
+    const [from, to] = [parseNumber(start.input.value), parseNumber(end.input.value)];
+    const empty = start.input.value.trim() === '' && end.input.value.trim() === '';
+    const good = empty || (from !== null && to !== null && from < to);
+    setText(problem, good ? '' : also.growthWrong);
+    if (empty) set({ growth_over: null }, also.none);
+    else if (good && from !== null && to !== null) set({ growth_over: [from, to] }, also.growthWritten(String(from), String(to)));
+  };
+  const start = field(also.growthFrom, { inputmode: 'decimal', 'data-field': 'growth-from' }, stretch);
+  const end = field(also.growthTo, { inputmode: 'decimal', 'data-field': 'growth-to' }, stretch);
+  root.append(target.node, start.node, end.node, problem);
+  return {
+    /** @param {State} state */
+    update(state) {
+      const { comparisons, response } = state.choices.plan;
+      positive = response.transform === 'log' || response.distribution !== 'normal';
+      target.show(comparisons.target === null ? '' : String(comparisons.target));
+      const over = comparisons.growth_over;
+      if (document.activeElement !== start.input && document.activeElement !== end.input) {
+        start.show(over === null ? '' : String(over[0]));
+        end.show(over === null ? '' : String(over[1]));
+      }
     },
   };
 }

@@ -53,10 +53,11 @@ function pairTable(effects, findings, k) {
       effects.onset.upper === null ? words.notReached : times(effects.onset.upper)),
     words.chances(fixed(effects.onset.already_at_start, 2), fixed(effects.onset.never, 2)),
   ];
-  const name = findings.scale.ratio ? text.reading.ratio(d.to, d.from) : text.reading.difference(d.to, d.from);
+  const name = text.reading.gap(d, findings.scale.ratio);
+  const later = row(words.later(findings.plan.comparisons.target, word), effects.to_level);
   return table(name, groupClass(findings.groups, d.to), [
     row(words.landmark(word, effects.landmark_time === null ? '' : times(effects.landmark_time)), effects.landmark),
-    row(words.average, effects.average), row(words.area, effects.area), onset, chance(words.level, effects.level_p), chance(words.shape, effects.shape_p),
+    row(words.average, effects.average), row(words.area, effects.area), onset, later, chance(words.level, effects.level_p), chance(words.shape, effects.shape_p),
   ]);
 }
 
@@ -69,11 +70,21 @@ function groupTable(effects, findings, k) {
     ...effects.doubling_time, estimate: -effects.doubling_time.estimate,
     lower: effects.doubling_time.upper === null ? null : -effects.doubling_time.upper, upper: effects.doubling_time.lower === null ? null : -effects.doubling_time.lower,
   };
+  const word = findings.scale.time_word;
+  const when = (/** @type {number} */ t) => plainTime(t, span(findings));
+  const level = effects.to_level;
+  const reached = level && [
+    group.reaches(findings.plan.comparisons.target), level.estimate === null ? words.notReached : `${word} ${when(level.estimate)}`,
+    text.reading.range(level.at_or_before_start || level.lower === null ? words.orBefore : when(level.lower), level.upper === null ? words.notReached : when(level.upper)),
+    words.chances(fixed(level.already_at_start, 2), fixed(level.never, 2)),
+  ];
+  const [from, to] = effects.growth_over ?? [0, 0];
+  const over = findings.plan.comparisons.growth_over === null ? '' : group.over(when(from), when(to));
   const extreme = (/** @type {string} */ what, /** @type {any} */ one) => (one ? [
     row(one.at_end ? `${what} (${group.atEnd})` : what, one.height), row(group.when(what), one.time),
   ] : []);
   return table(name, groupClass(findings.groups, name), [
-    row(group.average, effects.average), row(group.area, effects.area), row(group.growth(findings.scale.time_word), effects.growth),
+    row(group.average, effects.average), row(group.area, effects.area), reached, row(`${group.growth(word)}${over}`, effects.growth),
     row(halves ? group.halving : group.doubling, halves ? turned : effects.doubling_time), ...extreme(group.peak, effects.peak), ...extreme(group.nadir, effects.nadir),
   ]);
 }

@@ -48,10 +48,10 @@ export function mountReading(root, acts) {
     table.classList.toggle('with-letters', lettered);
     show(gapHead, reading.gaps.length > 0);
     reconcile(gaps, reading.gaps, (row) => `${row.pair}:${row.from}:${row.to}:${many}`,
-      (row) => mountRow(groupIndex(findings, row.to), '', many ? stripButton(row.pair, acts) : null),
+      (row) => mountRow(row.kind === 'pair' ? groupIndex(findings, row.to) : -1, '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
         const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
-        fillRow(node, lettered ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
+        fillRow(node, lettered && row.kind === 'pair' ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
         node.cells[0]?.setAttribute('aria-label', name);
         node.cells[0]?.setAttribute('title', name);
         node.dataset.lane = row.state;

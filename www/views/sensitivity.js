@@ -123,7 +123,7 @@ export function mountSensitivity(root, acts) {
  */
 function pairPart(sorted, plainOne, pair, k, acts) {
   const { findings } = acts.look();
-  const name = findings?.scale.ratio ? `log ${text.reading.ratio(pair.to, pair.from)}` : text.reading.difference(pair.to, pair.from);
+  const name = `${findings?.scale.ratio ? 'log ' : ''}${text.reading.gap(pair, findings?.scale.ratio ?? false)}`;
   const group = groupClass(findings?.groups ?? [], pair.to);
   const last = pair.time.length - 1;
   const at = (/** @type {'estimate'|'lower'|'upper'} */ key) => sorted.map((one) => one.pairs[k][key][last]);

@@ -43,7 +43,7 @@ export function stakes(checks, state) {
  */
 export function stakesKey(checks) {
   const told = checks.find((check) => (check.consequence?.pairs.length ?? 0) > 0);
-  const pairs = (told?.consequence.pairs ?? []).map((/** @type {any} */ pair) => text.reading.difference(pair.to, pair.from));
+  const pairs = (told?.consequence.pairs ?? []).map((/** @type {any} */ pair) => text.reading.gap(pair, false));
   return told ? `${words.stakesKey} ${pairs.length > 1 ? words.topDown(pairs.join('; ')) : ''}`.trim() : '';
 }
 

@@ -11,6 +11,7 @@ import { readingAt, step, stops } from '../reading.js';
 import { spoken } from '../spoken.js';
 import { text } from '../text.js';
 import { drawCursor } from './cursor.js';
+import { mountMarginGrip } from './margin-grip.js';
 import { followPointer } from './pointer.js';
 
 /** Strips narrower than this carry letters, which the reading spells out. */
@@ -33,6 +34,7 @@ export function mountStrips(root, acts) {
     class: 'strips-slider', role: 'slider', tabindex: '0', 'aria-label': text.strips.slider, 'aria-describedby': 'strips-keys', title: text.strips.hold,
   });
   const frame = el('div', { class: 'strips-frame' }, canvas, overlay, slider);
+  const grip = mountMarginGrip(frame, acts);
   const caption = el('p', { class: 'unseen' });
   const grey = el('p', { class: 'strips-grey' }, text.strips.grey);
   const over = el('p', { class: 'strips-over', role: 'status' });
@@ -59,6 +61,7 @@ export function mountStrips(root, acts) {
     });
     document.body.classList.toggle('with-letters', width < NARROW);
     frame.style.height = `${layout.height}px`;
+    grip.update(last, layout);
     moveCursor(last);
   }
 

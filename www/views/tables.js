@@ -79,7 +79,7 @@ function visitTable(findings) {
 function stretchTable(findings) {
   const { ratio, time_word: word } = findings.scale;
   const rows = findings.differences.flatMap((difference) => {
-    const name = ratio ? text.reading.ratio(difference.to, difference.from) : text.reading.difference(difference.to, difference.from);
+    const name = text.reading.gap(difference, ratio);
     const hasMargin = difference.margin[0] !== difference.margin[1];
     /** @param {Stretch[]} stretches @param {string} state */
     const of = (stretches, state) => stretches.map((stretch) => [

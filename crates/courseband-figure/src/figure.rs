@@ -95,6 +95,8 @@ impl Dash {
 pub enum StripKind {
     /// The groups' courses.
     Courses,
+    /// How fast the courses change.
+    Rates,
     /// One pair's gap over its lane.
     Gap,
     /// One pair as a row: its name and its lane.
@@ -109,6 +111,7 @@ impl StripKind {
     pub fn word(self) -> &'static str {
         match self {
             StripKind::Courses => "courses",
+            StripKind::Rates => "rates",
             StripKind::Gap => "gap",
             StripKind::Row => "row",
             StripKind::Followed => "followed",

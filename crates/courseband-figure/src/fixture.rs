@@ -17,6 +17,7 @@ pub(crate) fn source(groups: usize) -> Source {
             .map(|name| Group { name: (*name).into(), subjects: 8, last_times: vec![21.0; 8] })
             .collect(),
         curves: (0..groups).map(course).collect(),
+        rates: Vec::new(),
         differences: pairs.map(|(a, b)| gap(a, b)).collect(),
         visits: VISITS.to_vec(),
         scale: Names { time_word: "day".into(), response: "wound area (mm²)".into(), ratio: true },

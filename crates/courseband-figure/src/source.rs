@@ -17,6 +17,9 @@ pub struct Source {
     pub groups: Vec<Group>,
     /// One per group.
     pub curves: Vec<Course>,
+    /// How fast the courses change, on the response scale; empty unless asked for.
+    #[serde(default)]
+    pub rates: Vec<RateCourse>,
     /// One per compared pair.
     pub differences: Vec<Gap>,
     /// Distinct times with an observation, ascending.
@@ -55,6 +58,23 @@ pub struct Course {
     pub at_visits: CoursePoints,
 }
 
+/// How fast a group's course changes.
+#[derive(Debug, Clone, Default, Deserialize)]
+pub struct RateCourse {
+    /// Group name.
+    pub group: String,
+    /// Times of the grid.
+    pub time: Vec<f64>,
+    /// Change per time unit, or the factor per time unit.
+    pub response_mean: Series,
+    /// Lower band limit.
+    pub response_lower: Series,
+    /// Upper band limit.
+    pub response_upper: Series,
+    /// First and last observed time of the group.
+    pub support: [f64; 2],
+}
+
 /// A course at some times.
 #[derive(Debug, Clone, Default, Deserialize)]
 pub struct CoursePoints {
@@ -71,6 +91,9 @@ pub struct CoursePoints {
 /// A compared pair: `to` minus `from`, or `to` / `from`.
 #[derive(Debug, Clone, Default, Deserialize)]
 pub struct Gap {
+    /// What it is between: `pair`, `factor`, `interaction` or `trend`.
+    #[serde(default)]
+    pub kind: String,
     /// The control, else the earlier group.
     pub from: String,
     /// The other group.

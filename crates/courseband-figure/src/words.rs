@@ -76,6 +76,10 @@ pub(crate) fn margin(source: &Source) -> String {
 
 /// What a pair's numbers are.
 pub(crate) fn pair(gap: &Gap, ratio: bool, as_percent: bool) -> String {
+    if gap.kind == "trend" {
+        let what = if ratio { "Factor" } else { "Change" };
+        return format!("{what} per step, {} to {}", gap.from, gap.to);
+    }
     match (ratio, as_percent) {
         (true, true) => format!("{} as % of {}", gap.to, gap.from),
         (true, false) => format!("{} / {}", gap.to, gap.from),
@@ -86,4 +90,11 @@ pub(crate) fn pair(gap: &Gap, ratio: bool, as_percent: bool) -> String {
 /// What the followed strip shows.
 pub(crate) fn followed(source: &Source, noun: &str) -> String {
     format!("{noun} with a visit on or after this {}", source.scale.time_word)
+}
+
+/// What the rates strip shows.
+pub(crate) fn rates(source: &Source) -> String {
+    let word = &source.scale.time_word;
+    let what = if source.scale.ratio { format!("factor per {word}") } else { format!("change per {word}") };
+    format!("{what}\u{a0}· bands of their own, over all groups")
 }

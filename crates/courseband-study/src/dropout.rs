@@ -120,6 +120,8 @@ pub struct SensitivityFindings {
 /// A pair's pooled gap at the visits.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct PooledGap {
+    /// What the difference is between.
+    pub kind: crate::comparison::ComparisonKind,
     /// Group.
     pub from: String,
     /// Group.
@@ -271,6 +273,7 @@ impl Study {
                 }
             });
             PooledGap {
+                kind: d.kind,
                 from: d.from.clone(),
                 to: d.to.clone(),
                 time: own.iter().map(|&j| places[j].1).collect(),

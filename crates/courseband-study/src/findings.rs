@@ -29,6 +29,8 @@ pub struct Findings {
     pub curves: Vec<Curve>,
     /// How fast the courses change; empty unless asked for.
     pub rates: Vec<Rate>,
+    /// In a crossed design the two labels of every group; otherwise empty.
+    pub cells: Vec<[String; 2]>,
     /// One per compared pair; empty when the fit failed.
     pub differences: Vec<Difference>,
     /// What else must be known, in plain words.

@@ -206,6 +206,7 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         fit: failed_summary(),
         curves: Vec::new(),
         rates: Vec::new(),
+        cells: cohort.cells.clone(),
         differences: Vec::new(),
         notes,
         plan: plan.clone(),

@@ -63,7 +63,8 @@ fn crossed_factors_are_arithmetic_on_cell_means() {
     assert_eq!((both.from.as_str(), both.to.as_str()), ("drug against none in wild", "drug against none in mutant"));
     let told = findings.sentences.iter().find(|s| s.pair == Some(6)).unwrap();
     assert!(
-        told.headline.contains("drug against none in mutant") && told.text.contains("difference of the differences is "),
+        told.headline.contains("drug against none in mutant")
+            && told.text.contains("difference of the differences is "),
         "{told:?}"
     );
 }

@@ -2,7 +2,7 @@
 
 use super::Builder;
 use super::points::{band, band_from, banded, few_after, line};
-use crate::figure::{Mark, Plot, Rule, RuleKind, Strip, StripKind, Tone, Words};
+use crate::figure::{Mark, Plot, Rule, RuleKind, Strip, StripKind, Words};
 use crate::scale::{Kind, Scale};
 use crate::source::Gap;
 use crate::ticks::{Tick, ratio_ticks, value_ticks};
@@ -40,7 +40,7 @@ impl Builder<'_> {
 
     fn gap_strip(&self, pair: usize, plot: Option<Plot>, scale: Scale) -> Strip {
         let gap = &self.source.differences[pair];
-        let tone = Tone::Group(self.group(&gap.to));
+        let (tone, _) = self.look_of(gap);
         let name = words::pair(gap, self.source.scale.ratio, plot.is_some() && as_percent(scale));
         Strip {
             kind: if plot.is_some() { StripKind::Gap } else { StripKind::Row },
@@ -55,8 +55,7 @@ impl Builder<'_> {
 
     fn gap_plot(&self, pair: usize, points: &Points, scale: Scale, shown: usize) -> Plot {
         let gap = &self.source.differences[pair];
-        let to = self.group(&gap.to);
-        let tone = Tone::Group(to);
+        let (tone, dash) = self.look_of(gap);
         let mut marks = Vec::new();
         if !self.is_by_time() {
             marks.push(Mark::Band { tone, points: band(points), faded: false });
@@ -64,7 +63,7 @@ impl Builder<'_> {
                 marks.push(Mark::Hatch { tone, points: band_from(&band(points), start) });
             }
         }
-        marks.push(Mark::Curve { tone, dash: self.looks[to].dash, points: line(points), faded: false });
+        marks.push(Mark::Curve { tone, dash, points: line(points), faded: false });
         if self.marks_visits() {
             let beside = self.is_by_time().then_some(0.0);
             marks.push(Mark::Dots { tone, beside, points: visit_points(gap) });
@@ -83,11 +82,10 @@ impl Builder<'_> {
 
     fn few_in_pair(&self, gap: &Gap) -> Option<f64> {
         let support = gap.support?;
-        let starts = [&gap.from, &gap.to].map(|name| {
-            let group = &self.source.groups[self.group(name)];
-            few_after(&group.last_times, group.subjects, support)
-        });
-        starts.into_iter().flatten().reduce(f64::min).map(|start| start.max(support[0]))
+        let one = |group: &crate::source::Group| few_after(&group.last_times, group.subjects, support);
+        let pair = matches!(gap.kind.as_str(), "" | "pair");
+        let own = self.source.groups.iter().filter(|g| !pair || g.name == gap.from || g.name == gap.to);
+        own.filter_map(one).reduce(f64::min).map(|start| start.max(support[0]))
     }
 
     /// One axis for all: holds zero, the margin, the estimates, and the bands unless they dwarf all else.

@@ -8,6 +8,7 @@ mod gaps;
 mod lane;
 mod points;
 mod range;
+mod rates;
 
 use crate::figure::{Dash, Figure, GroupLook, Mark, Strength, Strip, TimeAxis, Tone, Words};
 use crate::source::{Source, Traces};
@@ -21,6 +22,7 @@ pub fn describe(source: &Source, traces: &Traces, view: &View) -> Figure {
     let mut strips: Vec<Strip> = Vec::new();
     if !source.curves.is_empty() && source.curves.len() <= source.groups.len() {
         strips.push(builder.courses());
+        strips.extend(builder.rates());
         strips.extend(builder.gaps());
     }
     strips.push(builder.followed());
@@ -46,6 +48,12 @@ impl Builder<'_> {
     /// Index of a group by its name.
     fn group(&self, name: &str) -> usize {
         self.source.groups.iter().position(|g| g.name == name).unwrap_or(0)
+    }
+
+    /// Tone and line of a gap: those of the group that is compared, plain ink where it is no group's alone.
+    fn look_of(&self, gap: &crate::source::Gap) -> (Tone, Dash) {
+        let own = self.source.groups.iter().position(|g| g.name == gap.to && matches!(gap.kind.as_str(), "" | "pair"));
+        own.map_or((Tone::Ink, Dash::Solid), |g| (Tone::Group(g), self.looks[g].dash))
     }
 
     /// What several subjects are called.

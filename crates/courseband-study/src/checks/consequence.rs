@@ -2,6 +2,7 @@
 
 use super::Check;
 use crate::cohort::Cohort;
+use crate::comparison::ComparisonKind;
 use crate::evaluate::Evaluation;
 use crate::findings::{Difference, Direction, Stretch};
 use crate::plan::Plan;
@@ -39,6 +40,8 @@ pub enum Outcome {
 /// One pair with the plan and with the remedy.
 #[derive(Debug, Clone, PartialEq, Serialize)]
 pub struct TriedPair {
+    /// What the difference is between.
+    pub kind: ComparisonKind,
     /// The group compared with.
     pub from: String,
     /// The group compared.
@@ -82,9 +85,9 @@ impl Base {
         let Ok(fitted) = fit(&cohort.data, &cohort.model(trial)) else { return Ok(None) };
         let all = Evaluation::new(trial, &cohort, &fitted, None).differences();
         let pair = |own: &Difference| {
-            let other = all.iter().find(|d| d.from == own.from && d.to == own.to)?;
+            let other = all.iter().find(|d| d.kind == own.kind && d.from == own.from && d.to == own.to)?;
             let (from, to) = (own.from.clone(), own.to.clone());
-            Some(TriedPair { from, to, plan: own.stretches.clone(), trial: other.stretches.clone() })
+            Some(TriedPair { kind: own.kind, from, to, plan: own.stretches.clone(), trial: other.stretches.clone() })
         };
         Ok(self.own.iter().map(pair).collect())
     }
