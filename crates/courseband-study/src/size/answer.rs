@@ -124,6 +124,13 @@ impl SizeRequest {
         if s.serial > 0.0 {
             text += &format!("; what remains correlates with {} from one day to the next", plain(s.serial));
         }
+        if self.in_clusters() {
+            text += &format!(
+                "; {} share a cluster and its treatment, and two of one cluster correlate with {}",
+                self.cluster_size,
+                plain(s.cluster_alike)
+            );
+        }
         if self.effect != 1.0 {
             text += &format!("; the gap is taken as {} of that between the means", percent(self.effect));
         }
@@ -138,6 +145,17 @@ impl SizeRequest {
             (GoalKind::Landmark, Some(day)) => {
                 format!("a difference on day {} by its {} interval", plain(day), percent(self.goal.level))
             }
+            (GoalKind::Average, _) => {
+                format!("a difference averaged over the measuring days by its {} interval", percent(self.goal.level))
+            }
+            (GoalKind::Slope, _) => format!("a difference of the slopes by its {} interval", percent(self.goal.level)),
+            (GoalKind::Onset, _) => format!(
+                "the day from which the gap passes {}{} for good, with an interval from the {} band of at most {} days",
+                plain(self.goal.margin),
+                if self.transform == Transform::Log { " percent" } else { "" },
+                percent(self.goal.level),
+                plain(self.goal.width)
+            ),
             _ => format!(
                 "a stretch of time in which the {} band, which holds over the whole course, excludes no difference",
                 percent(self.goal.level)
@@ -145,10 +163,16 @@ impl SizeRequest {
         };
         format!(
             "Sample size was determined by simulation ({} studies per design, seed {}). {model} Each simulated table was analysed \
-             with a smooth course per group in a mixed model fitted by restricted maximum likelihood, with degrees of freedom by \
+             with {} per group in a mixed model fitted by restricted maximum likelihood, with degrees of freedom by \
              Satterthwaite's rule. The goal was to show {goal}. {} The Monte-Carlo interval of the power is given in brackets.",
             d.counts.studies,
             self.seed,
+            match self.goal.find {
+                GoalKind::Average => "a mean for every day",
+                GoalKind::Slope => "a straight line",
+                _ if self.days.len() < 4 => "a mean for every day",
+                _ => "a smooth course",
+            },
             self.design_sentence(d)
         )
     }

@@ -37,6 +37,7 @@ impl SizeRequest {
                 alike: rounded((between / (between + residual)).min(0.99)),
                 trend: rounded(libm::sqrt(at(1, 1))),
                 serial: findings.fit.serial_correlation.map_or(0.0, |phi| rounded(phi.clamp(0.0, 0.99))),
+                ..SizeSpread::default()
             },
             words: [findings.plan.words.subject.clone(), findings.plan.words.subjects.clone()],
             ..SizeRequest::default()

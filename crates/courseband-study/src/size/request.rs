@@ -24,6 +24,8 @@ pub struct SizeRequest {
     pub goal: Goal,
     /// Subjects per group to try: control first.
     pub designs: Vec<[usize; 2]>,
+    /// Subjects that share a cage, litter or site and get one treatment; 0 or 1 for none.
+    pub cluster_size: usize,
     /// Share of subjects expected to leave before the end.
     pub losses: f64,
     /// Wanted power.
@@ -59,6 +61,8 @@ pub struct SizeSpread {
     pub trend: f64,
     /// Correlation of the rest of two visits one time unit apart; 0 for none.
     pub serial: f64,
+    /// Correlation of two subjects of one cluster on one day, from 0 to at most `alike`.
+    pub cluster_alike: f64,
 }
 
 /// What must be found.
@@ -69,6 +73,11 @@ pub struct Goal {
     pub find: GoalKind,
     /// Day of a landmark.
     pub day: Option<f64>,
+    /// For an onset: largest gap that does not matter, in the response's unit (percent where gaps are ratios), and
+    /// the width in days that its interval may have.
+    pub margin: f64,
+    /// Width that the onset's interval may have.
+    pub width: f64,
     /// Level of the bands.
     pub level: f64,
 }
@@ -81,6 +90,12 @@ pub enum GoalKind {
     Stretch,
     /// The gap on one day, by its own interval.
     Landmark,
+    /// The gap averaged over the measuring days, by its own interval; a mean is fitted for every day.
+    Average,
+    /// The difference of two straight lines' slopes, by its own interval.
+    Slope,
+    /// The onset beyond the margin, with an interval no wider than asked.
+    Onset,
 }
 
 impl Default for SizeRequest {
@@ -94,6 +109,7 @@ impl Default for SizeRequest {
             effect: 1.0,
             goal: Goal::default(),
             designs: vec![[5, 5], [6, 6], [8, 8], [10, 10], [12, 12], [15, 15]],
+            cluster_size: 0,
             losses: 0.0,
             target: 0.8,
             studies: 500,
@@ -111,13 +127,13 @@ impl Default for CourseMeans {
 
 impl Default for SizeSpread {
     fn default() -> Self {
-        SizeSpread { on_a_day: 1.0, alike: 0.5, trend: 0.0, serial: 0.0 }
+        SizeSpread { on_a_day: 1.0, alike: 0.5, trend: 0.0, serial: 0.0, cluster_alike: 0.0 }
     }
 }
 
 impl Default for Goal {
     fn default() -> Self {
-        Goal { find: GoalKind::Stretch, day: None, level: 0.95 }
+        Goal { find: GoalKind::Stretch, day: None, margin: 0.0, width: 0.0, level: 0.95 }
     }
 }
 
@@ -161,6 +177,20 @@ impl SizeRequest {
                 "Correlations are from 0 to below 1, and the trend's standard deviation is 0 or more.".into(),
             );
         }
+        if !(0.0..=s.alike).contains(&s.cluster_alike) || self.cluster_size > 200 {
+            return refuse(
+                "Two subjects of one cluster are alike from 0 to as much as two visits of one subject, and clusters hold up to 200."
+                    .into(),
+            );
+        }
+        let one_each = |n: &[usize; 2]| self.in_clusters() && n.iter().any(|&n| n < 2 * self.cluster_size);
+        if self.designs.iter().any(one_each) {
+            return refuse(format!(
+                "With {} in a cluster each group needs {} or more, so that it has two clusters.",
+                self.cluster_size,
+                2 * self.cluster_size
+            ));
+        }
         if self.designs.is_empty() || self.designs.iter().flatten().any(|&n| !(2..=2000).contains(&n)) {
             return refuse("Give designs with 2 to 2000 per group.".into());
         }
@@ -173,12 +203,22 @@ impl SizeRequest {
         }
         let (first, last) = (self.days[0], self.days[self.days.len() - 1]);
         match (self.goal.find, self.goal.day) {
+            (GoalKind::Onset, _) if !(self.goal.margin > 0.0 && self.goal.width > 0.0) => {
+                refuse("An onset needs a margin and a width above zero.".into())
+            }
+            (GoalKind::Onset, _) if self.transform == Transform::Log && self.goal.margin >= 100.0 => {
+                refuse("Where gaps are ratios the margin is in percent, under 100.".into())
+            }
             (GoalKind::Landmark, None) => refuse("Name the landmark day.".into()),
             (GoalKind::Landmark, Some(day)) if !(day >= first && day <= last) => refuse(format!(
                 "The landmark day must lie between the first and last measuring day, {first} and {last}."
             )),
             _ => Ok(()),
         }
+    }
+
+    pub(crate) fn in_clusters(&self) -> bool {
+        self.cluster_size > 1
     }
 
     /// Mean of a course on the modelled scale, straight between the given days, constant outside.

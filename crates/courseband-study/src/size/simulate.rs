@@ -1,10 +1,11 @@
 //! One simulated study, and counts of many.
 
 use super::request::{GoalKind, SizeRequest};
+use crate::plan::Transform;
 use courseband_engine::special::Rng;
 use courseband_engine::{
-    Basis, Contrast, CriticalValues, Data, Dimension, Estimate, Fit, Model, Serial, Shape, SubjectEffects, SubjectRows,
-    fit,
+    Basis, ClusterEffects, Contrast, CriticalValues, Data, Dimension, Estimate, Fit, Model, Serial, Shape,
+    SubjectEffects, SubjectRows, fit,
 };
 use serde::{Deserialize, Serialize};
 
@@ -59,7 +60,13 @@ impl SizeRequest {
     /// The model that is fitted: that of the simulation, with smooth courses.
     pub(crate) fn model(&self) -> Model {
         Model {
-            shape: if self.days.len() < 4 { Shape::ByTime } else { Shape::Smooth(Basis::Cubic, Dimension::Auto) },
+            shape: match self.goal.find {
+                GoalKind::Average => Shape::ByTime,
+                GoalKind::Slope => Shape::Straight,
+                _ if self.days.len() < 4 => Shape::ByTime,
+                _ => Shape::Smooth(Basis::Cubic, Dimension::Auto),
+            },
+            clusters: if self.in_clusters() { ClusterEffects::Intercept } else { ClusterEffects::None },
             subjects: match (self.spread.alike > 0.0, self.spread.trend > 0.0) {
                 (_, true) => SubjectEffects::Slope,
                 (true, false) => SubjectEffects::Intercept,
@@ -72,12 +79,20 @@ impl SizeRequest {
 
     fn table(&self, design: [usize; 2], rng: &mut Rng) -> Data {
         let s = &self.spread;
-        let level_sd = s.on_a_day * libm::sqrt(s.alike);
+        let shared = if self.in_clusters() { s.cluster_alike } else { 0.0 };
+        let cluster_sd = s.on_a_day * libm::sqrt(shared);
+        let level_sd = s.on_a_day * libm::sqrt(s.alike - shared);
         let rest_sd = s.on_a_day * libm::sqrt(1.0 - s.alike);
         let middle = 0.5 * (self.days[0] + self.days[self.days.len() - 1]);
-        let mut subjects = Vec::new();
+        let (mut subjects, mut housed) = (Vec::new(), 0);
         for (group, count) in self.enrolled(design).into_iter().enumerate() {
-            for _ in 0..count {
+            let mut cluster = 0.0;
+            for k in 0..count {
+                let starts = self.in_clusters() && k % self.cluster_size == 0;
+                if starts {
+                    cluster = cluster_sd * rng.normal();
+                    housed += 1;
+                }
                 let (level, trend) = (level_sd * rng.normal(), s.trend * rng.normal());
                 let leaves = rng.uniform() < self.losses;
                 let last = 1 + rng.below((self.days.len() - 1) as u64) as usize;
@@ -94,10 +109,11 @@ impl SizeRequest {
                         let gap = if group == 1 { self.gap(t) } else { 0.0 };
                         times.push(t);
                         let mean = self.course(&self.control, t) + gap;
-                        responses.push(mean + level + trend * (t - middle) + rest_sd * state);
+                        responses.push(mean + cluster + level + trend * (t - middle) + rest_sd * state);
                     }
                 }
-                subjects.push(SubjectRows { group, times, responses, ..SubjectRows::default() });
+                let cluster = self.in_clusters().then_some(housed);
+                subjects.push(SubjectRows { group, times, responses, cluster, ..SubjectRows::default() });
             }
         }
         Data { groups: 2, subjects, ..Data::default() }
@@ -113,6 +129,23 @@ impl SizeRequest {
             let e = posterior.estimate(&fitted.gap(0, 1, day));
             return shown(&e, day, &CriticalValues::pointwise(self.goal.level));
         }
+        if matches!(self.goal.find, GoalKind::Average | GoalKind::Slope) {
+            let (first, last) = (self.days[0], self.days[self.days.len() - 1]);
+            let contrast = if self.goal.find == GoalKind::Average {
+                let share = 1.0 / self.days.len() as f64;
+                let gaps = self.days[1..].iter().map(|&t| fitted.gap(0, 1, t));
+                gaps.fold(fitted.gap(0, 1, first).times(share), |sum, gap| sum.plus(share, &gap))
+            } else {
+                fitted.gap(0, 1, last).plus(-1.0, &fitted.gap(0, 1, first)).times(1.0 / (last - first))
+            };
+            let e = posterior.estimate(&contrast);
+            let assumed: f64 = match self.goal.find {
+                GoalKind::Average => self.days.iter().map(|&t| self.gap(t)).sum(),
+                _ => self.gap(last) - self.gap(first),
+            };
+            let side = if assumed >= 0.0 { 1.0 } else { -1.0 };
+            return e.se > 0.0 && side * e.mean > CriticalValues::pointwise(self.goal.level).at(e.df) * e.se;
+        }
         let times = self.points();
         let contrasts: Vec<Contrast> = times.iter().map(|&t| fitted.gap(0, 1, t)).collect();
         let estimates: Vec<Estimate> = contrasts.iter().map(|c| posterior.estimate(c)).collect();
@@ -120,7 +153,34 @@ impl SizeRequest {
         let most = estimates.iter().map(|e| e.df).fold(1.0, f64::max);
         let maxima = posterior.family(&contrasts, DIRECTIONS, seed);
         let critical = CriticalValues::simultaneous(&maxima, self.goal.level, least, most);
+        if self.goal.find == GoalKind::Onset {
+            return self.onset_width(&times, &estimates, &critical).is_some_and(|width| width <= self.goal.width);
+        }
         estimates.iter().zip(&times).any(|(e, &t)| shown(e, t, &critical))
+    }
+
+    /// Width of the onset's interval: from the start of the last run to the end in which the band's far limit is beyond the
+    /// margin, to that of the near limit. `None` where either is not reached, or the direction is not the assumed one.
+    fn onset_width(&self, times: &[f64], estimates: &[Estimate], critical: &CriticalValues) -> Option<f64> {
+        let side = if self.gap(*times.last()?) >= 0.0 { 1.0 } else { -1.0 };
+        let margin = match self.transform {
+            Transform::Log => -libm::log1p(-self.goal.margin / 100.0),
+            Transform::Identity => self.goal.margin,
+        };
+        let start = |towards: f64| {
+            let value = |e: &Estimate| side * e.mean + towards * critical.at(e.df) * e.se - margin;
+            let beyond: Vec<f64> = estimates.iter().map(value).collect();
+            let run = beyond.iter().rposition(|&x| x <= 0.0).map_or(0, |k| k + 1);
+            if run == times.len() {
+                return None;
+            }
+            if run == 0 {
+                return Some(times[0]);
+            }
+            let (a, b) = (beyond[run - 1], beyond[run]);
+            Some(times[run - 1] + (times[run] - times[run - 1]) * (-a / (b - a)))
+        };
+        Some(start(-1.0)? - start(1.0)?)
     }
 
     fn points(&self) -> Vec<f64> {

@@ -9,7 +9,7 @@ fn request(days: usize, gap: f64, alike: f64) -> SizeRequest {
         days: (0..days).map(|d| d as f64).collect(),
         control: CourseMeans { name: "control".into(), means: vec![[0.0, 5.0], [last, 5.0]] },
         treated: CourseMeans { name: "treated".into(), means: vec![[0.0, 5.0 + gap], [last, 5.0 + gap]] },
-        spread: SizeSpread { on_a_day: 1.0, alike, trend: 0.0, serial: 0.0 },
+        spread: SizeSpread { on_a_day: 1.0, alike, ..SizeSpread::default() },
         ..SizeRequest::default()
     }
 }
@@ -20,7 +20,7 @@ fn request(days: usize, gap: f64, alike: f64) -> SizeRequest {
 #[test]
 fn landmark_power_agrees_with_the_closed_form() {
     let mut asked = request(3, 0.9, 0.5);
-    asked.goal = Goal { find: GoalKind::Landmark, day: Some(1.0), level: 0.95 };
+    asked.goal = Goal { find: GoalKind::Landmark, day: Some(1.0), ..Goal::default() };
     let n = 20.0;
     let counts = asked.simulate([20, 20], 0, 600);
     let expected = normal_sf(t_quantile(0.975, 2.0 * n - 2.0) - 0.9 / (2.0_f64 / n).sqrt());
@@ -71,4 +71,36 @@ fn impossible_requests_are_refused_with_what_to_do() {
     assert!(bad(&|r| r.treated.means.clear()).contains("treated"));
     assert!(bad(&|r| r.goal.find = GoalKind::Landmark).contains("landmark"));
     assert!(SizeRequest::from_json("{\"dayz\": []}").unwrap_err().message.contains("dayz"));
+}
+
+/// An onset is placed more sharply by more subjects, and not at all without a gap.
+#[test]
+fn an_onset_is_placed_more_sharply_by_more_subjects() {
+    let mut asked = request(8, 0.0, 0.3);
+    asked.treated.means = vec![[0.0, 5.0], [2.0, 5.0], [7.0, 9.0]];
+    asked.goal = Goal { find: GoalKind::Onset, margin: 0.5, width: 3.0, ..Goal::default() };
+    asked.check().unwrap();
+    let met = |n: usize| asked.simulate([n, n], 0, 60).met;
+    let (few, many) = (met(6), met(40));
+    assert!(many > few + 15, "{few} {many}");
+    asked.effect = 0.0;
+    assert!(asked.simulate([10, 10], 0, 40).met <= 2);
+    asked.goal.width = 0.0;
+    assert!(asked.check().unwrap_err().message.contains("above zero"));
+}
+
+/// Cages of four with one treatment each: power falls about as the design effect 1 + 3 rho of a mean says.
+#[test]
+fn clusters_cost_power() {
+    let mut asked = request(3, 1.0, 0.6);
+    asked.goal = Goal { find: GoalKind::Average, ..Goal::default() };
+    let alone = asked.simulate([16, 16], 0, 150).met;
+    asked.cluster_size = 4;
+    asked.spread.cluster_alike = 0.3;
+    asked.designs = vec![[16, 16]];
+    asked.check().unwrap();
+    let housed = asked.simulate([16, 16], 0, 150).met;
+    assert!(housed + 25 < alone, "{alone} {housed}");
+    asked.designs = vec![[6, 6]];
+    assert!(asked.check().unwrap_err().message.contains("two clusters"));
 }
