@@ -19,7 +19,11 @@ import { text } from './text.js';
  * @property {string} alike
  * @property {string} trend
  * @property {number} serial
- * @property {'stretch'|'landmark'} find
+ * @property {'stretch'|'landmark'|'average'|'slope'|'onset'} find
+ * @property {string} margin
+ * @property {string} width
+ * @property {string} clusterSize
+ * @property {string} clusterAlike
  * @property {string} day
  * @property {string} power
  * @property {string} effect
@@ -41,7 +45,7 @@ export function freshForm() {
     controlName: 'control', treatedName: 'treated',
     means: [{ day: '0', control: '100', treated: '100' }, { day: '7', control: '80', treated: '70' }, { day: '14', control: '60', treated: '40' }],
     transform: 'identity', known: 'sd', spread: '18', spreadLow: '', spreadHigh: '', n: '', alike: '0.6', trend: '0', serial: 0,
-    find: 'stretch', day: '14', power: '80', effect: '100',
+    find: 'stretch', day: '14', margin: '5', width: '4', clusterSize: '1', clusterAlike: '0.2', power: '80', effect: '100',
     designs: '4, 6, 8, 10, 12, 16', days: '0, 3, 7, 10, 14', losses: '10', studies: '400', one: 'subject', many: 'subjects',
   };
 }
@@ -104,12 +108,21 @@ export function requestOf(form) {
   const ascending = days.length > 1 && days.every((day, k) => day !== null && (k === 0 || day > /** @type {number} */ (days[k - 1])));
   if (!ascending) problems['days'] = words.days;
   const day = form.find === 'landmark' ? need('day', form.day, any, words.number) : null;
+  const onset = form.find === 'onset';
+  const margin = onset ? need('margin', form.margin, positive, words.positive) : 0;
+  const width = onset ? need('width', form.width, positive, words.positive) : 0;
+  const clusterSize = need('clusterSize', form.clusterSize, (x) => Number.isInteger(x) && x >= 0 && x <= 200, words.clusterSize);
+  const housed = clusterSize > 1;
+  const clusterAlike = housed ? need('clusterAlike', form.clusterAlike, (x) => x >= 0 && x <= alike, words.clusterAlike) : 0;
+  if (housed && designs !== null && designs.some((pair) => pair.some((count) => count < 2 * clusterSize))) {
+    problems['designs'] = words.twoClusters(2 * clusterSize);
+  }
   if (Object.keys(problems).length > 0) return { request: null, low, high, problems };
   const course = (/** @type {string} */ name, /** @type {'control'|'treated'} */ key) => ({ name, means: rows.map((row) => [row.day, row[key]]) });
   const request = {
     days, control: course(form.controlName || 'control', 'control'), treated: course(form.treatedName || 'treated', 'treated'),
-    transform: form.transform, spread: { on_a_day: spread, alike, trend, serial: form.serial }, effect: effect / 100,
-    goal: { find: form.find, day, level: 0.95 }, designs, losses: losses / 100, target: power / 100,
+    transform: form.transform, spread: { on_a_day: spread, alike, trend, serial: form.serial, cluster_alike: clusterAlike }, effect: effect / 100,
+    goal: { find: form.find, day, margin, width, level: 0.95 }, designs, cluster_size: housed ? clusterSize : 0, losses: losses / 100, target: power / 100,
     studies: Math.round(studies), seed: 20260, words: [form.one || 'subject', form.many || 'subjects'],
   };
   return { request, low, high, problems };

@@ -12,8 +12,9 @@
 
 /**
  * @typedef {Object} Plan
- * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null, crossed: string|null}} columns
+ * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null, crossed: string|null, removal: string|null}} columns
  * @property {{row: number, column?: string, reason: string}[]} exclusions
+ * @property {string[]} removed Subjects removed as planned, by hand.
  * @property {{distribution: string, transform: 'identity'|'log', detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
  * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared', period: number|null, range: number|null, roughness: string}} curves
  * @property {'none'|'intercept'|'slope'|'curve'} subjects

@@ -231,3 +231,18 @@ test('effect sizes: folded under the strips, each with its interval', async () =
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('dropout: removal marked by hand, and the days to a level', async () => {
+  const page = await openPage(browser);
+  await enter(page, 'dropout');
+  await page.waitForSelector('.dropout-plots summary');
+  await page.fill('[data-field="level-sought"]', '20');
+  await page.waitForTimeout(700);
+  await rested(page);
+  await page.waitForFunction(() => /Have reached 20/.test(document.querySelector('[data-region="dropout"]')?.textContent ?? ''));
+  await page.locator('.dropout-plots summary').first().click();
+  await page.locator('.dropout-plots input[type=checkbox]').first().check();
+  await page.waitForFunction(() => /Removed as planned, as seen at visits: .*1 of/.test(document.querySelector('[data-region="dropout"]')?.textContent ?? ''));
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

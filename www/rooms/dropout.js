@@ -6,6 +6,7 @@
 import { el, setText, show, whenChanged } from '../dom.js';
 import { plainTime, significant } from '../numbers.js';
 import { text } from '../text.js';
+import { mountEndings, steps } from '../views/endings.js';
 import { mountSensitivity } from '../views/sensitivity.js';
 import { groupClass, smallPlot } from '../views/small-plot.js';
 
@@ -23,11 +24,13 @@ export const dropoutRoom = {
     const about = el('section', { hidden: true }, el('h3', {}, words.estimand), estimand);
     const what = el('section', { class: 'sensitivity' });
     const sensitivity = mountSensitivity(what, acts);
-    root.append(el('div', { class: 'room-head' }, el('h2', {}, words.title)), wait, told, plots, about, what);
+    const ends = el('section', {}, el('h3', {}, words.endings.title));
+    const endings = mountEndings(ends, acts);
+    root.append(el('div', { class: 'room-head' }, el('h2', {}, words.title)), wait, told, plots, ends, about, what);
     const drawn = whenChanged((state) => [state.answers.dropout?.value, state.findings], (state) => {
       const value = state.answers.dropout?.value ?? null;
       told.replaceChildren(...(value?.sentences ?? []).map((/** @type {string} */ one) => el('p', {}, one)));
-      plots.replaceChildren(...(value && state.findings ? [followedPlot(value, state), ...leaversPlot(value, state)] : []));
+      plots.replaceChildren(...(value && state.findings ? [followedPlot(value, state), ...leaversPlot(value, state, acts)] : []));
       setText(estimand, value?.estimand ?? '');
       show(about, value !== null);
     });
@@ -35,6 +38,7 @@ export const dropoutRoom = {
       update(state) {
         const answer = state.answers.dropout;
         drawn(state);
+        endings.update(state);
         sensitivity.update(state);
         const message = answer === null ? words.waiting : answer.status === 'working' ? words.working : answer.message ?? '';
         setText(wait, message);
@@ -48,27 +52,15 @@ export const dropoutRoom = {
 function followedPlot(value, state) {
   const groups = state.findings?.groups ?? [];
   const [first = 0, last = 1] = [state.findings?.visits[0], state.findings?.visits[state.findings.visits.length - 1]];
-  /** A step keeps its height until the next. @param {number[]} times @param {number[]} heights @param {number} before */
-  const steps = (times, heights, before) => {
-    const x = [first];
-    const y = [before];
-    times.forEach((time, k) => {
-      x.push(time, time);
-      y.push(k === 0 ? before : heights[k - 1] ?? before, heights[k] ?? before);
-    });
-    x.push(last);
-    y.push(heights[heights.length - 1] ?? before);
-    return { x, y };
-  };
   const plot = smallPlot({
     label: `${words.followed}. ${value.sentences.join(' ')}`, across: state.findings?.scale.time_word ?? '', up: words.followed, yRange: [0, 1.04], width: 480, height: 220,
-    series: value.groups.map((/** @type {any} */ g) => ({ ...steps(g.time, g.share, 1), joined: true, name: g.group, group: groupClass(groups, g.group) })),
+    series: value.groups.map((/** @type {any} */ g) => ({ ...steps(g.time, g.share, [first, last]), joined: true, name: g.group, group: groupClass(groups, g.group) })),
   });
   return el('figure', { class: 'plot-figure' }, el('figcaption', { class: 'hint' }, words.followedHint), plot);
 }
 
-/** @param {any} value @param {import('../types.js').State} state */
-function leaversPlot(value, state) {
+/** @param {any} value @param {import('../types.js').State} state @param {import('../types.js').Acts} acts */
+function leaversPlot(value, state, acts) {
   const { findings } = state;
   if (value.leavers.length === 0 || !findings) return [];
   const span = (findings.visits[findings.visits.length - 1] ?? 1) - (findings.visits[0] ?? 0);
@@ -84,9 +76,26 @@ function leaversPlot(value, state) {
   });
   const heads = words.heads;
   const rows = value.leavers.map((/** @type {any} */ one) => el('tr', {}, el('th', { scope: 'row' }, one.subject), el('td', {}, one.group),
-    el('td', { class: 'number' }, plainTime(one.last_time, span)), el('td', { class: 'number' }, significant(one.last_value)), el('td', { class: 'number' }, significant(one.course))));
+    el('td', { class: 'number' }, plainTime(one.last_time, span)), el('td', { class: 'number' }, significant(one.last_value)), el('td', { class: 'number' }, significant(one.course)), el('td', {}, removedCell(one, acts))));
   return [el('figure', { class: 'plot-figure' }, el('figcaption', { class: 'hint' }, words.leaversHint), plot,
     el('details', { class: 'as-tables' }, el('summary', {}, words.leaversTable),
       el('div', { class: 'table-scroller tall', tabindex: '0', role: 'region', 'aria-label': words.leaversTable },
         el('table', { class: 'plain-table' }, el('thead', {}, el('tr', {}, ...Object.values(heads).map((head) => el('th', { scope: 'col' }, head)))), el('tbody', {}, ...rows)))))];
+}
+
+/**
+ * Whether one who leaves was removed as planned: told by the table, or by hand.
+ * @param {{subject: string, removed: string|null}} one
+ * @param {import('../types.js').Acts} acts
+ */
+function removedCell(one, acts) {
+  const byHand = acts.look().choices.plan.removed.includes(one.subject);
+  if (one.removed !== null && !byHand) return one.removed;
+  const box = el('input', { type: 'checkbox', 'aria-label': words.endings.mark(one.subject) });
+  box.checked = byHand;
+  box.addEventListener('change', () => acts.choose(words.endings.mark(one.subject), (choices) => {
+    const others = choices.plan.removed.filter((name) => name !== one.subject);
+    return { ...choices, plan: { ...choices.plan, removed: box.checked ? [...others, one.subject] : others } };
+  }));
+  return box;
 }

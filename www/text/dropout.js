@@ -9,7 +9,7 @@ export const dropout = {
   leavers: 'Last values before leaving',
   leaversHint: 'Each dot is one that leaves, at its last visit; lines are the groups\u2019 courses.',
   leaversTable: 'All who leave',
-  heads: { subject: 'Who', group: 'Group', time: 'Last seen', value: 'Last value', course: 'Course of the group then' },
+  heads: { subject: 'Who', group: 'Group', time: 'Last seen', value: 'Last value', course: 'Course of the group then', removed: 'removed as planned' },
   estimand: 'What the main analysis says',
   sensitivity: {
     title: 'If they had gone on otherwise',
@@ -43,5 +43,16 @@ export const dropout = {
     head: ['Shift', 'Gap', 'Lower', 'Upper', 'Share due to what is missing', 'Visits still apart'],
     reminder: 'Under a reference group the limits are conservative.',
     number: 'Give numbers: from, to, and a step above zero; at most 41 shifts.',
+  },
+  endings: {
+    title: 'Planned removal, and the time to a level',
+    column: 'Column that tells of planned removal (empty cells: not removed)',
+    none: 'none: marked by hand in the table of those who leave',
+    level: 'Level of the response (empty: none)',
+    number: 'Give a number here.',
+    chosen: (/** @type {string} */ name) => `Planned removal: ${name || 'no column'}`,
+    mark: (/** @type {string} */ name) => `${name} removed as planned`,
+    removal: 'Share not yet removed as planned; those who miss visits count until they were last seen',
+    reached: 'Share that has not yet reached the level at a visit',
   },
 };

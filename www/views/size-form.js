@@ -83,6 +83,8 @@ export function mountSizeForm(first, changed) {
 
   const sem = plain('n', words.spread.n);
   const day = plain('day', words.goal.day);
+  const onset = el('div', { class: 'field-row' }, plain('margin', words.goal.margin), plain('width', words.goal.width));
+  const clusterAlike = plain('clusterAlike', words.spread.clusterAlike);
   const slider = el('input', { type: 'range', min: '10', max: '100', step: '5', 'aria-label': words.goal.effect });
   slider.addEventListener('input', () => set({ effect: slider.value }));
   const node = el('form', { class: 'size-form' },
@@ -92,9 +94,12 @@ export function mountSizeForm(first, changed) {
     el('fieldset', {}, el('legend', {}, words.spread.title),
       el('div', { class: 'field-row' }, choice('known', words.spread.known, [['sd', words.spread.sd], ['sem', words.spread.sem]]), sem),
       el('div', { class: 'field-row' }, plain('spread', words.spread.value), plain('spreadLow', words.spread.low), plain('spreadHigh', words.spread.high)),
-      asSd, plain('alike', words.spread.alike), plain('trend', words.spread.trend), el('p', { class: 'hint' }, words.spread.more)),
+      asSd, plain('alike', words.spread.alike), plain('trend', words.spread.trend),
+      el('div', { class: 'field-row' }, plain('clusterSize', words.spread.clusterSize), clusterAlike), el('p', { class: 'hint' }, words.spread.more)),
     el('fieldset', {}, el('legend', {}, words.goal.title),
-      choice('find', words.goal.title, [['stretch', words.goal.stretch], ['landmark', words.goal.landmark]]), day,
+      choice('find', words.goal.title, [
+        ['stretch', words.goal.stretch], ['landmark', words.goal.landmark], ['average', words.goal.average], ['slope', words.goal.slope], ['onset', words.goal.onset],
+      ]), day, onset,
       plain('power', words.goal.power), el('div', { class: 'field-row' }, plain('effect', words.goal.effect), slider), el('p', { class: 'hint' }, words.goal.effectHint)),
     el('fieldset', {}, el('legend', {}, words.designs.title),
       plain('designs', words.designs.subjects, { inputmode: 'text' }), el('p', { class: 'hint' }, words.designs.subjectsHint),
@@ -111,6 +116,8 @@ export function mountSizeForm(first, changed) {
     }
     show(sem, form.known === 'sem');
     show(day, form.find === 'landmark');
+    show(onset, form.find === 'onset');
+    show(clusterAlike, Number(form.clusterSize) > 1);
     slider.value = form.effect;
     const { request } = requestOf(form);
     const sd = request ? request['spread'].on_a_day : null;

@@ -1,6 +1,7 @@
 //! Who leaves, and what if those who left had gone on otherwise.
 
 use crate::cohort::Cohort;
+use crate::endings::{EventTimes, level_times, removal_times, removals};
 use crate::evaluate::Evaluation;
 use crate::findings::Stretch;
 use crate::plan::{Plan, Transform};
@@ -28,6 +29,10 @@ pub struct DropoutFindings {
     pub p: Option<f64>,
     /// What is seen, in plain sentences.
     pub sentences: Vec<String>,
+    /// Time to planned removal; `null` where nobody is known to have been removed.
+    pub removal: Option<EventTimes>,
+    /// Time to the plan's level (`comparisons.target`); `null` without one.
+    pub level: Option<EventTimes>,
     /// What the main analysis assumes and estimates.
     pub estimand: String,
     /// Why rows after leaving cannot be filled in here; `null` where they can.
@@ -69,6 +74,8 @@ pub struct Leaver {
     pub last_value: f64,
     /// The group's course then.
     pub course: f64,
+    /// Why it was removed as planned; `null` where it missed visits, or nothing is known.
+    pub removed: Option<String>,
 }
 
 /// What those who left are taken to do.
@@ -150,7 +157,10 @@ impl Study {
     pub fn dropout(&mut self, plan: &Plan) -> Result<DropoutFindings, Refusal> {
         plan.check()?;
         plan.need_normal("Last values before leaving")?;
-        let cohort = Cohort::new(self.answered(plan)?, plan)?;
+        self.answered(plan)?;
+        let Some(reading) = self.kept_reading() else { return Err(Refusal::table("The table could not be read.")) };
+        let cohort = Cohort::new(reading, plan)?;
+        let removed = removals(self.table(), &reading.observations, &cohort, plan)?;
         let fitted = fit(&cohort.data, &cohort.model(plan))
             .map_err(|error| Refusal::plan(crate::remarks::failure(&error, &cohort.groups)))?;
         let last = cohort.visits.last().copied().unwrap_or(0.0);
@@ -185,6 +195,7 @@ impl Study {
                 last_time: t,
                 last_value: back(y),
                 course: back(course),
+                removed: removed[k].clone(),
             });
         }
         let groups: Vec<Leaving> = (0..cohort.groups.len())
@@ -207,9 +218,13 @@ impl Study {
             })
             .collect();
         let p = log_rank(&ends, &events, &group, cohort.groups.len()).ok().map(|test| test.p);
-        let sentences = sentences(&groups, p, plan);
+        let mut sentences = sentences(&groups, p, plan);
+        let removal = removal_times(&cohort, &removed, plan.comparisons.level);
+        let level = level_times(&cohort, plan, plan.comparisons.level);
+        sentences.extend(removal.iter().chain(&level).map(|times| times.sentence.clone()));
         let no_sensitivity = refused(&cohort, &events);
-        Ok(DropoutFindings { groups, leavers, p, sentences, estimand: estimand(plan), no_sensitivity })
+        let estimand = estimand(plan);
+        Ok(DropoutFindings { groups, leavers, p, sentences, removal, level, estimand, no_sensitivity })
     }
 
     /// Gaps when those who left are taken to go on as asked, pooled over imputed tables (Rubin 1987; degrees of freedom

@@ -16,6 +16,8 @@ pub struct Plan {
     pub columns: Columns,
     /// Rows left out, each with its reason.
     pub exclusions: Vec<Exclusion>,
+    /// Subjects that were removed as planned, by name, beside those that `columns.removal` tells.
+    pub removed: Vec<String>,
     /// How cells are read.
     pub reading: ReadingChoice,
     /// Words for what was followed.
@@ -45,6 +47,7 @@ impl Default for Plan {
         Plan {
             columns: Columns::default(),
             exclusions: Vec::new(),
+            removed: Vec::new(),
             reading: ReadingChoice::default(),
             words: Words::default(),
             response: Response::default(),

@@ -72,3 +72,43 @@ fn the_same_seed_gives_the_same_digits_and_bad_requests_say_why() {
     let no_reference = Sensitivity { after: After::Jump, ..Sensitivity::default() };
     assert!(study.sensitivity(&plan, &no_reference).unwrap_err().message.contains("reference"));
 }
+
+/// Removal is told by a column or by hand; those who only miss visits were last seen without it.
+#[test]
+fn planned_removal_is_told_apart_from_missed_visits() {
+    let mut text = String::from("animal,arm,day,y,ended\n");
+    for s in 0..12 {
+        let arm = ["a", "b"][s % 2];
+        for day in 0..6 {
+            // b: every second one is removed at day 3; one of a is lost at day 2.
+            let removed = arm == "b" && s % 4 == 1 && day == 3;
+            let note = if removed { "humane end point" } else { "no" };
+            let y = 10.0
+                + f64::from(day) * if arm == "b" { 2.0 } else { 1.0 }
+                + (s as f64 * 7.0 + f64::from(day) * 3.0) % 5.0 * 0.1;
+            let _ = writeln!(text, "x{s},{arm},{day},{y},{note}");
+            if removed || s == 0 && day == 2 {
+                break;
+            }
+        }
+    }
+    let mut study = Study::open(text.as_bytes()).unwrap();
+    let plan = |more: &str| {
+        Plan::from_json(&format!(r#"{{"columns": {{"removal": "ended"}}, "comparisons": {{"target": 14}}{more}}}"#))
+            .unwrap()
+    };
+    let found = study.dropout(&plan("")).unwrap();
+    let removal = found.removal.as_ref().unwrap();
+    assert_eq!((removal.groups[0].events, removal.groups[1].events), (0, 3));
+    // Six at risk at day 3, three removed; nobody of b is lost.
+    assert_eq!((removal.groups[1].time.clone(), removal.groups[1].share.clone()), (vec![3.0], vec![0.5]));
+    let told = |name: &str| found.leavers.iter().find(|l| l.subject == name).unwrap().removed.clone();
+    assert_eq!((told("x1").as_deref(), told("x0")), (Some("humane end point"), None));
+    let level = found.level.as_ref().unwrap();
+    assert_eq!(level.groups[1].median, Some(2.0));
+    assert!(level.p.unwrap() < 0.01 && level.sentence.contains("Have reached 14"), "{}", level.sentence);
+    let by_hand = study.dropout(&plan(r#", "removed": ["x0"]"#)).unwrap();
+    assert_eq!(by_hand.removal.unwrap().groups[0].events, 1);
+    let unknown = study.dropout(&plan(r#", "removed": ["x99"]"#)).unwrap_err();
+    assert!(unknown.message.contains("x99"));
+}

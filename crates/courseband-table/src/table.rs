@@ -68,6 +68,13 @@ impl Table {
         outline(&long, &profiles, request, error.as_ref())
     }
 
+    /// A cell as written, by its line in the file and its column's name.
+    #[must_use]
+    pub fn cell_at(&self, line: usize, column: &str) -> Option<&str> {
+        let (record, at) = (self.sheet.record_at(line)?, self.names().iter().position(|name| name == column)?);
+        Some(self.sheet.cell(record, at))
+    }
+
     /// Names of the columns, in the long form of the table, nearly all of whose cells are numbers of more than two kinds.
     #[must_use]
     pub fn number_columns(&self, request: &Request) -> Vec<String> {

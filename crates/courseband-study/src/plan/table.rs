@@ -67,6 +67,8 @@ pub struct Columns {
     pub block: Option<String>,
     /// A second factor of the subjects, crossed with the groups, such as the genotype.
     pub crossed: Option<String>,
+    /// What is written where a subject was removed as planned, such as at a humane end point; empty elsewhere.
+    pub removal: Option<String>,
 }
 
 /// One row left out.
