@@ -33,7 +33,7 @@
 /** @typedef {CurvePoints & {group: string, critical: number|Series, support: [number, number], at_visits: CurvePoints}} Curve */
 /** @typedef {{time: number[], estimate: Series, se: Series, lower: Series, upper: Series, response_estimate: Series, response_lower: Series, response_upper: Series}} DifferencePoints */
 /** @typedef {{start: number, end: number, direction?: 'above'|'below', open_start: boolean, open_end: boolean}} Stretch */
-/** @typedef {DifferencePoints & {kind?: 'pair'|'factor'|'interaction'|'trend', from: string, to: string, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
+/** @typedef {DifferencePoints & {kind?: 'pair'|'factor'|'interaction'|'trend', from: string, to: string, p_adjusted?: number|null, critical: number|Series, support: [number, number]|null, margin: [number, number], stretches: Stretch[], beyond: Stretch[], inside: Stretch[], at_visits: DifferencePoints}} Difference */
 /** @typedef {{row: number, column: string, value: string, message: string, kept?: boolean, stops?: boolean}} Problem `kept`: the value is fitted all the same. `stops`: nothing is computed before it is mended or left out. */
 /** @typedef {{kind: string, pair: number|null, headline: string, text: string, depends: string}} Sentence */
 /** @typedef {{name: string, subjects: number, rows: number, last_times: number[], at_visit: number[]}} GroupInfo */

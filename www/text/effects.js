@@ -10,6 +10,7 @@ export const effects = {
   area: 'area between the courses',
   onset: (/** @type {string} */ margin) => `passes ${margin} for good`,
   later: (/** @type {number} */ target, /** @type {string} */ word) => `reaches ${target} later by (${word}s)`,
+  shared: (/** @type {number} */ pairs) => `one shared course: chance of so large a largest gap${pairs > 1 ? `, over all ${pairs} at once` : ''}`,
   level: 'average gap is zero: chance of one so large',
   shape: 'gap is alike at all times: chance of one so uneven',
   group: {

@@ -57,7 +57,7 @@ function pairTable(effects, findings, k) {
   const later = row(words.later(findings.plan.comparisons.target, word), effects.to_level);
   return table(name, groupClass(findings.groups, d.to), [
     row(words.landmark(word, effects.landmark_time === null ? '' : times(effects.landmark_time)), effects.landmark),
-    row(words.average, effects.average), row(words.area, effects.area), onset, later, chance(words.level, effects.level_p), chance(words.shape, effects.shape_p),
+    row(words.average, effects.average), row(words.area, effects.area), onset, later, chance(words.shared(findings.differences.length), d.p_adjusted), chance(words.level, effects.level_p), chance(words.shape, effects.shape_p),
   ]);
 }
 

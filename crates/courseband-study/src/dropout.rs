@@ -8,7 +8,7 @@ use crate::plan::{Plan, Transform};
 use crate::refusal::Refusal;
 use crate::sentences::{joined, number, plain};
 use crate::study::Study;
-use courseband_engine::special::DirectionMaxima;
+use courseband_engine::special::{DirectionMaxima, normal_quantile};
 use courseband_engine::usual::{kaplan_meier, log_rank, pool_curves};
 use courseband_engine::{AfterLeaving, CriticalValues, Data, Filling, Imputer, fit};
 use serde::{Deserialize, Serialize};
@@ -163,10 +163,10 @@ impl Study {
         let removed = removals(self.table(), &reading.observations, &cohort, plan)?;
         let fitted = fit(&cohort.data, &cohort.model(plan))
             .map_err(|error| Refusal::plan(crate::remarks::failure(&error, &cohort.groups)))?;
-        let last = cohort.visits.last().copied().unwrap_or(0.0);
         let ends: Vec<f64> = cohort.data.subjects.iter().filter_map(|s| s.times.last().copied()).collect();
-        let events: Vec<bool> = ends.iter().map(|&t| t < last).collect();
         let group: Vec<usize> = cohort.data.subjects.iter().map(|s| s.group).collect();
+        let planned = planned_ends(&cohort);
+        let events: Vec<bool> = ends.iter().zip(&group).map(|(&t, &g)| t < planned[g]).collect();
         let log = plan.response.transform == Transform::Log;
         let back = |y: f64| if log { libm::exp(y) } else { y };
         let posterior = fitted.plug_in();
@@ -219,6 +219,12 @@ impl Study {
             .collect();
         let p = log_rank(&ends, &events, &group, cohort.groups.len()).ok().map(|test| test.p);
         let mut sentences = sentences(&groups, p, plan);
+        sentences.extend(ends_said(
+            &cohort,
+            &planned,
+            plan,
+            self.kept_reading().map(|r| r.observations.time_word.as_str()),
+        ));
         let removal = removal_times(&cohort, &removed, plan.comparisons.level);
         let level = level_times(&cohort, plan, plan.comparisons.level);
         sentences.extend(removal.iter().chain(&level).map(|times| times.sentence.clone()));
@@ -356,6 +362,40 @@ fn filling(cohort: &Cohort, asked: &Sensitivity) -> Result<Filling, Refusal> {
     })
 }
 
+/// When each group's follow-up ends as planned: its own last visit. Where nobody shares the last visit, within a
+/// twentieth of the follow-up of it.
+fn planned_ends(cohort: &Cohort) -> Vec<f64> {
+    let first = cohort.visits.first().copied().unwrap_or(0.0);
+    (0..cohort.groups.len())
+        .map(|g| {
+            let end = cohort.supports[g][1];
+            let own = || cohort.data.subjects.iter().filter(|s| s.group == g);
+            let there = own().filter(|s| s.times.last() == Some(&end)).count();
+            let shared = there > 1 || own().count() < 3;
+            if shared { end } else { end - 0.05 * (end - first) }
+        })
+        .collect()
+}
+
+/// What is taken as the planned end, where that is not the last visit of all.
+fn ends_said(cohort: &Cohort, planned: &[f64], plan: &Plan, time_word: Option<&str>) -> Vec<String> {
+    let last = cohort.visits.last().copied().unwrap_or(0.0);
+    let word = plan.words.time.as_deref().or(time_word).unwrap_or("time");
+    let mut all = Vec::new();
+    let early = |g: &usize| cohort.supports[*g][1] < last - 0.05 * (last - cohort.visits[0]);
+    for g in (0..planned.len()).filter(early) {
+        all.push(format!(
+            "{} ends at {word} {}, before the others: that is taken as its planned end.",
+            cohort.groups[g].name,
+            plain(cohort.supports[g][1])
+        ));
+    }
+    if (0..planned.len()).any(|g| planned[g] < cohort.supports[g][1]) {
+        all.push("Days of the last visit differ between subjects: being seen in the last twentieth of the follow-up counts as staying.".into());
+    }
+    all
+}
+
 fn sentences(groups: &[Leaving], p: Option<f64>, plan: &Plan) -> Vec<String> {
     let words = &plan.words.subjects;
     let counts: Vec<String> = groups.iter().map(|g| format!("{} of {} in {}", g.left, g.subjects, g.group)).collect();
@@ -370,11 +410,14 @@ fn sentences(groups: &[Leaving], p: Option<f64>, plan: &Plan) -> Vec<String> {
         all.push(format!("{how} (log-rank {p})."));
     }
     for g in groups {
-        if let Some(last) = g.leavers_last.filter(|last| last.abs() * libm::sqrt(g.left as f64) > 1.5 && g.left >= 2) {
+        // Normal limits at 5 %, shared by the groups.
+        let limit = normal_quantile(1.0 - 0.025 / groups.len() as f64);
+        if let Some(last) = g.leavers_last.filter(|last| last.abs() * libm::sqrt(g.left as f64) > limit && g.left >= 3)
+        {
             let side = if last > 0.0 { "above" } else { "below" };
             all.push(format!(
                 "In {} those who leave were last seen {} their group's course, by {} standard deviations on average: \
-                 who leaves depends on the values.",
+                 who leaves seems to depend on the values.",
                 g.group,
                 side,
                 number(last.abs(), 1)

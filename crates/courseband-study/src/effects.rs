@@ -100,8 +100,7 @@ impl Evaluation<'_> {
             })
             .filter(|(_, e)| e.se > 0.0)
             .collect();
-        let most =
-            members.iter().map(|(_, e)| *e).max_by(|a, b| (a.mean.abs() / a.se).total_cmp(&(b.mean.abs() / b.se)))?;
+        let most = members.iter().map(|(_, e)| *e).max_by(|a, b| telling(a).total_cmp(&telling(b)))?;
         let contrasts: Vec<Contrast> = members.into_iter().map(|(c, _)| c).collect();
         let maxima = self.posterior.family(&contrasts, SHAPE_DIRECTIONS, self.plan.seed);
         Some(maxima.tail(most.mean.abs() / most.se, Some(most.df).filter(|df| df.is_finite())).clamp(0.0, 1.0))
@@ -330,6 +329,11 @@ impl Evaluation<'_> {
         });
         [parts.next(), parts.next()]
     }
+}
+
+/// How much a point says by itself: minus the log of its chance, so that few degrees of freedom count.
+fn telling(e: &Estimate) -> f64 {
+    -libm::log(t_sf(e.mean.abs() / e.se, e.df).max(1e-300))
 }
 
 /// When a course first lies on the other side of `level`, between points by a straight line; minus infinity where

@@ -265,7 +265,7 @@ impl Speaker<'_> {
     fn rest(&self) -> Option<String> {
         let d = self.difference;
         let support = d.support?;
-        let covered: f64 = d.stretches.iter().chain(&d.inside).map(|s| s.end - s.start).sum();
+        let covered = covered(d.stretches.iter().chain(&d.inside));
         if covered >= 0.999 * (support[1] - support[0]) && support[1] > support[0] {
             return None;
         }
@@ -355,10 +355,25 @@ pub(crate) fn percent(level: f64) -> String {
     format!("{} %", plain((level * 1e6).round() / 1e4))
 }
 
-/// A ratio and its limits as percent with one precision.
+/// A ratio and its limits as percent with one precision; a limit that excludes 100 percent is not printed as that.
 fn shares(estimate: f64, lower: f64, upper: f64) -> [String; 3] {
-    let digits = decimals(100.0 * (upper - lower)).min(2);
-    [estimate, lower, upper].map(|x| format!("{} %", number(100.0 * x, digits)))
+    let least = decimals(100.0 * (upper - lower)).min(2);
+    let one =
+        |digits: usize| [lower, upper].iter().any(|x| *x != 1.0 && number(100.0 * x, digits) == number(100.0, digits));
+    let digits = (least..least + 4).find(|&digits| !one(digits)).unwrap_or(least);
+    [estimate, lower, upper].map(|ratio| format!("{} %", number(100.0 * ratio, digits)))
+}
+
+/// Length of time that runs cover together; they may overlap.
+fn covered<'a>(runs: impl Iterator<Item = &'a Stretch>) -> f64 {
+    let mut all: Vec<(f64, f64)> = runs.map(|s| (s.start, s.end)).collect();
+    all.sort_by(|a, b| a.0.total_cmp(&b.0));
+    let (mut sum, mut reached) = (0.0, f64::NEG_INFINITY);
+    for (start, end) in all {
+        sum += (end - start.max(reached)).max(0.0);
+        reached = reached.max(end);
+    }
+    sum
 }
 
 /// Decimals that give a quantity of this width two or three digits.

@@ -70,7 +70,12 @@ impl Speaker<'_> {
             Some((points.response_estimate[k]?, points.response_lower[k]?, points.response_upper[k]?))
         };
         let (estimate, lower, upper) = at(&d.at_visits).or_else(|| at(&d.grid))?;
-        let digits = decimals(upper - lower) + usize::from(self.findings.scale.ratio);
+        let rest = if self.findings.scale.ratio { 1.0 } else { 0.0 };
+        let least = decimals(upper - lower) + usize::from(self.findings.scale.ratio);
+        let at_rest =
+            |digits: usize| [lower, upper].iter().any(|x| *x != rest && number(*x, digits) == number(rest, digits));
+        // A limit that excludes no difference is not printed as none.
+        let digits = (least..least + 4).find(|&digits| !at_rest(digits)).unwrap_or(least);
         let [e, l, u] = [estimate, lower, upper].map(|value| number(value, digits));
         let what = match (d.kind, self.findings.scale.ratio) {
             (ComparisonKind::Trend, false) => "the change per step is",
