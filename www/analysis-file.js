@@ -3,6 +3,7 @@
  * fingerprint. Reading one refuses what it cannot keep to the last digit.
  */
 
+import { freshFigure } from './figure-choices.js';
 import { completePlan } from './plan.js';
 import { text } from './text.js';
 
@@ -69,7 +70,7 @@ export function analysisFrom(json) {
     fixed: read.fixed === true ? completePlan(choices.plan) : read.fixed ? completePlan(read.fixed) : null,
     choices: {
       plan: completePlan(choices.plan), called: choices.called ?? {}, noun: choices.noun ?? { ...text.plan.choices.noun.default },
-      leftOut: choices.leftOut ?? [], edits: choices.edits ?? {}, masks: choices.masks ?? null,
+      leftOut: choices.leftOut ?? [], edits: choices.edits ?? {}, masks: choices.masks ?? null, figure: { ...freshFigure(), ...choices.figure },
       markers: choices.markers ?? { columns: null, rate: 0.05 },
     },
   };

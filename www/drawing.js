@@ -33,6 +33,17 @@ export function stripsSvg(drawing, view) {
 }
 
 /**
+ * The same strips as the bytes of a PDF file, lines and text.
+ * @param {{findings: string, traces: string}} drawing
+ * @param {Record<string, any>} view
+ * @param {string} title
+ * @returns {Uint8Array}
+ */
+export function stripsPdf(drawing, view, title) {
+  return wasm_bindgen.strips_pdf(drawing.findings, drawing.traces, JSON.stringify(view), title);
+}
+
+/**
  * Tables as the bytes of a workbook; `about` are lines for its first sheet.
  * @param {any[]} tables
  * @param {string[]} about

@@ -4,6 +4,7 @@
  */
 
 import { changedSentences, onset, onsetChange } from './changes.js';
+import { freshFigure } from './figure-choices.js';
 import { completePlan, defaultPlan } from './plan.js';
 import { firstStop, nearest, stops } from './reading.js';
 import { text } from './text.js';
@@ -15,7 +16,7 @@ import { text } from './text.js';
 /** @returns {Choices} */
 export function freshChoices() {
   return {
-    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], edits: {}, masks: null, markers: { columns: null, rate: 0.05 },
+    plan: defaultPlan(), called: {}, noun: { ...text.plan.choices.noun.default }, leftOut: [], edits: {}, figure: freshFigure(), masks: null, markers: { columns: null, rate: 0.05 },
   };
 }
 

@@ -105,6 +105,21 @@
 /** @typedef {{row: number, column: string|null, reason: string, seen: boolean, masked?: boolean}} LeftOut `column`: only this cell of a wide table. `masked`: judged with the groups' names masked. */
 
 /**
+ * The figure that is given out.
+ * @typedef {Object} FigureChoices
+ * @property {string} width Millimetres, as typed.
+ * @property {string} font Points, as typed.
+ * @property {{courses: boolean, gaps: boolean, followed: boolean}} panels
+ * @property {boolean} bands
+ * @property {boolean} points
+ * @property {boolean} captions
+ * @property {string[]} order Names of groups from the first on.
+ * @property {Record<string, string>} names Names in the figure by those of the findings.
+ * @property {string} valueTitle
+ * @property {string} timeTitle
+ */
+
+/**
  * Everything that undo covers.
  * @typedef {Object} Choices
  * @property {Plan} plan
@@ -112,6 +127,7 @@
  * @property {{one: string, many: string}} noun
  * @property {LeftOut[]} leftOut
  * @property {{columns: string[]|null, rate: number}} markers Response columns to go through (`null`: all), and the false-discovery rate.
+ * @property {FigureChoices} figure
  * @property {Record<string, string>|null} masks Names of the groups to what is shown instead; `null`: shown.
  * @property {Record<string, {text: string, base: string}>} edits Paragraphs of the report that the author rewrote.
  */

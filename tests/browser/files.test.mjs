@@ -195,3 +195,126 @@ test('a plan that is fixed is saved, and its departures outlive a reopening', as
   await page.context().close();
   await again.context().close();
 });
+
+test('the figure: choices are seen in it, undone, kept in the analysis; PDF has lines and text', async () => {
+  const page = await openPage(browser);
+  await page.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 90000 });
+  await enter(page, 'report');
+  await page.waitForSelector('[data-act="save-svg"]:not([disabled])');
+  const svg = async () => (await saved(page, 'save-svg')).bytes.toString();
+  const whole = await svg();
+  assert.match(whole, /Followed/);
+  await page.locator('.figure-choices > summary').click();
+  await page.uncheck('[data-figure="followed"]');
+  await page.uncheck('[data-figure="points"]');
+  await page.fill('[data-field="value-title"]', 'Area in mm²');
+  await page.fill('[data-group="Plain gauze"]', 'Control');
+  await page.locator('[data-up="Plain gauze"]').click();
+  const changed = await svg();
+  assert.doesNotMatch(changed, /Followed|Plain gauze|wound area/);
+  assert.match(changed, /Area in mm²/);
+  assert.match(changed, /Control/);
+  assert.ok(changed.length < 0.8 * whole.length);
+  // The order is that of the labels' colours: the first colour of the print palette is now another group's.
+  assert.deepEqual(await page.locator('.figure-groups input').evaluateAll((all) => all.map((input) => input.dataset.group)).then((all) => all.length), 3);
+  const pdf = (await saved(page, 'save-pdf')).bytes.toString('latin1');
+  assert.match(pdf, /^%PDF-1\.4/);
+  assert.doesNotMatch(pdf, /\/Image/);
+  const hex = (text) => Array.from(text, (letter) => letter.charCodeAt(0).toString(16).toUpperCase().padStart(2, '0')).join('');
+  assert.ok(pdf.includes(hex('Control')) && pdf.includes(hex('Area')) && !pdf.includes(hex('Followed')));
+  // 170 mm are 482 points; the figure may end on a whole pixel.
+  const [, points] = /\/MediaBox \[0 0 ([\d.]+) /.exec(pdf);
+  assert.ok(Math.abs(Number(points) - 481.9) < 1.5, points);
+  // Letters that a PDF reader lacks are named, and nothing is saved.
+  await page.fill('[data-group="Gel film"]', '水');
+  await page.click('[data-act="save-pdf"]');
+  await page.waitForFunction(() => /‘水’.*SVG/.test(document.querySelector('[data-region="figure-state"]').textContent));
+  await page.fill('[data-group="Gel film"]', 'Control');
+  assert.match(await page.locator('.figure-choices .complaint').innerText(), /Two groups would be called/);
+  // Undo takes figure choices back one by one.
+  await page.locator('.room-report .room-head h2').click();
+  for (let k = 0; k < 8; k += 1) await page.keyboard.press('Control+z');
+  await page.waitForFunction(() => document.querySelector('[data-figure="followed"]').checked);
+  assert.equal(await svg(), whole);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});
+
+test('the exported SVG, as a renderer of pictures shows it, is the canvas of the page', async () => {
+  const page = await openPage(browser, { bypassCSP: true });
+  const apart = await page.evaluate(async () => {
+    const table = await (await fetch('./demo-data/wounds.csv')).text();
+    const session = new wasm_bindgen.Session();
+    session.open(new TextEncoder().encode(table));
+    const plan = JSON.stringify({ response: { transform: 'log' }, comparisons: { small_sample: 'df', margin: 10, margin_unit: 'percent' } });
+    const [findings, traces] = [session.run(plan), session.traces()];
+    const look = { width: 700, ratio: 2, head_room: 24, theme: 'print', noun: 'mice', letters: false, font: 12 };
+    const canvas = document.createElement('canvas');
+    wasm_bindgen.draw_strips(canvas, findings, traces, JSON.stringify(look));
+    const image = new Image();
+    image.src = `data:image/svg+xml;charset=utf-8,${encodeURIComponent(wasm_bindgen.strips_svg(findings, traces, JSON.stringify({ ...look, ratio: 1 })))}`;
+    await image.decode();
+    const other = document.createElement('canvas');
+    [other.width, other.height] = [canvas.width, canvas.height];
+    other.getContext('2d').drawImage(image, 0, 0, canvas.width, canvas.height);
+    const pixels = (one) => one.getContext('2d').getImageData(0, 0, canvas.width, canvas.height).data;
+    const [a, b] = [pixels(canvas), pixels(other)];
+    // Means of blocks of 8 x 8 device pixels: edges may fall on neighbouring pixels.
+    const block = 8;
+    let [sum, worst, blocks, inked] = [0, 0, 0, 0];
+    for (let y = 0; y + block <= canvas.height; y += block) {
+      for (let x = 0; x + block <= canvas.width; x += block) {
+        let [one, two] = [0, 0];
+        for (let dy = 0; dy < block; dy += 1) {
+          for (let dx = 0; dx < block; dx += 1) {
+            const at = 4 * ((y + dy) * canvas.width + x + dx);
+            one += a[at] + a[at + 1] + a[at + 2];
+            two += b[at] + b[at + 1] + b[at + 2];
+          }
+        }
+        const gap = Math.abs(one - two) / (3 * block * block);
+        sum += gap;
+        worst = Math.max(worst, gap);
+        blocks += 1;
+        inked += one < 3 * 250 * block * block ? 1 : 0;
+      }
+    }
+    return { mean: sum / blocks, worst, inked: inked / blocks, size: [canvas.width, canvas.height, image.naturalWidth, image.naturalHeight] };
+  });
+  assert.ok(apart.inked > 0.15, JSON.stringify(apart));
+  // Of 255. A strip, a band or a curve out of place would give a worst block of 60 and more.
+  assert.ok(apart.mean < 1.5 && apart.worst < 60, JSON.stringify(apart));
+  await page.context().close();
+});
+
+test('100 subjects with 40 visits: the cursor is read within a frame', async () => {
+  const page = await openPage(browser);
+  let seed = 5;
+  const random = () => { seed = (seed * 16807) % 2147483647; return seed / 2147483647 - 0.5; };
+  const rows = ['id,arm,day,size'];
+  for (let s = 0; s < 100; s += 1) for (let day = 0; day < 40; day += 1) rows.push(`s${s},${s % 2 ? 'b' : 'a'},${day},${(10 + 0.05 * day * (s % 2) + random()).toFixed(3)}`);
+  await paste(page, rows.join('\n'));
+  await page.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 180000 });
+  const times = await page.evaluate(async () => {
+    const slider = document.querySelector('[role="slider"]');
+    const { left, width, top, height } = slider.getBoundingClientRect();
+    const found = [];
+    for (let k = 0; k < 60; k += 1) {
+      const started = performance.now();
+      const move = { bubbles: true, clientX: left + ((k * 37) % 100) / 100 * width, clientY: top + height / 2, pointerType: 'mouse' };
+      slider.dispatchEvent(new PointerEvent('pointermove', move));
+      // The state is shown in a microtask; layout is forced by asking for it.
+      await Promise.resolve();
+      await Promise.resolve();
+      document.body.getBoundingClientRect();
+      found.push(performance.now() - started);
+    }
+    const texts = slider.getAttribute('aria-valuetext');
+    return { found: found.sort((a, b) => a - b), texts };
+  });
+  assert.ok(times.texts);
+  const [middle, late] = [times.found[30], times.found[56]];
+  assert.ok(middle < 16 && late < 32, `middle ${middle} ms, 95 % ${late} ms`);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

@@ -4,11 +4,12 @@ import assert from 'node:assert/strict';
 import { test } from 'node:test';
 import { NotOpened, analysisFrom, analysisText, departures, fingerprintOf } from '../../www/analysis-file.js';
 import { csvCell, csvOf, htmlOf } from '../../www/exports.js';
+import { freshFigure, orderOf, sharedName, viewOf } from '../../www/figure-choices.js';
 import { defaultPlan } from '../../www/plan.js';
-import { withEdits } from '../../www/views/report-text.js';
+import { editsIn, withEdits } from '../../www/views/report-text.js';
 import { designsIn, freshForm, numbersIn, requestOf, schedulesOf } from '../../www/size-form.js';
 
-const choices = { plan: { ...defaultPlan(), subjects: 'slope' }, called: { a: 'b' }, noun: { one: 'mouse', many: 'mice' }, leftOut: [{ row: 3, column: null, reason: 'lost', seen: true }], edits: {}, masks: { a: 'Group B' }, markers: { columns: ['x'], rate: 0.1 } };
+const choices = { plan: { ...defaultPlan(), subjects: 'slope' }, called: { a: 'b' }, noun: { one: 'mouse', many: 'mice' }, leftOut: [{ row: 3, column: null, reason: 'lost', seen: true }], edits: {}, figure: { ...freshFigure(), width: '85', order: ['b'] }, masks: { a: 'Group B' }, markers: { columns: ['x'], rate: 0.1 } };
 
 test('an analysis comes back as it was saved, to the byte', async () => {
   const table = new Uint8Array(70000).map((_, k) => k % 251);
@@ -67,4 +68,27 @@ test('the sample-size form makes a request or says what is wrong where', () => {
   const wrong = requestOf({ ...freshForm(), days: '3, 2', alike: '1', power: 'x' });
   assert.deepEqual(Object.keys(wrong.problems).sort(), ['alike', 'days', 'power']);
   assert.deepEqual(schedulesOf([0, 1, 4]).find((one) => one.name === 'even').days, [0, 2, 4]);
+});
+
+test('what was chosen for the figure makes its view', () => {
+  const figure = { ...freshFigure(), width: '85', font: '7', order: ['c', 'gone', 'a'], names: { a: 'Control' }, valueTitle: ' mass (g) ' };
+  const groups = ['a', 'b', 'c'];
+  assert.deepEqual(orderOf(figure, groups), ['c', 'a', 'b']);
+  const view = viewOf(figure, groups, { openPairs: [1], noun: 'mice' });
+  assert.deepEqual([view.width, view.letters, view.order, view.names, view.value_title, view.time_title], [321, true, [2, 0, 1], ['Control', '', ''], 'mass (g)', null]);
+  assert.ok(Math.abs(view.font - 28 / 3) < 1e-12);
+  assert.equal(sharedName(figure, groups), null);
+  assert.equal(sharedName({ ...figure, names: { a: 'b' } }, groups), 'b');
+});
+
+test('an edit follows its numbers when paragraphs come and go or are worded anew', () => {
+  const edits = { 'results.0': { text: 'mine', base: 'Apart from day 7.1 by 3.' }, 'results.1': { text: 'other', base: 'Nothing here.' } };
+  const section = (paragraphs) => ({ sections: [{ key: 'results', paragraphs }] });
+  const shown = (paragraphs) => withEdits(section(paragraphs), edits).sections[0].paragraphs;
+  assert.deepEqual(shown(['A new one, 4.', 'Apart from day 7.1 by 3.', 'Nothing here.']), ['A new one, 4.', 'mine', 'other']);
+  assert.deepEqual(shown(['It comes apart at day 7.1, by 3.', 'Nothing here.']), ['mine', 'other']);
+  // Another number, or another text without any: the composed one is shown, and the edit is flagged there.
+  assert.deepEqual(shown(['Apart from day 7.2 by 3.', 'Nothing there.']), ['Apart from day 7.2 by 3.', 'Nothing there.']);
+  assert.deepEqual(editsIn('results', ['Apart from day 7.2 by 3.', 'Nothing there.'], edits), ['results.0', 'results.1']);
+  assert.deepEqual(editsIn('results', [], edits), []);
 });

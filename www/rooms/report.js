@@ -6,8 +6,9 @@
 import { el, setText, show, whenChanged } from '../dom.js';
 import { text } from '../text.js';
 import { mountChange } from '../views/change.js';
+import { figurePart } from '../views/report-figure.js';
 import { markersPart } from '../views/markers.js';
-import { analysisPart, figurePart, givePart, itemsPart, tablesPart } from '../views/report-parts.js';
+import { analysisPart, givePart, itemsPart, tablesPart } from '../views/report-parts.js';
 import { sectionNode, withEdits } from '../views/report-text.js';
 
 const words = text.report;

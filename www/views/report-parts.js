@@ -1,10 +1,9 @@
-/** The report's figure, tables, items, and the files that are given out. */
+/** The report's tables, items, and the files that are given out. */
 
 import { departures } from '../analysis-file.js';
-import { el, setText, show, whenChanged } from '../dom.js';
-import { stripsSvg, tablesXlsx } from '../drawing.js';
-import { csvOf, fileName, htmlOf, pngOf, save } from '../exports.js';
-import { parseNumber } from '../numbers.js';
+import { el, setText, whenChanged } from '../dom.js';
+import { tablesXlsx } from '../drawing.js';
+import { csvOf, fileName, htmlOf, save } from '../exports.js';
 import { text } from '../text.js';
 import { plainTable } from './plain-table.js';
 
@@ -12,61 +11,7 @@ import { plainTable } from './plain-table.js';
 /** @typedef {import('../types.js').Acts} Acts */
 
 const words = text.report;
-const PX_PER_MM = 96 / 25.4;
 const XLSX = 'application/vnd.openxmlformats-officedocument.spreadsheetml.sheet';
-
-/** @param {string} label @param {HTMLElement} input */
-const field = (label, input) => el('label', { class: 'field' }, el('span', {}, label), input);
-
-/** @param {Acts} acts */
-export function figurePart(acts) {
-  /** @type {State|null} */
-  let last = null;
-  let svgText = '';
-  const width = el('input', { type: 'text', inputmode: 'decimal', value: '170', 'data-field': 'figure-width' });
-  const font = el('input', { type: 'text', inputmode: 'decimal', value: '8', 'data-field': 'figure-font' });
-  const column = el('select', {}, el('option', { value: '170' }, words.columns.two), el('option', { value: '85' }, words.columns.one), el('option', { value: '' }, words.columns.own));
-  const dpi = el('select', {}, el('option', { value: '300' }, '300'), el('option', { value: '600' }, '600'));
-  const picture = el('img', { class: 'report-figure', alt: '' });
-  const said = el('span', { class: 'hint', role: 'status' });
-  const name = () => fileName(last?.answers.report?.value?.title ?? 'courseband');
-  const mark = () => (last?.source?.kind === 'demo' ? '-invented' : '');
-  const asSvg = el('button', { type: 'button', 'data-gives': '', 'data-act': 'save-svg', onclick: () => save(`${name()}${mark()}.svg`, svgText, 'image/svg+xml') }, words.asSvg);
-  const asPng = el('button', { type: 'button', 'data-gives': '', 'data-act': 'save-png', onclick: async () => {
-    const png = await pngOf(svgText, Number(dpi.value));
-    if (png) save(`${name()}${mark()}.png`, png, 'image/png');
-    else setText(said, words.noPng);
-  } }, words.asPng);
-  column.addEventListener('change', () => { if (column.value !== '') width.value = column.value; redraw(); });
-  width.addEventListener('input', () => { column.value = ['85', '170'].includes(width.value) ? width.value : ''; redraw(); });
-  font.addEventListener('input', redraw);
-
-  function redraw() {
-    if (!last?.drawing || !last.findings) return;
-    const mm = Math.min(400, Math.max(50, parseNumber(width.value) ?? 170));
-    const points = Math.min(16, Math.max(5, parseNumber(font.value) ?? 8));
-    svgText = stripsSvg(last.drawing, {
-      width: Math.round(mm * PX_PER_MM), ratio: 1, head_room: 0, theme: 'print', letters: mm < 120, open_pairs: last.openPairs,
-      noun: last.choices.noun.many, font: (points * 96) / 72,
-    });
-    picture.src = `data:image/svg+xml;charset=utf-8,${encodeURIComponent(svgText)}`;
-    picture.alt = last.findings.sentences.map((sentence) => sentence.headline).join(' ');
-  }
-  const changed = whenChanged((state) => [state.drawing, state.openPairs, state.status], redraw);
-  const node = el('section', { class: 'report-figure-part' }, el('h3', {}, words.figure), picture,
-    el('div', { class: 'field-row' }, field(words.columnsLabel, column), field(words.figureWidth, width), field(words.figureFont, font), field(words.resolution, dpi)),
-    el('p', {}, asSvg, ' ', asPng, ' ', said));
-  return {
-    node,
-    drawing: () => svgText,
-    /** @param {State} state */
-    update(state) {
-      last = state;
-      show(node, state.drawing !== null && state.findings !== null);
-      changed(state);
-    },
-  };
-}
 
 /** @param {any} report @param {State} state */
 export function tablesPart(report, state) {

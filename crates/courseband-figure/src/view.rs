@@ -51,6 +51,40 @@ pub struct View {
     pub letters: Option<bool>,
     /// Lines of another model, laid over the courses.
     pub over: Vec<OverLine>,
+    /// Which strips are drawn.
+    pub panels: Panels,
+    /// Draws the bands of the courses. Those of the gaps are always drawn: they carry the finding.
+    pub bands: bool,
+    /// Draws the subjects.
+    pub points: bool,
+    /// Draws the lines of explanation over the strips.
+    pub captions: bool,
+    /// Groups from the first to the last, by index into the findings; empty: as they are.
+    pub order: Vec<usize>,
+    /// Names of the groups by index into the findings; empty ones: as they are.
+    pub names: Vec<String>,
+    /// What the value axis is called, with its unit; `None`: as the response.
+    pub value_title: Option<String>,
+    /// What the time axis is called; `None`: as the time unit.
+    pub time_title: Option<String>,
+}
+
+/// Which strips are drawn. Without any the courses are.
+#[derive(Debug, Clone, Copy, PartialEq, Eq, Deserialize)]
+#[serde(default, deny_unknown_fields)]
+pub struct Panels {
+    /// The groups' courses.
+    pub courses: bool,
+    /// Gaps and their lanes.
+    pub gaps: bool,
+    /// Who is still followed.
+    pub followed: bool,
+}
+
+impl Default for Panels {
+    fn default() -> Self {
+        Panels { courses: true, gaps: true, followed: true }
+    }
 }
 
 /// A group's line under another model.
@@ -84,6 +118,14 @@ impl Default for View {
             decimate: true,
             letters: None,
             over: Vec::new(),
+            panels: Panels::default(),
+            bands: true,
+            points: true,
+            captions: true,
+            order: Vec::new(),
+            names: Vec::new(),
+            value_title: None,
+            time_title: None,
         }
     }
 }

@@ -3,6 +3,7 @@
 use crate::numbers::plain;
 use crate::scale::Kind;
 use crate::source::{Gap, Source};
+use crate::view::View;
 
 /// `95 %`.
 fn percent(level: f64) -> String {
@@ -13,9 +14,16 @@ fn percent(level: f64) -> String {
 pub(crate) const LAID_OVER: &str = "\u{a0}· thin double lines: the other model laid over";
 
 /// What the courses strip shows.
-pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, is_hatched: bool) -> String {
+pub(crate) fn courses(
+    source: &Source,
+    view: &View,
+    noun: &str,
+    kind: Kind,
+    is_ranged: bool,
+    is_hatched: bool,
+) -> String {
     let mut parts = Vec::new();
-    let response = &source.scale.response;
+    let response = view.value_title.as_ref().unwrap_or(&source.scale.response);
     match (response.is_empty(), kind) {
         (false, Kind::Log) => parts.push(format!("{response}, log scale")),
         (false, Kind::Linear) => parts.push(response.clone()),
@@ -28,7 +36,9 @@ pub(crate) fn courses(source: &Source, noun: &str, kind: Kind, is_ranged: bool, 
     } else {
         "lines: group mean".into()
     });
-    parts.push(band(source));
+    if view.bands || source.plan.curves.shape == "by-time" {
+        parts.push(band(source));
+    }
     if is_ranged {
         parts.push(format!("thin outlines: 10 to 90\u{a0}% of {noun}"));
     }

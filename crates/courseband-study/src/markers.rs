@@ -205,6 +205,7 @@ fn table(markers: &[Marker], rows: Vec<Vec<String>>) -> ReportTable {
     let gap = if markers.iter().any(|m| m.ratio) { "Average ratio" } else { "Average gap" };
     let heads = [
         "Response",
+        "Result",
         "Group",
         "Compared with",
         &format!("Apart from {word}"),
@@ -215,7 +216,6 @@ fn table(markers: &[Marker], rows: Vec<Vec<String>>) -> ReportTable {
         "p of the pair",
         "p",
         "p over all columns",
-        "Result",
     ];
     ReportTable {
         key: "responses".into(),
@@ -228,9 +228,8 @@ fn table(markers: &[Marker], rows: Vec<Vec<String>>) -> ReportTable {
 fn rows(marker: &Marker, q: Option<f64>, rate: f64) -> Vec<Vec<String>> {
     let dash = || "\u{2013}".to_string();
     if marker.p.is_none() {
-        let mut row = vec![marker.name.clone()];
+        let mut row = vec![marker.name.clone(), format!("no result: {}", marker.failed)];
         row.extend((0..10).map(|_| dash()));
-        row.push(format!("no result: {}", marker.failed));
         return vec![row];
     }
     let result = if q.is_some_and(|q| q <= rate) { "found" } else { "not found" };
@@ -249,10 +248,10 @@ fn rows(marker: &Marker, q: Option<f64>, rate: f64) -> Vec<Vec<String>> {
                 Some(values) => values.map(|v| number(v, decimals(values[2] - values[1]))),
                 None => [dash(), dash(), dash()],
             };
-            [marker.name.clone(), pair.to.clone(), pair.from.clone(), first, direction]
+            [marker.name.clone(), result.to_string(), pair.to.clone(), pair.from.clone(), first, direction]
                 .into_iter()
                 .chain(average)
-                .chain([p(pair.p), p(marker.p), p(q), result.to_string()])
+                .chain([p(pair.p), p(marker.p), p(q)])
                 .collect()
         })
         .collect()

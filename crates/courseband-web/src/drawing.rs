@@ -3,7 +3,7 @@
 use crate::refused::Refused;
 use crate::wire;
 use courseband_figure::{
-    Estimate, Figure, Measure, SVG_FAMILY, Source, Surface, Traces, View, describe, draw, lay_out, to_svg,
+    Estimate, Figure, Measure, SVG_FAMILY, Source, Surface, Traces, View, describe, draw, lay_out, to_pdf, to_svg,
 };
 use plotters_canvas::CanvasBackend;
 use serde::Serialize;
@@ -58,6 +58,15 @@ pub fn strips_svg(findings: &str, traces: &str, view: &str) -> Result<String, Re
         None => to_svg(&figure, &Estimate),
     }
     .map_err(Refused::page)
+}
+
+/// The same figure as the bytes of a PDF file.
+///
+/// # Errors
+/// Text that does not fit, and letters that a PDF reader's own fonts do not have.
+#[wasm_bindgen]
+pub fn strips_pdf(findings: &str, traces: &str, view: &str, title: &str) -> Result<Vec<u8>, Refused> {
+    to_pdf(&figure(findings, traces, view, 0.0)?, title).map_err(Refused::page)
 }
 
 fn figure(findings: &str, traces: &str, view: &str, head_room: f64) -> Result<Figure, Refused> {

@@ -16,7 +16,7 @@ mod rooms;
 mod session;
 mod wire;
 
-pub use drawing::{draw_strips, strips_svg};
+pub use drawing::{draw_strips, strips_pdf, strips_svg};
 pub use files::{markers_answer, tables_xlsx};
 pub use refused::Refused;
 pub use rooms::{size_answer, size_run};

@@ -31,9 +31,9 @@ impl Builder<'_> {
         Strip {
             kind: StripKind::Courses,
             pair: None,
-            title: "Courses".into(),
+            title: self.title(),
             subject: self.key(),
-            caption: words::courses(self.source, self.noun(), scale.kind(), is_ranged, is_hatched)
+            caption: words::courses(self.source, self.view, self.noun(), scale.kind(), is_ranged, is_hatched)
                 + if self.view.over.is_empty() { "" } else { words::LAID_OVER },
             plot: Some(Plot {
                 height,
@@ -48,9 +48,18 @@ impl Builder<'_> {
         }
     }
 
+    /// Without explanations the value axis is named here.
+    fn title(&self) -> String {
+        let response = self.view.value_title.as_ref().unwrap_or(&self.source.scale.response);
+        if self.view.captions || response.is_empty() { "Courses".into() } else { response.clone() }
+    }
+
     /// Traces or, for many subjects, ranges.
     fn subjects(&self) -> Vec<Mark> {
         let mut marks = Vec::new();
+        if !self.view.points {
+            return marks;
+        }
         let many = self.traces.len() > MOST_TRACES;
         if many {
             let ranges = (0..self.source.groups.len())
@@ -72,7 +81,7 @@ impl Builder<'_> {
 
     fn bands(&self, curves: &[Vec<(f64, f64, f64, f64)>]) -> Vec<Mark> {
         let mut marks = Vec::new();
-        if self.is_by_time() {
+        if self.is_by_time() || !self.view.bands {
             return marks;
         }
         for (g, points) in curves.iter().enumerate() {
@@ -136,7 +145,8 @@ impl Builder<'_> {
 
     /// Holds the bands, and the traces as far as they do not dwarf them.
     fn course_scale(&self, curves: &[Vec<(f64, f64, f64, f64)>], marks: &[Mark]) -> Scale {
-        let bands = curves.iter().flatten().flat_map(|p| [p.2, p.3]);
+        let shown = self.view.bands || self.is_by_time();
+        let bands = curves.iter().flatten().flat_map(|p| if shown { [p.2, p.3] } else { [p.1, p.1] });
         let subjects = marks.iter().flat_map(|mark| match mark {
             Mark::Trace { points, .. } => points.iter().map(|p| p.1).collect(),
             Mark::Range { points, .. } => points.iter().flat_map(|p| [p.1, p.2]).collect(),

@@ -1,6 +1,7 @@
 //! From the findings to the description of a figure. All statistics of the
 //! figure (percentile ranges, counts followed) are here, none in the drawing.
 
+mod arrange;
 mod axis;
 mod courses;
 mod followed;
@@ -18,14 +19,31 @@ use crate::view::View;
 /// Describes the figure of an analysis.
 #[must_use]
 pub fn describe(source: &Source, traces: &Traces, view: &View) -> Figure {
-    let builder = Builder { source, traces, view, time: axis::time_axis(source), looks: looks(source) };
-    let mut strips: Vec<Strip> = Vec::new();
-    if !source.curves.is_empty() && source.curves.len() <= source.groups.len() {
-        strips.push(builder.courses());
-        strips.extend(builder.rates());
-        strips.extend(builder.gaps());
+    match arrange::arranged(source, traces, view) {
+        Some((source, traces)) => as_arranged(&source, &traces, view),
+        None => as_arranged(source, traces, view),
     }
-    strips.push(builder.followed());
+}
+
+fn as_arranged(source: &Source, traces: &Traces, view: &View) -> Figure {
+    let builder = Builder { source, traces, view, time: axis::time_axis(source, view), looks: looks(source) };
+    let mut strips: Vec<Strip> = Vec::new();
+    let panels = view.panels;
+    if !source.curves.is_empty() && source.curves.len() <= source.groups.len() {
+        if panels.courses || !(panels.gaps || panels.followed) {
+            strips.push(builder.courses());
+            strips.extend(builder.rates());
+        }
+        if panels.gaps {
+            strips.extend(builder.gaps());
+        }
+    }
+    if panels.followed || strips.is_empty() {
+        strips.push(builder.followed());
+    }
+    if !view.captions {
+        strips.iter_mut().for_each(|strip| strip.caption.clear());
+    }
     Figure {
         view: view.clone(),
         time: builder.time,

@@ -92,7 +92,9 @@ fn draw_plot<DB: DrawingBackend>(
 
 fn draw_time_axis<DB: DrawingBackend>(pen: &mut Pen<'_, DB>, layout: &Layout) -> Outcome<DB> {
     let Some(last) = layout.strips.last() else { return Ok(()) };
-    let y = last.plot.map_or(last.outer.bottom, |plot| plot.bottom);
+    // Under the lane, where there is one.
+    let plot = last.plot.filter(|_| last.lane.is_none());
+    let y = plot.map_or(last.outer.bottom, |plot| plot.bottom);
     pen.hair(layout.x.left, layout.x.right, y, pen.palette.soft)?;
     for (x, text) in &layout.ticks {
         pen.upright(*x, y, y + 4.0, pen.palette.soft)?;
