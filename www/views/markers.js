@@ -14,7 +14,7 @@ const XLSX = 'application/vnd.openxmlformats-officedocument.spreadsheetml.sheet'
 
 /** @param {import('../types.js').Acts} acts */
 export function markersPart(acts) {
-  const boxes = el('fieldset', { class: 'marker-columns' });
+  const boxes = el('fieldset', { class: 'tick-row marker-columns' });
   const rate = el('input', { type: 'text', inputmode: 'decimal', 'data-field': 'marker-rate', autocomplete: 'off' });
   const run = el('button', { type: 'button', 'data-act': 'run-markers' }, words.run);
   const stop = el('button', { type: 'button', 'data-act': 'stop-markers', onclick: () => acts.stopMarkers() }, words.stop);

@@ -95,7 +95,7 @@ function choicesPart(acts) {
   const node = el('div', {},
     el('div', { class: 'field-row' }, field(words.columnsLabel, column), field(words.figureWidth, width), field(words.figureFont, font)),
     el('details', { class: 'figure-choices' }, el('summary', {}, labels.more),
-      el('fieldset', { class: 'marker-columns' }, el('legend', {}, labels.shown), ...ticks.map(({ key, box }) => el('label', {}, box, ' ', labels[key]))),
+      el('fieldset', { class: 'tick-row' }, el('legend', {}, labels.shown), ...ticks.map(({ key, box }) => el('label', {}, box, ' ', labels[key]))),
       el('div', { class: 'field-row' }, field(labels.valueTitle, valueTitle), field(labels.timeTitle, timeTitle)),
       el('h4', {}, labels.groups), groups, complaint));
 

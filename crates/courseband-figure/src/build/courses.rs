@@ -31,7 +31,7 @@ impl Builder<'_> {
         Strip {
             kind: StripKind::Courses,
             pair: None,
-            title: self.title(),
+            title: self.title(scale.kind()),
             subject: self.key(),
             caption: words::courses(self.source, self.view, self.noun(), scale.kind(), is_ranged, is_hatched)
                 + if self.view.over.is_empty() { "" } else { words::LAID_OVER },
@@ -49,9 +49,13 @@ impl Builder<'_> {
     }
 
     /// Without explanations the value axis is named here.
-    fn title(&self) -> String {
+    fn title(&self, kind: Kind) -> String {
         let response = self.view.value_title.as_ref().unwrap_or(&self.source.scale.response);
-        if self.view.captions || response.is_empty() { "Courses".into() } else { response.clone() }
+        match (self.view.captions || response.is_empty(), kind) {
+            (true, _) => "Courses".into(),
+            (false, Kind::Log) => format!("{response}, log scale"),
+            (false, Kind::Linear) => response.clone(),
+        }
     }
 
     /// Traces or, for many subjects, ranges.
