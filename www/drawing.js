@@ -44,6 +44,16 @@ export function stripsPdf(drawing, view, title) {
 }
 
 /**
+ * A report as the bytes of a text document, with its figure as a PNG.
+ * @param {Record<string, any>} report
+ * @param {Uint8Array} picture
+ * @returns {Uint8Array}
+ */
+export function reportDocx(report, picture) {
+  return wasm_bindgen.report_docx(JSON.stringify(report), picture);
+}
+
+/**
  * Tables as the bytes of a workbook; `about` are lines for its first sheet.
  * @param {any[]} tables
  * @param {string[]} about

@@ -78,6 +78,25 @@ svg,img{max-width:100%;height:auto}.mark{border:1px dashed #777;padding:.3rem .6
 const escaped = (text) => text.replace(/&/g, '&amp;').replace(/</g, '&lt;').replace(/>/g, '&gt;').replace(/"/g, '&quot;');
 
 /**
+ * The report as a text document takes it.
+ * @param {any} report With the author's own paragraphs in place.
+ * @param {string} drawing SVG text.
+ * @param {{figure: string, items: string, references: string, author: string, mark: string, heads: string[]}} words
+ */
+export function givenOf(report, drawing, words) {
+  const [, width, height] = /<svg[^>]* width="(\d+)" height="(\d+)"/.exec(drawing) ?? ['', '640', '480'];
+  const mm = (/** @type {string|undefined} */ px) => (Number(px) * 25.4) / 96;
+  return {
+    title: report.title, mark: words.mark,
+    sections: report.sections.map((/** @type {any} */ section) => [section.title, section.paragraphs]),
+    figure: [words.figure, mm(width), mm(height)],
+    tables: report.tables.filter((/** @type {any} */ one) => one.key !== 'subjects'),
+    after: [[words.references, report.references]],
+    items: [words.items, words.heads, report.items.map((/** @type {any} */ item) => [item.standard, item.asks, item.answer || words.author])],
+  };
+}
+
+/**
  * The report as one file that needs nothing else.
  * @param {any} report With the author's own paragraphs in place.
  * @param {string} drawing SVG text.

@@ -45,6 +45,10 @@ test('tables as a workbook that opens again here; one row per subject; no formul
   await page.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 90000 });
   await page.waitForSelector('[data-act="save-xlsx"]:not([disabled])');
   const book = await saved(page, 'save-xlsx');
+  const text = await saved(page, 'save-docx');
+  assert.match(text.name, /\.docx$/);
+  const inside = text.bytes.toString('latin1');
+  assert.ok(inside.includes('word/document.xml') && inside.includes('word/media/figure.png') && inside.includes('restricted maximum likelihood'));
   assert.match(book.name, /-tables\.xlsx$/);
   assert.equal(book.bytes.subarray(0, 2).toString(), 'PK');
   assert.doesNotMatch(book.bytes.toString('latin1'), /<f[ >]/);

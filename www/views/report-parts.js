@@ -2,8 +2,8 @@
 
 import { departures } from '../analysis-file.js';
 import { el, setText, whenChanged } from '../dom.js';
-import { tablesXlsx } from '../drawing.js';
-import { csvOf, fileName, htmlOf, save } from '../exports.js';
+import { reportDocx, tablesXlsx } from '../drawing.js';
+import { csvOf, fileName, givenOf, htmlOf, pngOf, save } from '../exports.js';
 import { text } from '../text.js';
 import { plainTable } from './plain-table.js';
 
@@ -43,10 +43,17 @@ export function itemsPart(report) {
  */
 export function givePart(report, drawing, acts) {
   const said = el('span', { class: 'hint', role: 'status' });
-  const marks = { figure: words.figure, items: words.items, references: words.references, author: words.author };
+  const marks = { figure: words.figure, items: words.items, references: words.references, author: words.author, heads: [words.standard, words.asks, words.answer] };
   const mark = () => (acts.look().source?.kind === 'demo' ? `${text.demo.label}. ${text.demo.strip}` : '');
   const html = el('button', { type: 'button', 'data-gives': '', 'data-act': 'save-html', onclick: () =>
     save(`${fileName(report().title)}.html`, htmlOf(report(), drawing(), { ...marks, mark: mark() }), 'text/html') }, words.asHtml);
+  const docx = el('button', { type: 'button', 'data-gives': '', 'data-act': 'save-docx', onclick: async () => {
+    const png = await pngOf(drawing(), 300);
+    const picture = png ? new Uint8Array(await png.arrayBuffer()) : new Uint8Array();
+    const bytes = reportDocx(givenOf(report(), drawing(), { ...marks, mark: mark() }), picture);
+    save(`${fileName(report().title)}.docx`, /** @type {any} */ (bytes), 'application/vnd.openxmlformats-officedocument.wordprocessingml.document');
+    setText(said, png ? '' : words.noPicture);
+  } }, words.asDocx);
   const print = el('button', { type: 'button', 'data-gives': '', onclick: () => window.print() }, words.print);
   const copy = el('button', { type: 'button', 'data-gives': '', 'data-act': 'copy-report', onclick: async () => {
     const whole = report().sections.map((/** @type {any} */ s) => `${s.title}\n${s.paragraphs.join('\n')}`).join('\n\n');
@@ -59,7 +66,7 @@ export function givePart(report, drawing, acts) {
       setText(said, words.copyRefused);
     }
   } }, words.copy);
-  return { node: el('section', { class: 'give' }, el('h3', {}, words.give), el('p', {}, html), el('p', {}, print), el('p', {}, copy, ' ', said)) };
+  return { node: el('section', { class: 'give' }, el('h3', {}, words.give), el('p', {}, html), el('p', {}, docx), el('p', {}, print), el('p', {}, copy, ' ', said)) };
 }
 
 /** @param {Acts} acts */

@@ -44,7 +44,9 @@ pub use housing::ClusterSummary;
 pub use markers::{Marker, MarkerPair, MarkersFindings};
 pub use plan::*;
 pub use refusal::Refusal;
-pub use report::{Report, ReportContext, ReportItem, ReportSection, ReportTable, tables_workbook};
+pub use report::{
+    GivenReport, Report, ReportContext, ReportItem, ReportSection, ReportTable, report_document, tables_workbook,
+};
 pub use size::{Counts, CourseMeans, DesignAnswer, Goal, GoalKind, SizeFindings, SizeRequest, SizeSpread};
 pub use study::{Calibrator, Refits, Study, run};
 pub use traces::Traces;

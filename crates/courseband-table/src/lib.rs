@@ -46,4 +46,4 @@ pub use reading::{ColumnsUsed, Problem, ProblemKind, Question, Reading, Reason, 
 pub use request::{ColumnRequest, DateOrder, DayZero, Exclusion, Layout, Merge, Request, Role, SharedIds};
 pub use sheet::{Sheet, read_bytes};
 pub use table::Table;
-pub use workbook::{CellRange, Workbook, WrittenSheet, write_workbook};
+pub use workbook::{Block, CellRange, Workbook, WrittenSheet, write_document, write_workbook};

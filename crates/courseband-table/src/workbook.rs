@@ -5,6 +5,7 @@
 //! value last stored with them. Formats: ECMA-376 (Office Open XML) and OASIS OpenDocument 1.3, from memory.
 
 mod archive;
+mod document;
 mod grid;
 mod ods;
 mod values;
@@ -12,6 +13,7 @@ mod write;
 mod xlsx;
 mod xml;
 
+pub use document::{Block, write_document};
 pub use grid::CellRange;
 pub use write::{WrittenSheet, write_workbook};
 

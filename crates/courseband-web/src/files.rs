@@ -3,7 +3,7 @@
 use crate::refused::Refused;
 use crate::session::Session;
 use crate::wire;
-use courseband_study::{Marker, MarkersFindings, ReportTable, tables_workbook};
+use courseband_study::{GivenReport, Marker, MarkersFindings, ReportTable, report_document, tables_workbook};
 use wasm_bindgen::prelude::wasm_bindgen;
 
 #[wasm_bindgen]
@@ -46,4 +46,15 @@ pub fn tables_xlsx(tables: &str, about: &str) -> Result<Vec<u8>, Refused> {
     let tables: Vec<ReportTable> = wire::parsed(tables, "tables")?;
     let about: Vec<String> = wire::parsed(about, "lines")?;
     Ok(tables_workbook(&tables, &about))
+}
+
+/// A report as it is given out (JSON, see the study crate's `GivenReport`) as the bytes of a `.docx` file, with its figure as
+/// the bytes of a PNG, or none.
+///
+/// # Errors
+/// Text that cannot be read.
+#[wasm_bindgen]
+pub fn report_docx(report: &str, picture: &[u8]) -> Result<Vec<u8>, Refused> {
+    let report: GivenReport = wire::parsed(report, "report")?;
+    Ok(report_document(&report, picture))
 }

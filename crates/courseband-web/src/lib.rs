@@ -17,7 +17,7 @@ mod session;
 mod wire;
 
 pub use drawing::{draw_strips, strips_pdf, strips_svg};
-pub use files::{markers_answer, tables_xlsx};
+pub use files::{markers_answer, report_docx, tables_xlsx};
 pub use refused::Refused;
 pub use rooms::{size_answer, size_run};
 pub use session::Session;

@@ -22,6 +22,11 @@ pub(super) fn arranged(source: &Source, traces: &Traces, view: &View) -> Option<
             }
         }
     }
+    for rate in &mut to.rates {
+        if let Some(g) = source.groups.iter().position(|group| group.name == rate.group) {
+            rate.group.clone_from(&names[g]);
+        }
+    }
     to.groups = order.iter().map(|&g| Group { name: names[g].clone(), ..source.groups[g].clone() }).collect();
     to.curves = order.iter().map(|&g| source.curves[g].clone()).collect();
     for group in &mut moved.group {

@@ -15,7 +15,7 @@ use crate::plan::Plan;
 use crate::refusal::Refusal;
 use crate::sentences::{joined, percent, plain};
 use crate::study::{Refits, Study};
-pub use files::tables_workbook;
+pub use files::{GivenReport, report_document, tables_workbook};
 use serde::{Deserialize, Serialize};
 
 /// What the report knows beyond findings: what the author did with the table.

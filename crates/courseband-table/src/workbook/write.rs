@@ -45,10 +45,11 @@ pub fn write_workbook(sheets: &[WrittenSheet]) -> Vec<u8> {
     for (k, sheet) in sheets.iter().enumerate() {
         parts.push((format!("xl/worksheets/sheet{}.xml", k + 1), sheet_text(sheet)));
     }
+    let parts: Vec<(String, Vec<u8>)> = parts.into_iter().map(|(name, text)| (name, text.into_bytes())).collect();
     packed(&parts)
 }
 
-const START: &str = "<?xml version=\"1.0\" encoding=\"UTF-8\" standalone=\"yes\"?>\n";
+pub(super) const START: &str = "<?xml version=\"1.0\" encoding=\"UTF-8\" standalone=\"yes\"?>\n";
 const MAIN: &str = "http://schemas.openxmlformats.org/spreadsheetml/2006/main";
 const OFFICE: &str = "http://schemas.openxmlformats.org/officeDocument/2006/relationships";
 const PACKAGE: &str = "http://schemas.openxmlformats.org/package/2006";
@@ -193,7 +194,7 @@ fn free_name(wanted: &str, taken: &[String]) -> String {
 }
 
 /// As XML writes it; letters that XML cannot hold are shown as missing.
-fn escaped(text: &str) -> String {
+pub(super) fn escaped(text: &str) -> String {
     let mut out = String::new();
     for letter in text.chars().take(MOST_LETTERS) {
         match letter {
@@ -212,16 +213,16 @@ fn escaped(text: &str) -> String {
 }
 
 /// A packed file with its entries stored. The layout is that of PKWARE's APPNOTE 6.3 (from memory).
-fn packed(parts: &[(String, String)]) -> Vec<u8> {
+pub(super) fn packed(parts: &[(String, Vec<u8>)]) -> Vec<u8> {
     let (mut bytes, mut list) = (Vec::new(), Vec::new());
-    for (name, text) in parts {
+    for (name, part) in parts {
         let start = bytes.len() as u32;
-        let size = (text.len() as u32).to_le_bytes();
-        let check = crc(text.as_bytes()).to_le_bytes();
+        let size = (part.len() as u32).to_le_bytes();
+        let check = crc(part).to_le_bytes();
         let length = (name.len() as u16).to_le_bytes();
         // Version 2.0, names in UTF-8, stored, midnight of 1 January 1980.
         let middle = [&[20, 0, 0, 8, 0, 0, 0, 0, 33, 0][..], &check, &size, &size, &length, &[0, 0]].concat();
-        bytes.extend([b"PK\x03\x04", &middle[..], name.as_bytes(), text.as_bytes()].concat());
+        bytes.extend([b"PK\x03\x04", &middle[..], name.as_bytes(), part].concat());
         list.extend([b"PK\x01\x02", &[20, 0][..], &middle, &[0; 10], &start.to_le_bytes(), name.as_bytes()].concat());
     }
     let (count, at) = ((parts.len() as u16).to_le_bytes(), (bytes.len() as u32).to_le_bytes());
