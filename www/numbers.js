@@ -92,12 +92,17 @@ export function percentLevel(level) {
 }
 
 /**
- * What a person typed as a number, decimal comma allowed; `null` if it is none.
+ * What a person typed as a number, as it is written anywhere: decimal point or comma, thousands set apart by spaces,
+ * apostrophes or the other mark; `null` if it is none. One mark alone is the decimal one.
  * @param {string} text
  */
 export function parseNumber(text) {
-  const plain = text.trim().replace('\u2212', '-').replace(',', '.');
-  if (plain === '') return null;
+  const bare = text.trim().replace('\u2212', '-').replace(/(?<=\d)[\s\u2019'](?=\d{3}(?!\d))/g, '');
+  const [point, comma] = [bare.lastIndexOf('.'), bare.lastIndexOf(',')];
+  const both = point >= 0 && comma >= 0;
+  const thousands = both && point > comma ? /,(?=\d{3}(?!\d))/g : /\.(?=\d{3}(?!\d))/g;
+  const plain = (both ? bare.replace(thousands, '') : bare).replace(',', '.');
+  if (plain === '' || !/^[-+]?(\d+\.?\d*|\.\d+)(e[-+]?\d+)?$/i.test(plain)) return null;
   const value = Number(plain);
   return Number.isFinite(value) ? value : null;
 }

@@ -80,7 +80,7 @@ test('many response columns: found, not found and failed are told apart; it can 
   assert.equal(results[0], 'up: found');
   assert.match(results[3], /^patchy: no result: ./);
   const csv = (await saved(page, 'csv-responses')).bytes.toString();
-  assert.match(csv, /up,'=SUM\(1\),Saline,/);
+  assert.match(csv, /up,found,'=SUM\(1\),Saline,/);
   // Another choice: the answer is of another plan, and says so.
   await page.fill('[data-field="marker-rate"]', '0');
   await page.click('[data-act="run-markers"]');

@@ -38,6 +38,9 @@ test('what a person types', () => {
   assert.equal(parseNumber('\u22123'), -3);
   assert.equal(parseNumber(''), null);
   assert.equal(parseNumber('ten'), null);
+  for (const written of ['1234.5', '1234,5', '1,234.5', '1.234,5', '1 234,5', '1\u202f234.5', '1\u2019234.5']) assert.equal(parseNumber(written), 1234.5, written);
+  assert.equal(parseNumber('1.234.567,5'), 1234567.5);
+  for (const no of ['1,2,3', '0x10', '1.2.3', '12 34', '1,23.4', 'Infinity']) assert.equal(parseNumber(no), null, no);
   assert.equal(percentLevel(0.95), '95\u00a0%');
   assert.equal(percentLevel(0.999), '99.9\u00a0%');
   assert.equal(decimalsFor(0, 3), 0);
