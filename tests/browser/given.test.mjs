@@ -117,9 +117,12 @@ test('both are small enough, and hold no call that sends', { skip }, async (t) =
   assert.ok(file <= 3_000_000 && wasm <= 1_200_000);
   const text = await readFile(FILE, 'utf8');
   const script = text.slice(text.lastIndexOf('<script>'));
-  for (const way of ['XMLHttpRequest', 'WebSocket', 'EventSource', 'sendBeacon', 'new RTC', 'importScripts', 'window.open', 'location.href =', 'location.assign', 'location.replace', '.submit(', '_blank', 'http-equiv=\"refresh', 'localStorage', 'sessionStorage', 'indexedDB', 'eval(', 'innerHTML', 'document.write']) {
+  for (const way of ['XMLHttpRequest', 'WebSocket', 'EventSource', 'sendBeacon', 'new RTC', 'importScripts', 'window.open', 'location.href =', 'location.assign', 'location.replace', '.submit(', '_blank', 'http-equiv=\"refresh', 'sessionStorage', 'eval(', 'innerHTML', 'document.write']) {
     assert.ok(!script.includes(way), way);
   }
+  // One module touches the browser's storage, and only when asked.
+  const kept = await readFile(new URL('../../www/kept.js', import.meta.url), 'utf8');
+  for (const store of ['localStorage', 'indexedDB']) assert.equal(script.split(store).length, kept.split(store).length, store);
   // Comments name types by `import(…)`; nothing else may.
   assert.doesNotMatch(script.replace(/\/\*\*[^]*?\*\//g, ''), /\bimport\s*\(/);
   // Addresses are names of drawing vocabularies, or of nothing.

@@ -63,7 +63,7 @@ export const report = {
   saveWhole: 'Save with the table',
   savePlan: 'Save without the table',
   fix: 'Fix this plan',
-  fixHint: 'Keeps the plan as it stands now; later changes are listed here and in the report as departures.',
+  fixHint: 'Saves the plan as it stands now, with the table\u2019s fingerprint but without the table; later changes are listed here and in the report as departures.',
   fixed: 'The plan is fixed. Departures from it:',
   noDepartures: 'The plan is fixed, and nothing has been changed since.',
   open: 'To reopen one, choose it in Data like a table.',
