@@ -9,7 +9,7 @@ import { text } from './text.js';
 
 /** @typedef {import('./types.js').Choices} Choices */
 /** @typedef {import('./types.js').Source} Source */
-/** @typedef {{choices: Choices, source: Source, table: Uint8Array|null, fingerprint: string|null, fixed: import('./types.js').Plan|null}} Analysis `fixed`: the plan as it was fixed. */
+/** @typedef {{version?: string, choices: Choices, source: Source, table: Uint8Array|null, fingerprint: string|null, fixed: import('./types.js').Plan|null}} Analysis `fixed`: the plan as it was fixed. */
 
 /** Raise it when the file changes in a way that an older page cannot read. */
 const FORMAT = 1;
@@ -64,6 +64,7 @@ export function analysisFrom(json) {
   if (format > FORMAT) throw new NotOpened(words.newer(courseband));
   const base64 = table?.base64 ?? null;
   return {
+    version: courseband,
     source: { kind: source?.kind === 'demo' ? 'demo' : 'own', name: String(source?.name ?? '') },
     table: base64 === null ? null : Uint8Array.from(atob(base64), (letter) => letter.charCodeAt(0)),
     fingerprint: table?.sha256 ?? null,

@@ -216,6 +216,8 @@ export class Controller {
     try {
       const analysis = analysisFrom(json);
       const open = this.engine.table;
+      const { table, fingerprint } = analysis;
+      if (table !== null && fingerprint !== null && ![null, fingerprint].includes(await fingerprintOf(table))) throw new NotOpened(text.report.refused.damaged);
       if (analysis.table === null) {
         if (!open || this.state.source === null) throw new NotOpened(text.report.refused.otherTable(analysis.source.name));
         const same = analysis.fingerprint !== null && analysis.fingerprint === (await fingerprintOf(open));
@@ -224,6 +226,8 @@ export class Controller {
       } else {
         await this.open(analysis.table, analysis.source, null, analysis.choices);
       }
+      const now = this.state.findings?.version;
+      if (now !== undefined && analysis.version !== now) this.set({ ...this.state, notice: text.report.otherVersion(analysis.version ?? '', now) });
       if (analysis.fixed !== null) this.set({ ...this.state, fixed: analysis.fixed });
     } catch (cause) {
       this.set({ ...this.state, notice: cause instanceof NotOpened ? cause.message : text.data.paste.unreadable(name) });

@@ -51,13 +51,26 @@ export function maskedPlan(plan, masks) {
 }
 
 /**
- * A text with every name of a group in it masked, longer names first.
+ * A cell of the group column, masked.
+ * @param {string} cell
+ * @param {Masks|null} masks
+ */
+export function maskedCell(cell, masks) {
+  if (masks === null) return cell;
+  const folded = (/** @type {string} */ text) => text.trim().replace(/\s+/g, ' ').toLowerCase();
+  const name = Object.keys(masks).find((one) => folded(one) === folded(cell));
+  return name === undefined ? maskedText(cell, masks) : /** @type {string} */ (masks[name]);
+}
+
+/**
+ * A text with every name of a group in it masked, longer names first. Numbers and single letters are left: in a text they
+ * are rarely a group's name.
  * @param {string} text
  * @param {Masks|null} masks
  */
 export function maskedText(text, masks) {
   if (masks === null) return text;
-  const names = Object.keys(masks).sort((a, b) => b.length - a.length);
+  const names = Object.keys(masks).filter((name) => name.length > 1 && !/^[\d.,\s-]*$/.test(name)).sort((a, b) => b.length - a.length);
   if (names.length === 0) return text;
   const pattern = names.map((name) => name.replace(/[.*+?^${}()|[\]\\]/g, '\\$&')).join('|');
   return text.replace(new RegExp(`(?<![\\p{L}\\p{N}])(?:${pattern})(?![\\p{L}\\p{N}])`, 'giu'), (found) => {

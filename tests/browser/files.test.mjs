@@ -195,6 +195,14 @@ test('a plan that is fixed is saved, and its departures outlive a reopening', as
   await rested(again);
   await enter(again, 'report');
   await again.waitForFunction(() => /curves\.shape/.test(document.querySelector('[data-region="departures"]').textContent));
+  // Saved by another version: said. Changed on the way: refused.
+  const text = whole.bytes.toString();
+  const reopen = async (json) => again.setInputFiles('#table-file', { name: 'a.json', mimeType: 'application/json', buffer: Buffer.from(json) });
+  await enter(again, 'data');
+  await reopen(text.replace(/"courseband": "[^"]*"/, '"courseband": "0.0.9"'));
+  await again.waitForFunction(() => /saved by version 0\.0\.9; this is/.test(document.body.innerText));
+  await reopen(text.replace(/"base64": "...../, '"base64": "AAAAA'));
+  await again.waitForFunction(() => /changed or damaged/.test(document.body.innerText));
   assert.deepEqual([...page.problems, ...again.problems], []);
   await page.context().close();
   await again.context().close();

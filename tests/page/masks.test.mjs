@@ -2,7 +2,7 @@
 
 import assert from 'node:assert/strict';
 import { test } from 'node:test';
-import { maskedPlan, maskedText, masksFor, unmasked } from '../../www/masks.js';
+import { maskedCell, maskedPlan, maskedText, masksFor, unmasked } from '../../www/masks.js';
 import { defaultPlan, planToSend } from '../../www/plan.js';
 import { freshChoices } from '../../www/state.js';
 
@@ -35,4 +35,12 @@ test('names are masked in texts, whole words only', () => {
   const masks = { Gel: 'Group A', 'Gel film': 'Group B', 'x.y': 'Group C' };
   assert.equal(maskedText('gel film and Gel, gels, Angel; x.y xzy', masks), 'Group B and Group A, gels, Angel; Group C xzy');
   assert.equal(maskedText('Gel', null), 'Gel');
+});
+
+test('groups called by numbers are masked in their own column only', () => {
+  const masks = { 1: 'Group B', 2: 'Group A' };
+  assert.equal(maskedText('Line 1, day 2', masks), 'Line 1, day 2');
+  assert.equal(maskedCell(' 1', masks), 'Group B');
+  assert.equal(maskedCell('plain  GAUZE', { 'Plain gauze': 'Group C' }), 'Group C');
+  assert.equal(maskedCell('1', null), '1');
 });

@@ -71,7 +71,9 @@ export const report = {
     notOurs: 'This .json file is no saved analysis. Choose one that Report saved, or a table.',
     newer: (/** @type {string} */ version) => `This analysis was saved by a later version (${version}). Open it with that version or a newer one.`,
     otherTable: (/** @type {string} */ name) => `This analysis was saved without its table ("${name}"). Open that table first, then this file again.`,
+    damaged: 'The table inside this analysis is not the one that was saved: the file was changed or damaged. Take another copy of it.',
     wrongTable: (/** @type {string} */ name) => `The open table is not the one of this analysis ("${name}"): its fingerprint differs. Open the right table, then this file again.`,
   },
   reopened: 'Opened a saved analysis',
+  otherVersion: (/** @type {string} */ saved, /** @type {string} */ now) => `This analysis was saved by version ${saved || 'unknown'}; this is ${now}. Numbers may differ from those that were seen then.`,
 };

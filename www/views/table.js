@@ -5,7 +5,7 @@
 
 import { ROLES, columnsUsed } from '../context.js';
 import { el, reconcile, setText, show, whenChanged } from '../dom.js';
-import { maskedText } from '../masks.js';
+import { maskedCell, maskedText } from '../masks.js';
 import { withRole } from '../plan.js';
 import { text } from '../text.js';
 import { mountSheetChoice } from './sheet-choice.js';
@@ -137,13 +137,14 @@ function drawRows(body, rows, state, preview) {
   /** @type {Map<string, string>} */
   const troubled = new Map(preview.problems.map((problem) => [`${problem.row}:${problem.column}`, problem.message]));
   const { masks } = state.choices;
+  const grouped = columnsUsed(state).group;
   const stopping = new Set(preview.problems.filter((problem) => problem.stops).map((problem) => `${problem.row}:${problem.column}`));
   reconcile(body, rows, (row) => String(row.line), (row) => el('tr', {}, el('th', { scope: 'row', class: 'line' }, String(row.line)),
     ...preview.columns.map(() => el('td'))), (node, row) => {
     node.classList.toggle('is-out', out.has(`${row.line}:`));
     preview.columns.forEach((column, index) => {
       const cell = /** @type {HTMLTableCellElement} */ (node.children[index + 1]);
-      setText(cell, maskedText(row.cells[index] ?? '', masks));
+      setText(cell, (column.name === grouped ? maskedCell : maskedText)(row.cells[index] ?? '', masks));
       const message = troubled.get(`${row.line}:${column.name}`);
       cell.classList.toggle('is-troubled', message !== undefined);
       cell.classList.toggle('is-stopping', stopping.has(`${row.line}:${column.name}`));
