@@ -9,8 +9,8 @@ export class Batch {
     this.controller = controller;
     /** @type {Markers|null} */
     this.markers = null;
-    /** The plan whose columns are being asked for. */
-    this.asking = '';
+    /** Of which table and roles the columns are known or being asked for. @type {{table: Uint8Array|null, roles: string}} */
+    this.asked = { table: null, roles: '' };
   }
 
   /** @param {Partial<import('./types.js').State['markers']>} part */
@@ -19,18 +19,20 @@ export class Batch {
     controller.set({ ...controller.state, markers: { ...controller.state.markers, ...part } });
   }
 
-  /** Asks which columns could be the response, once per table and roles. */
+  /** Asks which columns could be the response, once per table, roles and reading. */
   async look() {
     const { engine } = this.controller;
     const plan = this.controller.planText();
-    if (plan === this.asking || !engine.table) return;
-    this.asking = plan;
+    const { columns, reading } = JSON.parse(plan);
+    const roles = JSON.stringify([columns, reading]);
+    if (!engine.table || (engine.table === this.asked.table && roles === this.asked.roles)) return;
+    const asked = (this.asked = { table: engine.table, roles });
     try {
       const offered = JSON.parse(await engine.markerColumns(plan));
-      if (plan === this.asking) this.#set({ offered });
+      if (asked === this.asked) this.#set({ offered });
     } catch {
-      // Overtaken, or a table that cannot be used, which is said elsewhere.
-      this.asking = '';
+      // Overtaken, or a table that cannot be used, which is said elsewhere: asked again with the next change.
+      if (asked === this.asked) this.asked = { table: null, roles: '' };
     }
   }
 

@@ -92,6 +92,14 @@ test('many response columns: found, not found and failed are told apart; it can 
   await page.click('[data-act="run-markers"]');
   await page.waitForSelector('.marker-sentence', { timeout: 60000 });
   assert.match(await page.locator('.marker-sentence').innerText(), /rate of 10.%/);
+  // Another table: its own columns, and nothing of the one before.
+  await paste(page, panel().split('\n').map((row) => row.split(',').slice(0, 5).join(',')).join('\n').replace('same', 'other'));
+  await enter(page, 'data');
+  if (await page.evaluate(() => document.documentElement.dataset.state) === 'question') await page.locator('[data-region="question"] button').first().click();
+  await rested(page);
+  await enter(page, 'report');
+  await page.waitForFunction(() => Array.from(document.querySelectorAll('.marker-columns label'), (label) => label.innerText).join() === 'up,other');
+  assert.equal(await page.locator('.marker-sentence').count(), 0);
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });

@@ -74,7 +74,7 @@ export function markersPart(acts) {
     update(state) {
       last = state;
       const { progress, message, of } = state.markers;
-      if (node.open && state.markers.offered === null && (state.status === 'ready' || state.status === 'boundary')) acts.lookForMarkers();
+      if (node.open && (state.status === 'ready' || state.status === 'boundary')) acts.lookForMarkers();
       offered(state);
       answered(state);
       show(stop, progress !== null);
