@@ -34,7 +34,9 @@ export function onset(findings, { from, to }) {
  */
 export function onsetChange(before, after) {
   if (!before) return null;
-  const rows = after.differences.map((row) => ({
+  // Pairs that are there before and after: one that is new, or has another name, was not hidden before.
+  const known = after.differences.filter((row) => before.differences.some(({ from, to }) => from === row.from && to === row.to));
+  const rows = known.map((row) => ({
     pair: { from: row.from, to: row.to },
     before: onset(before, row),
     after: onset(after, row),

@@ -45,7 +45,7 @@ export function maskedPlan(plan, masks) {
   const { control } = plan.comparisons;
   return {
     ...plan,
-    reading: { ...plan.reading, merges: [...plan.reading.merges, ...Object.entries(masks).map(([from, into]) => ({ from, into }))] },
+    reading: { ...plan.reading, group_order: plan.reading.group_order.map((name) => masks[name] ?? name), merges: [...plan.reading.merges, ...Object.entries(masks).map(([from, into]) => ({ from, into }))] },
     comparisons: { ...plan.comparisons, control: control === null ? null : masks[control] ?? control },
   };
 }
@@ -90,6 +90,6 @@ export function unmasked(choices) {
   const { control } = choices.plan.comparisons;
   return {
     ...choices, masks: null,
-    plan: { ...choices.plan, comparisons: { ...choices.plan.comparisons, control: control === null ? null : real[control] ?? control } },
+    plan: { ...choices.plan, reading: { ...choices.plan.reading, group_order: choices.plan.reading.group_order.map((name) => real[name] ?? name) }, comparisons: { ...choices.plan.comparisons, control: control === null ? null : real[control] ?? control } },
   };
 }

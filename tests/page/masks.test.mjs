@@ -18,8 +18,10 @@ test('every group gets a letter of its own, and the draw decides which', () => {
 test('what is sent names no group, and the control is still the same group', () => {
   const masks = { Saline: 'Group B', Gel: 'Group A' };
   const plan = { ...defaultPlan(), comparisons: { ...defaultPlan().comparisons, control: 'Saline' } };
+  plan.reading = { ...plan.reading, group_order: ['Gel', 'Saline'] };
   const sent = planToSend({ ...freshChoices(), plan, masks }, { time: null, response: null });
   assert.equal(sent.comparisons.control, 'Group B');
+  assert.deepEqual(sent.reading.group_order, ['Group A', 'Group B']);
   assert.deepEqual(sent.reading.merges, [{ from: 'Saline', into: 'Group B' }, { from: 'Gel', into: 'Group A' }]);
   assert.equal(maskedPlan(plan, null), plan);
 });
@@ -28,6 +30,7 @@ test('a control chosen by its mask is the real group when names are shown again'
   const plan = { ...defaultPlan(), comparisons: { ...defaultPlan().comparisons, control: 'Group A' } };
   const shown = unmasked({ ...freshChoices(), plan, masks: { Saline: 'Group B', Gel: 'Group A' } });
   assert.equal(shown.plan.comparisons.control, 'Gel');
+  assert.deepEqual(unmasked({ ...freshChoices(), plan: { ...plan, reading: { ...plan.reading, group_order: ['Group A'] } }, masks: { Gel: 'Group A' } }).plan.reading.group_order, ['Gel']);
   assert.equal(shown.masks, null);
 });
 

@@ -111,3 +111,11 @@ test('a row left out after findings were seen is marked so', () => {
   assert.deepEqual(leftOut, [{ row: 9, column: null, reason: 'Wrong animal', seen: true }]);
   assert.deepEqual(change.takingBack(9, null)({ ...state.choices, leftOut }).leftOut, []);
 });
+
+test('a pair that was not there before is not said to have been hidden', async () => {
+  const { onsetChange } = await import('../../www/changes.js');
+  const after = findings();
+  after.differences = [{ ...after.differences[0], from: 'Group A', to: 'Group B' }];
+  assert.equal(onsetChange(findings(), after), null);
+  assert.equal(onsetChange(findings(), findings({ start: 5 })).after, '5.0');
+});

@@ -73,6 +73,7 @@ export const data = {
     title: 'Group names',
     hint: 'Mask them to judge rows without knowing whose they are. Unite spellings first. Subjects and other columns stay as they are.',
     isMasked: 'Masked: each group has a letter, drawn by lot. Rows left out now are marked so in the record.',
+    crossed: 'Names of crossed factors cannot be masked.',
     mask: 'Mask the group names',
     unmask: 'Show the group names',
     hidden: 'Group names masked',

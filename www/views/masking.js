@@ -21,11 +21,14 @@ export function mountMasking(root, acts) {
     }
   });
   return {
-    update: whenChanged((state) => [state.choices.masks, state.findings, state.description], (state) => {
+    update: whenChanged((state) => [state.choices.masks, state.choices.plan, state.findings, state.description], (state) => {
       const masked = state.choices.masks !== null;
+      // The names of crossed factors are put together after masking.
+      const crossed = state.choices.plan.columns.crossed !== null;
       show(root, masked || contextOf(state).groups.length > 1);
+      show(button, masked || !crossed);
       setText(button, masked ? words.unmask : words.mask);
-      setText(hint, masked ? words.isMasked : words.hint);
+      setText(hint, crossed ? words.crossed : masked ? words.isMasked : words.hint);
     }),
   };
 }
