@@ -92,6 +92,11 @@ test('many response columns: found, not found and failed are told apart; it can 
   await page.click('[data-act="run-markers"]');
   await page.waitForSelector('.marker-sentence', { timeout: 60000 });
   assert.match(await page.locator('.marker-sentence').innerText(), /rate of 10.%/);
+  // What is given out says it too.
+  await page.waitForFunction(() => document.documentElement.dataset.bands === 'calibrated', null, { timeout: 90000 });
+  const html = (await saved(page, 'save-html')).bytes.toString();
+  assert.match(html, /Of 4 response columns 3 could be tested/);
+  assert.match(html, /no result: /);
   // Another table: its own columns, and nothing of the one before.
   await paste(page, panel().split('\n').map((row) => row.split(',').slice(0, 5).join(',')).join('\n').replace('same', 'other'));
   await enter(page, 'data');

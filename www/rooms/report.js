@@ -9,7 +9,7 @@ import { mountChange } from '../views/change.js';
 import { figurePart } from '../views/report-figure.js';
 import { markersPart } from '../views/markers.js';
 import { analysisPart, givePart, itemsPart, tablesPart } from '../views/report-parts.js';
-import { sectionNode, withEdits } from '../views/report-text.js';
+import { sectionNode, withEdits, withResponses } from '../views/report-text.js';
 
 const words = text.report;
 
@@ -27,7 +27,7 @@ export const reportRoom = {
     const tables = el('section', { class: 'report-tables' });
     const markers = markersPart(acts);
     const items = el('section', { class: 'report-items' });
-    const give = givePart(() => current, () => figure.drawing(), acts);
+    const give = givePart(() => withResponses(current, acts.look(), acts.planText()), () => figure.drawing(), acts);
     const analysis = analysisPart(acts);
     root.append(el('div', { class: 'room-head' }, title, el('p', { class: 'room-lead' }, words.lead)), changed, wait,
       el('div', { class: 'report-body' },

@@ -122,3 +122,15 @@ function paragraph(section, composed, id, from, edits, acts) {
   node.append(tools);
   return node;
 }
+
+/**
+ * The report with what the same plan said of other columns, where that is of this plan.
+ * @param {any} report
+ * @param {import('../types.js').State} state
+ * @param {string} plan As sent.
+ */
+export function withResponses(report, { markers: { answer, of } }, plan) {
+  if (report === null || answer === null || of !== plan) return report;
+  const section = { key: 'responses', title: text.markers.title, paragraphs: [answer.sentence, answer.method] };
+  return { ...report, sections: [...report.sections, section], tables: [...report.tables, answer.table] };
+}
