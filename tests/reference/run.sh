@@ -22,13 +22,13 @@ printed() {
     mv "$2.new" "$2"
 }
 
-[ $# -gt 0 ] || set -- demos made_up special max_quantile usual visits usual_tables mixed dense housed families power
+[ $# -gt 0 ] || set -- demos made_up special max_quantile usual visits usual_tables mixed dense housed families power links
 for generator; do
     echo "$generator"
     case $generator in
         demos) "$python" ../../demo-data/make.py ;;
         special | max_quantile) printed "$generator" "$engine/$generator.csv" ;;
-        made_up | usual | visits | usual_tables | mixed | dense | housed | families | power) "$python" "$generator.py" ;;
-        *) echo "$generator is none of: demos made_up special max_quantile usual visits usual_tables mixed dense housed families power" >&2; exit 2 ;;
+        made_up | usual | visits | usual_tables | mixed | dense | housed | families | power | links) "$python" "$generator.py" ;;
+        *) echo "$generator is none of: demos made_up special max_quantile usual visits usual_tables mixed dense housed families power links" >&2; exit 2 ;;
     esac
 done

@@ -91,7 +91,7 @@ impl Objective for Criterion<'_> {
 pub fn fit(data: &Data, model: &Model) -> Result<Fit, FitError> {
     check(data)?;
     let units = Units::of(data);
-    let units = if model.family == Family::Normal { units } else { units.with_plain_responses() };
+    let units = if model.family.is_scaled() { units } else { units.with_plain_responses() };
     let bases = group_bases(data, model, &units);
     if let Some(group) = model.common_start.then(|| group_without_start(data)).flatten() {
         return Err(FitError::NoCommonStart(group));
@@ -466,11 +466,11 @@ impl Fit {
     #[must_use]
     pub fn log_reml(&self) -> f64 {
         let units = &self.design.units;
-        let rows: usize = self.design.rows.iter().sum();
+        let rows = self.measured_rows();
         let free = self.design.unpenalised();
         let trends = self.design.bases.iter().filter(|b| b.has_trend()).count();
         -self.value
-            - (rows - free) as f64 * libm::log(units.response_scale)
+            - (rows as f64 - free as f64) * libm::log(units.response_scale)
             - trends as f64 * libm::log(units.time_span)
     }
 
@@ -480,8 +480,15 @@ impl Fit {
         if self.model.likelihood == Likelihood::Restricted {
             return self.log_reml();
         }
-        let rows: usize = self.design.rows.iter().sum();
+        let rows = self.measured_rows();
         -self.value - rows as f64 * libm::log(self.design.units.response_scale)
+    }
+
+    /// Rows whose density has a unit: those that are no limit.
+    fn measured_rows(&self) -> usize {
+        let limits = self.design.patterns.iter().flat_map(|p| &p.detail).filter(|d| d.abs() == 1.0);
+        let censored = if self.model.family == Family::Censored { limits.count() } else { 0 };
+        self.design.rows.iter().sum::<usize>() - censored
     }
 
     /// Number of estimated parameters: free columns of the mean, and variance parameters inside their bounds.
@@ -499,7 +506,7 @@ impl Fit {
     /// Dispersion of a gamma (variance `phi mu^2`) or negative binomial (`mu + phi mu^2`) response.
     #[must_use]
     pub fn dispersion(&self) -> Option<f64> {
-        let estimated = self.model.family != Family::Normal && self.model.family.has_dispersion();
+        let estimated = !self.model.family.is_scaled() && self.model.family.has_dispersion();
         estimated.then(|| self.layout.variance(&self.theta, 0))
     }
 

@@ -75,6 +75,9 @@ impl Design {
         pattern.subjects.remove(column);
         let keep = |k: &usize| k % m != column;
         pattern.responses = (0..n * m).filter(keep).map(|k| pattern.responses[k]).collect();
+        if !pattern.detail.is_empty() {
+            pattern.detail = (0..n * m).filter(keep).map(|k| pattern.detail[k]).collect();
+        }
         pattern.table_row.iter().for_each(|&row| design.seen[g][row] -= 1.0);
         pattern.step.iter().for_each(|&step| design.steps[g][step].count -= 1.0);
         design.rows[g] -= n;

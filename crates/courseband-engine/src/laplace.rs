@@ -11,13 +11,12 @@
 //! The gradient over the few variance parameters is by central differences of the value, whose mode is followed to 1e-10.
 
 use crate::criterion::Solved;
+use crate::density::{LN_TWO_PI, Row, constant, density};
 use crate::model::Family;
 use crate::params::Layout;
 use crate::reduce::{Design, Pattern};
-use crate::special::ln_gamma;
 use nalgebra::{Cholesky, DMatrix, DVector};
 
-const LN_TWO_PI: f64 = 1.837_877_066_409_345_3;
 /// Newton steps to a mode at most.
 const MOST_STEPS: usize = 60;
 /// Halvings of one step at most.
@@ -40,46 +39,22 @@ pub(crate) struct AtMode {
     pub(crate) mode: Mode,
 }
 
-/// Log density of a response and its first derivative and minus its second for the link predictor.
-fn density(family: Family, y: f64, eta: f64, dispersion: f64) -> [f64; 3] {
-    let mu = libm::exp(eta);
-    match family {
-        Family::Normal => {
-            let r = y - eta;
-            [-0.5 * (LN_TWO_PI + libm::log(dispersion) + r * r / dispersion), r / dispersion, 1.0 / dispersion]
-        }
-        Family::Poisson => [y * eta - mu - ln_gamma(y + 1.0), y - mu, mu],
-        Family::NegativeBinomial => {
-            let k = 1.0 / dispersion;
-            let whole = ln_gamma(y + k) - ln_gamma(k) - ln_gamma(y + 1.0);
-            let value = whole + k * libm::log(k) + y * eta - (y + k) * libm::log(k + mu);
-            [value, y - (y + k) * mu / (k + mu), (y + k) * k * mu / ((k + mu) * (k + mu))]
-        }
-        Family::Gamma => {
-            let shape = 1.0 / dispersion;
-            let ratio = y / mu;
-            let value =
-                shape * libm::log(shape) - ln_gamma(shape) + (shape - 1.0) * libm::log(y) - shape * (eta + ratio);
-            [value, shape * (ratio - 1.0), shape * ratio]
-        }
-        Family::Binomial => {
-            let p = 1.0 / (1.0 + libm::exp(-eta));
-            let log = if eta > 0.0 { eta + libm::log1p(libm::exp(-eta)) } else { libm::log1p(mu) };
-            [y * eta - log, y - p, p * (1.0 - p)]
-        }
-    }
-}
-
 /// The link predictor of a mean.
 fn link(family: Family, mean: f64) -> f64 {
     match family {
-        Family::Normal => mean,
-        Family::Binomial => {
+        Family::Normal | Family::Censored => mean,
+        Family::Binomial | Family::Beta => {
             let p = mean.clamp(0.01, 0.99);
             libm::log(p / (1.0 - p))
         }
         _ => libm::log(mean.max(1e-3)),
     }
+}
+
+/// One row of a pattern, by its place among the responses.
+fn row(pattern: &Pattern, at: usize, dispersion: f64) -> Row {
+    let detail = pattern.detail.get(at).copied().unwrap_or(f64::NAN);
+    Row { y: pattern.responses[at], detail, dispersion }
 }
 
 /// One design and layout, ready to be evaluated.
@@ -112,9 +87,13 @@ impl<'a> Laplace<'a> {
         for (g, basis) in self.design.bases.iter().enumerate() {
             let own = self.design.patterns.iter().filter(|p| p.group == g);
             let (mut sum, mut count) = (0.0, 0.0);
+            let trials = |p: &Pattern| match self.layout.family {
+                Family::Binomial if !p.detail.is_empty() => p.detail.iter().sum::<f64>(),
+                _ => p.responses.len() as f64,
+            };
             own.for_each(|p| {
                 sum += p.responses.iter().sum::<f64>();
-                count += p.responses.len() as f64;
+                count += trials(p);
             });
             let level = link(self.layout.family, sum / count);
             // By-time means have a column each; otherwise the first is the level.
@@ -176,15 +155,24 @@ impl<'a> Laplace<'a> {
         self.layout.variance(theta, pattern.group)
     }
 
-    /// Log joint density, constants of the priors left out.
+    /// What of the log density depends on the dispersion alone.
+    fn constants(&self, theta: &[f64]) -> f64 {
+        let part = |pattern: &Pattern| -> f64 {
+            let phi = self.dispersion(theta, pattern);
+            (0..pattern.responses.len()).map(|at| constant(self.layout.family, row(pattern, at, phi))).sum()
+        };
+        self.design.patterns.iter().map(part).sum()
+    }
+
+    /// Log joint density, constants left out.
     fn height(&self, theta: &[f64], factors: &[DMatrix<f64>], mode: &Mode) -> f64 {
         let mut height = 0.0;
         for (k, pattern) in self.design.patterns.iter().enumerate() {
             let (mean, effects) = self.predictor(k, mode, &factors[pattern.group]);
             let phi = self.dispersion(theta, pattern);
             let m = pattern.subjects.len();
-            for (at, &y) in pattern.responses.iter().enumerate() {
-                height += density(self.layout.family, y, mean[at / m] + effects[(at / m, at % m)], phi)[0];
+            for at in 0..pattern.responses.len() {
+                height += density(self.layout.family, row(pattern, at, phi), mean[at / m] + effects[(at / m, at % m)])[0];
             }
             height -= 0.5 * mode.v[k].norm_squared();
         }
@@ -214,7 +202,7 @@ impl<'a> Laplace<'a> {
             let m = pattern.subjects.len();
             for s in 0..m {
                 let rows = (0..mean.len())
-                    .map(|j| density(self.layout.family, pattern.responses[j * m + s], mean[j] + effects[(j, s)], phi));
+                    .map(|j| density(self.layout.family, row(pattern, j * m + s, phi), mean[j] + effects[(j, s)]));
                 let rows: Vec<[f64; 3]> = rows.collect();
                 let score = DVector::from_fn(rows.len(), |j, _| rows[j][1]);
                 let wf = DMatrix::from_fn(f.nrows(), f.ncols(), |j, c| rows[j][2] * f[(j, c)]);
@@ -289,9 +277,9 @@ impl<'a> Laplace<'a> {
             let factor = self.layout.subject_factor(theta, pattern.group);
             let (mean, effects) = self.predictor(k, mode, &factor);
             let (phi, m) = (self.dispersion(theta, pattern), pattern.subjects.len());
-            for (at, &y) in pattern.responses.iter().enumerate() {
+            for at in 0..pattern.responses.len() {
                 let eta = mean[at / m] + effects[(at / m, at % m)];
-                weights[pattern.group] += density(self.layout.family, y, eta, phi)[2];
+                weights[pattern.group] += density(self.layout.family, row(pattern, at, phi), eta)[2];
             }
         }
         weights.iter().all(|&sum| sum > 1e-3)
@@ -301,7 +289,7 @@ impl<'a> Laplace<'a> {
         if !self.is_bounded(theta, &mode) {
             return None;
         }
-        let mut value = -2.0 * height + step.log_h - self.design.unpenalised() as f64 * LN_TWO_PI;
+        let mut value = -2.0 * (height + self.constants(theta)) + step.log_h - self.design.unpenalised() as f64 * LN_TWO_PI;
         for block in 0..self.design.placement.blocks() {
             for (entry, columns) in self.layout.priors(self.design, block) {
                 value += columns.len() as f64 * theta[entry];

@@ -27,6 +27,45 @@ fn counts(seed: u64, subjects: usize, sd: f64) -> Data {
     Data { groups: 2, subjects: subjects.collect(), ..Data::default() }
 }
 
+fn poisson(y: f64, eta: f64) -> [f64; 3] {
+    let row = Row { y, detail: f64::NAN, dispersion: 1.0 };
+    let [value, slope, weight] = density(Family::Poisson, row, eta);
+    [value + constant(Family::Poisson, row), slope, weight]
+}
+
+/// First and second derivatives of every family against differences of its value.
+#[test]
+fn derivatives_of_all_families_are_those_of_their_values() {
+    let families = [
+        (Family::Normal, 0.7, f64::NAN),
+        (Family::Censored, 0.7, -1.0),
+        (Family::Censored, 0.7, 1.0),
+        (Family::Censored, 0.7, 0.0),
+        (Family::Poisson, 3.0, f64::NAN),
+        (Family::NegativeBinomial, 3.0, f64::NAN),
+        (Family::Gamma, 1.3, f64::NAN),
+        (Family::Binomial, 3.0, 7.0),
+        (Family::Beta, 0.3, f64::NAN),
+        (Family::Tweedie(1500), 1.2, f64::NAN),
+        (Family::Tweedie(1300), 0.0, f64::NAN),
+    ];
+    for (family, y, detail) in families {
+        for eta in [-0.8, 0.1, 0.9] {
+            let row = Row { y, detail, dispersion: 0.4 };
+            let h = 1e-4;
+            let at = |eta: f64| density(family, row, eta)[0];
+            let [_, slope, weight] = density(family, row, eta);
+            let first = (at(eta + h) - at(eta - h)) / (2.0 * h);
+            let second = -(at(eta + h) - 2.0 * at(eta) + at(eta - h)) / (h * h);
+            assert!((slope - first).abs() < 1e-6 * (1.0 + first.abs()), "{family:?} {eta}: {slope} {first}");
+            assert!((weight - second).abs() < 2e-5 * (1.0 + second.abs()), "{family:?} {eta}: {weight} {second}");
+        }
+    }
+    // Far beyond a limit the chance is tiny, and still has its derivatives.
+    let far = density(Family::Censored, Row { y: 0.0, detail: -1.0, dispersion: 1.0 }, 40.0);
+    assert!((far[0] + 804.6).abs() < 0.1 && (far[1] + 40.02).abs() < 0.01 && (far[2] - 1.0).abs() < 0.01, "{far:?}");
+}
+
 fn model(family: Family, subjects: SubjectEffects, shape: Shape) -> Model {
     Model { family, subjects, shape, ..Model::default() }
 }
@@ -75,7 +114,7 @@ fn the_approximation_is_near_the_integral() {
     for s in &data.subjects {
         let mean: Vec<f64> = s.times.iter().map(|&t| posterior.estimate(&fitted.course(s.group, t)).mean).collect();
         let log = |u: f64| {
-            let rows = mean.iter().zip(&s.responses).map(|(m, y)| density(Family::Poisson, *y, m + sd * u, 1.0)[0]);
+            let rows = mean.iter().zip(&s.responses).map(|(m, y)| poisson(*y, m + sd * u)[0]);
             rows.sum::<f64>() - 0.5 * u * u - 0.5 * LN_TWO_PI
         };
         let steps: i32 = 4000;
@@ -83,11 +122,11 @@ fn the_approximation_is_near_the_integral() {
         integral += libm::log(sum * 16.0 / f64::from(steps));
         let mut u = 0.0;
         for _ in 0..50 {
-            let rows = mean.iter().zip(&s.responses).map(|(m, y)| density(Family::Poisson, *y, m + sd * u, 1.0));
+            let rows = mean.iter().zip(&s.responses).map(|(m, y)| poisson(*y, m + sd * u));
             let (score, weight) = rows.fold((-u, 1.0), |(a, b), d| (a + sd * d[1], b + sd * sd * d[2]));
             u += score / weight;
         }
-        let rows = mean.iter().zip(&s.responses).map(|(m, y)| density(Family::Poisson, *y, m + sd * u, 1.0)[2]);
+        let rows = mean.iter().zip(&s.responses).map(|(m, y)| poisson(*y, m + sd * u)[2]);
         laplace += log(u) + 0.5 * LN_TWO_PI - 0.5 * libm::log(1.0 + sd * sd * rows.sum::<f64>());
     }
     assert!((integral - laplace).abs() < 0.15, "{integral} {laplace}");

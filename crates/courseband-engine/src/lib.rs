@@ -7,6 +7,7 @@ mod calibrate;
 mod chains;
 mod clusters;
 mod criterion;
+mod density;
 mod fit;
 mod impute;
 mod influence;

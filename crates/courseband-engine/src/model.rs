@@ -16,6 +16,9 @@ pub struct SubjectRows {
     pub cluster: Option<usize>,
     /// Values of the [`Shared`] columns, row by row; empty where there are none.
     pub shared: Vec<f64>,
+    /// What some families need of every row: the number of trials of a [`Family::Binomial`] row; for [`Family::Censored`] -1
+    /// where the true value lies below the response, 1 where above, 0 where it is the response. Empty: 1 trial, no limit.
+    pub detail: Vec<f64>,
 }
 
 /// Columns of the mean that all groups share: covariates, effects of a crossed block.
@@ -188,15 +191,28 @@ pub enum Family {
     NegativeBinomial,
     /// Gamma with variance `phi mu^2`, log link; phi is the error parameter.
     Gamma,
-    /// 0 or 1, logit link.
+    /// Successes among a number of trials, logit link.
     Binomial,
+    /// Shares between 0 and 1, logit link: beta with variance `mu (1 - mu) phi / (1 + phi)`; `1 / phi` is the precision of
+    /// Ferrari & Cribari-Neto 2004, J Appl Stat 31:799.
+    Beta,
+    /// Not below zero with exact zeros, log link: variance `phi mu^p`, p in thousandths between 1000 and 2000, taken as known
+    /// (Dunn & Smyth 2005, Stat Comput 15:267).
+    Tweedie(u16),
+    /// Normal, some values known to lie below or above a limit only (Tobin 1958, Econometrica 26:24).
+    Censored,
 }
 
 impl Family {
     /// True where a dispersion is estimated.
     #[must_use]
     pub fn has_dispersion(self) -> bool {
-        matches!(self, Family::Normal | Family::NegativeBinomial | Family::Gamma)
+        !matches!(self, Family::Poisson | Family::Binomial)
+    }
+
+    /// True where responses keep the unit in which they are computed.
+    pub(crate) fn is_scaled(self) -> bool {
+        matches!(self, Family::Normal | Family::Censored)
     }
 }
 

@@ -104,8 +104,9 @@ impl Layout {
             // Without a dispersion the entry is there and held at 1.
             let (low, high) = match model.family {
                 Family::Normal => (-36.0, 12.0),
-                Family::NegativeBinomial | Family::Gamma => (-12.0, 6.0),
-                _ => (0.0, 0.0),
+                Family::Censored => (-18.0, 12.0),
+                Family::Poisson | Family::Binomial => (0.0, 0.0),
+                _ => (-12.0, 6.0),
             };
             let index = layout.add(Parameter::Error(slot), low, high);
             group.into_iter().for_each(|g| layout.error[g] = index);

@@ -113,7 +113,9 @@ fn drawn(family: Family, mu: f64, dispersion: f64, rng: &mut Rng) -> f64 {
             let rate = mu * dispersion * 0.5 * rng.chi2(2.0 / dispersion);
             rng.poisson(rate)
         }
-        _ => rng.poisson(mu),
+        Family::Poisson => rng.poisson(mu),
+        // Not foreseen by simulation.
+        _ => f64::NAN,
     }
 }
 

@@ -39,6 +39,8 @@ pub(crate) struct Pattern {
     pub(crate) subjects: Vec<usize>,
     /// Internal responses, n rows of m.
     pub(crate) responses: Vec<f64>,
+    /// What families need of every row, in the order of `responses`; empty for a normal response.
+    pub(crate) detail: Vec<f64>,
     /// Values of the shared columns, n rows.
     pub(crate) shared: Vec<f64>,
     /// Columns of a subject's effects, n rows.
@@ -305,6 +307,12 @@ fn sort_into_patterns(
             .flat_map(|j| pattern.subjects.iter().map(move |&s| (j, s)))
             .map(|(j, s)| (data.subjects[s].responses[j] - units.response_centre) / units.response_scale)
             .collect();
+        if pattern.subjects.iter().any(|&s| !data.subjects[s].detail.is_empty()) {
+            pattern.detail = (0..pattern.times.len())
+                .flat_map(|j| pattern.subjects.iter().map(move |&s| (j, s)))
+                .map(|(j, s)| data.subjects[s].detail.get(j).copied().unwrap_or(f64::NAN))
+                .collect();
+        }
     }
     (patterns, members)
 }
@@ -317,6 +325,7 @@ fn empty_pattern(subject: &SubjectRows, units: &Units, distinct: &[f64], effects
         step: Vec::new(),
         subjects: Vec::new(),
         responses: Vec::new(),
+        detail: Vec::new(),
         shared: subject.shared.clone(),
         effects: effects.table(&times),
         times,

@@ -129,3 +129,26 @@ pub(super) fn deviance(k: f64, m: f64, m_less_k: f64) -> f64 {
     }
     k * (e * r - 2.0 * tail)
 }
+
+/// Derivative of the logarithm of the gamma function, x above zero: recurrence to 8, then the asymptotic series
+/// (Abramowitz & Stegun 6.3.5, 6.3.18).
+pub fn digamma(x: f64) -> f64 {
+    let (mut x, mut sum) = (x, 0.0);
+    while x < 8.0 {
+        sum -= 1.0 / x;
+        x += 1.0;
+    }
+    let r = 1.0 / (x * x);
+    sum + libm::log(x) - 0.5 / x - r * (1.0 / 12.0 - r * (1.0 / 120.0 - r * (1.0 / 252.0 - r * (1.0 / 240.0 - r * 5.0 / 660.0))))
+}
+
+/// Its derivative (Abramowitz & Stegun 6.4.6, 6.4.12).
+pub fn trigamma(x: f64) -> f64 {
+    let (mut x, mut sum) = (x, 0.0);
+    while x < 8.0 {
+        sum += 1.0 / (x * x);
+        x += 1.0;
+    }
+    let r = 1.0 / (x * x);
+    sum + 1.0 / x + 0.5 * r + r / x * (1.0 / 6.0 - r * (1.0 / 30.0 - r * (1.0 / 42.0 - r * (1.0 / 30.0 - r * 5.0 / 66.0))))
+}

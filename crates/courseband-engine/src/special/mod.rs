@@ -22,7 +22,7 @@ pub mod rng;
 
 pub use beta::{regularised_beta, regularised_beta_upper};
 pub use distributions::{chi2_cdf, chi2_quantile, chi2_sf, f_cdf, f_quantile, f_sf, t_cdf, t_quantile, t_sf};
-pub use gamma::{ln_gamma, regularised_gamma, regularised_gamma_upper};
+pub use gamma::{digamma, ln_gamma, regularised_gamma, regularised_gamma_upper, trigamma};
 pub use normal::{normal_cdf, normal_pdf, normal_quantile, normal_sf};
 pub use quantile::{DirectionMaxima, Quantile, max_abs_quantile};
 pub use rng::Rng;
