@@ -11,10 +11,10 @@ import { maskedPlan } from './masks.js';
 /** @returns {Plan} */
 export function defaultPlan() {
   return {
-    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [], bending: [], block: null, crossed: null, removal: null },
+    columns: { subject: null, time: null, group: null, response: null, cluster: null, covariates: [], bending: [], block: null, crossed: null, removal: null, total: null },
     exclusions: [],
     removed: [],
-    response: { distribution: 'normal', transform: 'identity', detection: 'as-written', start: 'as-measured' },
+    response: { distribution: 'normal', transform: 'identity', power: null, detection: 'as-written', start: 'as-measured' },
     curves: { shape: 'smooth', basis: 'cubic', dimension: 'auto', smoothness: 'per-group', period: null, range: null, roughness: '5/2' },
     subjects: 'intercept',
     subjects_spread: 'common',
@@ -114,7 +114,7 @@ export function withDistribution(plan, distribution) {
   });
   if (!log) return changed;
   const plain = withSection(changed, 'errors', { serial: 'none', spread: 'common', nugget: false });
-  const bare = withSection(plain, 'columns', { covariates: [], bending: [], block: null, crossed: null, removal: null });
+  const bare = withSection(plain, 'columns', { covariates: [], bending: [], block: null, total: distribution === 'binomial' ? plan.columns.total : null });
   return { ...bare, subjects: bare.subjects === 'curve' ? 'slope' : bare.subjects };
 }
 

@@ -14,13 +14,14 @@ import { text } from './text.js';
 /**
  * A gap's name and values as written: ratios in percent.
  * @param {GapReading} gap
- * @param {boolean} ratio
+ * @param {{ratio: boolean, link?: string}} scale
  */
-export function writtenGap(gap, ratio) {
-  const name = text.reading.gap(gap, ratio);
+export function writtenGap(gap, { ratio, link }) {
+  const name = text.reading.gap(gap, ratio, link);
+  const percent = ratio && link !== 'logit';
   /** @param {number|null} value */
-  const scaled = (value) => (value === null ? null : value * (ratio ? 100 : 1));
-  return { name, unit: ratio ? '\u00a0%' : '', numbers: withInterval(scaled(gap.value), scaled(gap.lower), scaled(gap.upper)) };
+  const scaled = (value) => (value === null ? null : value * (percent ? 100 : 1));
+  return { name, unit: percent ? '\u00a0%' : '', numbers: withInterval(scaled(gap.value), scaled(gap.lower), scaled(gap.upper)) };
 }
 
 /**
@@ -39,13 +40,13 @@ export function whyNone({ followed }) {
  * @param {Findings} findings
  */
 export function spoken(reading, findings) {
-  const { time_word: word, ratio } = findings.scale;
+  const { time_word: word } = findings.scale;
   const groups = reading.groups.map(({ group, value, lower, upper }) => {
     const numbers = withInterval(value, lower, upper);
     return numbers ? `${group} ${numbers.value}, ${text.reading.range(numbers.lower, numbers.upper)}` : `${group} ${text.reading.none}`;
   });
   const gaps = reading.gaps.slice(0, 3).map((gap) => {
-    const { name, unit, numbers } = writtenGap(gap, ratio);
+    const { name, unit, numbers } = writtenGap(gap, findings.scale);
     return numbers ? `${name} ${numbers.value}${unit}, ${text.reading.states[gap.state]}` : `${name} ${whyNone(gap)}`;
   });
   return `${text.strips.at(plainTime(reading.time, span(findings)), word)}. ${[...groups, ...gaps].join('; ')}.`;

@@ -127,9 +127,10 @@ export const text = {
      * What a difference's numbers are.
      * @param {{kind?: string, to: string, from: string}} gap
      * @param {boolean} ratio
+     * @param {string} [link]
      */
-    gap: ({ kind, to, from }, ratio) => (kind === 'trend' ? `${ratio ? 'Factor' : 'Change'} per step, ${from} to ${to}`
-      : ratio ? `${to} / ${from}` : `${to} \u2212 ${from}`),
+    gap: ({ kind, to, from }, ratio, link) => (kind === 'trend' ? `${ratio ? 'Factor' : 'Change'} per step, ${from} to ${to}`
+      : link === 'logit' ? `odds of ${to} / odds of ${from}` : ratio ? `${to} / ${from}` : `${to} \u2212 ${from}`),
     states: { beyond: 'beyond', apart: 'apart', inside: 'inside', undecided: 'undecided', outside: 'not compared' },
     openLabel: (/** @type {string} */ pair) => `Show the gap strip of ${pair}`,
   },

@@ -12,10 +12,10 @@
 
 /**
  * @typedef {Object} Plan
- * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null, crossed: string|null, removal: string|null}} columns
+ * @property {{subject: ColumnChoice, time: ColumnChoice, group: ColumnChoice, response: ColumnChoice, cluster: ColumnChoice, covariates: string[], bending: string[], block: string|null, crossed: string|null, removal: string|null, total: string|null}} columns
  * @property {{row: number, column?: string, reason: string}[]} exclusions
  * @property {string[]} removed Subjects removed as planned, by hand.
- * @property {{distribution: string, transform: 'identity'|'log', detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
+ * @property {{distribution: string, transform: 'identity'|'log', power: number|null, detection: string, start: 'as-measured'|'common'|'covariate'|'change'|'percent'}} response
  * @property {{shape: 'smooth'|'straight'|'by-time', basis: string, dimension: 'auto'|'full'|number, smoothness: 'per-group'|'shared', period: number|null, range: number|null, roughness: string}} curves
  * @property {'none'|'intercept'|'slope'|'curve'} subjects
  * @property {'auto'|'none'|'intercept'|'slope'} clusters
@@ -54,7 +54,7 @@
  * @property {GroupInfo[]} groups
  * @property {[string, string][]} [cells] In a crossed design the labels of every group.
  * @property {number[]} visits
- * @property {{time_word: string, response: string, ratio: boolean}} scale
+ * @property {{time_word: string, response: string, ratio: boolean, link?: string}} scale
  * @property {Sentence[]} sentences
  */
 

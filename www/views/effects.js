@@ -53,7 +53,7 @@ function pairTable(effects, findings, k) {
       effects.onset.upper === null ? words.notReached : times(effects.onset.upper)),
     words.chances(fixed(effects.onset.already_at_start, 2), fixed(effects.onset.never, 2)),
   ];
-  const name = text.reading.gap(d, findings.scale.ratio);
+  const name = text.reading.gap(d, findings.scale.ratio, findings.scale.link);
   const later = row(words.later(findings.plan.comparisons.target, word), effects.to_level);
   return table(name, groupClass(findings.groups, d.to), [
     row(words.landmark(word, effects.landmark_time === null ? '' : times(effects.landmark_time)), effects.landmark),

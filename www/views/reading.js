@@ -50,7 +50,7 @@ export function mountReading(root, acts) {
     reconcile(gaps, reading.gaps, (row) => `${row.pair}:${row.from}:${row.to}:${many}`,
       (row) => mountRow(row.kind === 'pair' ? groupIndex(findings, row.to) : -1, '', many ? stripButton(row.pair, acts) : null),
       (node, row) => {
-        const { name, unit, numbers } = writtenGap(row, findings.scale.ratio);
+        const { name, unit, numbers } = writtenGap(row, findings.scale);
         fillRow(node, lettered && row.kind === 'pair' ? inLetters(findings, row) : name, numbers ? numbers.value + unit : '\u2013', numbers, words.states[row.state], whyNone(row));
         node.cells[0]?.setAttribute('aria-label', name);
         node.cells[0]?.setAttribute('title', name);

@@ -61,11 +61,11 @@ function visitTable(findings) {
   const { ratio, time_word: word, response } = findings.scale;
   const first = readingAt(findings, visits[0] ?? 0);
   const pairs = first.gaps.slice().sort((a, b) => a.pair - b.pair);
-  const heads = [word, ...findings.curves.map((curve) => curve.group), ...pairs.map((gap) => writtenGap(gap, ratio).name)];
+  const heads = [word, ...findings.curves.map((curve) => curve.group), ...pairs.map((gap) => writtenGap(gap, findings.scale).name)];
   const rows = visits.map((visit) => {
     const reading = readingAt(findings, visit);
     const groups = reading.groups.slice().sort((a, b) => a.index - b.index);
-    const gaps = reading.gaps.slice().sort((a, b) => a.pair - b.pair).map((gap) => writtenGap(gap, ratio));
+    const gaps = reading.gaps.slice().sort((a, b) => a.pair - b.pair).map((gap) => writtenGap(gap, findings.scale));
     return [
       plainTime(visit, span(findings)),
       ...groups.map((row) => cell(withInterval(row.value, row.lower, row.upper), '')),
@@ -79,7 +79,7 @@ function visitTable(findings) {
 function stretchTable(findings) {
   const { ratio, time_word: word } = findings.scale;
   const rows = findings.differences.flatMap((difference) => {
-    const name = text.reading.gap(difference, ratio);
+    const name = text.reading.gap(difference, ratio, findings.scale.link);
     const hasMargin = difference.margin[0] !== difference.margin[1];
     /** @param {Stretch[]} stretches @param {string} state */
     const of = (stretches, state) => stretches.map((stretch) => [

@@ -60,7 +60,11 @@ pub(crate) fn density(family: Family, row: Row, eta: f64) -> [f64; 3] {
         }
         Family::NegativeBinomial => {
             let (k, mu) = (1.0 / dispersion, libm::exp(eta));
-            [y * eta - (y + k) * libm::log(k + mu), y - (y + k) * mu / (k + mu), (y + k) * k * mu / ((k + mu) * (k + mu))]
+            [
+                y * eta - (y + k) * libm::log(k + mu),
+                y - (y + k) * mu / (k + mu),
+                (y + k) * k * mu / ((k + mu) * (k + mu)),
+            ]
         }
         Family::Gamma => {
             let (shape, ratio) = (1.0 / dispersion, y * libm::exp(-eta));
@@ -123,7 +127,8 @@ fn tweedie_series(y: f64, phi: f64, p: f64) -> f64 {
         return 0.0;
     }
     let alpha = (2.0 - p) / (1.0 - p);
-    let log_z = -alpha * libm::log(y) + alpha * libm::log(p - 1.0) - (1.0 - alpha) * libm::log(phi) - libm::log(2.0 - p);
+    let log_z =
+        -alpha * libm::log(y) + alpha * libm::log(p - 1.0) - (1.0 - alpha) * libm::log(phi) - libm::log(2.0 - p);
     let term = |j: f64| j * log_z - ln_gamma(1.0 + j) - ln_gamma(-alpha * j);
     let top = libm::round(libm::pow(y, 2.0 - p) / (phi * (2.0 - p))).max(1.0);
     let largest = term(top);

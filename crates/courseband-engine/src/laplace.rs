@@ -172,7 +172,8 @@ impl<'a> Laplace<'a> {
             let phi = self.dispersion(theta, pattern);
             let m = pattern.subjects.len();
             for at in 0..pattern.responses.len() {
-                height += density(self.layout.family, row(pattern, at, phi), mean[at / m] + effects[(at / m, at % m)])[0];
+                height +=
+                    density(self.layout.family, row(pattern, at, phi), mean[at / m] + effects[(at / m, at % m)])[0];
             }
             height -= 0.5 * mode.v[k].norm_squared();
         }
@@ -289,7 +290,8 @@ impl<'a> Laplace<'a> {
         if !self.is_bounded(theta, &mode) {
             return None;
         }
-        let mut value = -2.0 * (height + self.constants(theta)) + step.log_h - self.design.unpenalised() as f64 * LN_TWO_PI;
+        let mut value =
+            -2.0 * (height + self.constants(theta)) + step.log_h - self.design.unpenalised() as f64 * LN_TWO_PI;
         for block in 0..self.design.placement.blocks() {
             for (entry, columns) in self.layout.priors(self.design, block) {
                 value += columns.len() as f64 * theta[entry];

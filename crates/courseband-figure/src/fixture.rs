@@ -20,7 +20,7 @@ pub(crate) fn source(groups: usize) -> Source {
         rates: Vec::new(),
         differences: pairs.map(|(a, b)| gap(a, b)).collect(),
         visits: VISITS.to_vec(),
-        scale: Names { time_word: "day".into(), response: "wound area (mm²)".into(), ratio: true },
+        scale: Names { time_word: "day".into(), response: "wound area (mm²)".into(), ratio: true, link: "log".into() },
         plan: crate::source::Choices {
             words: Nouns { subject: "mouse".into(), subjects: "mice".into() },
             comparisons: Comparisons { margin: 10.0, margin_unit: "percent".into(), ..Comparisons::default() },

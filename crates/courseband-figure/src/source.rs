@@ -164,6 +164,9 @@ pub struct Names {
     pub response: String,
     /// True where gaps are ratios.
     pub ratio: bool,
+    /// `identity`, `log` or `logit`.
+    #[serde(default)]
+    pub link: String,
 }
 
 /// The part of the plan that captions name.

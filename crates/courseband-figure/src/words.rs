@@ -2,7 +2,7 @@
 
 use crate::numbers::plain;
 use crate::scale::Kind;
-use crate::source::{Gap, Source};
+use crate::source::{Gap, Names, Source};
 use crate::view::View;
 
 /// `95 %`.
@@ -31,7 +31,9 @@ pub(crate) fn courses(
         (true, Kind::Linear) => {}
     }
     let subject = &source.plan.words.subject;
-    parts.push(if source.scale.ratio {
+    parts.push(if source.scale.link == "logit" {
+        format!("lines: share of a typical {subject}")
+    } else if source.scale.ratio {
         format!("lines: typical {subject} (geometric mean)")
     } else {
         "lines: group mean".into()
@@ -85,7 +87,11 @@ pub(crate) fn margin(source: &Source) -> String {
 }
 
 /// What a pair's numbers are.
-pub(crate) fn pair(gap: &Gap, ratio: bool, as_percent: bool) -> String {
+pub(crate) fn pair(gap: &Gap, scale: &Names, as_percent: bool) -> String {
+    let ratio = scale.ratio;
+    if scale.link == "logit" {
+        return format!("odds of {} / odds of {}", gap.to, gap.from);
+    }
     if gap.kind == "trend" {
         let what = if ratio { "Factor" } else { "Change" };
         return format!("{what} per step, {} to {}", gap.from, gap.to);

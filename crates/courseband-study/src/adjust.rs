@@ -150,7 +150,9 @@ pub(crate) fn adjust(
         columns.push(numeric("value at the start".into(), values));
     }
     let block = plan.columns.block.as_deref();
-    for covariate in observations.covariates.iter().filter(|c| Some(c.name.as_str()) != block) {
+    let total = plan.columns.total.as_deref();
+    let explains = |name: &str| Some(name) != block && Some(name) != total;
+    for covariate in observations.covariates.iter().filter(|c| explains(&c.name)) {
         let bends = plan.columns.bending.contains(&covariate.name);
         let changes = match &covariate.values {
             CovariateValues::Numeric(values) => {

@@ -120,19 +120,27 @@ impl Plan {
             Distribution::Poisson => "poisson",
             Distribution::NegativeBinomial => "negative-binomial",
             Distribution::Gamma => "gamma",
-            Distribution::Binomial | Distribution::Beta | Distribution::Tweedie => {
-                return Err(Refusal::plan(
-                    "response.distribution binomial, beta and tweedie are not available in this version. Use \"poisson\" or \
-                     \"negative-binomial\" for counts, \"gamma\" or the log scale for skewed values.",
-                ));
-            }
+            Distribution::Binomial => "binomial",
+            Distribution::Beta => "beta",
+            Distribution::Tweedie => "tweedie",
         };
+        if self.response.detection == Detection::Limits {
+            return Err(Refusal::plan(format!(
+                "response.detection limits is made for normal responses and not available beside response.distribution \"{name}\". \
+                 Use \"normal\", on the log scale where values are skewed."
+            )));
+        }
+        self.refuse_beside(&format!("response.distribution \"{name}\""))
+    }
+
+    /// Refuses what is made for normal responses only.
+    pub(crate) fn refuse_beside(&self, what_it_is: &str) -> Result<(), Refusal> {
         let columns = !self.columns.covariates.is_empty() || self.columns.block.is_some();
         let clash = [
             (
-                self.response.transform == Transform::Log,
+                self.response.transform == Transform::Log && self.response.distribution != Distribution::Normal,
                 "response.transform log",
-                "its own link is the log: set \"identity\"",
+                "it has a link of its own: set \"identity\"",
             ),
             (self.errors.serial != Serial::None, "errors.serial", "set \"none\""),
             (self.errors.spread != Spread::Common, "errors.spread", "set \"common\""),
@@ -141,9 +149,9 @@ impl Plan {
             (columns, "columns.covariates and columns.block", "leave them out"),
         ];
         match clash.iter().find(|(clashes, ..)| *clashes) {
-            Some((_, what, instead)) => Err(Refusal::plan(format!(
-                "{what} is not available beside response.distribution \"{name}\": {instead}."
-            ))),
+            Some((_, what, instead)) => {
+                Err(Refusal::plan(format!("{what} is not available beside {what_it_is}: {instead}.")))
+            }
             None => Ok(()),
         }
     }
@@ -154,16 +162,22 @@ impl Plan {
         self.response.transform == Transform::Log || self.response.distribution != Distribution::Normal
     }
 
+    /// True where the course is a share, under a logit link: gaps are then ratios of odds.
+    #[must_use]
+    pub fn is_logit(&self) -> bool {
+        matches!(self.response.distribution, Distribution::Binomial | Distribution::Beta)
+    }
+
     /// Refuses, for what is made for normal responses only.
     ///
     /// # Errors
     /// Another distribution.
     pub(crate) fn need_normal(&self, what: &str) -> Result<(), Refusal> {
-        if self.response.distribution == Distribution::Normal {
+        if self.response.distribution == Distribution::Normal && self.response.detection == Detection::AsWritten {
             return Ok(());
         }
         Err(Refusal::plan(format!(
-            "{what} are made for normal responses, on the measured or the log scale, and not for other distributions in this version."
+            "{what} are made for normal responses, on the measured or the log scale, and not for other distributions or values beyond a limit in this version."
         )))
     }
 
@@ -172,7 +186,12 @@ impl Plan {
             Distribution::Poisson => engine::Family::Poisson,
             Distribution::NegativeBinomial => engine::Family::NegativeBinomial,
             Distribution::Gamma => engine::Family::Gamma,
-            _ => engine::Family::Normal,
+            Distribution::Binomial => engine::Family::Binomial,
+            Distribution::Beta => engine::Family::Beta,
+            Distribution::Tweedie => {
+                engine::Family::Tweedie(libm::round(1000.0 * self.response.power.unwrap_or(1.5)) as u16)
+            }
+            Distribution::Normal => engine::Family::Normal,
         }
     }
 
@@ -212,6 +231,16 @@ impl Plan {
                 "columns.crossed is \"{name}\", which is used as a covariate or block too. Use it once."
             )));
         }
+        if let Some(power) = self.response.power.filter(|p| !(*p > 1.0 && *p < 2.0)) {
+            return Err(Refusal::plan(format!(
+                "response.power is {power}; a Tweedie power lies between 1 and 2, such as 1.5."
+            )));
+        }
+        if self.columns.total.is_some() && self.response.distribution != Distribution::Binomial {
+            return Err(Refusal::plan(
+                "columns.total names numbers of trials, which a binomial response has. Set response.distribution \"binomial\", or leave it out.",
+            ));
+        }
         let c = &self.comparisons;
         if c.not_worse.is_some() && !(c.margin > 0.0) {
             return Err(Refusal::plan(
@@ -223,7 +252,9 @@ impl Plan {
                 "comparisons.growth_over is [{start}, {end}]; it needs a first time and a later one."
             )));
         }
-        if let Some(target) = c.target.filter(|t| !t.is_finite() || self.is_ratio() && *t <= 0.0) {
+        if let Some(target) =
+            c.target.filter(|t| !t.is_finite() || self.is_ratio() && *t <= 0.0 || self.is_logit() && *t >= 1.0)
+        {
             return Err(Refusal::plan(format!(
                 "comparisons.target is {target}; it needs a level of the response{}.",
                 if self.is_ratio() { " above zero, as the log scale does" } else { "" }
@@ -265,6 +296,7 @@ impl Plan {
             covariates: (self.columns.covariates.iter())
                 .chain(&self.columns.block)
                 .chain(&self.columns.crossed)
+                .chain(&self.columns.total)
                 .cloned()
                 .collect(),
             exclusions: self
@@ -288,6 +320,7 @@ impl Plan {
                 SharedIds::Same => table::SharedIds::Same,
                 SharedIds::Mistake => table::SharedIds::Mistake,
             }),
+            limits: self.response.detection == Detection::Limits,
             layout: self.reading.layout.map(|layout| match layout {
                 Layout::Long => table::Layout::Long,
                 Layout::WideByTime => table::Layout::WideByTime,

@@ -37,6 +37,8 @@ pub(crate) struct Cohort {
     pub(crate) runs: Vec<RunKind>,
     /// Of a Gaussian process, where it was estimated.
     range: Option<f64>,
+    /// Of a Tweedie distribution.
+    power: Option<f64>,
     pub(crate) notes: Vec<Note>,
 }
 
@@ -49,6 +51,7 @@ impl Cohort {
         let started = started(observations, plan)?;
         refuse_ties(observations, plan)?;
         let Filed { mut subjects, names: subject_names, places } = rows_by_subject(observations, &started);
+        crate::families::give_details(&mut subjects, &places, observations, plan)?;
         let (names, kept) = keep_filled_groups(observations, &mut subjects);
         let cell =
             |name: &String| observations.groups.iter().position(|g| g == name).and_then(|g| observations.cells.get(g));
@@ -85,8 +88,13 @@ impl Cohort {
             adjustments,
             runs,
             range: None,
+            power: None,
             notes,
         };
+        if cohort.has_limits() {
+            plan.refuse_beside("a value beyond a limit (response.detection \"limits\")")?;
+        }
+        cohort.estimate_power(plan);
         cohort.estimate_range(plan);
         Ok(cohort)
     }
@@ -94,8 +102,50 @@ impl Cohort {
     /// The model to fit: the plan's, with the clusters that the table has.
     pub(crate) fn model(&self, plan: &Plan) -> courseband_engine::Model {
         let normal = plan.response.distribution == Distribution::Normal;
-        let clusters = if normal { self.housing.effects } else { courseband_engine::ClusterEffects::None };
-        courseband_engine::Model { clusters, ..plan.model(self.range) }
+        let limits = normal && self.has_limits();
+        let plain = normal && !limits;
+        let clusters = if plain { self.housing.effects } else { courseband_engine::ClusterEffects::None };
+        let model = courseband_engine::Model { clusters, ..plan.model(self.range) };
+        match (limits, plan.response.distribution) {
+            (true, _) => courseband_engine::Model { family: courseband_engine::Family::Censored, ..model },
+            (_, Distribution::Tweedie) => {
+                let power = libm::round(1000.0 * self.power.unwrap_or(1.5)) as u16;
+                courseband_engine::Model { family: courseband_engine::Family::Tweedie(power), ..model }
+            }
+            _ => model,
+        }
+    }
+
+    /// True where some response is a limit beyond which the value lies.
+    pub(crate) fn has_limits(&self) -> bool {
+        self.data.subjects.iter().any(|s| s.detail.iter().any(|d| d.abs() == 1.0))
+    }
+
+    /// The power of a Tweedie distribution with the largest restricted likelihood, by fits over a grid.
+    fn estimate_power(&mut self, plan: &Plan) {
+        if plan.response.distribution != Distribution::Tweedie {
+            return;
+        }
+        self.power = plan.response.power;
+        if self.power.is_some() {
+            return;
+        }
+        let mut best = (f64::NEG_INFINITY, 1.5);
+        let mut try_all = |powers: &[f64]| {
+            for &power in powers {
+                self.power = Some(power);
+                let value = courseband_engine::fit(&self.data, &self.model(plan))
+                    .map_or(f64::NEG_INFINITY, |fit| fit.log_reml());
+                best = if value > best.0 { (value, power) } else { best };
+            }
+            best.1
+        };
+        let rough = try_all(&[1.1, 1.25, 1.4, 1.55, 1.7, 1.85]);
+        let near = try_all(&[rough - 0.07, rough + 0.07]);
+        self.power = Some(near);
+        let message =
+            format!("The variance grows with the mean to the power {near:.2}: that is estimated, and taken as known.");
+        self.notes.push(Note { about: "fit".into(), message });
     }
 
     /// The range of a Gaussian process with the largest restricted likelihood, by fits over a grid of shares of the

@@ -210,12 +210,12 @@ impl Evaluation<'_> {
         });
         let [peak, nadir] = self.extremes(g);
         GroupEffects {
-            average: average.map(|e| self.interval(e, |x| self.back(x))),
+            average: average.map(|e| self.interval(e, |x| self.back_course(x))),
             area: average.filter(|_| !ratio).map(|e| self.interval(e, |x| x * span)),
             growth_over: over,
             to_level: self.to_level(g),
             growth: growth.map(|e| self.interval(e, |x| self.back(x))),
-            doubling_time: growth.filter(|_| ratio).and_then(|e| self.doubling(e)),
+            doubling_time: growth.filter(|_| ratio && !self.plan.is_logit()).and_then(|e| self.doubling(e)),
             peak,
             nadir,
         }
@@ -281,7 +281,11 @@ impl Evaluation<'_> {
     /// The level whose day is sought, on the modelled scale.
     fn level_sought(&self) -> Option<f64> {
         let level = self.plan.comparisons.target?;
-        let level = if self.is_ratio() { libm::log(level) } else { level };
+        let level = match (self.plan.is_logit(), self.is_ratio()) {
+            (true, _) => libm::log(level / (1.0 - level)),
+            (false, true) => libm::log(level),
+            _ => level,
+        };
         level.is_finite().then_some(level)
     }
 
@@ -314,7 +318,7 @@ impl Evaluation<'_> {
             for (k, &sign) in signs.iter().enumerate() {
                 let at = top(values, sign);
                 times[k].push(points[at]);
-                heights[k].push(self.back(values[at]));
+                heights[k].push(self.back_course(values[at]));
             }
         });
         let fitted: Vec<f64> = points.iter().map(|&t| self.posterior.estimate(&course(t)).mean).collect();
@@ -323,7 +327,7 @@ impl Evaluation<'_> {
             let at = top(&fitted, sign);
             Extreme {
                 time: quantiles(points[at], times, level),
-                height: quantiles(self.back(fitted[at]), heights, level),
+                height: quantiles(self.back_course(fitted[at]), heights, level),
                 at_end: at == 0 || at + 1 == points.len(),
             }
         });

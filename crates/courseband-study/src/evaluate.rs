@@ -131,6 +131,11 @@ impl<'a> Evaluation<'a> {
         if self.plan.is_ratio() { libm::exp(value) } else { value }
     }
 
+    /// A course's value on the response's own scale.
+    pub(crate) fn back_course(&self, value: f64) -> f64 {
+        if self.plan.is_logit() { 1.0 / (1.0 + libm::exp(-value)) } else { self.back(value) }
+    }
+
     pub(crate) fn curves(&self) -> Vec<Curve> {
         let groups = self.cohort.groups.len();
         let family = self.family(self.curve_members(), DIRECTIONS / 2, self.calibrated.map(|c| c.curves));
@@ -148,7 +153,7 @@ impl<'a> Evaluation<'a> {
         let rate = |&g: &usize| {
             let support = self.cohort.supports[g];
             let estimates = self.estimates(|t| self.fit.rate(g, t), &self.grid, support);
-            let points = self.curve_points(self.grid.clone(), &estimates, &family);
+            let points = self.points_by(self.grid.clone(), &estimates, &family, &|value| self.back(value));
             Rate {
                 group: self.cohort.groups[g].name.clone(),
                 support,
@@ -229,8 +234,18 @@ impl<'a> Evaluation<'a> {
     }
 
     fn curve_points(&self, time: Vec<f64>, estimates: &[Option<Estimate>], family: &Family) -> CurvePoints {
+        self.points_by(time, estimates, family, &|value| self.back_course(value))
+    }
+
+    fn points_by(
+        &self,
+        time: Vec<f64>,
+        estimates: &[Option<Estimate>],
+        family: &Family,
+        scale: &dyn Fn(f64) -> f64,
+    ) -> CurvePoints {
         let limits = Limits::new(estimates, family);
-        let back = |values: &[Option<f64>]| values.iter().map(|v| v.map(|v| self.back(v))).collect();
+        let back = |values: &[Option<f64>]| values.iter().map(|v| v.map(scale)).collect();
         CurvePoints {
             time,
             response_mean: back(&limits.mean),

@@ -314,8 +314,10 @@ pub struct ScaleInfo {
     pub time_word: String,
     /// Name of the response column.
     pub response: String,
-    /// True where gaps are ratios.
+    /// True where gaps are ratios: of the courses or, under a logit link, of odds.
     pub ratio: bool,
+    /// `identity`, `log` or `logit`.
+    pub link: &'static str,
 }
 
 /// A finding in words.

@@ -71,7 +71,9 @@ pub struct Response {
     pub distribution: Distribution,
     /// Scale on which the course is modelled.
     pub transform: Transform,
-    /// What a value such as `<0.5` is taken for.
+    /// Power of a Tweedie distribution, between 1 and 2; `null`: estimated.
+    pub power: Option<f64>,
+    /// What a value such as `<0.5` is taken for: kept out, or a limit.
     pub detection: Detection,
     /// What is made of the values at the first time.
     pub start: Start,
@@ -147,6 +149,8 @@ pub enum Detection {
     /// As it is written.
     #[default]
     AsWritten,
+    /// A limit beyond which the value lies (Tobin 1958).
+    Limits,
 }
 
 /// Order of a Matern covariance.

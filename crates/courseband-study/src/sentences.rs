@@ -135,7 +135,16 @@ impl Speaker<'_> {
         };
         let (estimate, lower, upper) = at(&d.at_visits).or_else(|| at(&d.grid))?;
         let when = self.when(t);
-        Some(if self.findings.scale.ratio {
+        Some(if self.findings.scale.link == "logit" {
+            let digits = decimals(upper - lower) + 1;
+            let [e, l, u] = [estimate, lower, upper].map(|x| number(x, digits));
+            format!(
+                "At {when} the odds in {} are {e} times those in {} ({l} to {u}).{}",
+                d.to,
+                d.from,
+                self.in_points(t)
+            )
+        } else if self.findings.scale.ratio {
             let [e, l, u] = shares(estimate, lower, upper);
             format!("At {when} {} is {e} of {} ({l} to {u}).", d.to, d.from)
         } else {
@@ -153,6 +162,23 @@ impl Speaker<'_> {
                 number(upper, digits)
             )
         })
+    }
+
+    /// The two shares behind a ratio of odds, in percent.
+    fn in_points(&self, t: f64) -> String {
+        let at = |name: &str| {
+            let curve = self.findings.curves.iter().find(|c| c.group == name)?;
+            let points = &curve.at_visits;
+            points.response_mean[points.time.iter().position(|&x| x == t)?]
+        };
+        match (at(&self.difference.to), at(&self.difference.from)) {
+            (Some(to), Some(from)) => {
+                let points = number(100.0 * (to - from), 0);
+                let [to, from] = [to, from].map(|share| number(100.0 * share, 0));
+                format!(" That is {to} % against {from} %, {points} percentage points.")
+            }
+            _ => String::new(),
+        }
     }
 
     /// When the band excludes zero and the margin.

@@ -64,7 +64,10 @@ impl Study {
     pub fn reading(&mut self, plan: &Plan) -> Result<&Reading, Refusal> {
         self.turn_to(plan)?;
         let same = |kept: &Plan| {
-            kept.columns == plan.columns && kept.exclusions == plan.exclusions && kept.reading == plan.reading
+            kept.columns == plan.columns
+                && kept.exclusions == plan.exclusions
+                && kept.reading == plan.reading
+                && kept.response.detection == plan.response.detection
         };
         if !self.kept.as_ref().is_some_and(|(kept, _)| same(kept)) {
             self.kept = None;
@@ -192,11 +195,28 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
             &plan.words.response.clone().or_else(|| columns.response.clone()).unwrap_or_default(),
         ),
         ratio,
+        link: if plan.is_logit() {
+            "logit"
+        } else if ratio {
+            "log"
+        } else {
+            "identity"
+        },
     };
     let mut notes: Vec<Note> =
         reading.notes.iter().map(|message| Note { about: "table".into(), message: message.clone() }).collect();
     notes.extend(cohort.notes.iter().cloned());
     notes.extend(plan_notes(plan, &cohort));
+    if cohort.has_limits() {
+        let count = cohort.data.subjects.iter().flat_map(|s| &s.detail).filter(|d| d.abs() == 1.0).count();
+        notes.push(Note {
+            about: "fit".into(),
+            message: format!(
+                "{count} responses are limits beyond which the value lies (Tobin 1958). The likelihood is Laplace's approximation, \
+                 and bands rest on degrees of freedom."
+            ),
+        });
+    }
     let mut findings = Findings {
         version: env!("CARGO_PKG_VERSION").into(),
         rows: cohort.data.rows(),

@@ -139,6 +139,14 @@ fn slow(cell: &str, decimal: Decimal) -> Result<f64, NotNumber> {
     Err(odd_kind(trimmed, decimal))
 }
 
+/// The limit of a cell such as `<0.5` (-1: below) or `>500` (1: above).
+pub(crate) fn limit(cell: &str, decimal: Decimal) -> Option<(f64, i8)> {
+    let cell = cell.trim();
+    let bare = cell.trim_start_matches(['<', '>', '≤', '≥', '=', ' ']);
+    let value = strict(bare, decimal).filter(|_| bare.len() < cell.len())?;
+    Some((value, if cell.starts_with(['<', '≤']) { -1 } else { 1 }))
+}
+
 fn odd_kind(cell: &str, decimal: Decimal) -> NotNumber {
     let limit = cell.trim_start_matches(['<', '>', '≤', '≥', '=', ' ']);
     if limit.len() < cell.len() && strict(limit, decimal).is_some() {

@@ -20,6 +20,8 @@ pub struct Observations {
     pub time: Vec<f64>,
     /// Response as measured; always finite.
     pub response: Vec<f64>,
+    /// -1 where the true response lies below, 1 where above, 0 where it is the response; empty where no limits are read.
+    pub limit: Vec<i8>,
     /// Line in the file; the header is line 1.
     pub line: Vec<u32>,
     /// In a wide table: the sheet's column that holds the measurement, an index into `measured`; empty in a long one.

@@ -4,7 +4,7 @@ use crate::error::TableError;
 use crate::groups;
 use crate::labels::Labels;
 use crate::long::LongTable;
-use crate::number::{NotNumber, is_missing, number};
+use crate::number::{NotNumber, is_missing, limit, number};
 use crate::observations::{Covariate, CovariateValues, Observations, SubjectInfo};
 use crate::problems::Problems;
 use crate::profile::Profile;
@@ -27,6 +27,8 @@ struct Observer<'a> {
     /// Rows of the long form that are not excluded.
     kept: Vec<u32>,
     excluded: usize,
+    /// Which responses are limits, by kept row.
+    limits: Vec<i8>,
     problems: Problems,
     notes: Vec<String>,
     questions: Vec<Question>,
@@ -53,6 +55,7 @@ impl<'a> Observer<'a> {
             request,
             kept: Vec::new(),
             excluded: 0,
+            limits: Vec::new(),
             problems: Problems::default(),
             notes: table.notes.clone(),
             questions: roles.questions.clone(),
@@ -325,12 +328,18 @@ impl Observer<'_> {
         let decimal = self.profiles[column].decimal;
         let unit = self.profiles[column].unit.clone();
         let mut values = Vec::with_capacity(self.kept.len());
+        self.limits = vec![0; self.kept.len()];
         for &row in &self.kept {
             let row = row as usize;
             let cell = self.table.cell(row, column);
             let value = match number(cell, decimal) {
                 Ok(value) => value,
                 Err(NotNumber::Unit(value, own)) if unit.as_deref() == Some(own.as_str()) => value,
+                Err(NotNumber::Below | NotNumber::Above) if self.request.limits => {
+                    let (value, side) = limit(cell, decimal).unwrap_or((f64::NAN, 0));
+                    self.limits[values.len()] = side;
+                    value
+                }
                 Err(odd) => {
                     let (kind, message) = odd_response(&odd, decimal);
                     let shown = self.table.shown_column(row, column);

@@ -144,6 +144,8 @@ pub struct Request {
     pub shared_ids: Option<SharedIds>,
     /// How the table is laid out; `None` decides by its header and cells.
     pub layout: Option<Layout>,
+    /// Takes a response such as `<0.5` or `>500` as a limit beyond which it lies, instead of leaving it out.
+    pub limits: bool,
 }
 
 impl Request {

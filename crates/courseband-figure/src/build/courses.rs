@@ -162,7 +162,7 @@ impl Builder<'_> {
         let (Some(&low), Some(&high)) = (all.first(), all.last()) else {
             return Scale::new(Kind::Linear, 0.0, 1.0);
         };
-        let is_log = self.view.log.unwrap_or(self.source.scale.ratio);
+        let is_log = self.view.log.unwrap_or(self.source.scale.ratio && self.source.scale.link != "logit");
         if is_log && low > 0.0 {
             return Scale::new(Kind::Log, low, high).widened(0.02);
         }

@@ -41,7 +41,7 @@ impl Builder<'_> {
     fn gap_strip(&self, pair: usize, plot: Option<Plot>, scale: Scale) -> Strip {
         let gap = &self.source.differences[pair];
         let (tone, _) = self.look_of(gap);
-        let name = words::pair(gap, self.source.scale.ratio, plot.is_some() && as_percent(scale));
+        let name = words::pair(gap, &self.source.scale, plot.is_some() && self.as_percent(scale));
         Strip {
             kind: if plot.is_some() { StripKind::Gap } else { StripKind::Row },
             pair: Some(pair),
@@ -76,8 +76,13 @@ impl Builder<'_> {
         let ratio = self.source.scale.ratio;
         let about = if height > 120.0 { 5 } else { 3 };
         let ticks: Vec<Tick> =
-            if ratio { ratio_ticks(scale, about, as_percent(scale)) } else { value_ticks(scale, about) };
+            if ratio { ratio_ticks(scale, about, self.as_percent(scale)) } else { value_ticks(scale, about) };
         Plot { height, scale, ticks, rules: rules(gap, ratio), marks, ends: Vec::new(), least_lines: 0 }
+    }
+
+    /// Ratios of courses read as percent, unless they are large; ratios of odds never do.
+    fn as_percent(&self, scale: Scale) -> bool {
+        scale.high() <= MOST_PERCENT && self.source.scale.link != "logit"
     }
 
     fn few_in_pair(&self, gap: &Gap) -> Option<f64> {
@@ -113,10 +118,6 @@ impl Builder<'_> {
         let back = |v: f64| if ratio { libm::exp(v) } else { v };
         Scale::new(if ratio { Kind::Log } else { Kind::Linear }, back(low), back(high)).widened(0.06)
     }
-}
-
-fn as_percent(scale: Scale) -> bool {
-    scale.high() <= MOST_PERCENT
 }
 
 fn rules(gap: &Gap, ratio: bool) -> Vec<Rule> {

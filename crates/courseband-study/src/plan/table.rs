@@ -69,6 +69,8 @@ pub struct Columns {
     pub crossed: Option<String>,
     /// What is written where a subject was removed as planned, such as at a humane end point; empty elsewhere.
     pub removal: Option<String>,
+    /// Number of trials of every row, for a binomial response.
+    pub total: Option<String>,
 }
 
 /// One row left out.

@@ -184,6 +184,10 @@ impl Observer<'_> {
             subject: order.iter().map(|&kept| subject_codes.new[subjects.of_row[kept as usize] as usize]).collect(),
             time: order.iter().map(|&kept| times.values[kept as usize]).collect(),
             response: order.iter().map(|&kept| responses[kept as usize]).collect(),
+            limit: match self.limits.iter().any(|&side| side != 0) {
+                true => order.iter().map(|&kept| self.limits[kept as usize]).collect(),
+                false => Vec::new(),
+            },
             line: order.iter().map(|&kept| self.line(kept as usize) as u32).collect(),
             cell: match wide {
                 true => order.iter().map(|&kept| self.table.places[self.kept[kept as usize] as usize].column).collect(),
