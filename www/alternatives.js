@@ -10,7 +10,7 @@ import { percentLevel } from './numbers.js';
 /** @typedef {import('./types.js').Plan} Plan */
 /** @typedef {import('./context.js').Context} Context */
 /** @typedef {{id: string, name: string, fits: string, chosen: boolean, greyed?: string, plan: Plan}} Alternative */
-/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'distribution'|'start'|'covariates'|'block'|'crossed'|'order'|'also'|'not_worse'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
+/** @typedef {'response'|'time'|'group'|'shape'|'basis'|'dimension'|'smoothness'|'scale'|'noun'|'subjects'|'serial'|'spread'|'subjects_spread'|'clusters'|'distribution'|'start'|'covariates'|'block'|'crossed'|'order'|'also'|'not_worse'|'detection'|'pairs'|'margin'|'level'|'band'|'small_sample'} ChoiceId */
 
 const words = text.plan.choices;
 
@@ -341,7 +341,10 @@ function plainAlternatives(choice, plan) {
         (id) => ({ ...plan, clusters: id }), ['auto', 'slope', 'intercept', 'none']);
     case 'distribution':
       return list(plan, plan.response.distribution, words.distribution, (id) => withDistribution(plan, id),
-        ['normal', 'poisson', 'negative-binomial', 'gamma']);
+        ['normal', 'poisson', 'negative-binomial', 'gamma', 'tweedie', 'binomial', 'beta']);
+    case 'detection':
+      return list(plan, plan.response.detection, words.detection,
+        (id) => withSection(plan, 'response', { detection: id }), ['as-written', 'limits']);
     case 'start':
       return startAlternatives(plan);
     case 'serial':

@@ -16,6 +16,7 @@ import { text } from './text.js';
  * @property {string} timeWord
  * @property {{name: string, reason: string}[]} candidates All columns.
  * @property {'none'|'intercept'|'slope'|null} clusters What differs from cluster to cluster in the model.
+ * @property {number} limits Responses given as below or above a limit.
  * @property {number[]} nonPositive Lines that forbid the log scale.
  */
 
@@ -57,6 +58,7 @@ export function contextOf(state) {
     timeWord: findings?.scale.time_word ?? columns.time ?? text.plan.choices.time.none,
     candidates: (preview?.columns ?? []).map(({ name, reason }) => ({ name, reason })),
     clusters: findings?.clusters?.effects ?? null,
+    limits: (preview?.problems ?? []).filter(({ value }) => /^[<>\u2264\u2265]/.test(value.trim())).length,
     nonPositive: description?.nonPositive ?? [],
   };
 }

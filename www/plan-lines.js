@@ -85,6 +85,9 @@ function followed(choices, context, open) {
   const { distribution } = plan.response;
   const finer = withFiner([
     { lead: words.valuesAre, part: chosen('distribution', choices, context), isDefault: distribution === 'normal' },
+    ...(context.limits > 0 || plan.response.detection === 'limits' ? [{
+      lead: words.beyond, part: chosen('detection', choices, context), isDefault: false,
+    }] : []),
     ...finerOfCurve,
     { lead: words.start, part: chosen('start', choices, context), isDefault: plan.response.start === 'as-measured' },
     {

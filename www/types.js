@@ -52,6 +52,7 @@
  * @property {{about: string, message: string}[]} notes
  * @property {Plan} plan
  * @property {GroupInfo[]} groups
+ * @property {{distribution: string, transform: 'identity'|'log', reason: string}|null} [proposal] What the values suggest.
  * @property {[string, string][]} [cells] In a crossed design the labels of every group.
  * @property {number[]} visits
  * @property {{time_word: string, response: string, ratio: boolean, link?: string}} scale

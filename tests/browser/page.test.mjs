@@ -204,3 +204,29 @@ test('two crossed factors, rates and days to a level by plain choices', async ()
   assert.deepEqual(page.problems, []);
   await page.context().close();
 });
+
+test('shares of a total: the values suggest a distribution, the total is named, odds and points are told', async () => {
+  const page = await openPage(browser);
+  const rows = ['plate,soil,day,germinated,seeds'];
+  let seed = 3;
+  const uniform = () => { seed = (seed * 16807) % 2147483647; return seed / 2147483647; };
+  for (let p = 0; p < 14; p += 1) {
+    for (let day = 1; day < 6; day += 1) {
+      const chance = 1 / (1 + Math.exp(2 - 0.5 * day - (p % 2) * 0.4 * day));
+      rows.push(`p${p},${p % 2 ? 'loam' : 'sand'},${day},${Array.from({ length: 12 }, uniform).filter((u) => u < chance).length},12`);
+    }
+  }
+  await paste(page, rows.join('\n'));
+  await enter(page, 'courses');
+  assert.match(await page.locator('[data-region="proposal-of-values"]').innerText(), /whole numbers from .* counts/);
+  await page.getByRole('button', { name: 'finer choices' }).click();
+  await page.locator('[data-choice="distribution"]').click();
+  await page.locator('[data-alternative="binomial"]').click();
+  await page.waitForTimeout(600);
+  await page.locator('[data-choice="distribution"]').click();
+  await page.selectOption('[data-field="total"]', 'seeds');
+  await page.waitForFunction(() => /percentage points/.test(document.querySelector('[data-region="findings"]')?.textContent ?? ''));
+  assert.match(await findingsOf(page), /the odds in loam are/);
+  assert.deepEqual(page.problems, []);
+  await page.context().close();
+});

@@ -36,7 +36,7 @@ export const coursesRoom = {
     const notes = el('section', { class: 'beside' });
     const views = [
       mountPlan(plan, acts), mountChange(change, acts), mountQuestion(question, acts), mountStrips(strips, acts),
-      mountReading(reading, acts), mountFindings(findings), mountNotes(notes), mountEffects(effects), mountTables(tables),
+      mountReading(reading, acts), mountFindings(findings), mountNotes(notes, acts), mountEffects(effects), mountTables(tables),
     ];
     const aside = el('div', { class: 'aside' });
     const body = el('div', { class: 'courses-body' });

@@ -32,6 +32,8 @@ export function mountField(choice, root, acts) {
       return mountBasis(root, acts);
     case 'dimension':
       return mountDimension(root, acts);
+    case 'distribution':
+      return mountTotal(root, acts);
     case 'also':
       return mountAlso(root, acts);
     case 'noun':
@@ -142,6 +144,32 @@ function mountDimension(root, acts) {
     update(state) {
       const { dimension } = state.choices.plan.curves;
       knots.show(typeof dimension === 'number' ? String(dimension) : '');
+    },
+  };
+}
+
+/**
+ * The column of totals of a binomial response.
+ * @param {HTMLElement} root
+ * @param {Acts} acts
+ */
+function mountTotal(root, acts) {
+  const { distribution } = words;
+  const column = el('select', { 'data-field': 'total' });
+  const node = el('label', { class: 'field' }, el('span', {}, distribution.total), column);
+  column.addEventListener('change', () => acts.choose(`${distribution.total}: ${column.value || distribution.noTotal}`, (choices) => ({
+    ...choices, plan: withSection(choices.plan, 'columns', { total: column.value || null }),
+  })));
+  root.append(node);
+  return {
+    /** @param {State} state */
+    update(state) {
+      const { plan } = state.choices;
+      node.hidden = plan.response.distribution !== 'binomial';
+      const taken = Object.values(contextOf(state).columns);
+      const free = contextOf(state).candidates.filter(({ name }) => !taken.includes(name));
+      column.replaceChildren(el('option', { value: '' }, distribution.noTotal), ...free.map(({ name }) => el('option', { value: name }, name)));
+      column.value = plan.columns.total ?? '';
     },
   };
 }

@@ -29,6 +29,8 @@ pub struct Findings {
     pub curves: Vec<Curve>,
     /// How fast the courses change; empty unless asked for.
     pub rates: Vec<Rate>,
+    /// A distribution or scale that the values suggest; `null` where they suggest nothing else.
+    pub proposal: Option<crate::proposal::Proposal>,
     /// In a crossed design the two labels of every group; otherwise empty.
     pub cells: Vec<[String; 2]>,
     /// One per compared pair; empty when the fit failed.

@@ -23,6 +23,7 @@ mod findings;
 mod housing;
 mod markers;
 mod plan;
+mod proposal;
 mod refusal;
 mod remarks;
 mod report;
@@ -43,6 +44,7 @@ pub use findings::*;
 pub use housing::ClusterSummary;
 pub use markers::{Marker, MarkerPair, MarkersFindings};
 pub use plan::*;
+pub use proposal::Proposal;
 pub use refusal::Refusal;
 pub use report::{
     GivenReport, Report, ReportContext, ReportItem, ReportSection, ReportTable, report_document, tables_workbook,

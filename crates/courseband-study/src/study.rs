@@ -226,6 +226,7 @@ fn find(reading: &Reading, plan: &Plan, refits: Option<&Refits>) -> Result<Findi
         fit: failed_summary(),
         curves: Vec::new(),
         rates: Vec::new(),
+        proposal: crate::proposal::proposal(&cohort, plan),
         cells: cohort.cells.clone(),
         differences: Vec::new(),
         notes,

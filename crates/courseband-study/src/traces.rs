@@ -1,7 +1,7 @@
 //! The subjects' own courses, as fitted.
 
 use crate::cohort::Cohort;
-use crate::plan::{Plan, Transform};
+use crate::plan::{Distribution, Plan, Transform};
 use crate::refusal::Refusal;
 use crate::study::Study;
 use serde::Serialize;
@@ -33,7 +33,13 @@ impl Study {
         for subject in &cohort.data.subjects {
             traces.group.push(subject.group as u32);
             traces.time.extend(&subject.times);
-            traces.response.extend(subject.responses.iter().map(|&y| if log { libm::exp(y) } else { y }));
+            let trials = plan.response.distribution == Distribution::Binomial;
+            let shown = |(j, &y): (usize, &f64)| match subject.detail.get(j).filter(|_| trials) {
+                Some(total) => y / total,
+                None if log => libm::exp(y),
+                None => y,
+            };
+            traces.response.extend(subject.responses.iter().enumerate().map(shown));
             traces.offsets.push(traces.time.len() as u32);
         }
         Ok(traces)

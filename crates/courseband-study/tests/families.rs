@@ -159,3 +159,34 @@ fn values_below_detection_are_used_as_limits() {
     let serial = plan("limits").replace(r#""curves""#, r#""errors": {"serial": "ar1"}, "curves""#);
     assert!(refused(&text, &serial).contains("a value beyond a limit"));
 }
+
+#[test]
+fn values_suggest_their_distribution() {
+    use courseband_study::{Distribution, Transform};
+    let mut rng = Rng::new(6);
+    let mut table = |draw: &mut dyn FnMut(&mut Rng, f64) -> String| {
+        let mut text = String::from("who,arm,day,y\n");
+        for s in 0..20 {
+            for day in 0..5 {
+                let _ = writeln!(text, "s{s},{},{day},{}", ["a", "b"][s % 2], draw(&mut rng, f64::from(day)));
+            }
+        }
+        run(&text, r#"{"subjects": "none"}"#).proposal.map(|p| (p.distribution, p.transform))
+    };
+    let plain = Transform::Identity;
+    assert_eq!(table(&mut |r, t| format!("{:.2}", 20.0 + t + r.normal())), None);
+    assert_eq!(table(&mut |r, _| u8::from(r.uniform() < 0.4).to_string()), Some((Distribution::Binomial, plain)));
+    assert_eq!(table(&mut |r, _| r.poisson(3.0).to_string()), Some((Distribution::Poisson, plain)));
+    let wide = |r: &mut Rng, t: f64| {
+        let rate = (1.0 + 0.5 * t).exp() * r.gamma(2.0) / 2.0;
+        r.poisson(rate).to_string()
+    };
+    assert_eq!(table(&mut { wide }), Some((Distribution::NegativeBinomial, plain)));
+    assert_eq!(
+        table(&mut |r, t| format!("{:.3}", (0.5 * t + 0.3 * r.normal()).exp())),
+        Some((Distribution::Normal, Transform::Log))
+    );
+    assert_eq!(table(&mut |r, _| format!("{:.4}", 0.02 + 0.9 * r.uniform())), Some((Distribution::Beta, plain)));
+    let zeros = |r: &mut Rng, _| if r.uniform() < 0.2 { "0".into() } else { format!("{:.3}", 5.0 * r.gamma(2.0)) };
+    assert_eq!(table(&mut { zeros }), Some((Distribution::Tweedie, plain)));
+}
