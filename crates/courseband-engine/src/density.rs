@@ -30,22 +30,31 @@ pub(crate) fn constant(family: Family, row: Row) -> f64 {
         Family::Poisson => -ln_gamma(y + 1.0),
         Family::NegativeBinomial => {
             let k = 1.0 / dispersion;
-            ln_gamma(y + k) - ln_gamma(k) - ln_gamma(y + 1.0) + k * libm::log(k)
+            ln_gamma(y + k) - ln_gamma(k) - ln_gamma(y + 1.0) - y * libm::log(k)
         }
         Family::Gamma => {
             let shape = 1.0 / dispersion;
-            shape * libm::log(shape) - ln_gamma(shape) + (shape - 1.0) * libm::log(y)
+            shape * libm::log(shape) - ln_gamma(shape) - shape - libm::log(y)
         }
         Family::Binomial => {
             let n = row.trials();
             ln_gamma(n + 1.0) - ln_gamma(y + 1.0) - ln_gamma(n - y + 1.0)
         }
-        Family::Beta => ln_gamma(1.0 / dispersion) - libm::log(y) - libm::log1p(-y),
-        Family::Tweedie(power) => tweedie_series(y, dispersion, f64::from(power) / 1000.0),
+        Family::Beta => -libm::log(y) - libm::log1p(-y),
+        Family::Tweedie(power) => {
+            let p = f64::from(power) / 1000.0;
+            tweedie_series(y, dispersion, p) + saturated(y, p) / dispersion
+        }
     }
 }
 
-/// The rest of the log density, its first derivative for the link predictor and minus its second.
+/// The exponent of a Tweedie density at its largest.
+fn saturated(y: f64, p: f64) -> f64 {
+    if y > 0.0 { libm::pow(y, 2.0 - p) * (1.0 / (1.0 - p) - 1.0 / (2.0 - p)) } else { 0.0 }
+}
+
+/// The rest of the log density, its first derivative for the link predictor and minus its second. It stays near zero at the
+/// mode however small the dispersion: a mode is followed to a share of this height.
 pub(crate) fn density(family: Family, row: Row, eta: f64) -> [f64; 3] {
     let Row { y, dispersion, .. } = row;
     match family {
@@ -61,14 +70,14 @@ pub(crate) fn density(family: Family, row: Row, eta: f64) -> [f64; 3] {
         Family::NegativeBinomial => {
             let (k, mu) = (1.0 / dispersion, libm::exp(eta));
             [
-                y * eta - (y + k) * libm::log(k + mu),
+                y * eta - (y + k) * libm::log1p(mu / k),
                 y - (y + k) * mu / (k + mu),
                 (y + k) * k * mu / ((k + mu) * (k + mu)),
             ]
         }
         Family::Gamma => {
             let (shape, ratio) = (1.0 / dispersion, y * libm::exp(-eta));
-            [-shape * (eta + ratio), shape * (ratio - 1.0), shape * ratio]
+            [-shape * (eta + ratio - libm::log(y) - 1.0), shape * (ratio - 1.0), shape * ratio]
         }
         Family::Binomial => {
             let (n, p) = (row.trials(), 1.0 / (1.0 + libm::exp(-eta)));
@@ -79,7 +88,7 @@ pub(crate) fn density(family: Family, row: Row, eta: f64) -> [f64; 3] {
         Family::Tweedie(power) => {
             let p = f64::from(power) / 1000.0;
             let (low, high) = (libm::exp((1.0 - p) * eta), libm::exp((2.0 - p) * eta));
-            let value = (y * low / (1.0 - p) - high / (2.0 - p)) / dispersion;
+            let value = (y * low / (1.0 - p) - high / (2.0 - p) - saturated(y, p)) / dispersion;
             [value, (y * low - high) / dispersion, ((p - 1.0) * y * low + (2.0 - p) * high) / dispersion]
         }
     }
@@ -112,7 +121,7 @@ fn beta(row: Row, eta: f64) -> [f64; 3] {
     let m = (1.0 / (1.0 + libm::exp(-eta))).clamp(1e-12, 1.0 - 1e-12);
     let (a, b) = (m * k, (1.0 - m) * k);
     let (log_y, log_rest) = (libm::log(row.y), libm::log1p(-row.y));
-    let value = -ln_gamma(a) - ln_gamma(b) + a * log_y + b * log_rest;
+    let value = ln_gamma(k) - ln_gamma(a) - ln_gamma(b) + a * log_y + b * log_rest;
     let slope = m * (1.0 - m) * k;
     let away = (log_y - log_rest) - (digamma(a) - digamma(b));
     let expected = slope * slope * (trigamma(a) + trigamma(b));

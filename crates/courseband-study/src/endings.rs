@@ -59,8 +59,8 @@ pub(crate) fn removals(
     let written = |subject: usize| {
         let column = plan.columns.removal.as_ref()?;
         let lines = cohort.places[subject].iter().map(|&k| observations.line[k] as usize);
-        let cells = lines.filter_map(|line| table.cell_at(line, column)).map(str::trim);
-        let told = cells.filter(|cell| !cell.is_empty() && !is_no(cell)).next_back()?;
+        let mut cells = lines.filter_map(|line| table.cell_at(line, column)).map(str::trim);
+        let told = cells.rfind(|cell| !cell.is_empty() && !is_no(cell))?;
         Some(told.to_string())
     };
     let by_hand = |subject: usize| plan.removed.contains(&cohort.subject_names[subject]).then(|| "by hand".to_string());

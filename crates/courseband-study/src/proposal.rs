@@ -67,7 +67,8 @@ fn power_of_spread(cohort: &Cohort) -> Option<f64> {
     let cells = cells(cohort);
     let points: Vec<(f64, f64)> = cells
         .iter()
-        .filter_map(|&(mean, square)| (mean > 0.0 && square > 0.0).then(|| (libm::log(mean), 0.5 * libm::log(square))))
+        .filter(|(mean, square)| *mean > 0.0 && *square > 0.0)
+        .map(|(mean, square)| (libm::log(*mean), 0.5 * libm::log(*square)))
         .collect();
     let n = points.len() as f64;
     let (mx, my) = (points.iter().map(|p| p.0).sum::<f64>() / n, points.iter().map(|p| p.1).sum::<f64>() / n);

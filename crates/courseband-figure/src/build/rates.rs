@@ -7,11 +7,14 @@ use crate::scale::{Kind, Scale};
 use crate::ticks::value_ticks;
 use crate::words;
 
+/// (time, value, low, high), ascending.
+type Banded = Vec<(f64, f64, f64, f64)>;
+
 impl Builder<'_> {
     /// `None` where no rates were asked for.
     pub(super) fn rates(&self) -> Option<Strip> {
         let none = (Vec::new(), Vec::new());
-        let curves: Vec<(usize, Vec<(f64, f64, f64, f64)>)> = (self.source.rates.iter())
+        let curves: Vec<(usize, Banded)> = (self.source.rates.iter())
             .map(|rate| {
                 let points = banded(
                     [&rate.time, &none.0],
