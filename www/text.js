@@ -145,7 +145,7 @@ export const text = {
     notes: 'To know',
     scale: 'scale',
     mayFit: (/** @type {string} */ name) => `They may fit better as: ${name}.`,
-    take: 'Take them so',
+    take: 'Use that',
     words: 'What the words mean',
     onlyOne: 'There is one group, so nothing is compared. The strip shows its course.',
   },

@@ -33,7 +33,9 @@ test('checks: every check has its plot and its words, and a fault lights one tha
   const lit = page.locator('.check[data-key="serial"][data-lit="true"]');
   await lit.waitFor();
   // What each would change stands above all, with its stretches on the time axis; its name leads to it, focus and all.
-  assert.equal(await count(page, '.verdict-strip li'), await count(page, '.check'));
+  // Articles come one a frame.
+  await page.waitForFunction(() => document.querySelectorAll('.check').length > 4
+    && document.querySelectorAll('.verdict-strip li').length === document.querySelectorAll('.check').length);
   assert.ok(await count(page, '.verdict-strip .stake-lane') > 4);
   await page.locator('.verdict-strip [data-key="serial"] button').click();
   assert.equal(await page.evaluate(() => document.activeElement?.id), 'check-serial');
